@@ -1,0 +1,12 @@
+//! What vision screening knows, without I/O, clock or database.
+
+pub mod acuity;
+pub mod age;
+pub mod codes;
+pub mod field;
+pub mod number;
+pub mod outcome;
+pub mod readings;
+pub mod refraction;
+pub mod roster;
+pub mod text;

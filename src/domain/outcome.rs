@@ -1,0 +1,207 @@
+//! An outcome and everything that explains it.
+
+use std::fmt;
+use std::sync::Arc;
+
+use chrono::NaiveDate;
+
+use crate::domain::codes::code_list;
+use crate::domain::readings::Eye;
+
+code_list! {
+    /// What a visit comes to.
+    OutcomeKind {
+        Pass = "pass", "pass";
+        Rescreen = "rescreen", "rescreen";
+        Refer = "refer", "refer";
+        Incomplete = "incomplete", "incomplete";
+        Exempt = "exempt", "exempt";
+    }
+}
+
+code_list! {
+    /// How soon a refer or rescreen is acted on; the sooner is the smaller.
+    Urgency {
+        Emergency = "emergency", "emergency";
+        Prompt = "prompt", "prompt";
+        Routine = "routine", "routine";
+    }
+}
+
+code_list! {
+    /// A risk factor for amblyopia, by kind.
+    RiskKind {
+        InterocularDifference = "interocular_difference", "interocular difference";
+        Anisometropic = "anisometropic", "anisometropic";
+        Strabismic = "strabismic", "strabismic";
+        Deprivation = "deprivation", "deprivation";
+        Isoametropic = "isoametropic", "isoametropic";
+    }
+}
+
+code_list! {
+    /// How well a number is known.
+    Basis {
+        Primary = "primary", "read in the source";
+        Secondary = "secondary", "as quoted elsewhere";
+        Memory = "memory", "from memory: check against the source before use";
+        Practice = "practice", "common practice";
+    }
+}
+
+/// A criterion's three-valued answer.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Hash)]
+pub enum Answer {
+    /// The threshold is passed, whatever the reading may be within its interval.
+    Pass,
+    /// The threshold is crossed, whatever the reading may be within its interval.
+    Refer,
+    /// The reading cannot say.
+    Unknown,
+}
+
+/// Where a number comes from.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Source {
+    /// The key by which criteria name it.
+    pub key: String,
+    /// Authors, title, where published.
+    pub citation: String,
+    /// DOI or other locator, empty if none.
+    pub locator: String,
+    /// How it was read.
+    pub basis: Basis,
+    /// Where it was quoted, for a secondary basis.
+    pub quoted_in: String,
+}
+
+/// How far a reading lies from the threshold, in the criterion's own unit.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Margin {
+    /// Nothing to measure (a sign, an unknown).
+    None,
+    /// Lines or steps of 0.1 logMAR: positive is on the passing side, zero is at the limit.
+    Steps(i32),
+    /// Thousandths of a dioptre.
+    Diopters(i32),
+    /// Hundredths of a millimetre.
+    Millimetres(i32),
+    /// Hundredths of a prism dioptre.
+    PrismDiopters(i32),
+    /// Answers of a counted test.
+    Count(i32),
+    /// Hundredths of a letter line by letter score (thousandths of logMAR).
+    LogMar(i32),
+}
+
+/// One criterion that was asked, with what it answered and why.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Reason {
+    /// The rule set's id.
+    pub rule_set: Arc<str>,
+    /// The criterion's id inside it.
+    pub criterion: Arc<str>,
+    /// What it answered.
+    pub answer: Answer,
+    /// Whether an unknown answer makes the outcome incomplete.
+    pub required: bool,
+    /// The eye that decided it, if one did.
+    pub eye: Option<Eye>,
+    /// The reading in words with its unit ("20/20 and 20/32", "anisometropia 1.75 D").
+    pub reading: String,
+    /// The threshold as printed ("worse than 20/32").
+    pub threshold: Arc<str>,
+    /// The distance to it.
+    pub margin: Margin,
+    /// Where the threshold comes from.
+    pub source: Arc<Source>,
+    /// The rule file's note on this criterion, empty if none.
+    pub note: Arc<str>,
+    /// Remarks on this reading (rounded to a line, neighbouring lines, one meridian).
+    pub remarks: Vec<String>,
+    /// The kind of amblyopia risk it stands for.
+    pub risk: Option<RiskKind>,
+    /// How soon, when it refers.
+    pub urgency: Urgency,
+    /// Days, where a source prints a number.
+    pub act_within_days: Option<u32>,
+    /// The smallest single change that would turn the answer, in words; empty when there is none.
+    pub would_change: String,
+}
+
+impl Reason {
+    /// Returns the id as a protocol writes it: `rule-set/criterion`.
+    pub fn full_id(&self) -> String {
+        format!("{}/{}", self.rule_set, self.criterion)
+    }
+}
+
+/// Which line of a protocol decided.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum DecidedBy {
+    /// An emergency or prompt sign.
+    UrgentSign,
+    /// Exempt and nothing tested.
+    Exempt,
+    /// A direct-referral group.
+    DirectReferral,
+    /// A criterion that never waits for a rescreen.
+    ReferAtOnce,
+    /// Glasses owned and not worn.
+    GlassesNotWorn,
+    /// Glasses never available, broken or lost.
+    GlassesNeverAvailable,
+    /// A criterion.
+    Criterion,
+    /// Not testable.
+    NotTestable,
+    /// A required test is unknown.
+    Missing,
+    /// Nothing speaks against a pass.
+    Nothing,
+}
+
+/// An outcome with its explanation.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Outcome {
+    /// What it comes to.
+    pub kind: OutcomeKind,
+    /// Which line of the protocol (or of a bare rule set) decided.
+    pub decided_by: DecidedBy,
+    /// How soon; empty unless refer or rescreen.
+    pub urgency: Option<Urgency>,
+    /// Days to act within, where a source prints a number.
+    pub act_within_days: Option<u32>,
+    /// The date to act by, counted from the screening day.
+    pub act_by: Option<NaiveDate>,
+    /// The date of the rescreen, or of the return with glasses.
+    pub due_on: Option<NaiveDate>,
+    /// Amblyopia risk, by kind, in list order.
+    pub risks: Vec<RiskKind>,
+    /// Ids of the criteria that referred.
+    pub criteria: Vec<String>,
+    /// Ids of the criteria (and `age`, `grade`) that could not be answered.
+    pub unknown: Vec<String>,
+    /// Every criterion that was asked.
+    pub reasons: Vec<Reason>,
+    /// What the outcome says of itself: "critical line; difference between the eyes not tested".
+    pub qualifiers: Vec<String>,
+    /// Sentences of the protocol in the order they matter ("first fail is rescreened within 14 days").
+    pub protocol_notes: Vec<String>,
+    /// Id of the rule set or protocol that answered.
+    pub rule_set: Arc<str>,
+    /// Its edition.
+    pub edition: Arc<str>,
+    /// SHA-256 of the text of the rule set or protocol and of all rule sets it uses, in hex.
+    pub content_hash: Arc<str>,
+}
+
+impl fmt::Display for Outcome {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        f.write_str(self.kind.title())?;
+        if !self.qualifiers.is_empty() {
+            write!(f, " ({})", self.qualifiers.join("; "))?;
+        }
+        Ok(())
+    }
+}
