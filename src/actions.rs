@@ -1,0 +1,1 @@
+//! One function is one user intention and one transaction.

@@ -1,0 +1,1 @@
+//! An invented district, part-way through a screening day.

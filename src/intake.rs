@@ -1,0 +1,1 @@
+//! Bytes in, typed rows or located errors out.

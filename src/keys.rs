@@ -1,0 +1,1 @@
+//! The one declaration of commands and keys.

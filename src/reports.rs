@@ -1,0 +1,1 @@
+//! Typed rows in, bytes out.

@@ -1,0 +1,1 @@
+//! Published guidance as data: load, evaluate, explain.

@@ -1,0 +1,1 @@
+//! The encrypted, append-only store; the only place with SQL.

@@ -1,0 +1,1 @@
+//! The shape of the code: direction of dependencies, file lengths, doc words.

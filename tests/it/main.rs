@@ -1,0 +1,10 @@
+//! The one integration test binary: each further one would link the encrypted engine again.
+
+mod architecture;
+mod cli;
+mod demo;
+mod domain;
+mod intake;
+mod rules;
+mod screens;
+mod store;
