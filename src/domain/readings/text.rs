@@ -1,7 +1,7 @@
 //! Fields as text: in, out, and what must hold between them.
 
 use super::{AcuityResult, Distance, Hundredths, InstrumentEye, NotTestable, Readings, Sign};
-use crate::domain::acuity::{AcuityContext, ChartLetters, Line, Notation, parse_acuity};
+use crate::domain::acuity::{Acuity, AcuityContext, ChartLetters, Line, Notation, parse_acuity};
 use crate::domain::codes::{
     AcuityMethod, Correction, Cover, DeviatingEye, Direction, History, InstrumentResult, PlusLens,
     Reflex, Side, SignKind, Status, YesNo,
@@ -321,6 +321,26 @@ impl Readings {
                         "no distance acuity beside testable=no",
                     ));
                 }
+            }
+        }
+        let per_line = self.letters_per_line.unwrap_or(5);
+        let acuities = [
+            (Field::DistanceRight, self.distance.right),
+            (Field::DistanceLeft, self.distance.left),
+            (Field::DistanceBoth, self.distance_both),
+            (Field::NearRight, self.near.right),
+            (Field::NearLeft, self.near.left),
+            (Field::NearBoth, self.near_both),
+        ];
+        for (field, value) in acuities {
+            if let Some(AcuityResult::Read(acuity @ Acuity::Read { letters, .. })) = value
+                && letters.unsigned_abs() > per_line
+            {
+                out.push(FieldError::new(
+                    field,
+                    &acuity.to_string(),
+                    format!("no more letters than the {per_line} on a line"),
+                ));
             }
         }
         let over = |part: Option<u8>, whole: Option<u8>| matches!((part, whole), (Some(p), Some(w)) if p > w);
