@@ -101,27 +101,33 @@ fn curiosities(random: &mut Random, class: &str, members: &mut [(Name, RosterChi
             ..first.details.clone()
         };
     }
-    let rename = |child: &mut RosterChild, given: &str, family: &str| {
-        child.given_name = given.into();
-        child.family_name = family.into();
-    };
     let Some((_, last)) = members.last_mut() else {
         return;
     };
-    match class {
-        "1B" | "2A" => rename(last, "Noah", "Marlow"),
-        "KA" => rename(
-            last,
+    let renamed: Option<(&str, &str, &str)> = match class {
+        "1B" | "2A" => Some(("Noah", "Marlow", "M")),
+        "KA" => Some((
             "Maximiliana Theodora Augustina",
             "Featherstonehaugh-Montgomery de la Fuente Villanueva",
-        ),
-        "3A" => rename(
-            last,
+            "F",
+        )),
+        "3A" => Some((
             "Wilhelmina-Josephine",
             "Papadimitrakopoulou-Konstantinidou",
-        ),
-        "KB" | "2B" | "4B" | "Otters" => last.dob = None,
-        _ => {}
+            "F",
+        )),
+        "KB" | "2B" | "4B" | "Otters" => {
+            last.dob = None;
+            None
+        }
+        _ => None,
+    };
+    if let Some((given, family, sex)) = renamed {
+        last.given_name = given.into();
+        last.family_name = family.into();
+        last.details.sex = sex.into();
+        last.details.language = "English".into();
+        last.details.guardian_name = format!("{} {family}", adult_given("English", random));
     }
 }
 

@@ -114,19 +114,25 @@ fn sample() -> Vec<(RosterChild, DemoVisit)> {
     let today = told(&mut random, &children, day).today;
     let mut seen: Vec<Story> = Vec::new();
     // What makes a child worth showing: a story not seen yet, a twin, a namesake; then anybody.
-    let mut ranked: Vec<(bool, usize, &RosterChild, &DemoVisit)> = Vec::new();
+    let mut ranked: Vec<(u8, usize, &RosterChild, &DemoVisit)> = Vec::new();
     for (place, (story, visit)) in today.iter().enumerate() {
         let Some(child) = children.iter().find(|c| c.child_id == visit.child_id) else {
             continue;
         };
         let new = !seen.contains(story);
         seen.push(*story);
-        let ordinary = !new && !children.iter().any(|other| alike(child, other));
+        let rank = if new {
+            0
+        } else if children.iter().any(|other| alike(child, other)) {
+            1
+        } else {
+            2
+        };
         if visit.attempt == Attempt::First {
-            ranked.push((ordinary, place, child, visit));
+            ranked.push((rank, place, child, visit));
         }
     }
-    ranked.sort_by_key(|(ordinary, place, ..)| (*ordinary, *place));
+    ranked.sort_by_key(|(rank, place, ..)| (*rank, *place));
     ranked.truncate(SIZE - KNOWN.len());
     ranked.sort_by_key(|(_, place, ..)| *place);
     let chosen = ranked

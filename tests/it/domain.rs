@@ -1,5 +1,7 @@
 //! Tests of `domain`, most of them against tables from outside the project (`tests/data`).
 
+#![allow(clippy::panic)]
+
 mod acuity;
 mod age;
 mod parsing;

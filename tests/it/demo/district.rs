@@ -83,10 +83,13 @@ fn ages_fit_the_grades() {
                 .0
                 / 12;
             let grade = child.grade.expect("a grade").to_string();
-            let expected: &[u32] = match grade.as_str() {
-                "PK" => &[3, 4],
-                "KG" => &[5],
-                n => &[5 + n.parse::<u32>().expect("a number")][..1].to_vec(),
+            let expected = match grade.as_str() {
+                "PK" => 3..=4,
+                "KG" => 5..=5,
+                n => {
+                    let years = 5 + n.parse::<u32>().expect("a number");
+                    years..=years
+                }
             };
             assert!(expected.contains(&years), "seed {seed}: {child:?}");
         }

@@ -109,7 +109,7 @@ fn conversion_tables_agree_at_the_nearest_step() {
         }
         // A decimal printed to two figures may have been rounded across the middle of two steps.
         if let Some(decimal) = number(&row["decimal"]) {
-            let text = format!("{:.3}d", decimal);
+            let text = format!("{decimal:.3}d");
             let apart = (line(&text).step().0 - step.0).abs();
             let rounded = (decimal - 20.0 / exact).abs() > 0.000_6;
             assert!(
