@@ -113,7 +113,8 @@ fn sample() -> Vec<(RosterChild, DemoVisit)> {
     let children = children(&mut random, day);
     let today = told(&mut random, &children, day).today;
     let mut seen: Vec<Story> = Vec::new();
-    // What makes a child worth showing: a story not seen yet, a twin, a namesake; then anybody.
+    // What makes a child worth showing: a story not seen yet or a missing birth date, then twins
+    // and namesakes, then anybody.
     let mut ranked: Vec<(u8, usize, &RosterChild, &DemoVisit)> = Vec::new();
     for (place, (story, visit)) in today.iter().enumerate() {
         let Some(child) = children.iter().find(|c| c.child_id == visit.child_id) else {
@@ -121,7 +122,7 @@ fn sample() -> Vec<(RosterChild, DemoVisit)> {
         };
         let new = !seen.contains(story);
         seen.push(*story);
-        let rank = if new {
+        let rank = if new || child.dob.is_none() {
             0
         } else if children.iter().any(|other| alike(child, other)) {
             1

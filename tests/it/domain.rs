@@ -1,6 +1,6 @@
 //! Tests of `domain`, most of them against tables from outside the project (`tests/data`).
 
-#![allow(clippy::panic)]
+#![allow(clippy::panic, clippy::print_stdout)]
 
 mod acuity;
 mod age;
@@ -10,6 +10,10 @@ mod refraction;
 mod text;
 
 use std::collections::BTreeMap;
+use std::hash::{BuildHasher, Hasher, RandomState};
+
+use proptest::prelude::ProptestConfig;
+use proptest::test_runner::RngSeed;
 
 /// One row of a table by column name.
 pub type Row = BTreeMap<String, String>;
@@ -32,4 +36,23 @@ pub fn table(name: &str) -> Vec<Row> {
 /// Reads a decimal of an oracle table as a float, or nothing from an empty cell.
 pub fn number(cell: &str) -> Option<f64> {
     (!cell.is_empty()).then(|| cell.trim_start_matches('+').parse().expect("a number"))
+}
+
+/// Returns the settings of a random test and prints its seed, which a failing test shows; the
+/// variable `PROPTEST_RNG_SEED` repeats it.
+pub fn random(cases: u32) -> ProptestConfig {
+    let config = ProptestConfig {
+        cases,
+        failure_persistence: None,
+        ..ProptestConfig::default()
+    };
+    let seed = match config.rng_seed {
+        RngSeed::Fixed(seed) => seed,
+        RngSeed::Random => RandomState::new().build_hasher().finish(),
+    };
+    println!("PROPTEST_RNG_SEED={seed}");
+    ProptestConfig {
+        rng_seed: RngSeed::Fixed(seed),
+        ..config
+    }
 }

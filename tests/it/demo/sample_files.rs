@@ -101,3 +101,26 @@ fn the_five_known_children() {
         assert_eq!(cell(id, column), expected, "{id} {column}");
     }
 }
+
+/// The roster shows what a real one has: a missing birth date, twins, namesakes, several scripts.
+#[test]
+fn the_roster_is_worth_trying() {
+    let (header, rows) = rows(&sample_roster());
+    let column = |name: &str| header.iter().position(|h| h == name).expect(name);
+    let (family, given, dob) = (column("family_name"), column("given_name"), column("dob"));
+    let without = rows.iter().filter(|row| row[dob].is_empty()).count();
+    assert!((1..=4).contains(&without), "{without} without a birth date");
+    let pairs = |alike: &dyn Fn(&csv::StringRecord, &csv::StringRecord) -> bool| {
+        rows.iter()
+            .enumerate()
+            .any(|(i, a)| rows[i + 1..].iter().any(|b| alike(a, b)))
+    };
+    assert!(pairs(&|a, b| a[family] == b[family]
+        && a[dob] == b[dob]
+        && a[given] != b[given]));
+    assert!(pairs(&|a, b| a[family] == b[family] && a[given] == b[given]));
+    let names: String = rows.iter().map(|row| row[family].to_owned()).collect();
+    for range in ['Ạ'..='ỹ', 'Ѐ'..='ӿ', '\u{900}'..='\u{97F}'] {
+        assert!(names.chars().any(|c| range.contains(&c)), "{range:?}");
+    }
+}

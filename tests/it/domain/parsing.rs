@@ -316,9 +316,8 @@ fn any_context() -> impl Strategy<Value = AcuityContext> {
         })
 }
 
-// A failing case is printed with the seed that finds it again.
 proptest! {
-    #![proptest_config(ProptestConfig { cases: 2_000, failure_persistence: None, ..ProptestConfig::default() })]
+    #![proptest_config(super::random(2_000))]
 
     /// Any text at all is taken or refused, never a panic.
     #[test]

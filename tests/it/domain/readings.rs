@@ -316,7 +316,7 @@ fn errors_are_safe_to_print() {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig { cases: 1_000, failure_persistence: None, ..ProptestConfig::default() })]
+    #![proptest_config(super::random(1_000))]
 
     /// Any text in any field is taken or refused, never a panic; what is taken reads back.
     #[test]

@@ -87,7 +87,7 @@ fn nearest_word() {
 }
 
 proptest! {
-    #![proptest_config(ProptestConfig { cases: 1_000, failure_persistence: None, ..ProptestConfig::default() })]
+    #![proptest_config(super::random(1_000))]
 
     #[test]
     fn any_text_is_shown_safely(text in any::<String>(), limit in 0_usize..60) {
