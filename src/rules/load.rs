@@ -1,0 +1,1 @@
+//! TOML text to typed rule sets.

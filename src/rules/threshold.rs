@@ -1,0 +1,1 @@
+//! Thresholds as the guidance prints them, typed.
