@@ -3,6 +3,8 @@
 //! A [`Desk`] is an open store with the rule library beside it: what a nurse sits down at. The
 //! screens and the command line ask it and tell it things; neither sees a table.
 
+pub mod judge;
+pub mod rulebook;
 mod search;
 mod views;
 

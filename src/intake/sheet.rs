@@ -13,6 +13,7 @@ pub struct Sheet<'a> {
     text: &'a str,
     had_mark: bool,
     headers: Vec<String>,
+    written: Vec<String>,
     reader: csv::Reader<&'a [u8]>,
     counted: Counted,
 }
@@ -68,6 +69,7 @@ impl<'a> Sheet<'a> {
             text: text.text,
             had_mark: text.had_mark,
             headers,
+            written: header.iter().map(str::to_owned).collect(),
             reader,
             counted: Counted {
                 byte: 0,
@@ -84,6 +86,11 @@ impl<'a> Sheet<'a> {
     /// Returns the header names, trimmed and in lower case.
     pub fn headers(&self) -> &[String] {
         &self.headers
+    }
+
+    /// Returns the header names as they were written.
+    pub fn written_headers(&self) -> &[String] {
+        &self.written
     }
 
     /// Says whether the file began with a byte order mark.
