@@ -49,13 +49,20 @@ pub struct Cli {
 #[derive(Debug, Clone, Args)]
 pub struct Global {
     /// Folder of the store; without it the platform's data folder
-    #[arg(long, global = true, env = "TWOLINE_STORE", value_name = "DIR")]
+    #[arg(
+        long,
+        global = true,
+        env = "TWOLINE_STORE",
+        hide_env_values = true,
+        value_name = "DIR"
+    )]
     pub store: Option<PathBuf>,
     /// File that holds the passphrase
     #[arg(
         long,
         global = true,
         env = "TWOLINE_PASSPHRASE_FILE",
+        hide_env_values = true,
         value_name = "FILE"
     )]
     pub passphrase_file: Option<PathBuf>,

@@ -228,8 +228,7 @@ impl<'a> Judging<'a> {
         let by = self.by;
         let pass_line = move |age, grade| by.pass_line(age, grade);
         let input = self.input;
-        let mut reader =
-            ResultsReader::open(&input.name, &input.bytes, options, Some(&pass_line))?;
+        let mut reader = ResultsReader::open(&input.name, &input.bytes, options, Some(&pass_line))?;
         let mut tally = Tally {
             remarks: remarks(&reader)?,
             ..Tally::default()
@@ -285,7 +284,10 @@ fn case_of(row: &ResultRow) -> Case<'_> {
 }
 
 fn index_of(kind: OutcomeKind) -> usize {
-    OutcomeKind::ALL.iter().position(|k| *k == kind).unwrap_or(0)
+    OutcomeKind::ALL
+        .iter()
+        .position(|k| *k == kind)
+        .unwrap_or(0)
 }
 
 /// Refuses columns that would stand twice in the output, and points out handed-through columns

@@ -135,7 +135,10 @@ fn safe(lines: Vec<String>) -> Vec<String> {
 
 /// Puts a rule sheet into aligned lines.
 fn sheet_lines(sheet: &RuleSheet) -> Vec<String> {
-    let mut lines = vec![sheet.title.clone(), format!("{}  {}", sheet.id, sheet.edition)];
+    let mut lines = vec![
+        sheet.title.clone(),
+        format!("{}  {}", sheet.id, sheet.edition),
+    ];
     if !sheet.approval.is_empty() {
         lines.push(sheet.approval.clone());
     }

@@ -120,7 +120,9 @@ impl From<JudgeError> for Failure {
                 };
                 Failure::bad_input(format!("{count}; nothing was written")).details(problems)
             }
-            JudgeError::Output(problem) => Failure::bad_input("nothing was written").details(problem),
+            JudgeError::Output(problem) => {
+                Failure::bad_input("nothing was written").details(problem)
+            }
             stopped @ JudgeError::Interrupted => Failure::interrupted(stopped.to_string()),
             failed @ JudgeError::Write { .. } => Failure::failed(failed.to_string()),
         }

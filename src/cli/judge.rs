@@ -98,7 +98,11 @@ impl Judge {
             return Ok(());
         }
         let path = tally.refused_file.as_ref().map(|p| p.to_string_lossy());
-        let rows = if tally.refused == 1 { "row was" } else { "rows were" };
+        let rows = if tally.refused == 1 {
+            "row was"
+        } else {
+            "rows were"
+        };
         Err(Failure::bad_input(format!(
             "{} {rows} refused, see {}",
             tally.refused,

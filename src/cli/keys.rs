@@ -6,8 +6,7 @@ use super::{Failure, Global};
 
 /// Show the key table
 #[derive(Debug, Args)]
-pub(super) struct Keys {
-}
+pub(super) struct Keys {}
 
 impl Keys {
     pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {

@@ -38,7 +38,9 @@ impl Later {
             Later::Packet(_) => "packet",
             Later::Restore(_) => "restore",
         };
-        Err(Failure::bad_input(format!("{name} is not part of this version"))
-            .hint("twoline --help shows what is"))
+        Err(
+            Failure::bad_input(format!("{name} is not part of this version"))
+                .hint("twoline --help shows what is"),
+        )
     }
 }

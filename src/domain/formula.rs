@@ -34,7 +34,16 @@ mod tests {
             assert!(!would_run(safe), "{safe}");
             assert_eq!(unguarded(safe), safe);
         }
-        for formula in ["=1", " =1", "'=1", "' =1", "\u{FF1D}1", "\t=1", "\0=1", "-2.50"] {
+        for formula in [
+            "=1",
+            " =1",
+            "'=1",
+            "' =1",
+            "\u{FF1D}1",
+            "\t=1",
+            "\0=1",
+            "-2.50",
+        ] {
             assert!(would_run(formula), "{formula:?}");
             assert_eq!(unguarded(&format!("'{formula}")), formula);
         }

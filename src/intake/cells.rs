@@ -39,9 +39,8 @@ pub fn forbidden(kind: Kind, text: &str) -> Option<String> {
             c as u32
         ));
     }
-    (kind == Kind::Name && crate::domain::formula::would_run(text)).then(|| {
-        "text that a spreadsheet does not run: it may not begin with = + - @".to_owned()
-    })
+    (kind == Kind::Name && crate::domain::formula::would_run(text))
+        .then(|| "text that a spreadsheet does not run: it may not begin with = + - @".to_owned())
 }
 
 /// Why a text is not a date.
@@ -84,11 +83,15 @@ pub fn date(text: &str) -> Result<NaiveDate, NotADate> {
             }));
         }
         if a.len() == 4 {
-            return Err(NotADate::Order("year, month, day without the hyphens or zeros"));
+            return Err(NotADate::Order(
+                "year, month, day without the hyphens or zeros",
+            ));
         }
     }
     if digits(text) && text.len() == 8 {
-        return Err(NotADate::Order("year, month, day without the hyphens or zeros"));
+        return Err(NotADate::Order(
+            "year, month, day without the hyphens or zeros",
+        ));
     }
     if digits(text) && text.len() == 5 {
         return Err(NotADate::Order("a spreadsheet's own day number"));

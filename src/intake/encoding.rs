@@ -44,7 +44,13 @@ fn other_format(bytes: &[u8]) -> Option<&'static str> {
     }
     // UTF-16 without a mark: every second byte of plain text is zero.
     let head = &bytes[..bytes.len().min(512)];
-    let zeros = |offset: usize| head.iter().skip(offset).step_by(2).filter(|b| **b == 0).count();
+    let zeros = |offset: usize| {
+        head.iter()
+            .skip(offset)
+            .step_by(2)
+            .filter(|b| **b == 0)
+            .count()
+    };
     let half = head.len() / 2;
     (half >= 4 && (zeros(0) > half * 3 / 4 || zeros(1) > half * 3 / 4))
         .then_some("UTF-16 text without a byte order mark")
@@ -54,7 +60,10 @@ fn other_format(bytes: &[u8]) -> Option<&'static str> {
 fn not_utf8(file: &str, bytes: &[u8], at: usize) -> Problem {
     let before = &bytes[..at];
     let line = before.iter().filter(|b| **b == b'\n').count() as u64 + 1;
-    let start = before.iter().rposition(|b| *b == b'\n').map_or(0, |i| i + 1);
+    let start = before
+        .iter()
+        .rposition(|b| *b == b'\n')
+        .map_or(0, |i| i + 1);
     let cell_start = bytes[start..at]
         .iter()
         .rposition(|b| *b == b',')

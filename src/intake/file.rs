@@ -30,12 +30,10 @@ impl InputFile {
                 .into_owned()
         };
         match read_whole(path) {
-            Ok(bytes) if bytes.len() as u64 > LARGEST => Err(Problem::of_file(
-                &name,
-                "more than 2 GB",
-                "a smaller file",
-            )
-            .cure("split it into several files")),
+            Ok(bytes) if bytes.len() as u64 > LARGEST => {
+                Err(Problem::of_file(&name, "more than 2 GB", "a smaller file")
+                    .cure("split it into several files"))
+            }
             Ok(bytes) => Ok(InputFile { name, bytes }),
             Err(error) => Err(unreadable(path, &error)),
         }
@@ -45,7 +43,10 @@ impl InputFile {
 fn read_whole(path: &Path) -> io::Result<Vec<u8>> {
     let mut bytes = Vec::new();
     if path == Path::new("-") {
-        io::stdin().lock().take(LARGEST + 1).read_to_end(&mut bytes)?;
+        io::stdin()
+            .lock()
+            .take(LARGEST + 1)
+            .read_to_end(&mut bytes)?;
     } else {
         let file = File::open(path)?;
         if let Ok(size) = usize::try_from(file.metadata()?.len().min(LARGEST)) {

@@ -180,7 +180,11 @@ impl Problems {
 
     /// Returns the value if nothing is wrong, else the problems.
     pub fn or<T>(self, value: T) -> Result<T, Problems> {
-        if self.is_empty() { Ok(value) } else { Err(self) }
+        if self.is_empty() {
+            Ok(value)
+        } else {
+            Err(self)
+        }
     }
 }
 

@@ -142,9 +142,11 @@ pub fn read_roster(file: &str, bytes: &[u8], today: NaiveDate) -> Result<Roster,
     }
     reading.finish();
     if rows == 0 {
-        reading
-            .problems
-            .push(Problem::of_file(file, "a header only", "a row for each child"));
+        reading.problems.push(Problem::of_file(
+            file,
+            "a header only",
+            "a row for each child",
+        ));
     }
     let mut roster = reading.problems.or(roster)?;
     roster.alike = alike::find(&roster.children);
@@ -212,13 +214,7 @@ impl Reading<'_> {
             .any(|p| p.column.as_deref() == Some(column.word()))
     }
 
-    fn wrong(
-        &mut self,
-        place: Place,
-        column: Column,
-        cell: &str,
-        expected: impl Into<String>,
-    ) {
+    fn wrong(&mut self, place: Place, column: Column, cell: &str, expected: impl Into<String>) {
         let problem = Problem::of_cell(self.file, place, column.word(), cell, expected);
         self.problems.push(problem);
     }
@@ -313,13 +309,8 @@ impl Reading<'_> {
             }
             Ok(date) => Some(date),
             Err(error @ NotADate::Order(_)) => {
-                let problem = Problem::of_cell(
-                    self.file,
-                    place,
-                    column.word(),
-                    cell,
-                    error.expected(),
-                );
+                let problem =
+                    Problem::of_cell(self.file, place, column.word(), cell, error.expected());
                 // One line per column says it: the first cell whose order can be told, if any.
                 let told = |e: &str| !e.contains(" or month, day");
                 let entry = self

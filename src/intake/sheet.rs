@@ -38,10 +38,7 @@ impl<'a> Sheet<'a> {
             .from_reader(text.text.as_bytes());
         let mut header = StringRecord::new();
         let read = reader.read_record(&mut header).is_ok_and(|found| found);
-        let headers: Vec<String> = header
-            .iter()
-            .map(|h| h.trim().to_lowercase())
-            .collect();
+        let headers: Vec<String> = header.iter().map(|h| h.trim().to_lowercase()).collect();
         quoting::check(text.text).map_err(|fault| broken(file, &headers, text.text, fault))?;
         if !read || headers.iter().all(String::is_empty) {
             return Err(Problem::of_file(
@@ -152,7 +149,10 @@ impl<'a> Sheet<'a> {
             };
             Problem::of_file(
                 &self.file,
-                format!("{} cells", record.len()),
+                match record.len() {
+                    1 => "1 cell".to_owned(),
+                    many => format!("{many} cells"),
+                },
                 format!("{}, as in the header", self.headers.len()),
             )
             .at(place)

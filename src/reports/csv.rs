@@ -54,7 +54,11 @@ impl Form {
 
     /// Returns the form for `--exact`, or the one for spreadsheets.
     pub fn exact(exact: bool) -> Form {
-        if exact { Form::EXACT } else { Form::SPREADSHEET }
+        if exact {
+            Form::EXACT
+        } else {
+            Form::SPREADSHEET
+        }
     }
 }
 

@@ -257,7 +257,10 @@ pub fn about(about: &About<'_>) -> String {
     line("");
     line("Rule sets used");
     for set in about.rule_sets {
-        line(&format!("- {} ({}, edition {})", set.title, set.id, set.edition));
+        line(&format!(
+            "- {} ({}, edition {})",
+            set.title, set.id, set.edition
+        ));
         line(&format!("  content {}", set.content_hash));
         for source in &set.sources {
             let locator = if source.locator.is_empty() {
@@ -279,7 +282,10 @@ pub fn about(about: &About<'_>) -> String {
     }
     line("");
     if let Some(state) = about.state {
-        line(&format!("Store head {}, {} entries", state.head, state.entries));
+        line(&format!(
+            "Store head {}, {} entries",
+            state.head, state.entries
+        ));
     }
     if about.guarded {
         line(

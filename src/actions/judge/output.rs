@@ -226,7 +226,10 @@ impl Aside {
         match fs::metadata(&path) {
             Ok(found) if found.is_dir() => return refuse("a folder", "a file to write"),
             Ok(found) if !found.is_file() => {
-                return refuse("not a plain file", "a file to write, or no -o for standard output");
+                return refuse(
+                    "not a plain file",
+                    "a file to write, or no -o for standard output",
+                );
             }
             _ => {}
         }

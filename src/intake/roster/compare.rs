@@ -85,7 +85,10 @@ fn cells(child: &RosterChild) -> Vec<(&'static str, String)> {
         ("language", d.language.clone()),
         ("ethnicity", d.ethnicity.clone()),
         ("insurance", d.insurance.clone()),
-        ("special_education", text(d.special_education.map(|v| v.word()))),
+        (
+            "special_education",
+            text(d.special_education.map(|v| v.word())),
+        ),
         ("state_id", d.state_id.clone()),
         ("guardian_name", d.guardian_name.clone()),
         ("guardian_phone", d.guardian_phone.clone()),
