@@ -24,13 +24,21 @@ use crate::store::row::{Child, Correction, Enrolment, Reading};
 impl Desk {
     /// Adds a child who is not on the roster, under a provisional id that a person matches later.
     pub fn add_child(&mut self, new: NewChild, day: &DayInfo) -> Result<DayChild> {
-        for (what, text) in [("family name", &new.family_name), ("given name", &new.given_name)] {
+        for (what, text) in [
+            ("family name", &new.family_name),
+            ("given name", &new.given_name),
+        ] {
             if text.trim().is_empty() || text.chars().any(is_unsafe) {
-                return Err(ActionError::bad(format!("the {what} needs ordinary characters")));
+                return Err(ActionError::bad(format!(
+                    "the {what} needs ordinary characters"
+                )));
             }
         }
         if let Some(born) = new.dob.filter(|born| *born > day.date) {
-            return Err(ActionError::bad(format!("birth date {born} is after the day {}", day.date)));
+            return Err(ActionError::bad(format!(
+                "birth date {born} is after the day {}",
+                day.date
+            )));
         }
         let term = self.term_on(day.date)?;
         let id = new_id();
@@ -84,13 +92,20 @@ impl Desk {
     /// Returns the visit of a child on a day, the rescreen before the first, if one is signed.
     pub fn visit(&self, day: &DayInfo, child_id: &str) -> Result<Option<VisitView>> {
         let key = key_of(day);
-        let now = self.read().visits_now(child_id)?.into_iter().rfind(|v| v.day() == key);
-        now.map(|now| self.visit_view(self.read().visit_record(now)?)).transpose()
+        let now = self
+            .read()
+            .visits_now(child_id)?
+            .into_iter()
+            .rfind(|v| v.day() == key);
+        now.map(|now| self.visit_view(self.read().visit_record(now)?))
+            .transpose()
     }
 
     /// Returns a child with all visits, newest first, and every correction.
     pub fn history(&self, child_id: &str) -> Result<Option<ChildHistory>> {
-        let Some(history) = self.read().child_history(child_id)? else { return Ok(None) };
+        let Some(history) = self.read().child_history(child_id)? else {
+            return Ok(None);
+        };
         let mut facts = Vec::new();
         let mut fact = |what: &str, value: Option<String>| {
             if let Some(value) = value.filter(|v| !v.is_empty()) {
@@ -99,9 +114,17 @@ impl Desk {
         };
         let now = &history.now;
         fact("consent", now.consent.map(|c| Consent::title(c).to_owned()));
-        fact("glasses", now.wears_glasses.map(|v| {
-            if v == YesNo::Yes { "owns glasses" } else { "owns no glasses" }.to_owned()
-        }));
+        fact(
+            "glasses",
+            now.wears_glasses.map(|v| {
+                if v == YesNo::Yes {
+                    "owns glasses"
+                } else {
+                    "owns no glasses"
+                }
+                .to_owned()
+            }),
+        );
         fact("under care", now.under_care.map(|v| v.title().to_owned()));
         fact("last examination", now.last_exam_on.map(|d| d.to_string()));
         fact("known condition", now.known_condition.clone());
@@ -135,7 +158,8 @@ impl Desk {
     fn visit_view(&self, record: VisitRecord) -> Result<VisitView> {
         let screeners = self.screener_names()?;
         let named = |id: Option<Uuid>| {
-            id.and_then(|id| screeners.get(&id).cloned()).unwrap_or_default()
+            id.and_then(|id| screeners.get(&id).cloned())
+                .unwrap_or_default()
         };
         let present: Vec<ReadingNow> = record
             .readings
@@ -153,10 +177,13 @@ impl Desk {
         let readings = judged(&tries);
         tries.pop();
         let outcome = record.outcomes.iter().rev().find(|o| !o.superseded);
-        let entered = record
-            .visit
-            .first()
-            .map_or(Moment { utc_ms: record.now.recorded_at_ms, offset_minutes: 0 }, |v| v.at);
+        let entered = record.visit.first().map_or(
+            Moment {
+                utc_ms: record.now.recorded_at_ms,
+                offset_minutes: 0,
+            },
+            |v| v.at,
+        );
         let corrections = self.corrections(&record.readings, &screeners)?;
         let key = record.now.day();
         let day = self.days()?.into_iter().find(|d| key_of(d) == key);
@@ -167,7 +194,9 @@ impl Desk {
                     ..self.day_child(day, &record.now.child_id)?
                 };
                 preview(&self.library, day, &child, &readings)
-                    .filter(|o| o.kind != signed.row.kind || o.criteria.join(";") != signed.row.criteria)
+                    .filter(|o| {
+                        o.kind != signed.row.kind || o.criteria.join(";") != signed.row.criteria
+                    })
                     .map(|o| explain::headline(&o))
             }
             _ => None,
@@ -202,8 +231,17 @@ impl Desk {
         let by_id: HashMap<Uuid, &Reading> = readings.iter().map(|r| (r.row.id, &r.row)).collect();
         let mut out = Vec::new();
         for old in readings.iter().filter(|r| r.superseded) {
-            for Recorded { row: Correction { replacement, reason, screener_id, .. }, at, .. } in
-                self.read().corrections_of(old.row.id)?
+            for Recorded {
+                row:
+                    Correction {
+                        replacement,
+                        reason,
+                        screener_id,
+                        ..
+                    },
+                at,
+                ..
+            } in self.read().corrections_of(old.row.id)?
             {
                 out.push(CorrectionView {
                     what: old.row.field.title().to_owned(),

@@ -9,15 +9,20 @@ use super::views::{DayChild, DayInfo, NewDay, QueueState};
 use crate::domain::age::AgeMonths;
 use crate::domain::codes::{Attempt, Consent, History, Status, YesNo};
 use crate::domain::outcome::{DecidedBy, OutcomeKind};
+use crate::store::new_id;
 use crate::store::read::{DayChild as StoredChild, VisitNow};
 use crate::store::row::{DayKey, ScreeningDay};
-use crate::store::new_id;
 
 impl Desk {
     /// Returns the screening days, latest first.
     pub fn days(&self) -> Result<Vec<DayInfo>> {
         let names = self.sites()?;
-        Ok(self.read().days()?.into_iter().map(|day| info(day, &names)).collect())
+        Ok(self
+            .read()
+            .days()?
+            .into_iter()
+            .map(|day| info(day, &names))
+            .collect())
     }
 
     /// Opens a screening day, or returns it when it is open already.
@@ -25,18 +30,25 @@ impl Desk {
         let sites = self.sites()?;
         if !sites.iter().any(|(code, _)| *code == new.site) {
             let known: Vec<&str> = sites.iter().map(|(code, _)| code.as_str()).collect();
-            return Err(ActionError::bad(format!("this store has no site {:?}", new.site)).hint(
-                if known.is_empty() {
-                    "add it: twoline site add CODE --name NAME".to_owned()
-                } else {
-                    format!("known: {}; or twoline site add CODE --name NAME", known.join(", "))
-                },
-            ));
+            return Err(
+                ActionError::bad(format!("this store has no site {:?}", new.site)).hint(
+                    if known.is_empty() {
+                        "add it: twoline site add CODE --name NAME".to_owned()
+                    } else {
+                        format!(
+                            "known: {}; or twoline site add CODE --name NAME",
+                            known.join(", ")
+                        )
+                    },
+                ),
+            );
         }
         let Some(protocol) = self.library.protocol(&new.protocol) else {
             let known: Vec<&str> = self.library.protocols().map(|p| &*p.id).collect();
-            return Err(ActionError::bad(format!("there is no protocol {:?}", new.protocol))
-                .hint(format!("known: {}", known.join(", "))));
+            return Err(
+                ActionError::bad(format!("there is no protocol {:?}", new.protocol))
+                    .hint(format!("known: {}", known.join(", "))),
+            );
         };
         if let Some(required) = protocol.acuity_method.filter(|m| *m != new.method) {
             return Err(ActionError::bad(format!(
@@ -91,7 +103,9 @@ impl Desk {
     /// Returns one child of a day.
     pub fn day_child(&self, day: &DayInfo, child_id: &str) -> Result<DayChild> {
         let Some(child) = self.read().child(child_id)? else {
-            return Err(ActionError::bad(format!("no child has the id {child_id:?}")));
+            return Err(ActionError::bad(format!(
+                "no child has the id {child_id:?}"
+            )));
         };
         let since = self.earlier_since(day)?;
         let key = key_of(day);
@@ -103,7 +117,14 @@ impl Desk {
                 earlier.push(visit);
             }
         }
-        Ok(day_child(StoredChild { child, visits, earlier }, day.date))
+        Ok(day_child(
+            StoredChild {
+                child,
+                visits,
+                earlier,
+            },
+            day.date,
+        ))
     }
 
     pub(super) fn day_info(&self, id: Uuid) -> Result<DayInfo> {
@@ -120,7 +141,11 @@ impl Desk {
 }
 
 pub(super) fn key_of(day: &DayInfo) -> DayKey {
-    DayKey { site: day.site.clone(), screened_on: day.date, protocol: day.protocol.clone() }
+    DayKey {
+        site: day.site.clone(),
+        screened_on: day.date,
+        protocol: day.protocol.clone(),
+    }
 }
 
 fn info(day: ScreeningDay, names: &[(String, String)]) -> DayInfo {
@@ -139,7 +164,11 @@ fn info(day: ScreeningDay, names: &[(String, String)]) -> DayInfo {
 }
 
 fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
-    let StoredChild { child, visits, earlier } = stored;
+    let StoredChild {
+        child,
+        visits,
+        earlier,
+    } = stored;
     let decided = |visit: &VisitNow, by: DecidedBy| visit.decided_by.as_deref() == Some(by.word());
     // The last earlier visit that judged the child says whether this day is a rescreen; a visit that
     // only lacked the glasses did not use up the first attempt.
@@ -152,22 +181,36 @@ fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
     DayChild {
         age: child.dob.and_then(|born| AgeMonths::between(born, on)),
         attempt: here.map_or(
-            if rescreen { Attempt::Rescreen } else { Attempt::First },
+            if rescreen {
+                Attempt::Rescreen
+            } else {
+                Attempt::First
+            },
             |visit| visit.attempt,
         ),
-        glasses_visits: earlier.iter().filter(|v| decided(v, DecidedBy::GlassesNotWorn)).count()
-            as u32,
+        glasses_visits: earlier
+            .iter()
+            .filter(|v| decided(v, DecidedBy::GlassesNotWorn))
+            .count() as u32,
         not_testable_before: earlier.iter().any(|v| decided(v, DecidedBy::NotTestable)),
         due_on: last
-            .filter(|v| matches!(v.kind, Some(OutcomeKind::Rescreen | OutcomeKind::Incomplete)))
+            .filter(|v| {
+                matches!(
+                    v.kind,
+                    Some(OutcomeKind::Rescreen | OutcomeKind::Incomplete)
+                )
+            })
             .and_then(|v| v.due_on),
         state: here.map_or(QueueState::ToCome, |visit| state_of(visit, child.consent)),
         wears_glasses: child.wears_glasses.map(|v| v == YesNo::Yes),
         consent: child.consent,
         under_care: child.under_care == Some(YesNo::Yes),
-        examined_recently: child
-            .last_exam_on
-            .is_some_and(|last| last <= on && last.checked_add_months(Months::new(12)).is_some_and(|until| on < until)),
+        examined_recently: child.last_exam_on.is_some_and(|last| {
+            last <= on
+                && last
+                    .checked_add_months(Months::new(12))
+                    .is_some_and(|until| on < until)
+        }),
         history: child
             .history
             .as_deref()

@@ -9,6 +9,7 @@ use chrono::NaiveDate;
 use uuid::Uuid;
 
 use super::error::{ActionError, Result};
+use super::rulebook::library_with;
 use crate::clock;
 use crate::domain::acuity::Notation;
 use crate::rules::Library;
@@ -40,8 +41,11 @@ pub struct DeskOptions {
 impl Desk {
     /// Opens the store in a folder.
     pub fn open(dir: &Path, secret: &Secret, options: &DeskOptions) -> Result<Desk> {
-        let access =
-            if options.read_only { Access::ReadOnly } else { Access::Write { wait: WAIT } };
+        let access = if options.read_only {
+            Access::ReadOnly
+        } else {
+            Access::Write { wait: WAIT }
+        };
         Desk::around(Store::open(dir, secret, access)?, options)
     }
 
@@ -86,7 +90,7 @@ impl Desk {
 
     /// Says whether this is the demo, which nothing protects.
     pub fn is_demo(&self) -> bool {
-        self.store.key_info().is_unprotected()
+        !self.store.key_info().protected
     }
 
     /// Returns who writes the store, when this desk can only read.
@@ -94,7 +98,11 @@ impl Desk {
         if self.store.is_writable() {
             return None;
         }
-        Some(self.store.holder().map_or_else(|| "read only".to_owned(), |h| h.to_string()))
+        Some(
+            self.store
+                .holder()
+                .map_or_else(|| "read only".to_owned(), |h| h.to_string()),
+        )
     }
 
     /// Returns what a bare acuity is the denominator of.
@@ -107,7 +115,11 @@ impl Desk {
 
     /// Returns what a barcode reader types before an id, where the programme has set it.
     pub fn scan_prefix(&self) -> Option<String> {
-        self.read().setting("scan_prefix").ok().flatten().filter(|p| !p.is_empty())
+        self.read()
+            .setting("scan_prefix")
+            .ok()
+            .flatten()
+            .filter(|p| !p.is_empty())
     }
 
     /// Returns the rule library: what is shipped and the programme's own files.
@@ -122,7 +134,12 @@ impl Desk {
 
     /// Returns everybody who may record.
     pub fn screeners(&self) -> Result<Vec<String>> {
-        Ok(self.read().screeners()?.into_iter().map(|s| s.name).collect())
+        Ok(self
+            .read()
+            .screeners()?
+            .into_iter()
+            .map(|s| s.name)
+            .collect())
     }
 
     /// Sets who records, by name or initials.
@@ -137,13 +154,15 @@ impl Desk {
         });
         let Some(found) = found else {
             let known: Vec<&str> = all.iter().map(|s| s.name.as_str()).collect();
-            return Err(ActionError::bad(format!("no screener is called {name:?}")).hint(
-                if known.is_empty() {
-                    "add one: twoline screener add --name NAME --initials XX".to_owned()
-                } else {
-                    format!("known: {}; or twoline screener add", known.join(", "))
-                },
-            ));
+            return Err(
+                ActionError::bad(format!("no screener is called {name:?}")).hint(
+                    if known.is_empty() {
+                        "add one: twoline screener add --name NAME --initials XX".to_owned()
+                    } else {
+                        format!("known: {}; or twoline screener add", known.join(", "))
+                    },
+                ),
+            );
         };
         self.screener = Some(found.clone());
         Ok(())
@@ -177,15 +196,28 @@ impl Desk {
     }
 
     pub(super) fn author(&self) -> Author {
-        Author { screener: self.screener.as_ref().map(|s| s.screener_id), at: clock::now() }
+        Author {
+            screener: self.screener.as_ref().map(|s| s.screener_id),
+            at: clock::now(),
+        }
     }
 
     pub(super) fn screener_names(&self) -> Result<HashMap<Uuid, String>> {
-        Ok(self.read().screeners()?.into_iter().map(|s| (s.screener_id, s.name)).collect())
+        Ok(self
+            .read()
+            .screeners()?
+            .into_iter()
+            .map(|s| (s.screener_id, s.name))
+            .collect())
     }
 
     pub(super) fn stations(&self) -> Result<HashMap<Uuid, Station>> {
-        Ok(self.read().stations()?.into_iter().map(|s| (s.station_id, s)).collect())
+        Ok(self
+            .read()
+            .stations()?
+            .into_iter()
+            .map(|s| (s.station_id, s))
+            .collect())
     }
 }
 
@@ -196,25 +228,14 @@ fn library_of(dir: &Path) -> Result<Library> {
     if folder.is_dir() {
         let read = std::fs::read_dir(&folder)
             .map_err(|e| ActionError::failed(format!("{}: {e}", folder.display())))?;
-        for entry in read.flatten() {
-            let path = entry.path();
-            if path.extension().is_some_and(|e| e == "toml") {
-                files.push(local_rules(&path)?);
-            }
-        }
+        files.extend(
+            read.flatten()
+                .map(|entry| entry.path())
+                .filter(|path| path.extension().is_some_and(|e| e == "toml")),
+        );
         files.sort();
     }
-    if files.is_empty() {
-        return Ok(Library::shipped().clone());
-    }
-    Library::shipped()
-        .with_local(files)
-        .map_err(|e| ActionError::bad(e.to_string()).hint("correct or remove the file, then start again"))
-}
-
-/// Reads the text of a local rule file.
-pub fn local_rules(path: &Path) -> Result<(String, String)> {
-    let text = std::fs::read_to_string(path)
-        .map_err(|e| ActionError::bad(format!("{}: {e}", path.display())))?;
-    Ok((path.display().to_string(), text))
+    library_with(&files).map_err(|e| {
+        ActionError::bad(e.to_string()).hint("correct or remove the file, then start again")
+    })
 }

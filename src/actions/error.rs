@@ -32,12 +32,20 @@ pub struct ActionError {
 impl ActionError {
     /// Makes an error of bad input.
     pub fn bad(message: impl Into<String>) -> ActionError {
-        ActionError { kind: Kind::BadInput, message: message.into(), hint: None }
+        ActionError {
+            kind: Kind::BadInput,
+            message: message.into(),
+            hint: None,
+        }
     }
 
     /// Makes an error of something that could not be done.
     pub fn failed(message: impl Into<String>) -> ActionError {
-        ActionError { kind: Kind::Failed, message: message.into(), hint: None }
+        ActionError {
+            kind: Kind::Failed,
+            message: message.into(),
+            hint: None,
+        }
     }
 
     /// Adds what to do about it.
@@ -67,7 +75,11 @@ impl From<crate::store::Error> for ActionError {
             | ErrorKind::Exists => Kind::BadInput,
             _ => Kind::Failed,
         };
-        ActionError { kind, message: error.to_string(), hint: error.hint() }
+        ActionError {
+            kind,
+            message: error.to_string(),
+            hint: error.hint(),
+        }
     }
 }
 

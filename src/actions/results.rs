@@ -3,8 +3,8 @@
 use super::days::key_of;
 use super::desk::Desk;
 use super::error::{ActionError, Result};
-use super::visit_rows::{VisitRows, judged};
 use super::views::{DayChild, DayInfo};
+use super::visit_rows::{VisitRows, judged};
 use crate::domain::field::Field;
 use crate::domain::readings::Readings;
 use crate::intake::results::{Options, ResultRow, read_results};
@@ -57,7 +57,9 @@ impl Desk {
         let library = self.library();
         let protocol = library.protocol(&day.protocol);
         let line = |age, grade| {
-            protocol.and_then(|p| pass_line(&library, p, age, grade)).map(|p| p.line)
+            protocol
+                .and_then(|p| pass_line(&library, p, age, grade))
+                .map(|p| p.line)
         };
         let options = Options {
             needs_child: true,
@@ -67,8 +69,12 @@ impl Desk {
             ..Options::default()
         };
         let rows = read_results(file, bytes, options, Some(&line))?;
-        let mut plan =
-            ResultsPlan { day: day.clone(), new: Vec::new(), unchanged: 0, different: Vec::new() };
+        let mut plan = ResultsPlan {
+            day: day.clone(),
+            new: Vec::new(),
+            unchanged: 0,
+            different: Vec::new(),
+        };
         let mut problems = Problems::default();
         for row in rows {
             if let Err(problem) = self.plan_row(file, row, &mut plan)? {
@@ -86,10 +92,16 @@ impl Desk {
     ) -> Result<std::result::Result<(), Problem>> {
         let day = &plan.day;
         let wrong = |column: &str, found: &str, expected: String| {
-            Ok(Err(Problem::of_cell(file, row.place, column, found, expected)))
+            Ok(Err(Problem::of_cell(
+                file, row.place, column, found, expected,
+            )))
         };
         if let Some(on) = row.screened_on.filter(|on| *on != day.date) {
-            return wrong("screened_on", &on.to_string(), format!("the screening day {}", day.date));
+            return wrong(
+                "screened_on",
+                &on.to_string(),
+                format!("the screening day {}", day.date),
+            );
         }
         let Some(known) = self.read().child(&row.child_id)? else {
             return wrong(
@@ -101,14 +113,24 @@ impl Desk {
         if let (Some(found), Some(born)) = (row.dob, known.dob)
             && found != born
         {
-            return wrong("dob", &found.to_string(), format!("{born}, as the roster says"));
+            return wrong(
+                "dob",
+                &found.to_string(),
+                format!("{born}, as the roster says"),
+            );
         }
-        let child = DayChild { attempt: row.attempt, ..self.day_child(day, &row.child_id)? };
+        let child = DayChild {
+            attempt: row.attempt,
+            ..self.day_child(day, &row.child_id)?
+        };
         let readings = match self.by_method(day, &child, row.readings) {
             Ok(readings) => readings,
             Err(e) => return wrong(e.field.word(), &e.found, e.expected),
         };
-        let Some(visit) = self.read().visit_on(&row.child_id, &key_of(day), row.attempt)? else {
+        let Some(visit) = self
+            .read()
+            .visit_on(&row.child_id, &key_of(day), row.attempt)?
+        else {
             plan.new.push(PlannedVisit { child, readings });
             return Ok(Ok(()));
         };
@@ -147,8 +169,11 @@ impl Desk {
             )?);
         }
         for different in &plan.different {
-            let changes: Vec<(Field, String)> =
-                different.fields.iter().map(|(f, _, new)| (*f, new.clone())).collect();
+            let changes: Vec<(Field, String)> = different
+                .fields
+                .iter()
+                .map(|(f, _, new)| (*f, new.clone()))
+                .collect();
             writes.push(self.corrected_visit(
                 different.visit,
                 &changes,

@@ -56,7 +56,8 @@ impl Desk {
             if !sites.iter().any(|(code, _)| *code == child.site) {
                 let known: Vec<&str> = sites.iter().map(|(code, _)| code.as_str()).collect();
                 return Err(wrong(if known.is_empty() {
-                    "a site of this store; add it first: twoline site add CODE --name NAME".to_owned()
+                    "a site of this store; add it first: twoline site add CODE --name NAME"
+                        .to_owned()
                 } else {
                     format!("a site of this store: {}", known.join(", "))
                 }));
@@ -64,7 +65,11 @@ impl Desk {
         }
         let mut known = self.read().roster(Some(&term.code))?;
         let spoken_of: HashSet<&str> = roster.children.iter().map(|c| c.site.as_str()).collect();
-        let in_file: HashSet<&str> = roster.children.iter().map(|c| c.child_id.as_str()).collect();
+        let in_file: HashSet<&str> = roster
+            .children
+            .iter()
+            .map(|c| c.child_id.as_str())
+            .collect();
         known.retain(|k| spoken_of.contains(&*k.site) || in_file.contains(&*k.child_id));
         let update = RosterUpdate::compare(&known, &roster.children);
         Ok(RosterPlan {
@@ -81,7 +86,13 @@ impl Desk {
     pub fn add_roster(&mut self, plan: &RosterPlan) -> Result<()> {
         let today = self.today;
         let author = self.author();
-        let RosterPlan { update, roster, known, term, .. } = plan;
+        let RosterPlan {
+            update,
+            roster,
+            known,
+            term,
+            ..
+        } = plan;
         if update.new.is_empty() && update.changed.is_empty() && update.gone.is_empty() {
             return Ok(());
         }
@@ -97,7 +108,10 @@ impl Desk {
             }
             for place in &update.gone {
                 let gone = &known[*place];
-                let row = Enrolment { left_on: Some(today), ..enrolment(gone, term, today) };
+                let row = Enrolment {
+                    left_on: Some(today),
+                    ..enrolment(gone, term, today)
+                };
                 tx.put(row, "no longer on the roster")?;
             }
             tx.add(&Import {
@@ -193,9 +207,19 @@ fn write_child(
             .read()
             .current_of(&enrolment)?
             .first()
-            .filter(|now| (&now.site, now.grade, &now.class) == (&enrolment.site, enrolment.grade, &enrolment.class) && now.left_on.is_none())
+            .filter(|now| {
+                (&now.site, now.grade, &now.class)
+                    == (&enrolment.site, enrolment.grade, &enrolment.class)
+                    && now.left_on.is_none()
+            })
             .map_or(today, |now| now.from_on);
-        tx.put(Enrolment { from_on, ..enrolment }, REASON)?;
+        tx.put(
+            Enrolment {
+                from_on,
+                ..enrolment
+            },
+            REASON,
+        )?;
         return Ok(());
     }
     tx.add(&row)?;

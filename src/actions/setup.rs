@@ -31,7 +31,11 @@ pub fn init(
     new: NewStore,
     options: &DeskOptions,
 ) -> Result<(Desk, Option<RecoveryKey>)> {
-    let notation = if new.notation == Notation::Metres { "metres" } else { "feet" };
+    let notation = if new.notation == Notation::Metres {
+        "metres"
+    } else {
+        "feet"
+    };
     let (store, recovery) = Store::create(
         dir,
         New {
@@ -66,14 +70,25 @@ pub struct NewChart {
 impl Desk {
     /// Adds or renames a site.
     pub fn add_site(&mut self, code: &str, name: &str) -> Result<Put> {
-        let row = Site { id: new_id(), code: named("site code", code)?, name: named("site", name)? };
+        let row = Site {
+            id: new_id(),
+            code: named("site code", code)?,
+            name: named("site", name)?,
+        };
         let author = self.author();
-        Ok(self.store.append(&author, |tx| tx.put(row, "site renamed"))?)
+        Ok(self
+            .store
+            .append(&author, |tx| tx.put(row, "site renamed"))?)
     }
 
     /// Returns the sites as (code, name).
     pub fn sites(&self) -> Result<Vec<(String, String)>> {
-        Ok(self.read().sites()?.into_iter().map(|s| (s.code, s.name)).collect())
+        Ok(self
+            .read()
+            .sites()?
+            .into_iter()
+            .map(|s| (s.code, s.name))
+            .collect())
     }
 
     /// Adds a term, or changes its dates.
@@ -85,10 +100,15 @@ impl Desk {
         ends_on: NaiveDate,
     ) -> Result<Put> {
         if ends_on < starts_on {
-            return Err(ActionError::bad(format!("the term ends ({ends_on}) before it starts ({starts_on})")));
+            return Err(ActionError::bad(format!(
+                "the term ends ({ends_on}) before it starts ({starts_on})"
+            )));
         }
-        if let Some(other) =
-            self.read().terms()?.iter().find(|t| t.code != code && t.starts_on <= ends_on && starts_on <= t.ends_on)
+        if let Some(other) = self
+            .read()
+            .terms()?
+            .iter()
+            .find(|t| t.code != code && t.starts_on <= ends_on && starts_on <= t.ends_on)
         {
             return Err(ActionError::bad(format!(
                 "the term overlaps {} ({} to {})",
@@ -103,7 +123,9 @@ impl Desk {
             ends_on,
         };
         let author = self.author();
-        Ok(self.store.append(&author, |tx| tx.put(row, "term changed"))?)
+        Ok(self
+            .store
+            .append(&author, |tx| tx.put(row, "term changed"))?)
     }
 
     /// Adds a screener and lets them record.
@@ -111,11 +133,18 @@ impl Desk {
         let name = named("screener", name)?;
         let initials = named("initials", initials)?;
         if self.read().screeners()?.iter().any(|s| s.name == name) {
-            return Err(ActionError::bad(format!("there is a screener {name:?} already"))
-                .hint("write the name so that people can be told apart"));
+            return Err(
+                ActionError::bad(format!("there is a screener {name:?} already"))
+                    .hint("write the name so that people can be told apart"),
+            );
         }
         let id = new_id();
-        let row = Screener { id, screener_id: id, initials, name };
+        let row = Screener {
+            id,
+            screener_id: id,
+            initials,
+            name,
+        };
         let author = self.author();
         self.store.append(&author, |tx| tx.add(&row))?;
         self.screener = Some(row);
@@ -130,12 +159,16 @@ impl Desk {
                 .ok()
                 .and_then(|u| u.value.acuity())
                 .and_then(crate::domain::acuity::Acuity::line)
-                .ok_or_else(|| ActionError::bad(format!("{text:?} is not a line such as 20/40 or 6/12")))?;
+                .ok_or_else(|| {
+                    ActionError::bad(format!("{text:?} is not a line such as 20/40 or 6/12"))
+                })?;
             lines.push(line);
         }
         lines.sort_by_key(|l| std::cmp::Reverse(l.step()));
         if lines.is_empty() {
-            return Err(ActionError::bad("a chart has at least one line, such as --lines 20/200,20/100,20/50,20/40,20/32,20/25,20/20"));
+            return Err(ActionError::bad(
+                "a chart has at least one line, such as --lines 20/200,20/100,20/50,20/40,20/32,20/25,20/20",
+            ));
         }
         let id = new_id();
         let row = Chart {
@@ -146,7 +179,11 @@ impl Desk {
             crowded: chart.crowded,
             letters_per_line: i64::from(chart.letters_per_line),
             distance_mm: i64::from(chart.distance_mm),
-            lines: lines.iter().map(ToString::to_string).collect::<Vec<_>>().join(" "),
+            lines: lines
+                .iter()
+                .map(ToString::to_string)
+                .collect::<Vec<_>>()
+                .join(" "),
         };
         let author = self.author();
         Ok(self.store.append(&author, |tx| tx.add(&row))?)
@@ -159,18 +196,21 @@ impl Desk {
             .into_iter()
             .find(|t| t.starts_on <= date && date <= t.ends_on)
             .ok_or_else(|| {
-                ActionError::bad(format!("no term of this store includes {date}")).hint(
-                    "add it: twoline term add CODE --from YYYY-MM-DD --to YYYY-MM-DD",
-                )
+                ActionError::bad(format!("no term of this store includes {date}"))
+                    .hint("add it: twoline term add CODE --from YYYY-MM-DD --to YYYY-MM-DD")
             })
     }
 
     /// Returns a term by its code.
     pub(super) fn term(&self, code: &str) -> Result<Term> {
-        self.read().terms()?.into_iter().find(|t| t.code == code).ok_or_else(|| {
-            ActionError::bad(format!("this store has no term {code:?}"))
-                .hint("add it: twoline term add CODE --from YYYY-MM-DD --to YYYY-MM-DD")
-        })
+        self.read()
+            .terms()?
+            .into_iter()
+            .find(|t| t.code == code)
+            .ok_or_else(|| {
+                ActionError::bad(format!("this store has no term {code:?}"))
+                    .hint("add it: twoline term add CODE --from YYYY-MM-DD --to YYYY-MM-DD")
+            })
     }
 }
 
@@ -178,7 +218,9 @@ impl Desk {
 fn named(what: &str, text: &str) -> Result<String> {
     let text = text.trim();
     if text.is_empty() || text.chars().any(crate::domain::text::is_unsafe) {
-        return Err(ActionError::bad(format!("the {what} needs a name of ordinary characters")));
+        return Err(ActionError::bad(format!(
+            "the {what} needs a name of ordinary characters"
+        )));
     }
     Ok(text.to_owned())
 }

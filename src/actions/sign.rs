@@ -20,11 +20,16 @@ impl Desk {
     pub fn sign(&mut self, request: SignRequest) -> Result<Signed> {
         let day = self.day_info(request.day)?;
         let child = self.day_child(&day, &request.child_id)?;
-        let child = DayChild { attempt: request.attempt, ..child };
+        let child = DayChild {
+            attempt: request.attempt,
+            ..child
+        };
         let readings = self
             .by_method(&day, &child, request.readings)
             .map_err(|e| ActionError::bad(e.to_string()))?;
-        let existing = self.read().visit_on(&request.child_id, &key_of(&day), request.attempt)?;
+        let existing = self
+            .read()
+            .visit_on(&request.child_id, &key_of(&day), request.attempt)?;
         let Some(visit) = existing else {
             let rows = self.new_visit(&day, &child, request.visit, &[readings])?;
             self.write_visits(vec![rows])?;
@@ -73,7 +78,11 @@ impl Desk {
             return Err(ActionError::bad("this visit is that child's already"));
         }
         let to = self.day_child(&day, to_child_id)?;
-        if self.read().visit_on(to_child_id, &key_of(&day), to.attempt)?.is_some() {
+        if self
+            .read()
+            .visit_on(to_child_id, &key_of(&day), to.attempt)?
+            .is_some()
+        {
             return Err(ActionError::bad(format!(
                 "{}, {} has a visit on this day already",
                 to.family_name, to.given_name
@@ -96,7 +105,8 @@ impl Desk {
         let reason = reasoned(reason)?;
         let (now, day) = self.visit_and_day(visit)?;
         let author = self.author();
-        self.store.append(&author, |tx| take_back(tx, visit, &reason))?;
+        self.store
+            .append(&author, |tx| take_back(tx, visit, &reason))?;
         self.day_child(&day, &now.child_id)
     }
 

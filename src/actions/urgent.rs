@@ -36,9 +36,11 @@ impl Desk {
 
     /// Enters who was told of an emergency, when and by whom; the running line ends.
     pub fn urgent_answer(&mut self, answer: UrgentAnswer) -> Result<()> {
-        for (what, text) in
-            [("who was told", &answer.told), ("when", &answer.told_at), ("by whom", &answer.told_by)]
-        {
+        for (what, text) in [
+            ("who was told", &answer.told),
+            ("when", &answer.told_at),
+            ("by whom", &answer.told_by),
+        ] {
             if text.trim().is_empty() {
                 return Err(ActionError::bad(format!("enter {what}")));
             }
@@ -61,7 +63,11 @@ impl Desk {
             at_ms: at.utc_ms,
             at_offset_minutes: i64::from(at.offset_minutes),
             screener_id: self.screener.as_ref().map(|s| s.screener_id),
-            note: format!("told at {} by {}", answer.told_at.trim(), answer.told_by.trim()),
+            note: format!(
+                "told at {} by {}",
+                answer.told_at.trim(),
+                answer.told_by.trim()
+            ),
         };
         let author = self.author();
         Ok(self.store.append(&author, |tx| tx.add(&row))?)

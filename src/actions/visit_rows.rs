@@ -100,7 +100,11 @@ impl Desk {
                 critical_line: pass_line_for(&self.library, day, child).map(|p| p.line),
                 ..ReadingContext::default()
             };
-            for field in [Field::DistanceRight, Field::DistanceLeft, Field::DistanceBoth] {
+            for field in [
+                Field::DistanceRight,
+                Field::DistanceLeft,
+                Field::DistanceBoth,
+            ] {
                 if let Some(text) = readings.get(field) {
                     readings.set(field, &text, context)?;
                 }
@@ -124,7 +128,11 @@ impl Desk {
         tries: &[Readings],
     ) -> Result<VisitRows> {
         let mut rows = self.further_try(day, child, visit, tries)?;
-        rows.readings = tries.iter().zip(1..).flat_map(|(r, n)| reading_rows(visit, n, r)).collect();
+        rows.readings = tries
+            .iter()
+            .zip(1..)
+            .flat_map(|(r, n)| reading_rows(visit, n, r))
+            .collect();
         rows.new = Some(Visit {
             id: new_id(),
             visit_id: visit,
@@ -171,7 +179,10 @@ impl Desk {
     ) -> Result<VisitRows> {
         let reason = reasoned(reason)?;
         let (now, day) = self.visit_and_day(visit)?;
-        let child = DayChild { attempt: now.attempt, ..self.day_child(&day, &now.child_id)? };
+        let child = DayChild {
+            attempt: now.attempt,
+            ..self.day_child(&day, &now.child_id)?
+        };
         let present = self.read().readings(visit)?;
         let mut tries = tries_of(&present)?;
         if tries.is_empty() {
@@ -186,10 +197,14 @@ impl Desk {
         };
         let mut edits = Vec::new();
         for (field, text) in changes {
-            readings.set(*field, text, context).map_err(|e| ActionError::bad(e.to_string()))?;
+            readings
+                .set(*field, text, context)
+                .map_err(|e| ActionError::bad(e.to_string()))?;
             let value = readings.get(*field);
-            let old: Vec<&ReadingNow> =
-                present.iter().filter(|r| r.field == *field && r.try_no == try_no).collect();
+            let old: Vec<&ReadingNow> = present
+                .iter()
+                .filter(|r| r.field == *field && r.try_no == try_no)
+                .collect();
             if matches!(&old[..], [one] if Some(&one.value) == value.as_ref())
                 || (old.is_empty() && value.is_none())
             {
@@ -230,8 +245,11 @@ impl Desk {
 
     fn outcome_of(&self, day: &DayInfo, child: &DayChild, readings: &Readings) -> Result<Outcome> {
         preview(&self.library, day, child, readings).ok_or_else(|| {
-            ActionError::failed(format!("the protocol {} is not among the rule files", day.protocol))
-                .hint("put its file back into the store's rules folder")
+            ActionError::failed(format!(
+                "the protocol {} is not among the rule files",
+                day.protocol
+            ))
+            .hint("put its file back into the store's rules folder")
         })
     }
 
@@ -244,7 +262,11 @@ impl Desk {
         outcome: &Outcome,
     ) -> Result<Option<UrgentAction>> {
         if outcome.urgency != Some(Urgency::Emergency)
-            || self.read().urgent_open()?.iter().any(|u| u.raised.visit_id == Some(visit))
+            || self
+                .read()
+                .urgent_open()?
+                .iter()
+                .any(|u| u.raised.visit_id == Some(visit))
         {
             return Ok(None);
         }
@@ -283,7 +305,12 @@ impl Desk {
             act_within_days: outcome.act_within_days.map(i64::from),
             act_by: outcome.act_by,
             due_on: outcome.due_on,
-            risks: outcome.risks.iter().map(|r| r.word()).collect::<Vec<_>>().join(SEPARATOR),
+            risks: outcome
+                .risks
+                .iter()
+                .map(|r| r.word())
+                .collect::<Vec<_>>()
+                .join(SEPARATOR),
             criteria: outcome.criteria.join(SEPARATOR),
             unknown: outcome.unknown.join(SEPARATOR),
             qualifiers: outcome.qualifiers.join(SEPARATOR),
@@ -304,7 +331,9 @@ impl Desk {
 
     /// Returns the texts that this day's outcomes are made with: the protocol's and its rule sets'.
     fn rules_used(&self, day: &DayInfo) -> Vec<RuleSetUsed> {
-        let Some(protocol) = self.library.protocol(&day.protocol) else { return Vec::new() };
+        let Some(protocol) = self.library.protocol(&day.protocol) else {
+            return Vec::new();
+        };
         let used = |hash: &str, id: &str, edition: &str, text: &str| RuleSetUsed {
             id: new_id(),
             content_hash: hash.to_owned(),
@@ -312,13 +341,22 @@ impl Desk {
             edition: edition.to_owned(),
             text: text.to_owned(),
         };
-        let sets = protocol.rule_sets.iter().chain(&protocol.when_done).chain(&protocol.instrument);
-        std::iter::once(used(&protocol.content_hash, &protocol.id, &protocol.edition, &protocol.text))
-            .chain(
-                sets.filter_map(|id| self.library.rule_set(id))
-                    .map(|set| used(&set.content_hash, &set.id, &set.edition, &set.text)),
-            )
-            .collect()
+        let sets = protocol
+            .rule_sets
+            .iter()
+            .chain(&protocol.when_done)
+            .chain(&protocol.instrument);
+        std::iter::once(used(
+            &protocol.content_hash,
+            &protocol.id,
+            &protocol.edition,
+            &protocol.text,
+        ))
+        .chain(
+            sets.filter_map(|id| self.library.rule_set(id))
+                .map(|set| used(&set.content_hash, &set.id, &set.edition, &set.text)),
+        )
+        .collect()
     }
 }
 
@@ -326,7 +364,13 @@ fn reading_rows(visit: Uuid, try_no: i64, readings: &Readings) -> Vec<Reading> {
     readings
         .recorded()
         .into_iter()
-        .map(|(field, value)| Reading { id: new_id(), visit_id: visit, try_no, field, value })
+        .map(|(field, value)| Reading {
+            id: new_id(),
+            visit_id: visit,
+            try_no,
+            field,
+            value,
+        })
         .collect()
 }
 
@@ -338,8 +382,9 @@ fn replace_outcome(
     reason: &str,
 ) -> crate::store::Result<()> {
     let old = tx.read().outcomes(visit)?;
-    let (same, other): (Vec<_>, Vec<_>) =
-        old.into_iter().partition(|o| o.rule_set == new.rule_set && o.edition == new.edition);
+    let (same, other): (Vec<_>, Vec<_>) = old
+        .into_iter()
+        .partition(|o| o.rule_set == new.rule_set && o.edition == new.edition);
     let ids = |rows: &[row::Outcome]| rows.iter().map(Row::id).collect::<Vec<_>>();
     if !other.is_empty() {
         tx.supersede::<row::Outcome>(&ids(&other), None, reason)?;
@@ -366,7 +411,16 @@ pub(super) fn take_back(tx: &mut Tx<'_>, visit: Uuid, reason: &str) -> crate::st
             tx.supersede::<UrgentAction>(&[urgent.raised.id], None, reason)?;
         }
     }
-    let visits: Vec<Uuid> = tx.read().visit_entries(visit)?.iter().map(Row::id).collect();
+    let Some(now) = tx.read().visit(visit)? else {
+        return Ok(());
+    };
+    let record = tx.read().visit_record(now)?;
+    let visits: Vec<Uuid> = record
+        .visit
+        .iter()
+        .filter(|v| !v.superseded)
+        .map(|v| v.row.id)
+        .collect();
     if !visits.is_empty() {
         tx.supersede::<Visit>(&visits, None, reason)?;
     }
@@ -392,7 +446,9 @@ pub(super) fn tries_of(readings: &[ReadingNow]) -> Result<Vec<Readings>> {
 /// Returns what is judged of several tries: the distance acuity of the latest complete try (else of
 /// the last one), and the latest of everything else.
 pub(super) fn judged(tries: &[Readings]) -> Readings {
-    let Some(last) = tries.last() else { return Readings::default() };
+    let Some(last) = tries.last() else {
+        return Readings::default();
+    };
     let mut out = Readings::default();
     for readings in tries {
         for (field, value) in readings.recorded() {
@@ -401,7 +457,10 @@ pub(super) fn judged(tries: &[Readings]) -> Readings {
         }
     }
     let complete = |r: &&Readings| {
-        r.distance.both().iter().all(|eye| matches!(eye, Some(AcuityResult::Read(_))))
+        r.distance
+            .both()
+            .iter()
+            .all(|eye| matches!(eye, Some(AcuityResult::Read(_))))
     };
     let chart = tries.iter().rev().find(complete).unwrap_or(last);
     Readings {
@@ -423,19 +482,30 @@ fn emergency_words(readings: &Readings, outcome: &Outcome) -> String {
             None => sign.kind.title().to_owned(),
         })
         .collect();
-    if signs.is_empty() { outcome.criteria.join(", ") } else { signs.join("; ") }
+    if signs.is_empty() {
+        outcome.criteria.join(", ")
+    } else {
+        signs.join("; ")
+    }
 }
 
 pub(super) fn stored_outcome(row: &row::Outcome) -> StoredOutcome {
     let list = |text: &str| -> Vec<String> {
-        text.split(SEPARATOR).map(str::trim).filter(|t| !t.is_empty()).map(str::to_owned).collect()
+        text.split(SEPARATOR)
+            .map(str::trim)
+            .filter(|t| !t.is_empty())
+            .map(str::to_owned)
+            .collect()
     };
     StoredOutcome {
         kind: row.kind,
         urgency: row.urgency,
         act_by: row.act_by,
         due_on: row.due_on,
-        risks: list(&row.risks).iter().filter_map(|r| RiskKind::from_word(r)).collect(),
+        risks: list(&row.risks)
+            .iter()
+            .filter_map(|r| RiskKind::from_word(r))
+            .collect(),
         criteria: list(&row.criteria),
         unknown: list(&row.unknown),
         qualifiers: list(&row.qualifiers),
