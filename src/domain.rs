@@ -4,6 +4,7 @@ pub mod acuity;
 pub mod age;
 pub mod codes;
 pub mod field;
+pub mod formula;
 pub mod number;
 pub mod outcome;
 pub mod readings;

@@ -1,1 +1,4 @@
 //! Typed rows in, bytes out.
+
+pub mod csv;
+pub mod day;

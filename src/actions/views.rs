@@ -5,7 +5,7 @@ use uuid::Uuid;
 
 use crate::clock::Moment;
 use crate::domain::age::{AgeMonths, Grade};
-use crate::domain::codes::{AcuityMethod, Attempt, Consent};
+use crate::domain::codes::{AcuityMethod, Attempt, Consent, History};
 use crate::domain::outcome::{OutcomeKind, RiskKind, Urgency};
 use crate::domain::readings::Readings;
 
@@ -104,6 +104,8 @@ pub struct DayChild {
     pub under_care: bool,
     /// Whether the last examination was less than 12 months before the day.
     pub examined_recently: bool,
+    /// History from the roster; counted until somebody records the history of the visit.
+    pub history: Vec<History>,
     /// Which visit this day is for the child.
     pub attempt: Attempt,
     /// Earlier visits of the term that ended for want of the child's glasses.

@@ -1,1 +1,6 @@
-//! Tests of `demo`.
+//! Tests of `demo`: the invented district and the sample files.
+
+#![allow(clippy::panic)]
+
+mod district;
+mod sample_files;

@@ -1,0 +1,194 @@
+//! The rule sets and protocols that can be named, as plain text.
+
+use std::path::{Path, PathBuf};
+
+use crate::domain::text::{nearest, shown};
+use crate::rules::show::{self, RuleSheet};
+use crate::rules::{Library, RuleErrors};
+
+/// An id that no rule set or protocol has.
+#[derive(Debug, Clone, PartialEq, Eq, thiserror::Error)]
+#[error("no {what} {found}")]
+pub struct UnknownRule {
+    what: &'static str,
+    found: String,
+    near: Option<String>,
+}
+
+impl UnknownRule {
+    fn new<'i>(what: &'static str, id: &str, known: impl Iterator<Item = &'i str>) -> Self {
+        UnknownRule {
+            what,
+            found: format!("\"{}\"", shown(id, 60)),
+            near: nearest(id, known).map(str::to_owned),
+        }
+    }
+
+    /// Makes the error for a rule set.
+    pub fn rule_set(library: &Library, id: &str) -> UnknownRule {
+        if library.protocol(id).is_some() {
+            return UnknownRule {
+                what: "rule set",
+                found: format!("\"{id}\", which is a protocol"),
+                near: None,
+            };
+        }
+        UnknownRule::new("rule set", id, library.rule_sets().map(|s| &*s.id))
+    }
+
+    /// Makes the error for a protocol.
+    pub fn protocol(library: &Library, id: &str) -> UnknownRule {
+        if library.rule_set(id).is_some() {
+            return UnknownRule {
+                what: "protocol",
+                found: format!("\"{id}\", which is a rule set"),
+                near: None,
+            };
+        }
+        UnknownRule::new("protocol", id, library.protocols().map(|p| &*p.id))
+    }
+
+    /// Returns what to do.
+    pub fn hint(&self) -> String {
+        match &self.near {
+            Some(near) => format!("did you mean {near}? twoline rules list shows all of them"),
+            None => "twoline rules list shows all of them".into(),
+        }
+    }
+}
+
+/// Why local rule files were not taken.
+#[derive(Debug, thiserror::Error)]
+pub enum RuleFileError {
+    /// The file cannot be read.
+    #[error("cannot read {path}: {error}")]
+    Unreadable {
+        /// The file.
+        path: String,
+        /// What the system said.
+        error: std::io::Error,
+    },
+    /// The files are wrong.
+    #[error("{0}")]
+    Wrong(RuleErrors),
+}
+
+/// Returns the shipped library with local files beside it.
+pub fn library_with(files: &[PathBuf]) -> Result<Library, RuleFileError> {
+    let mut texts = Vec::new();
+    for path in files {
+        let text = std::fs::read_to_string(path).map_err(|error| RuleFileError::Unreadable {
+            path: shown(&path.to_string_lossy(), 200),
+            error,
+        })?;
+        texts.push((file_name(path), text));
+    }
+    Library::shipped()
+        .with_local(texts)
+        .map_err(RuleFileError::Wrong)
+}
+
+fn file_name(path: &Path) -> String {
+    path.file_name()
+        .unwrap_or(path.as_os_str())
+        .to_string_lossy()
+        .into_owned()
+}
+
+/// Returns the list of rule sets and protocols, a line each.
+pub fn list(library: &Library) -> Vec<String> {
+    let mut lines = vec!["Rule sets".to_owned()];
+    lines.extend(library.rule_sets().map(show::list_line));
+    lines.push(String::new());
+    lines.push("Protocols".to_owned());
+    let width = library
+        .protocols()
+        .map(|p| p.id.chars().count())
+        .max()
+        .unwrap_or(0);
+    lines.extend(
+        library
+            .protocols()
+            .map(|p| format!("{:width$}  {} ({})", &*p.id, &*p.title, &*p.edition)),
+    );
+    safe(lines)
+}
+
+/// Returns a rule set or protocol in full.
+pub fn show(library: &Library, id: &str) -> Result<Vec<String>, UnknownRule> {
+    if let Some(set) = library.rule_set(id) {
+        return Ok(safe(sheet_lines(&show::sheet(set))));
+    }
+    if let Some(protocol) = library.protocol(id) {
+        return Ok(safe(show::protocol_lines(protocol)));
+    }
+    let ids = library
+        .rule_sets()
+        .map(|s| &*s.id)
+        .chain(library.protocols().map(|p| &*p.id));
+    Err(UnknownRule::new("rule set or protocol", id, ids))
+}
+
+fn safe(lines: Vec<String>) -> Vec<String> {
+    lines.iter().map(|line| shown(line, 10_000)).collect()
+}
+
+/// Puts a rule sheet into aligned lines.
+fn sheet_lines(sheet: &RuleSheet) -> Vec<String> {
+    let mut lines = vec![
+        sheet.title.clone(),
+        format!("{}  {}", sheet.id, sheet.edition),
+    ];
+    if !sheet.approval.is_empty() {
+        lines.push(sheet.approval.clone());
+    }
+    lines.push(String::new());
+    let mut table = vec![
+        std::iter::once("refer when".to_owned())
+            .chain(sheet.columns.iter().cloned())
+            .collect::<Vec<_>>(),
+    ];
+    for (finding, cells) in &sheet.rows {
+        table.push(std::iter::once(finding).chain(cells).cloned().collect());
+    }
+    lines.extend(aligned(&table));
+    if !sheet.line_credit.is_empty() {
+        lines.push(String::new());
+        lines.push(format!("Line credit: {}", sheet.line_credit));
+    }
+    for (title, items) in [("Sources", &sheet.sources), ("Notes", &sheet.notes)] {
+        if !items.is_empty() {
+            lines.push(String::new());
+            lines.push(title.to_owned());
+            lines.extend(items.iter().map(|item| format!("- {item}")));
+        }
+    }
+    lines
+}
+
+/// Pads the cells of each column to one width, as a terminal shows it.
+fn aligned(table: &[Vec<String>]) -> Vec<String> {
+    use unicode_width::UnicodeWidthStr;
+    let columns = table.iter().map(Vec::len).max().unwrap_or(0);
+    let widths: Vec<usize> = (0..columns)
+        .map(|i| {
+            table
+                .iter()
+                .filter_map(|row| row.get(i))
+                .map(|cell| cell.width())
+                .max()
+                .unwrap_or(0)
+        })
+        .collect();
+    table
+        .iter()
+        .map(|row| {
+            let mut line = String::new();
+            for (cell, width) in row.iter().zip(&widths) {
+                line.push_str(cell);
+                line.push_str(&" ".repeat(width - cell.width() + 2));
+            }
+            line.trim_end().to_owned()
+        })
+        .collect()
+}
