@@ -20,7 +20,7 @@ mod views;
 mod visit_rows;
 
 pub use crate::rules::{CAUTIONS, Library, PassLine, explain, show};
-pub use crate::store::{Draft, Drafts, Kdf, RecoveryKey, Secret};
+pub use crate::store::{Draft, DraftDay, Drafts, Kdf, RecoveryKey, Secret};
 pub use desk::{Desk, DeskOptions};
 pub use error::{ActionError, Kind, Result};
 pub use judging::{bench_fields, correction_from_roster, pass_line_for, preview};

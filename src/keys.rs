@@ -299,7 +299,10 @@ mod tests {
     fn no_key_means_two_things_where_both_are_live() {
         for context in Context::ALL {
             let mut seen: Vec<(Key, &Binding)> = Vec::new();
-            for binding in TABLE.iter().filter(|b| context.stack().contains(&b.context)) {
+            for binding in TABLE
+                .iter()
+                .filter(|b| context.stack().contains(&b.context))
+            {
                 for key in binding.keys {
                     if let Some((_, other)) = seen.iter().find(|(k, _)| k == key) {
                         panic!(
@@ -344,8 +347,18 @@ mod tests {
             .chain('0'..='9')
             .chain("/-+.<>= ".chars());
         for c in written {
-            for context in [Context::Bench, Context::List, Context::Children, Context::Form] {
-                assert_eq!(command(context, Key::char(c)), None, "{c} in {}", context.title());
+            for context in [
+                Context::Bench,
+                Context::List,
+                Context::Children,
+                Context::Form,
+            ] {
+                assert_eq!(
+                    command(context, Key::char(c)),
+                    None,
+                    "{c} in {}",
+                    context.title()
+                );
             }
         }
     }

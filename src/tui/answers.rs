@@ -21,15 +21,27 @@ impl App {
                 let (day, effects) = Day::new(&self.session, info, children, drafts);
                 self.day = Ok(day);
                 if n > 0 {
-                    self.say(Tone::Attention, format!("{n} draft{} kept from before", if n == 1 { "" } else { "s" }));
+                    self.say(
+                        Tone::Attention,
+                        format!(
+                            "{n} draft{} kept from before",
+                            if n == 1 { "" } else { "s" }
+                        ),
+                    );
                 }
                 return effects;
             }
             Answer::Signed(signed) => return self.signed(*signed, "saved"),
             Answer::NotSigned(id, refused) => {
-                let who = self.day.as_mut().map_or_else(|_| id.clone(), |d| d.not_signed(&id));
+                let who = self
+                    .day
+                    .as_mut()
+                    .map_or_else(|_| id.clone(), |d| d.not_signed(&id));
                 self.refuse(Refused {
-                    message: format!("{who}: not confirmed, the draft is kept. {}", refused.message),
+                    message: format!(
+                        "{who}: not confirmed, the draft is kept. {}",
+                        refused.message
+                    ),
                     hint: refused.hint,
                 });
             }
@@ -42,7 +54,10 @@ impl App {
                 return self.signed(*signed, "corrected");
             }
             Answer::Moved(signed, from) => {
-                let mut effects = self.day.as_mut().map_or_else(|_| Vec::new(), |d| d.refresh(&self.session, *from));
+                let mut effects = self
+                    .day
+                    .as_mut()
+                    .map_or_else(|_| Vec::new(), |d| d.refresh(&self.session, *from));
                 let to = signed.child.child_id.clone();
                 effects.extend(self.signed(*signed, "moved to"));
                 if let Ok(day) = &mut self.day {
@@ -59,13 +74,22 @@ impl App {
                     effects.extend(day.refresh(&self.session, *child));
                     effects.extend(day.bring(&self.session, &id).effects);
                 }
-                self.say(Tone::Quiet, format!("the signature for {who} is taken back; both entries stay"));
-                effects.push(Effect::Ask(Request::Urgent));
+                self.say(
+                    Tone::Quiet,
+                    format!("the signature for {who} is taken back; both entries stay"),
+                );
+                effects.push(Effect::ask(Request::Urgent));
                 return effects;
             }
             Answer::Added(child) => {
                 let id = child.child_id.clone();
-                self.say(Tone::Quiet, format!("added {} as {id}", name(&child.family_name, &child.given_name)));
+                self.say(
+                    Tone::Quiet,
+                    format!(
+                        "added {} as {id}",
+                        name(&child.family_name, &child.given_name)
+                    ),
+                );
                 if let Ok(day) = &mut self.day {
                     day.queue.update(*child);
                     return day.bring(&self.session, &id).effects;
@@ -82,7 +106,10 @@ impl App {
             Answer::Referrals(rows) => self.tables[0].fill(rows),
             Answer::Term(rows) => self.tables[1].fill(rows),
             Answer::Screener(name) => {
-                self.say(Tone::Quiet, format!("recording as {}", crate::tui::text::safe(&name)));
+                self.say(
+                    Tone::Quiet,
+                    format!("recording as {}", crate::tui::text::safe(&name)),
+                );
                 self.session.screener = Some(name);
             }
             Answer::Refused(refused) => self.refuse(refused),
@@ -109,7 +136,7 @@ impl App {
             Err(_) => Vec::new(),
         };
         if urgent_now || verb != "saved" {
-            effects.push(Effect::Ask(Request::Urgent));
+            effects.push(Effect::ask(Request::Urgent));
         }
         effects
     }

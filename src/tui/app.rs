@@ -9,8 +9,8 @@ use chrono::NaiveDate;
 use uuid::Uuid;
 
 use crate::actions::{
-    ChildHistory, DayChild, DayInfo, FoundChild, NewChild, NewDay, OpenUrgent, SignRequest,
-    Signed, UrgentAnswer, VisitView,
+    ChildHistory, DayChild, DayInfo, FoundChild, NewChild, NewDay, OpenUrgent, SignRequest, Signed,
+    UrgentAnswer, VisitView,
 };
 use crate::domain::acuity::Notation;
 use crate::domain::field::Field;
@@ -57,8 +57,6 @@ pub struct Session {
     pub now_ms: i64,
     /// Minutes east of UTC.
     pub offset_minutes: i32,
-    /// Size of the screen in columns and rows, as of the last message.
-    pub size: (u16, u16),
 }
 
 /// Which place is shown.
@@ -162,7 +160,7 @@ pub enum Message {
 #[derive(Debug, Clone, PartialEq)]
 pub enum Effect {
     /// Asks the store.
-    Ask(Request),
+    Ask(Box<Request>),
     /// Saves a draft, soon.
     SaveDraft(Draft),
     /// Writes all drafts now.
@@ -258,6 +256,13 @@ pub enum Answer {
     Refused(Refused),
 }
 
+impl Effect {
+    /// Makes the effect that asks the store.
+    pub fn ask(request: Request) -> Effect {
+        Effect::Ask(Box::new(request))
+    }
+}
+
 impl App {
     /// Makes the screens, with the list of days to begin with.
     pub fn new(session: Session, days: Vec<DayInfo>, urgent: Vec<OpenUrgent>) -> App {
@@ -280,7 +285,7 @@ impl App {
         match &self.day {
             Err(days) => days
                 .of_today(self.session.today)
-                .map(|day| vec![Effect::Ask(Request::LoadDay(day))])
+                .map(|day| vec![Effect::ask(Request::LoadDay(day))])
                 .unwrap_or_default(),
             Ok(_) => Vec::new(),
         }

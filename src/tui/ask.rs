@@ -29,14 +29,31 @@ impl App {
                 Command::NotTestable | Command::NotPresent | Command::Signs
             )
         {
-            self.say(Tone::Attention, "this visit is signed: F8 corrects a value, with the reason");
+            self.say(
+                Tone::Attention,
+                "this visit is signed: F8 corrects a value, with the reason",
+            );
             return;
         }
         let prompt = match command {
             Command::NotTestable => {
-                let mut choices = listed(NotTestable::ALL.iter().zip('1'..).map(|(why, key)| (key, why.title(), why.word())));
-                choices.scope = Some(bench.field().and_then(kind::eye).map_or(Scope::Both, Scope::One));
-                Prompt::choices(Ask::NotTestable, format!("{who}: distance not testable, why?"), choices)
+                let mut choices = listed(
+                    NotTestable::ALL
+                        .iter()
+                        .zip('1'..)
+                        .map(|(why, key)| (key, why.title(), why.word())),
+                );
+                choices.scope = Some(
+                    bench
+                        .field()
+                        .and_then(kind::eye)
+                        .map_or(Scope::Both, Scope::One),
+                );
+                Prompt::choices(
+                    Ask::NotTestable,
+                    format!("{who}: distance not testable, why?"),
+                    choices,
+                )
             }
             Command::NotPresent => Prompt::choices(
                 Ask::NotPresent,
@@ -44,11 +61,23 @@ impl App {
                 listed([
                     ('a', Status::Absent.title(), Status::Absent.word()),
                     ('o', Status::OptedOut.title(), Status::OptedOut.word()),
-                    ('n', Status::NotAttempted.title(), Status::NotAttempted.word()),
+                    (
+                        'n',
+                        Status::NotAttempted.title(),
+                        Status::NotAttempted.word(),
+                    ),
                     ('l', Status::LeftEarly.title(), Status::LeftEarly.word()),
                     ('u', Status::UnderCare.title(), Status::UnderCare.word()),
-                    ('h', Correction::LeftAtHome.title(), Correction::LeftAtHome.word()),
-                    ('b', Correction::BrokenOrLost.title(), Correction::BrokenOrLost.word()),
+                    (
+                        'h',
+                        Correction::LeftAtHome.title(),
+                        Correction::LeftAtHome.word(),
+                    ),
+                    (
+                        'b',
+                        Correction::BrokenOrLost.title(),
+                        Correction::BrokenOrLost.word(),
+                    ),
                     ('p', "present after all: take the answer back", ""),
                 ]),
             ),
@@ -63,7 +92,11 @@ impl App {
             Command::Why => {
                 let mut lines = Vec::new();
                 if let Some(outcome) = bench.signed.as_ref().and_then(|v| v.outcome.as_ref()) {
-                    lines.push(format!("Signed as {}: {}", outcome.kind.title(), safe(&outcome.reasons)));
+                    lines.push(format!(
+                        "Signed as {}: {}",
+                        outcome.kind.title(),
+                        safe(&outcome.reasons)
+                    ));
                     lines.push(String::new());
                     lines.push("The same readings now:".into());
                 }
@@ -76,9 +109,16 @@ impl App {
                 Form::new(&[("reason", "entered for the other eye", false)]),
             ),
             Command::Move => {
-                let reason = [("to", "name or id of the child they belong to", false), ("reason", "wrong child on the bench", false)];
+                let reason = [
+                    ("to", "name or id of the child they belong to", false),
+                    ("reason", "wrong child on the bench", false),
+                ];
                 let fields = if signed { &reason[..] } else { &reason[..1] };
-                Prompt::form(Ask::MoveTo, format!("move what was entered for {who} to another child"), Form::new(fields))
+                Prompt::form(
+                    Ask::MoveTo,
+                    format!("move what was entered for {who} to another child"),
+                    Form::new(fields),
+                )
             }
             Command::Correct if signed => {
                 let keys = "123456789abcdefghijklmnopqrstuvwxyz".chars();
@@ -98,13 +138,22 @@ impl App {
                 });
                 let readings = &bench.readings;
                 let choices = listed(items.zip(keys).map(|(f, key)| {
-                    let now = readings.get(f).map_or_else(|| "·".to_owned(), |raw| value_words(readings, f, &raw));
+                    let now = readings
+                        .get(f)
+                        .map_or_else(|| "·".to_owned(), |raw| value_words(readings, f, &raw));
                     (key, format!("{}: {now}", f.title()), f.word())
                 }));
-                Prompt::choices(Ask::CorrectWhat, format!("{who}: which value is wrong?"), choices)
+                Prompt::choices(
+                    Ask::CorrectWhat,
+                    format!("{who}: which value is wrong?"),
+                    choices,
+                )
             }
             Command::Correct => {
-                self.say(Tone::Attention, "nothing is signed yet: simply type over the value");
+                self.say(
+                    Tone::Attention,
+                    "nothing is signed yet: simply type over the value",
+                );
                 return;
             }
             _ => return,
@@ -126,7 +175,11 @@ impl App {
             let mark = if chosen.contains(h) { "✓ " } else { "" };
             (key, format!("{mark}{}", h.title()), h.word())
         }));
-        self.prompt = Some(Prompt::choices(Ask::History, "history: choose to add, again to take away", choices));
+        self.prompt = Some(Prompt::choices(
+            Ask::History,
+            "history: choose to add, again to take away",
+            choices,
+        ));
     }
 
     /// Asks to save an emergency with one key.
@@ -137,7 +190,12 @@ impl App {
             .ok()
             .and_then(|d| d.bench.as_ref())
             .map(|b| {
-                let signs = b.readings.signs.iter().flatten().map(|s| crate::tui::day::bench_view::sign_words(*s));
+                let signs = b
+                    .readings
+                    .signs
+                    .iter()
+                    .flatten()
+                    .map(|s| crate::tui::day::bench_view::sign_words(*s));
                 format!(
                     "EMERGENCY  {}: {}",
                     name(&b.child.family_name, &b.child.given_name),
@@ -147,7 +205,11 @@ impl App {
             .unwrap_or_default();
         let mut choices = listed([
             ('f', "nurse fetched: save it now", "save"),
-            ('g', "go on testing first: it stays a draft, not saved", "later"),
+            (
+                'g',
+                "go on testing first: it stays a draft, not saved",
+                "later",
+            ),
         ]);
         // Neither is taken by the Enter that closed the choice of signs.
         choices.at = usize::MAX;
@@ -196,7 +258,11 @@ impl App {
             }
             several => {
                 let choices = listed(several.iter().zip('1'..='9').map(|(u, key)| {
-                    (key, format!("{} ({}): {}", safe(&u.name), safe(&u.class), safe(&u.what)), u.visit.to_string())
+                    (
+                        key,
+                        format!("{} ({}): {}", safe(&u.name), safe(&u.class), safe(&u.what)),
+                        u.visit.to_string(),
+                    )
                 }));
                 self.prompt = Some(Prompt::choices(Ask::ToldWhich, "which emergency?", choices));
             }
@@ -211,9 +277,21 @@ impl App {
             Ask::Told(urgent.clone()),
             format!("EMERGENCY  {}: {}", safe(&urgent.name), safe(&urgent.what)),
             Form::new(&[
-                ("who was told", "mother by telephone; eye doctor on call", false),
+                (
+                    "who was told",
+                    "mother by telephone; eye doctor on call",
+                    false,
+                ),
                 ("when", &format!("{now}, as on the clock now"), false),
-                ("by whom", if me.is_empty() { "initials and name" } else { &me }, false),
+                (
+                    "by whom",
+                    if me.is_empty() {
+                        "initials and name"
+                    } else {
+                        &me
+                    },
+                    false,
+                ),
             ]),
         ));
     }
@@ -222,10 +300,23 @@ impl App {
     pub(crate) fn ask_palette(&mut self) {
         let mut choices = listed(keys::palette(self.context()).into_iter().map(|b| {
             let keys = keys::keys_text(b);
-            ('\0', format!("{:<16} {}   {}", b.command.name(), b.help, if keys == "palette" { "" } else { &keys }), b.command.name())
+            (
+                '\0',
+                format!(
+                    "{:<16} {}   {}",
+                    b.command.name(),
+                    b.help,
+                    if keys == "palette" { "" } else { &keys }
+                ),
+                b.command.name(),
+            )
         }));
         choices.find = Some(String::new());
-        self.prompt = Some(Prompt::choices(Ask::Palette, "palette: type words, Enter runs", choices));
+        self.prompt = Some(Prompt::choices(
+            Ask::Palette,
+            "palette: type words, Enter runs",
+            choices,
+        ));
     }
 
     /// Opens the page of all keys.
@@ -237,7 +328,11 @@ impl App {
         for context in order {
             lines.push(context.title().to_uppercase());
             for binding in keys::TABLE.iter().filter(|b| b.context == context) {
-                lines.push(format!("  {} {}", crate::tui::text::fit(&keys::keys_text(binding), 14), binding.help));
+                lines.push(format!(
+                    "  {} {}",
+                    crate::tui::text::fit(&keys::keys_text(binding), 14),
+                    binding.help
+                ));
             }
             lines.push(String::new());
         }
@@ -246,9 +341,18 @@ impl App {
 
     /// Asks who is recording.
     pub(crate) fn ask_screener(&mut self) {
-        let choices = listed(self.session.screeners.iter().zip("123456789abcdefghijklmnop".chars()).map(|(s, key)| (key, safe(s), s.clone())));
+        let choices = listed(
+            self.session
+                .screeners
+                .iter()
+                .zip("123456789abcdefghijklmnop".chars())
+                .map(|(s, key)| (key, safe(s), s.clone())),
+        );
         if choices.items.is_empty() {
-            self.say(Tone::Attention, "no screener is entered yet: `twoline screener add` adds one");
+            self.say(
+                Tone::Attention,
+                "no screener is entered yet: `twoline screener add` adds one",
+            );
         } else {
             self.prompt = Some(Prompt::choices(Ask::Screener, "who is recording?", choices));
         }
@@ -256,16 +360,30 @@ impl App {
 
     /// Asks for a new screening day.
     pub(crate) fn ask_new_day(&mut self) {
-        let sites = self.session.sites.iter().map(|(code, _)| code.clone()).collect::<Vec<_>>().join(", ");
+        let sites = self
+            .session
+            .sites
+            .iter()
+            .map(|(code, _)| code.clone())
+            .collect::<Vec<_>>()
+            .join(", ");
         let protocols = crate::tui::judging::protocol_ids(&self.session.library).join(", ");
         self.prompt = Some(Prompt::form(
             Ask::NewDay,
             "open a screening day",
             Form::new(&[
                 ("site", &sites, false),
-                ("date", &format!("{}, empty for today", self.session.today), true),
+                (
+                    "date",
+                    &format!("{}, empty for today", self.session.today),
+                    true,
+                ),
                 ("protocol", &protocols, false),
-                ("chart", "threshold (smallest line read) or critical_line; empty for threshold", true),
+                (
+                    "chart",
+                    "threshold (smallest line read) or critical_line; empty for threshold",
+                    true,
+                ),
             ]),
         ));
     }

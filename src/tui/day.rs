@@ -58,7 +58,10 @@ pub struct Done {
 
 impl Done {
     fn effects(effects: Vec<Effect>) -> Done {
-        Done { effects, said: None }
+        Done {
+            effects,
+            said: None,
+        }
     }
 
     fn refused(words: impl Into<String>) -> Done {
@@ -78,7 +81,12 @@ impl Done {
 
 impl Day {
     /// Takes a day with its children and drafts; the first child to come is on the bench.
-    pub fn new(session: &Session, info: DayInfo, children: Vec<DayChild>, drafts: Vec<Draft>) -> (Day, Vec<Effect>) {
+    pub fn new(
+        session: &Session,
+        info: DayInfo,
+        children: Vec<DayChild>,
+        drafts: Vec<Draft>,
+    ) -> (Day, Vec<Effect>) {
         let draft_ids = drafts.iter().map(|d| d.child_id.clone()).collect();
         let mut day = Day {
             info: Arc::new(info),
@@ -86,12 +94,18 @@ impl Day {
             bench: None,
             last_signed: None,
             list_focus: true,
-            drafts: drafts.into_iter().map(|d| (d.child_id.clone(), d)).collect(),
+            drafts: drafts
+                .into_iter()
+                .map(|d| (d.child_id.clone(), d))
+                .collect(),
             draft_ids,
             saving: HashSet::new(),
             scan: Scan::default(),
         };
-        let first = day.queue.next_to_come("", &day.saving).map(|c| c.child_id.clone());
+        let first = day
+            .queue
+            .next_to_come("", &day.saving)
+            .map(|c| c.child_id.clone());
         let effects = first.map_or_else(Vec::new, |id| day.bring(session, &id).effects);
         (day, effects)
     }
@@ -109,15 +123,24 @@ impl Day {
     /// Brings a child to the bench; what was entered for the one before stays as that child's draft.
     pub fn bring(&mut self, session: &Session, id: &str) -> Done {
         let Some(child) = self.queue.child(id).cloned() else {
-            return Done::refused(format!("no child of this day has the id {}", crate::tui::text::safe(id)));
+            return Done::refused(format!(
+                "no child of this day has the id {}",
+                crate::tui::text::safe(id)
+            ));
         };
         if self.saving.contains(&child.child_id) {
-            return Done::refused(format!("{} is still being saved", name(&child.family_name, &child.given_name)));
+            return Done::refused(format!(
+                "{} is still being saved",
+                name(&child.family_name, &child.given_name)
+            ));
         }
         let mut effects = self.keep_draft();
         self.queue.select(&child.child_id);
         if child.state != crate::actions::QueueState::ToCome {
-            effects.push(Effect::Ask(Request::Visit((*self.info).clone(), child.child_id.clone())));
+            effects.push(Effect::ask(Request::Visit(
+                (*self.info).clone(),
+                child.child_id.clone(),
+            )));
         }
         let draft = self.drafts.get(&child.child_id);
         self.bench = Some(Bench::new(session, &self.info, child, draft));
@@ -218,7 +241,9 @@ impl Day {
             }
             let strange = !self.in_list()
                 && scan::looks_like_an_id(&text)
-                && self.focused_state().is_none_or(|s| matches!(s, State::Invalid { .. }));
+                && self
+                    .focused_state()
+                    .is_none_or(|s| matches!(s, State::Invalid { .. }));
             if strange && scan::id_of(&text, session).is_some() {
                 self.take_back(before);
                 let mut done = Done::refused(format!(
@@ -346,8 +371,15 @@ impl Day {
 
     /// Brings the next child to come.
     pub fn next_child(&mut self, session: &Session) -> Done {
-        let after = self.bench.as_ref().map_or(String::new(), |b| b.child.child_id.clone());
-        match self.queue.next_to_come(&after, &self.saving).map(|c| c.child_id.clone()) {
+        let after = self
+            .bench
+            .as_ref()
+            .map_or(String::new(), |b| b.child.child_id.clone());
+        match self
+            .queue
+            .next_to_come(&after, &self.saving)
+            .map(|c| c.child_id.clone())
+        {
             Some(id) => self.bring(session, &id),
             None => Done::said("nobody is left to come"),
         }
@@ -357,7 +389,9 @@ impl Day {
     /// confirmed.
     pub fn sign(&mut self, session: &Session) -> Done {
         if let Some(holder) = &session.read_only {
-            return Done::refused(format!("this store is open for reading only: {holder} holds it"));
+            return Done::refused(format!(
+                "this store is open for reading only: {holder} holds it"
+            ));
         }
         let Some(bench) = &mut self.bench else {
             return Done::refused("no child is on the bench");
@@ -377,8 +411,12 @@ impl Day {
         let id = request.child_id.clone();
         let mut effects = self.keep_draft();
         self.saving.insert(id.clone());
-        effects.push(Effect::Ask(Request::Sign(request)));
-        match self.queue.next_to_come(&id, &self.saving).map(|c| c.child_id.clone()) {
+        effects.push(Effect::ask(Request::Sign(request)));
+        match self
+            .queue
+            .next_to_come(&id, &self.saving)
+            .map(|c| c.child_id.clone())
+        {
             Some(next) => effects.extend(self.bring(session, &next).effects),
             None => {
                 self.bench = None;
@@ -398,7 +436,11 @@ impl Day {
         let child = signed.child;
         let id = child.child_id.clone();
         self.saving.remove(&id);
-        self.last_signed = Some((signed.visit, id.clone(), name(&child.family_name, &child.given_name)));
+        self.last_signed = Some((
+            signed.visit,
+            id.clone(),
+            name(&child.family_name, &child.given_name),
+        ));
         let mut effects = self.forget_draft(&id);
         self.queue.update(child);
         effects.extend(self.reload(&id));
@@ -431,7 +473,10 @@ impl Day {
             .child(id)
             .is_some_and(|c| c.state != crate::actions::QueueState::ToCome);
         if on_bench && done {
-            vec![Effect::Ask(Request::Visit((*self.info).clone(), id.to_owned()))]
+            vec![Effect::ask(Request::Visit(
+                (*self.info).clone(),
+                id.to_owned(),
+            ))]
         } else {
             Vec::new()
         }
@@ -483,7 +528,10 @@ impl Day {
     pub fn draw(&self, frame: &mut Frame<'_>, area: Rect, session: &Session) -> Position {
         let theme = session.theme;
         let list_width = (area.width * 3 / 10).clamp(24.min(area.width), 44);
-        let list = Rect { width: list_width, ..area };
+        let list = Rect {
+            width: list_width,
+            ..area
+        };
         let rule = Rect {
             x: area.x + list_width,
             width: 1.min(area.width - list_width),
@@ -501,7 +549,9 @@ impl Day {
             focused: self.in_list(),
         };
         let (x, y) = queue::draw(frame, list, &self.queue, marks, theme);
-        let bar: Vec<Line<'_>> = (0..area.height).map(|_| Line::styled("│", theme.muted())).collect();
+        let bar: Vec<Line<'_>> = (0..area.height)
+            .map(|_| Line::styled("│", theme.muted()))
+            .collect();
         frame.render_widget(Paragraph::new(bar), rule);
         let bench_cursor = match &self.bench {
             Some(bench) => bench_view::draw(frame, bench_area, bench, session, !self.in_list()),
@@ -517,6 +567,10 @@ impl Day {
                 Position::new(bench_area.x, bench_area.y)
             }
         };
-        if self.in_list() { Position::new(x, y) } else { bench_cursor }
+        if self.in_list() {
+            Position::new(x, y)
+        } else {
+            bench_cursor
+        }
     }
 }

@@ -40,7 +40,10 @@ impl Days {
 
     /// Moves the cursor.
     pub fn step(&mut self, by: isize) {
-        self.at = self.at.saturating_add_signed(by).min(self.days.len().saturating_sub(1));
+        self.at = self
+            .at
+            .saturating_add_signed(by)
+            .min(self.days.len().saturating_sub(1));
     }
 
     /// Draws the list; returns where the cursor belongs.
@@ -49,9 +52,19 @@ impl Days {
         let columns = usize::from(area.width);
         let mut lines = vec![
             Line::default(),
-            Line::styled(cut(&format!("  {}", safe(&session.programme)), columns), theme.strong()),
             Line::styled(
-                cut(&format!("  station {} · {}", safe(&session.station), spoken(session.today)), columns),
+                cut(&format!("  {}", safe(&session.programme)), columns),
+                theme.strong(),
+            ),
+            Line::styled(
+                cut(
+                    &format!(
+                        "  station {} · {}",
+                        safe(&session.station),
+                        spoken(session.today)
+                    ),
+                    columns,
+                ),
                 theme.muted(),
             ),
             Line::default(),
@@ -73,12 +86,20 @@ impl Days {
                 theme.muted(),
             ));
             let room = usize::from(area.height).saturating_sub(lines.len());
-            let top = self.at.saturating_sub(room / 2).min(self.days.len().saturating_sub(room));
+            let top = self
+                .at
+                .saturating_sub(room / 2)
+                .min(self.days.len().saturating_sub(room));
             for (i, day) in self.days.iter().enumerate().skip(top).take(room) {
                 if i == self.at {
-                    y = area.y + (lines.len().min(usize::from(area.height.saturating_sub(1)))) as u16;
+                    y = area.y
+                        + (lines.len().min(usize::from(area.height.saturating_sub(1)))) as u16;
                 }
-                let today = if day.date == session.today { "today" } else { "" };
+                let today = if day.date == session.today {
+                    "today"
+                } else {
+                    ""
+                };
                 let text = format!(
                     "{} {} {} {} {today}",
                     fit(&spoken(day.date), 13),
@@ -86,7 +107,11 @@ impl Days {
                     fit(&safe(&day.protocol), 16),
                     fit(day.method.title(), 20),
                 );
-                let style = if i == self.at { theme.selected() } else { ratatui::style::Style::new() };
+                let style = if i == self.at {
+                    theme.selected()
+                } else {
+                    ratatui::style::Style::new()
+                };
                 lines.push(Line::from(vec![
                     Span::raw(if i == self.at { "▸ " } else { "  " }),
                     Span::styled(cut(&text, columns.saturating_sub(3)), style),
@@ -99,5 +124,10 @@ impl Days {
 }
 
 fn header() -> String {
-    format!("{} {} {} chart", fit("date", 13), fit("site", 26), fit("protocol", 16))
+    format!(
+        "{} {} {} chart",
+        fit("date", 13),
+        fit("site", 26),
+        fit("protocol", 16)
+    )
 }

@@ -1,43 +1,74 @@
-//! What the screens ask of the rules, all of it pure and asked on every key press.
+//! What the screens ask of the rules, all of it pure and asked on every key press, and the draft
+//! as the screens keep it.
 
-use crate::actions::{DayChild, DayInfo};
-use crate::domain::acuity::{Line, Notation, Step};
-use crate::domain::field::Field;
+use chrono::NaiveDate;
+use uuid::Uuid;
+
+pub use crate::actions::{CAUTIONS, Library, PassLine, bench_fields, explain, pass_line_for};
+
+use crate::actions::{self, DayChild, DayInfo};
+use crate::domain::codes::Attempt;
 use crate::domain::outcome::{DecidedBy, Outcome, OutcomeKind};
 use crate::domain::readings::Readings;
 
-/// Stands in for the library until it lands.
-#[derive(Debug)]
-pub struct Library;
-
-/// The pass line of a child.
+/// What was typed for one child and not signed yet.
 #[derive(Debug, Clone, PartialEq, Eq)]
-pub struct PassLine { pub line: Line, pub words: String }
+pub struct Draft {
+    /// Row id of the day.
+    pub day: Uuid,
+    /// The child.
+    pub child_id: String,
+    /// The visit's id, given when the child came to the bench.
+    pub visit: Uuid,
+    /// Which visit.
+    pub attempt: Attempt,
+    /// Field word and text as typed.
+    pub fields: Vec<(String, String)>,
+    /// The word of the field with the focus, or `sign`.
+    pub cursor: String,
+}
 
-/// The cautions.
-pub const CAUTIONS: [&str; 4] = [
-    "A screening is not an eye examination. A pass does not rule out disease.",
-    "The law and the protocol of the place come first.",
-    "A licensed professional approves the protocol in use.",
-    "Urgent signs are acted on at once, whatever the chart says.",
-];
+/// Returns what the readings come to; without the day's protocol nothing can be judged.
+pub fn preview(library: &Library, day: &DayInfo, child: &DayChild, readings: &Readings) -> Outcome {
+    actions::preview(library, day, child, readings).unwrap_or_else(|| without_protocol(day))
+}
 
-pub fn preview(_: &Library, _: &DayInfo, _: &DayChild, _: &Readings) -> Outcome {
-    Outcome { kind: OutcomeKind::Incomplete, decided_by: DecidedBy::Missing, urgency: None, act_within_days: None, act_by: None, due_on: None, risks: vec![], criteria: vec![], unknown: vec![], reasons: vec![], qualifiers: vec![], protocol_notes: vec![], rule_set: "us-school".into(), edition: "x".into(), content_hash: "".into() }
+fn without_protocol(day: &DayInfo) -> Outcome {
+    Outcome {
+        kind: OutcomeKind::Incomplete,
+        decided_by: DecidedBy::Missing,
+        urgency: None,
+        act_within_days: None,
+        act_by: None::<NaiveDate>,
+        due_on: None,
+        risks: Vec::new(),
+        criteria: Vec::new(),
+        unknown: Vec::new(),
+        reasons: Vec::new(),
+        qualifiers: vec![format!(
+            "the protocol {} is not here any more",
+            day.protocol
+        )],
+        protocol_notes: Vec::new(),
+        rule_set: day.protocol.as_str().into(),
+        edition: "".into(),
+        content_hash: "".into(),
+    }
 }
-pub fn pass_line_for(_: &Library, _: &DayInfo, child: &DayChild) -> Option<PassLine> {
-    child.age.map(|_| PassLine { line: Line::at(Step(2), Notation::Feet), words: "passes at 6 years".into() })
+
+/// Returns every rule set and protocol as (id, lines).
+pub fn rule_pages(library: &Library) -> Vec<(String, Vec<String>)> {
+    let sets = library.rule_sets().map(|set| set.id.to_string());
+    let protocols = library.protocols().map(|protocol| protocol.id.to_string());
+    sets.chain(protocols)
+        .filter_map(|id| {
+            let lines = actions::rulebook::show(library, &id).ok()?;
+            Some((id, lines))
+        })
+        .collect()
 }
-pub fn bench_fields(_: &Library, _: &DayInfo, _: &DayChild) -> Vec<Field> {
-    vec![Field::History, Field::Signs, Field::Cover, Field::DistanceRight, Field::DistanceLeft, Field::RedReflexRight, Field::RedReflexLeft, Field::PlusLens]
+
+/// Returns the ids of the protocols.
+pub fn protocol_ids(library: &Library) -> Vec<String> {
+    library.protocols().map(|p| p.id.to_string()).collect()
 }
-pub mod explain {
-    use super::Outcome;
-    pub fn short(_: &Outcome) -> String { "short".into() }
-    pub fn headline(o: &Outcome) -> String { o.kind.title().to_uppercase() }
-    pub fn whole(_: &Outcome) -> Vec<String> { vec!["whole".into()] }
-}
-pub fn rule_pages(_: &Library) -> Vec<(String, Vec<String>)> { vec![] }
-#[derive(Debug, Clone, PartialEq, Eq)]
-pub struct Draft { pub day: uuid::Uuid, pub child_id: String, pub visit: uuid::Uuid, pub fields: Vec<(String, String)>, pub cursor: String }
-pub fn protocol_ids(_: &Library) -> Vec<String> { vec!["us-school".into(), "us-preschool".into()] }

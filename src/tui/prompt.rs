@@ -142,7 +142,9 @@ impl Form {
 
     /// Returns what was typed into a field, without outer blanks.
     pub fn value(&self, index: usize) -> &str {
-        self.fields.get(index).map_or("", |f| f.input.value().trim())
+        self.fields
+            .get(index)
+            .map_or("", |f| f.input.value().trim())
     }
 
     /// Edits the field that has the focus.

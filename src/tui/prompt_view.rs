@@ -39,7 +39,14 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, prompt: &Prompt, theme: Theme) ->
     let rest = columns.saturating_sub(width(&title) + 5);
     let mut lines = vec![Line::from(vec![
         Span::styled("── ", theme.muted()),
-        Span::styled(title, if emergency { theme.emergency() } else { theme.strong() }),
+        Span::styled(
+            title,
+            if emergency {
+                theme.emergency()
+            } else {
+                theme.strong()
+            },
+        ),
         Span::styled(format!(" {}", "─".repeat(rest + 1)), theme.muted()),
     ])];
     let room = usize::from(area.height).saturating_sub(1);
@@ -66,15 +73,28 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, prompt: &Prompt, theme: Theme) ->
             let used = lines.len() - 1;
             let rows = room.saturating_sub(used);
             let at = choices.at.min(shown.len());
-            let top = at.saturating_sub(rows / 2).min(shown.len().saturating_sub(rows));
+            let top = at
+                .saturating_sub(rows / 2)
+                .min(shown.len().saturating_sub(rows));
             for (i, choice) in shown.iter().enumerate().skip(top).take(rows) {
                 let here = i == choices.at;
                 if here && choices.find.is_none() {
                     cursor.y = area.y + lines.len() as u16;
                 }
-                let key = if choice.key == '\0' { String::new() } else { choice.key.to_string() };
+                let key = if choice.key == '\0' {
+                    String::new()
+                } else {
+                    choice.key.to_string()
+                };
                 lines.push(Line::from(vec![
-                    Span::styled(format!(" {} {}", if here { "▸" } else { " " }, fit(&key, usize::from(choice.key != '\0') * 2)), theme.focus()),
+                    Span::styled(
+                        format!(
+                            " {} {}",
+                            if here { "▸" } else { " " },
+                            fit(&key, usize::from(choice.key != '\0') * 2)
+                        ),
+                        theme.focus(),
+                    ),
                     Span::styled(
                         cut(&choice.label, columns.saturating_sub(6)),
                         if here { theme.strong() } else { Style::new() },
@@ -83,7 +103,12 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, prompt: &Prompt, theme: Theme) ->
             }
         }
         Body::Form(form) => {
-            let label = form.fields.iter().map(|f| width(f.label)).max().unwrap_or(0);
+            let label = form
+                .fields
+                .iter()
+                .map(|f| width(f.label))
+                .max()
+                .unwrap_or(0);
             for (i, field) in form.fields.iter().enumerate() {
                 let here = i == form.at;
                 let space = columns.saturating_sub(label + 6);
@@ -93,27 +118,43 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, prompt: &Prompt, theme: Theme) ->
                 let text = if value.is_empty() {
                     Span::styled(cut(&safe(&field.example), space), theme.muted())
                 } else {
-                    Span::styled(cut(&safe(&visible), space), if here { theme.focus() } else { Style::new() })
+                    Span::styled(
+                        cut(&safe(&visible), space),
+                        if here { theme.focus() } else { Style::new() },
+                    )
                 };
                 if here {
                     cursor = Position::new(
-                        area.x + (label + 4 + field.input.visual_cursor().saturating_sub(scroll)).min(columns.saturating_sub(1)) as u16,
+                        area.x
+                            + (label + 4 + field.input.visual_cursor().saturating_sub(scroll))
+                                .min(columns.saturating_sub(1))
+                                as u16,
                         area.y + (1 + i) as u16,
                     );
                 }
                 lines.push(Line::from(vec![
                     Span::styled(
-                        format!(" {} {} ", if here { "▸" } else { " " }, fit(field.label, label)),
+                        format!(
+                            " {} {} ",
+                            if here { "▸" } else { " " },
+                            fit(field.label, label)
+                        ),
                         if here { theme.focus() } else { Style::new() },
                     ),
                     text,
                 ]));
             }
             if !form.error.is_empty() {
-                lines.push(Line::styled(cut(&format!("   {}", safe(&form.error)), columns), theme.error()));
+                lines.push(Line::styled(
+                    cut(&format!("   {}", safe(&form.error)), columns),
+                    theme.error(),
+                ));
             }
             for hint in &form.hints {
-                lines.push(Line::styled(cut(&format!("   {hint}"), columns), theme.muted()));
+                lines.push(Line::styled(
+                    cut(&format!("   {hint}"), columns),
+                    theme.muted(),
+                ));
             }
         }
         Body::Signs(signs) => {
@@ -128,9 +169,14 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, prompt: &Prompt, theme: Theme) ->
                     let marked = signs.marked.iter().find(|s| s.kind == *kind);
                     let here = signs.at == i;
                     if here {
-                        cursor = Position::new(area.x + if i >= half { column as u16 } else { 0 }, area.y + lines.len() as u16);
+                        cursor = Position::new(
+                            area.x + if i >= half { column as u16 } else { 0 },
+                            area.y + lines.len() as u16,
+                        );
                     }
-                    let side = marked.and_then(|s| s.side).map_or(String::new(), |s| format!(", {}", s.title()));
+                    let side = marked
+                        .and_then(|s| s.side)
+                        .map_or(String::new(), |s| format!(", {}", s.title()));
                     let text = format!(
                         " {} {} {}{side}",
                         if here { "▸" } else { " " },
@@ -146,8 +192,17 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, prompt: &Prompt, theme: Theme) ->
                 }
                 lines.push(Line::from(spans));
             }
-            let kinds = signs.marked.iter().map(|s| crate::tui::day::bench_view::sign_words(*s)).collect::<Vec<_>>().join("; ");
-            let words = if kinds.is_empty() { " nothing marked yet; n says that somebody looked and saw none".into() } else { format!(" marked: {kinds}") };
+            let kinds = signs
+                .marked
+                .iter()
+                .map(|s| crate::tui::day::bench_view::sign_words(*s))
+                .collect::<Vec<_>>()
+                .join("; ");
+            let words = if kinds.is_empty() {
+                " nothing marked yet; n says that somebody looked and saw none".into()
+            } else {
+                format!(" marked: {kinds}")
+            };
             lines.push(Line::styled(cut(&words, columns), theme.attention()));
         }
         Body::Page(page) => {

@@ -30,13 +30,19 @@ impl Rules {
 
     /// Goes to another rule set.
     pub fn step(&mut self, by: isize) {
-        self.at = self.at.saturating_add_signed(by).min(self.pages.len().saturating_sub(1));
+        self.at = self
+            .at
+            .saturating_add_signed(by)
+            .min(self.pages.len().saturating_sub(1));
         self.top = 0;
     }
 
     /// Scrolls the sheet.
     pub fn scroll(&mut self, by: isize) {
-        let last = self.pages.get(self.at).map_or(0, |p| p.1.len().saturating_sub(1));
+        let last = self
+            .pages
+            .get(self.at)
+            .map_or(0, |p| p.1.len().saturating_sub(1));
         self.top = self.top.saturating_add_signed(by).min(last);
     }
 
@@ -45,7 +51,10 @@ impl Rules {
         let theme = session.theme;
         let list_width = 24.min(area.width);
         let rows = usize::from(area.height);
-        let top = self.at.saturating_sub(rows / 2).min(self.pages.len().saturating_sub(rows));
+        let top = self
+            .at
+            .saturating_sub(rows / 2)
+            .min(self.pages.len().saturating_sub(rows));
         let list: Vec<Line<'_>> = self
             .pages
             .iter()
@@ -53,17 +62,35 @@ impl Rules {
             .skip(top)
             .take(rows)
             .map(|(i, (id, _))| {
-                let text = cut(&format!(" {} {id}", if i == self.at { "▸" } else { " " }), usize::from(list_width));
-                Line::styled(text, if i == self.at { theme.focus() } else { ratatui::style::Style::new() })
+                let text = cut(
+                    &format!(" {} {id}", if i == self.at { "▸" } else { " " }),
+                    usize::from(list_width),
+                );
+                Line::styled(
+                    text,
+                    if i == self.at {
+                        theme.focus()
+                    } else {
+                        ratatui::style::Style::new()
+                    },
+                )
             })
             .collect();
-        frame.render_widget(Paragraph::new(list), Rect { width: list_width, ..area });
+        frame.render_widget(
+            Paragraph::new(list),
+            Rect {
+                width: list_width,
+                ..area
+            },
+        );
         let rule = Rect {
             x: area.x + list_width,
             width: 1.min(area.width - list_width),
             ..area
         };
-        let bar: Vec<Line<'_>> = (0..area.height).map(|_| Line::styled("│", theme.muted())).collect();
+        let bar: Vec<Line<'_>> = (0..area.height)
+            .map(|_| Line::styled("│", theme.muted()))
+            .collect();
         frame.render_widget(Paragraph::new(bar), rule);
         let sheet = Rect {
             x: rule.x + rule.width,
@@ -74,14 +101,32 @@ impl Rules {
             let columns = usize::from(sheet.width).saturating_sub(2);
             let text: Vec<Line<'_>> = lines
                 .iter()
-                .flat_map(|l| if l.starts_with("  ") { vec![cut(&safe(l), columns)] } else { wrap(&safe(l), columns) })
+                .flat_map(|l| {
+                    if l.starts_with("  ") {
+                        vec![cut(&safe(l), columns)]
+                    } else {
+                        wrap(&safe(l), columns)
+                    }
+                })
                 .skip(self.top)
                 .take(rows)
                 .enumerate()
-                .map(|(i, l)| Line::styled(format!(" {l}"), if i + self.top == 0 { theme.strong() } else { ratatui::style::Style::new() }))
+                .map(|(i, l)| {
+                    Line::styled(
+                        format!(" {l}"),
+                        if i + self.top == 0 {
+                            theme.strong()
+                        } else {
+                            ratatui::style::Style::new()
+                        },
+                    )
+                })
                 .collect();
             frame.render_widget(Paragraph::new(text), sheet);
         }
-        Position::new(area.x + 1.min(area.width.saturating_sub(1)), area.y + (self.at - top).min(rows.saturating_sub(1)) as u16)
+        Position::new(
+            area.x + 1.min(area.width.saturating_sub(1)),
+            area.y + (self.at - top).min(rows.saturating_sub(1)) as u16,
+        )
     }
 }

@@ -40,7 +40,10 @@ impl App {
             Ask::NotPresent => self.not_present(word),
             Ask::Emergency if word == "save" => self.run(Command::Sign),
             Ask::Emergency => {
-                self.say(Tone::Attention, "not saved yet: sign as soon as you can, Ctrl-S");
+                self.say(
+                    Tone::Attention,
+                    "not saved yet: sign as soon as you can, Ctrl-S",
+                );
                 Vec::new()
             }
             Ask::History => self.toggle_history(word),
@@ -51,7 +54,11 @@ impl App {
                         Ask::Correct(field),
                         format!("correct {}", field.title()),
                         Form::new(&[
-                            ("new value", &format!("{example}; a single - takes the value back"), false),
+                            (
+                                "new value",
+                                &format!("{example}; a single - takes the value back"),
+                                false,
+                            ),
                             ("reason", "typed the wrong row", false),
                         ]),
                     ));
@@ -59,7 +66,12 @@ impl App {
                 Vec::new()
             }
             Ask::ToldWhich => {
-                if let Some(urgent) = self.urgent.iter().find(|u| u.visit.to_string() == word).cloned() {
+                if let Some(urgent) = self
+                    .urgent
+                    .iter()
+                    .find(|u| u.visit.to_string() == word)
+                    .cloned()
+                {
                     self.ask_told_of(&urgent);
                 }
                 Vec::new()
@@ -68,7 +80,7 @@ impl App {
                 Some(command) => self.run(*command),
                 None => Vec::new(),
             },
-            Ask::Screener => vec![Effect::Ask(Request::Screener(word.to_owned()))],
+            Ask::Screener => vec![Effect::ask(Request::Screener(word.to_owned()))],
             _ => Vec::new(),
         }
     }
@@ -114,13 +126,21 @@ impl App {
         let text = if marked.is_empty() {
             "none".to_owned()
         } else {
-            marked.iter().map(Sign::to_string).collect::<Vec<_>>().join(";")
+            marked
+                .iter()
+                .map(Sign::to_string)
+                .collect::<Vec<_>>()
+                .join(";")
         };
         let Ok(day) = &mut self.day else {
             return Vec::new();
         };
         let effects = day.put(Field::Signs, &text);
-        if day.bench.as_ref().is_some_and(|b| b.is_emergency() && !marked.is_empty()) {
+        if day
+            .bench
+            .as_ref()
+            .is_some_and(|b| b.is_emergency() && !marked.is_empty())
+        {
             self.ask_emergency();
         }
         effects
@@ -148,7 +168,7 @@ impl App {
     }
 
     fn take_form(&mut self, ask: &Ask, form: &Form) -> Result<Vec<Effect>, (usize, String)> {
-        let one = |request| Ok(vec![Effect::Ask(request)]);
+        let one = |request| Ok(vec![Effect::ask(request)]);
         let visit = self
             .day
             .as_ref()
@@ -162,9 +182,15 @@ impl App {
                 };
                 let text = match form.value(0) {
                     "-" | "\u{2212}" => String::new(),
-                    text => self.checked(*field, text, &visit.readings).map_err(|w| (0, w))?,
+                    text => self
+                        .checked(*field, text, &visit.readings)
+                        .map_err(|w| (0, w))?,
                 };
-                one(Request::Correct(visit.id, vec![(*field, text)], form.value(1).to_owned()))
+                one(Request::Correct(
+                    visit.id,
+                    vec![(*field, text)],
+                    form.value(1).to_owned(),
+                ))
             }
             Ask::SwapSigned => {
                 let Some(visit) = visit else {
@@ -172,7 +198,10 @@ impl App {
                 };
                 let get = |f| visit.readings.get(f).unwrap_or_default();
                 let mut changes = Vec::new();
-                for (right, left) in [(Field::DistanceRight, Field::DistanceLeft), (Field::NearRight, Field::NearLeft)] {
+                for (right, left) in [
+                    (Field::DistanceRight, Field::DistanceLeft),
+                    (Field::NearRight, Field::NearLeft),
+                ] {
                     let (r, l) = (get(right), get(left));
                     if r != l {
                         changes.push((right, l));
@@ -182,7 +211,11 @@ impl App {
                 if changes.is_empty() {
                     return Err((0, "both eyes have the same values".into()));
                 }
-                one(Request::Correct(visit.id, changes, form.value(0).to_owned()))
+                one(Request::Correct(
+                    visit.id,
+                    changes,
+                    form.value(0).to_owned(),
+                ))
             }
             Ask::MoveTo => self.move_to(form),
             Ask::Retract => match self.day.as_ref().ok().and_then(|d| d.last_signed.clone()) {
@@ -199,7 +232,9 @@ impl App {
                 }
                 let grade = match form.value(3) {
                     "" => None,
-                    text => Some(Grade::parse(text).ok_or((3, "PK, TK, KG or 1 to 12".to_owned()))?),
+                    text => {
+                        Some(Grade::parse(text).ok_or((3, "PK, TK, KG or 1 to 12".to_owned()))?)
+                    }
                 };
                 let child = NewChild {
                     family_name: form.value(0).to_owned(),
@@ -222,10 +257,15 @@ impl App {
                     .session
                     .sites
                     .iter()
-                    .find(|(code, name)| code.eq_ignore_ascii_case(form.value(0)) || name.eq_ignore_ascii_case(form.value(0)))
+                    .find(|(code, name)| {
+                        code.eq_ignore_ascii_case(form.value(0))
+                            || name.eq_ignore_ascii_case(form.value(0))
+                    })
                     .map(|(code, _)| code.clone())
                     .ok_or((0, "one of the sites".to_owned()))?;
-                let on = date(form.value(1)).map_err(|w| (1, w))?.unwrap_or(self.session.today);
+                let on = date(form.value(1))
+                    .map_err(|w| (1, w))?
+                    .unwrap_or(self.session.today);
                 let protocols = crate::tui::judging::protocol_ids(&self.session.library);
                 let protocol = protocols
                     .iter()
@@ -234,7 +274,8 @@ impl App {
                     .ok_or_else(|| (2, format!("one of {}", protocols.join(", "))))?;
                 let method = match form.value(3) {
                     "" => AcuityMethod::Threshold,
-                    word => AcuityMethod::from_word(word).ok_or_else(|| (3, format!("one of {}", AcuityMethod::words())))?,
+                    word => AcuityMethod::from_word(word)
+                        .ok_or_else(|| (3, format!("one of {}", AcuityMethod::words())))?,
                 };
                 one(Request::NewDay(NewDay {
                     site,
@@ -277,7 +318,12 @@ impl App {
             None => match day.queue.matching(text, 2).as_slice() {
                 [only] => only.child_id.clone(),
                 [] => return Err((0, "no child of this day has this name or id".into())),
-                _ => return Err((0, "more than one child: type more of the name, or the id".into())),
+                _ => {
+                    return Err((
+                        0,
+                        "more than one child: type more of the name, or the id".into(),
+                    ));
+                }
             },
         };
         let Some(bench) = &day.bench else {
@@ -287,7 +333,11 @@ impl App {
             return Err((0, "this is the child on the bench".into()));
         }
         if let Some(visit) = &bench.signed {
-            return Ok(vec![Effect::Ask(Request::MoveVisit(visit.id, to, form.value(1).to_owned()))]);
+            return Ok(vec![Effect::ask(Request::MoveVisit(
+                visit.id,
+                to,
+                form.value(1).to_owned(),
+            ))]);
         }
         let done = day.move_draft(&self.session, &to);
         Ok(self.done(done))
@@ -298,7 +348,8 @@ impl App {
         let Some(prompt) = &mut self.prompt else {
             return;
         };
-        if let (Ask::MoveTo, Body::Form(form), Ok(day)) = (&prompt.ask, &mut prompt.body, &self.day) {
+        if let (Ask::MoveTo, Body::Form(form), Ok(day)) = (&prompt.ask, &mut prompt.body, &self.day)
+        {
             let text = form.value(0).to_owned();
             form.hints = day
                 .queue
@@ -307,7 +358,10 @@ impl App {
                 .map(|c| {
                     format!(
                         "{}  {}  {}",
-                        crate::tui::text::fit(&crate::tui::text::name(&c.family_name, &c.given_name), 28),
+                        crate::tui::text::fit(
+                            &crate::tui::text::name(&c.family_name, &c.given_name),
+                            28
+                        ),
                         crate::tui::text::fit(&safe(&c.child_id), 12),
                         c.state.title()
                     )
@@ -331,7 +385,11 @@ fn example_of(field: Field) -> String {
     use crate::tui::day::kind::{Kind, kind};
     match kind(field) {
         Kind::Acuity => "20/40".into(),
-        Kind::Choice(choices) => choices.iter().map(|(_, word, _)| *word).collect::<Vec<_>>().join(", "),
+        Kind::Choice(choices) => choices
+            .iter()
+            .map(|(_, word, _)| *word)
+            .collect::<Vec<_>>()
+            .join(", "),
         Kind::List => "none, or words separated by ;".into(),
         Kind::Text if field == Field::Status => Status::words(),
         Kind::Text => "1.25".into(),

@@ -21,11 +21,21 @@ impl Table {
     pub fn fill(&mut self, rows: Vec<Vec<String>>) {
         let rows: Vec<Vec<String>> = rows
             .into_iter()
-            .map(|row| row.iter().map(|c| crate::domain::text::shown(c, 120)).collect())
+            .map(|row| {
+                row.iter()
+                    .map(|c| crate::domain::text::shown(c, 120))
+                    .collect()
+            })
             .collect();
         let columns = rows.iter().map(Vec::len).max().unwrap_or(0);
         self.widths = (0..columns)
-            .map(|c| rows.iter().filter_map(|r| r.get(c)).map(|t| width(t)).max().unwrap_or(0))
+            .map(|c| {
+                rows.iter()
+                    .filter_map(|r| r.get(c))
+                    .map(|t| width(t))
+                    .max()
+                    .unwrap_or(0)
+            })
             .collect();
         self.top = self.top.min(rows.len().saturating_sub(2));
         self.rows = Some(rows);
@@ -38,14 +48,23 @@ impl Table {
     }
 
     /// Draws the table.
-    pub fn draw(&self, frame: &mut Frame<'_>, area: Rect, session: &Session, empty: &str) -> Position {
+    pub fn draw(
+        &self,
+        frame: &mut Frame<'_>,
+        area: Rect,
+        session: &Session,
+        empty: &str,
+    ) -> Position {
         let theme = session.theme;
         let columns = usize::from(area.width);
         let mut lines = Vec::new();
         match self.rows.as_deref() {
             None => lines.push(Line::styled(" reading…", theme.muted())),
             Some([header, body @ ..]) => {
-                lines.push(Line::styled(cut(&self.row(header, columns), columns), theme.strong()));
+                lines.push(Line::styled(
+                    cut(&self.row(header, columns), columns),
+                    theme.strong(),
+                ));
                 if body.is_empty() {
                     lines.push(Line::raw(cut(&format!(" {empty}"), columns)));
                 }
@@ -66,7 +85,10 @@ impl Table {
         let mut out = String::from(" ");
         for (i, wide) in widths.iter().enumerate() {
             let text = row.get(i).map_or("", String::as_str);
-            let number = !text.is_empty() && text.chars().all(|c| c.is_ascii_digit() || ",.%".contains(c));
+            let number = !text.is_empty()
+                && text
+                    .chars()
+                    .all(|c| c.is_ascii_digit() || ",.%".contains(c));
             if number {
                 out.push_str(&" ".repeat(wide.saturating_sub(width(text))));
                 out.push_str(&safe(text));

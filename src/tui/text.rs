@@ -144,6 +144,10 @@ mod tests {
 
     #[test]
     fn escape_sequences_do_not_reach_the_terminal() {
-        assert!(!name("\u{1b}[2JX", "Y\u{202E}").chars().any(crate::domain::text::is_unsafe));
+        assert!(
+            !name("\u{1b}[2JX", "Y\u{202E}")
+                .chars()
+                .any(crate::domain::text::is_unsafe)
+        );
     }
 }

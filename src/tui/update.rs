@@ -21,7 +21,10 @@ impl App {
     }
 
     fn leave(&mut self) -> Vec<Effect> {
-        let mut effects = self.day.as_mut().map_or_else(|_| Vec::new(), |d| d.keep_draft());
+        let mut effects = self
+            .day
+            .as_mut()
+            .map_or_else(|_| Vec::new(), crate::tui::day::Day::keep_draft);
         effects.push(Effect::FlushDrafts);
         effects.push(Effect::Quit);
         effects
@@ -51,7 +54,8 @@ impl App {
         if let Ok(day) = &mut self.day {
             day.end_burst();
         }
-        if self.notice.as_ref().is_some_and(|n| n.tone != Tone::Error) || command == Command::Accept {
+        if self.notice.as_ref().is_some_and(|n| n.tone != Tone::Error) || command == Command::Accept
+        {
             self.notice = None;
         }
         self.run(command)
@@ -69,7 +73,14 @@ impl App {
     }
 
     fn paste(&mut self, text: &str) -> Vec<Effect> {
-        let line: String = text.split(['\r', '\n']).next().unwrap_or("").chars().filter(|c| !crate::domain::text::is_unsafe(*c)).take(200).collect();
+        let line: String = text
+            .split(['\r', '\n'])
+            .next()
+            .unwrap_or("")
+            .chars()
+            .filter(|c| !crate::domain::text::is_unsafe(*c))
+            .take(200)
+            .collect();
         if let Some(prompt) = &mut self.prompt {
             match &mut prompt.body {
                 Body::Form(form) => {
@@ -101,7 +112,14 @@ impl App {
     /// Says what is to be said and hands on what is to be carried out.
     pub(crate) fn done(&mut self, done: Done) -> Vec<Effect> {
         if let Some((refused, words)) = done.said {
-            self.say(if refused { Tone::Attention } else { Tone::Quiet }, words);
+            self.say(
+                if refused {
+                    Tone::Attention
+                } else {
+                    Tone::Quiet
+                },
+                words,
+            );
         }
         done.effects
     }
@@ -111,7 +129,10 @@ impl App {
         match command {
             Command::Quit => return self.leave(),
             Command::Suspend => {
-                let mut effects = self.day.as_mut().map_or_else(|_| Vec::new(), |d| d.keep_draft());
+                let mut effects = self
+                    .day
+                    .as_mut()
+                    .map_or_else(|_| Vec::new(), crate::tui::day::Day::keep_draft);
                 effects.extend([Effect::FlushDrafts, Effect::Suspend]);
                 return effects;
             }
@@ -135,11 +156,14 @@ impl App {
     }
 
     fn go(&mut self, place: PlaceName) -> Vec<Effect> {
-        let mut effects = self.day.as_mut().map_or_else(|_| Vec::new(), |d| d.keep_draft());
+        let mut effects = self
+            .day
+            .as_mut()
+            .map_or_else(|_| Vec::new(), crate::tui::day::Day::keep_draft);
         self.at = place;
         match place {
-            PlaceName::Referrals => effects.push(Effect::Ask(Request::Referrals)),
-            PlaceName::Term => effects.push(Effect::Ask(Request::Term)),
+            PlaceName::Referrals => effects.push(Effect::ask(Request::Referrals)),
+            PlaceName::Term => effects.push(Effect::ask(Request::Term)),
             _ => {}
         }
         effects
@@ -156,13 +180,23 @@ impl App {
                 return Vec::new();
             }
             Command::Swap => {
-                let unsigned = self.day.as_ref().ok().and_then(|d| d.bench.as_ref()).is_some_and(|b| !b.is_signed());
+                let unsigned = self
+                    .day
+                    .as_ref()
+                    .ok()
+                    .and_then(|d| d.bench.as_ref())
+                    .is_some_and(|b| !b.is_signed());
                 if !unsigned {
                     self.ask_about_child(command);
                     return Vec::new();
                 }
             }
-            Command::NotTestable | Command::NotPresent | Command::Why | Command::Signs | Command::Move | Command::Correct => {
+            Command::NotTestable
+            | Command::NotPresent
+            | Command::Why
+            | Command::Signs
+            | Command::Move
+            | Command::Correct => {
                 self.ask_about_child(command);
                 return Vec::new();
             }
@@ -182,7 +216,7 @@ impl App {
                     }
                     Command::Open => days
                         .selected()
-                        .map(|d| Effect::Ask(Request::LoadDay(d.clone())))
+                        .map(|d| Effect::ask(Request::LoadDay(d.clone())))
                         .into_iter()
                         .collect(),
                     _ => Vec::new(),
@@ -202,7 +236,15 @@ impl App {
                 let all = day.queue.toggle_all();
                 Done {
                     effects: Vec::new(),
-                    said: Some((false, if all { "all children of the day are listed" } else { "those who are done are not listed" }.into())),
+                    said: Some((
+                        false,
+                        if all {
+                            "all children of the day are listed"
+                        } else {
+                            "those who are done are not listed"
+                        }
+                        .into(),
+                    )),
                 }
             }
             Command::Swap => {
@@ -211,11 +253,17 @@ impl App {
                 }
                 Done {
                     effects: day.keep_draft(),
-                    said: Some((false, "right eye and left eye swapped; Ctrl-Z swaps them back".into())),
+                    said: Some((
+                        false,
+                        "right eye and left eye swapped; Ctrl-Z swaps them back".into(),
+                    )),
                 }
             }
             Command::Undo => {
-                let undone = day.bench.as_mut().is_some_and(|b| !b.is_signed() && b.undo());
+                let undone = day
+                    .bench
+                    .as_mut()
+                    .is_some_and(|b| !b.is_signed() && b.undo());
                 if !undone {
                     self.ask_retract();
                     return Vec::new();
@@ -228,14 +276,25 @@ impl App {
             Command::Days => {
                 let mut effects = day.keep_draft();
                 effects.push(Effect::FlushDrafts);
-                effects.push(Effect::Ask(Request::Days));
+                effects.push(Effect::ask(Request::Days));
                 self.day = Err(Days::default());
                 return effects;
             }
-            Command::Accept if day.bench.as_ref().is_some_and(|b| b.wants_list()) => {
-                let signs = day.bench.as_ref().and_then(|b| b.field()) == Some(crate::domain::field::Field::Signs);
+            Command::Accept
+                if day
+                    .bench
+                    .as_ref()
+                    .is_some_and(crate::tui::day::bench::Bench::wants_list) =>
+            {
+                let signs = day
+                    .bench
+                    .as_ref()
+                    .and_then(crate::tui::day::bench::Bench::field)
+                    == Some(crate::domain::field::Field::Signs);
                 if signs {
-                    day.bench.as_mut().map_or((), |b| b.advance());
+                    day.bench
+                        .as_mut()
+                        .map_or((), crate::tui::day::bench::Bench::advance);
                 } else {
                     self.ask_history();
                 }
@@ -319,17 +378,26 @@ impl App {
                     Some(Command::PageDown) => 10,
                     _ => 0,
                 };
-                page.top = page.top.saturating_add_signed(by).min(page.lines.len().saturating_sub(1));
+                page.top = page
+                    .top
+                    .saturating_add_signed(by)
+                    .min(page.lines.len().saturating_sub(1));
                 Vec::new()
             }
         }
     }
 
     fn cancel(&mut self) {
-        let emergency = self.prompt.as_ref().is_some_and(|p| p.ask == Ask::Emergency);
+        let emergency = self
+            .prompt
+            .as_ref()
+            .is_some_and(|p| p.ask == Ask::Emergency);
         self.prompt = None;
         if emergency {
-            self.say(Tone::Attention, "the emergency is not saved yet: Ctrl-S saves it");
+            self.say(
+                Tone::Attention,
+                "the emergency is not saved yet: Ctrl-S saves it",
+            );
         }
     }
 
@@ -343,7 +411,11 @@ impl App {
                 None
             }
             Some(Command::ChoiceDown) => {
-                choices.at = if choices.at == usize::MAX { 0 } else { choices.at };
+                choices.at = if choices.at == usize::MAX {
+                    0
+                } else {
+                    choices.at
+                };
                 choices.step(1);
                 None
             }
@@ -364,7 +436,13 @@ impl App {
                     choices.at = 0;
                     None
                 } else {
-                    key.typed().and_then(|c| choices.items.iter().find(|i| i.key == c).map(|i| i.word.clone()))
+                    key.typed().and_then(|c| {
+                        choices
+                            .items
+                            .iter()
+                            .find(|i| i.key == c)
+                            .map(|i| i.word.clone())
+                    })
                 }
             }
         };

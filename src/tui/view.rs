@@ -58,14 +58,37 @@ impl App {
         } else {
             0
         };
-        let notice_rows = u16::from(self.notice.as_ref().is_some_and(|n| n.tone == Tone::Error)) * 2;
+        let notice_rows =
+            u16::from(self.notice.as_ref().is_some_and(|n| n.tone == Tone::Error)) * 2;
         let body = take(area.height - 3 - urgent_rows - verdict_rows - notice_rows);
-        let lower_rule = Rect { y: body.bottom(), height: 1, ..area };
-        let verdict_area = Rect { y: lower_rule.bottom(), height: verdict_rows + notice_rows, ..area };
-        let foot = Rect { y: area.bottom() - 1, height: 1, ..area };
-        let body = Rect { height: body.height.saturating_sub(1), ..body };
-        let lower_rule = Rect { y: body.bottom(), ..lower_rule };
-        let verdict_area = Rect { y: lower_rule.bottom(), height: foot.y.saturating_sub(lower_rule.bottom()), ..verdict_area };
+        let lower_rule = Rect {
+            y: body.bottom(),
+            height: 1,
+            ..area
+        };
+        let verdict_area = Rect {
+            y: lower_rule.bottom(),
+            height: verdict_rows + notice_rows,
+            ..area
+        };
+        let foot = Rect {
+            y: area.bottom() - 1,
+            height: 1,
+            ..area
+        };
+        let body = Rect {
+            height: body.height.saturating_sub(1),
+            ..body
+        };
+        let lower_rule = Rect {
+            y: body.bottom(),
+            ..lower_rule
+        };
+        let verdict_area = Rect {
+            y: lower_rule.bottom(),
+            height: foot.y.saturating_sub(lower_rule.bottom()),
+            ..verdict_area
+        };
 
         self.draw_head(frame, head);
         self.draw_urgent(frame, urgent);
@@ -100,14 +123,28 @@ impl App {
         let mut spans = vec![Span::raw(" ")];
         let mut used = 1;
         for place in PlaceName::ALL {
-            let style = if place == self.at { theme.focus().add_modifier(ratatui::style::Modifier::UNDERLINED) } else { theme.muted() };
+            let style = if place == self.at {
+                theme
+                    .focus()
+                    .add_modifier(ratatui::style::Modifier::UNDERLINED)
+            } else {
+                theme.muted()
+            };
             spans.push(Span::styled(place.title(), style));
             spans.push(Span::raw("  "));
             used += place.title().len() + 2;
         }
-        let screener = self.session.screener.as_deref().map_or_else(|| "nobody is recording".to_owned(), safe);
+        let screener = self
+            .session
+            .screener
+            .as_deref()
+            .map_or_else(|| "nobody is recording".to_owned(), safe);
         let mut right = match &self.day {
-            Ok(day) => format!("{} · {} · {screener}", safe(&day.info.site_name), spoken(day.info.date)),
+            Ok(day) => format!(
+                "{} · {} · {screener}",
+                safe(&day.info.site_name),
+                spoken(day.info.date)
+            ),
             Err(_) => format!("{} · {screener}", safe(&self.session.programme)),
         };
         if self.session.demo {
@@ -141,7 +178,11 @@ impl App {
             .iter()
             .take(2)
             .map(|u| {
-                let class = if u.class.is_empty() { String::new() } else { format!(" ({})", safe(&u.class)) };
+                let class = if u.class.is_empty() {
+                    String::new()
+                } else {
+                    format!(" ({})", safe(&u.class))
+                };
                 let text = format!(
                     " ██ EMERGENCY {}  {}{class}: {}",
                     elapsed(self.session.now_ms - u.since.utc_ms),
@@ -156,7 +197,10 @@ impl App {
             n => format!(" {} more wait too.", n - 2),
         };
         lines.push(Line::styled(
-            cut(&format!("    Enter who was told, and when: F9. The line stays until then.{more}"), columns),
+            cut(
+                &format!("    Enter who was told, and when: F9. The line stays until then.{more}"),
+                columns,
+            ),
             theme.strong(),
         ));
         frame.render_widget(Paragraph::new(lines), area);
@@ -167,11 +211,17 @@ impl App {
         let theme = self.session.theme;
         let columns = usize::from(area.width);
         let mut spans = vec![Span::styled("─".repeat(columns), theme.muted())];
-        if lower
-            && let Some(notice) = self.notice.as_ref().filter(|n| n.tone != Tone::Error)
-        {
-            let style = if notice.tone == Tone::Attention { theme.attention() } else { theme.strong() };
-            let head = if notice.hint.is_empty() { String::new() } else { format!(" {}", notice.hint) };
+        if lower && let Some(notice) = self.notice.as_ref().filter(|n| n.tone != Tone::Error) {
+            let style = if notice.tone == Tone::Attention {
+                theme.attention()
+            } else {
+                theme.strong()
+            };
+            let head = if notice.hint.is_empty() {
+                String::new()
+            } else {
+                format!(" {}", notice.hint)
+            };
             let text = cut(&safe(&notice.text), columns.saturating_sub(8 + head.len()));
             let rest = columns.saturating_sub(width(&text) + width(&head) + 5);
             spans = vec![
@@ -189,8 +239,12 @@ impl App {
             (PlaceName::Day, Ok(day)) => day.draw(frame, area, &self.session),
             (PlaceName::Day, Err(days)) => days.draw(frame, area, &self.session),
             (PlaceName::Children, _) => self.children.draw(frame, area, &self.session),
-            (PlaceName::Referrals, _) => self.tables[0].draw(frame, area, &self.session, "nobody was referred yet"),
-            (PlaceName::Term, _) => self.tables[1].draw(frame, area, &self.session, "nobody was screened yet"),
+            (PlaceName::Referrals, _) => {
+                self.tables[0].draw(frame, area, &self.session, "nobody was referred yet")
+            }
+            (PlaceName::Term, _) => {
+                self.tables[1].draw(frame, area, &self.session, "nobody was screened yet")
+            }
             (PlaceName::Rules, _) => self.rules.draw(frame, area, &self.session),
         }
     }
@@ -202,7 +256,11 @@ impl App {
         let mut lines: Vec<Line<'_>> = Vec::new();
         if let Some(notice) = self.notice.as_ref().filter(|n| n.tone == Tone::Error) {
             let text = wrap(&safe(&notice.text), columns.saturating_sub(2));
-            lines.extend(text.into_iter().take(2).map(|l| Line::styled(format!(" {l}"), theme.error())));
+            lines.extend(
+                text.into_iter()
+                    .take(2)
+                    .map(|l| Line::styled(format!(" {l}"), theme.error())),
+            );
             if !notice.hint.is_empty() {
                 lines.push(Line::raw(cut(&format!(" {}", safe(&notice.hint)), columns)));
             }
@@ -246,7 +304,11 @@ impl App {
         if let Some((key, word)) = last {
             put(key, word, &mut used);
         }
-        let (clock, right) = ends("", &wall_clock(self.session.now_ms, self.session.offset_minutes), columns.saturating_sub(used));
+        let (clock, right) = ends(
+            "",
+            &wall_clock(self.session.now_ms, self.session.offset_minutes),
+            columns.saturating_sub(used),
+        );
         if used + 8 <= columns {
             spans.push(Span::raw(clock));
             spans.push(Span::styled(right, theme.muted()));
@@ -260,6 +322,9 @@ fn draw_too_small(frame: &mut Frame<'_>, area: Rect) {
         "This window has {} columns and {} rows; Twoline needs {} by {}. Make it larger or the letters smaller. Nothing is lost.",
         area.width, area.height, SMALLEST.0, SMALLEST.1
     );
-    let lines: Vec<Line<'_>> = wrap(&words, usize::from(area.width)).into_iter().map(Line::raw).collect();
+    let lines: Vec<Line<'_>> = wrap(&words, usize::from(area.width))
+        .into_iter()
+        .map(Line::raw)
+        .collect();
     frame.render_widget(Paragraph::new(lines), area);
 }

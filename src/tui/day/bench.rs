@@ -40,6 +40,27 @@ pub enum Spot {
     Sign,
 }
 
+/// Offered for every child, after what the protocol asks for; judged when done.
+const OFFERED: [Field; 5] = [
+    Field::Signs,
+    Field::History,
+    Field::Cover,
+    Field::RedReflexRight,
+    Field::RedReflexLeft,
+];
+
+/// Offered where the chart could not be tested.
+const INSTRUMENT: [Field; 8] = [
+    Field::InstrumentRight,
+    Field::InstrumentLeft,
+    Field::SphereRight,
+    Field::CylinderRight,
+    Field::AxisRight,
+    Field::SphereLeft,
+    Field::CylinderLeft,
+    Field::AxisLeft,
+];
+
 type Raws = Vec<(Field, String)>;
 
 /// One child on the bench.
@@ -86,18 +107,27 @@ struct Given {
 
 impl Bench {
     /// Brings a child to the bench, with the draft if there is one.
-    pub fn new(session: &Session, day: &Arc<DayInfo>, child: DayChild, draft: Option<&Draft>) -> Bench {
+    pub fn new(
+        session: &Session,
+        day: &Arc<DayInfo>,
+        child: DayChild,
+        draft: Option<&Draft>,
+    ) -> Bench {
         let given = Given {
             day: Arc::clone(day),
             library: Arc::clone(&session.library),
             bare: session.notation,
         };
+        let asked = judging::bench_fields(&given.library, day, &child);
         let mut path = vec![Field::CorrectionWorn];
-        path.extend(
-            judging::bench_fields(&given.library, day, &child)
-                .into_iter()
-                .filter(|f| *f != Field::CorrectionWorn),
-        );
+        if asked.contains(&Field::SphereRight) {
+            path.extend([Field::InstrumentRight, Field::InstrumentLeft]);
+        }
+        for field in asked.into_iter().chain(OFFERED) {
+            if !path.contains(&field) {
+                path.push(field);
+            }
+        }
         let pass_line = judging::pass_line_for(&given.library, day, &child);
         let readings = Readings::default();
         let outcome = judging::preview(&given.library, day, &child, &readings);
@@ -153,17 +183,14 @@ impl Bench {
         (self.child.wears_glasses == Some(false)).then_some(Correction::None)
     }
 
-    /// Says whether Enter stops at a field. The chart is the way through; other tests are offered
-    /// (Tab goes to each), unless there is no chart for this child or it could not be tested.
+    /// Says whether Enter stops at a field. The chart, or the instrument where there is no chart or
+    /// it could not be tested, is the way through; Tab goes to every other test that is offered.
     fn is_main(&self, index: usize) -> bool {
-        let has_chart = self.path.contains(&Field::DistanceRight);
-        if !has_chart || self.readings.chart_not_testable() {
-            return index > 0;
-        }
+        use Field as F;
         matches!(
             self.path[index],
-            Field::DistanceRight | Field::DistanceLeft | Field::NearRight | Field::NearLeft
-        )
+            F::DistanceRight | F::DistanceLeft | F::NearRight | F::NearLeft
+        ) || INSTRUMENT.contains(&self.path[index])
     }
 
     /// Returns the field that has the focus.
@@ -202,6 +229,7 @@ impl Bench {
             day: self.given.day.id,
             child_id: self.child.child_id.clone(),
             visit: self.visit,
+            attempt: self.child.attempt,
             fields: self
                 .raws
                 .iter()
@@ -285,7 +313,10 @@ impl Bench {
         };
         match kind::kind(field) {
             Kind::Choice(choices) => {
-                let Some(choice) = choices.iter().find(|(k, _, _)| *k == c.to_ascii_lowercase()) else {
+                let Some(choice) = choices
+                    .iter()
+                    .find(|(k, _, _)| *k == c.to_ascii_lowercase())
+                else {
                     return false;
                 };
                 self.put(field, choice.1);
@@ -404,7 +435,9 @@ impl Bench {
                 self.put(field, &line.to_string());
             }
             Kind::Choice(choices) => {
-                let at = choices.iter().position(|(_, word, _)| *word == self.raw(field));
+                let at = choices
+                    .iter()
+                    .position(|(_, word, _)| *word == self.raw(field));
                 let next = match (at, better) {
                     (None, true) => choices.len() - 1,
                     (None, false) => 0,
@@ -426,15 +459,17 @@ impl Bench {
     /// The first arrow starts from the pass line: down stands on it, up on the line above it.
     fn ladder_step(&self, field: Field, better: bool) -> Step {
         let here = match self.state(field) {
-            State::Valid { .. } => self.readings.acuity_of(field).and_then(|r| r.acuity()?.line()),
+            State::Valid { .. } => self
+                .readings
+                .acuity_of(field)
+                .and_then(|r| r.acuity()?.line()),
             _ => None,
         };
-        let step = match here {
-            Some(line) => line.step().0 + if better { -1 } else { 1 },
-            None => {
-                let pass = self.pass_line.as_ref().map_or(0, |p| p.line.step().0);
-                if better { pass - 1 } else { pass }
-            }
+        let step = if let Some(line) = here {
+            line.step().0 + if better { -1 } else { 1 }
+        } else {
+            let pass = self.pass_line.as_ref().map_or(0, |p| p.line.step().0);
+            if better { pass - 1 } else { pass }
         };
         Step(step.clamp(Step::FINEST.0, 10))
     }
@@ -534,6 +569,9 @@ impl Bench {
             bare: Some(self.given.bare),
             critical_line: self.pass_line.as_ref().map(|p| p.line),
         };
+        if INSTRUMENT.iter().any(|f| !self.raw(*f).is_empty()) {
+            self.offer_instrument();
+        }
         self.states = vec![State::Empty; self.path.len()];
         for (field, raw) in &self.raws {
             if raw.trim().is_empty() {
@@ -550,7 +588,24 @@ impl Bench {
             }
         }
         self.readings = readings;
-        self.outcome = judging::preview(&self.given.library, &self.given.day, &self.child, &self.readings);
+        if self.readings.chart_not_testable() {
+            self.offer_instrument();
+        }
+        self.outcome = judging::preview(
+            &self.given.library,
+            &self.given.day,
+            &self.child,
+            &self.readings,
+        );
+    }
+
+    fn offer_instrument(&mut self) {
+        for field in INSTRUMENT {
+            if !self.path.contains(&field) {
+                self.path.push(field);
+                self.states.push(State::Empty);
+            }
+        }
     }
 
     /// Shows the visit as it was signed.
@@ -610,14 +665,21 @@ impl Bench {
                 Some(Correction::LeftAtHome | Correction::BrokenOrLost | Correction::NotWorn)
             );
         if !speaks {
-            let spot = self.path.iter().copied().find(|f| kind::kind(*f) == Kind::Acuity);
+            let spot = self
+                .path
+                .iter()
+                .copied()
+                .find(|f| kind::kind(*f) == Kind::Acuity);
             return Err((
                 spot,
                 "nothing was tested yet; F3 says why a child is not tested".into(),
             ));
         }
         if let Some(error) = readings.contradictions().into_iter().next() {
-            return Err((Some(error.field), format!("{}: expected {}", error.field.title(), error.expected)));
+            return Err((
+                Some(error.field),
+                format!("{}: expected {}", error.field.title(), error.expected),
+            ));
         }
         if self.will_state_no_signs() {
             readings.signs = Some(Vec::new());

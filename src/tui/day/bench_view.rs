@@ -53,7 +53,13 @@ fn has_focus(row: Row, bench: &Bench) -> bool {
 }
 
 /// Draws the bench; returns where the cursor belongs.
-pub fn draw(frame: &mut Frame<'_>, area: Rect, bench: &Bench, session: &Session, focused: bool) -> Position {
+pub fn draw(
+    frame: &mut Frame<'_>,
+    area: Rect,
+    bench: &Bench,
+    session: &Session,
+    focused: bool,
+) -> Position {
     let theme = session.theme;
     let area = Rect {
         x: area.x + 1.min(area.width),
@@ -73,9 +79,16 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, bench: &Bench, session: &Session,
     let wide = columns >= 2 * 26 + LABEL + 40;
     let height = usize::from(area.height);
     let below = if wide { 1 } else { 7 };
-    let room = height.saturating_sub(fixed + below).max(3).min(height.saturating_sub(fixed));
+    let room = height
+        .saturating_sub(fixed + below)
+        .max(3)
+        .min(height.saturating_sub(fixed));
     let at = rows.iter().position(|r| has_focus(*r, bench)).unwrap_or(0);
-    let top = if rows.len() <= room { 0 } else { at.saturating_sub(room / 2).min(rows.len() - room) };
+    let top = if rows.len() <= room {
+        0
+    } else {
+        at.saturating_sub(room / 2).min(rows.len() - room)
+    };
     let mut cursor = Position::new(area.x, area.y);
     for (i, row) in rows.iter().enumerate().skip(top).take(room) {
         let y = area.y + (fixed + i - top) as u16;
@@ -93,7 +106,11 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, bench: &Bench, session: &Session,
         ..area
     };
     if rest.height > 0 {
-        let line = if focused { verdict::echo(bench, theme) } else { Line::default() };
+        let line = if focused {
+            verdict::echo(bench, theme)
+        } else {
+            Line::default()
+        };
         let indented = Line::from(
             std::iter::once(Span::raw(fit("", LABEL)))
                 .chain(line.spans.into_iter().map(|s| s.patch_style(line.style)))
@@ -103,7 +120,15 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, bench: &Bench, session: &Session,
         rest.y += 1;
         rest.height -= 1;
     }
-    lower(frame, area, rest, bench, session, focused, wide.then_some(LABEL + 2 * column));
+    lower(
+        frame,
+        area,
+        rest,
+        bench,
+        session,
+        focused,
+        wide.then_some(LABEL + 2 * column),
+    );
     cursor
 }
 
@@ -118,7 +143,11 @@ fn lower(
     beside: Option<usize>,
 ) {
     let theme = session.theme;
-    let choices = if focused { choice_lines(bench, usize::from(rest.width), theme) } else { Vec::new() };
+    let choices = if focused {
+        choice_lines(bench, usize::from(rest.width), theme)
+    } else {
+        Vec::new()
+    };
     let ladder = ladder::Ladder {
         eyes: bench.readings.distance,
         pass: bench.pass_line.as_ref(),
@@ -159,7 +188,11 @@ fn choice_lines(bench: &Bench, columns: usize, theme: Theme) -> Vec<Line<'static
                     Span::styled(format!("{key} "), theme.focus()),
                     Span::styled(
                         cut(title, columns.saturating_sub(LABEL + 2)),
-                        if chosen { theme.strong() } else { ratatui::style::Style::new() },
+                        if chosen {
+                            theme.strong()
+                        } else {
+                            ratatui::style::Style::new()
+                        },
                     ),
                 ])
             })
@@ -167,8 +200,19 @@ fn choice_lines(bench: &Bench, columns: usize, theme: Theme) -> Vec<Line<'static
         Kind::List => vec![Line::from(vec![
             Span::raw(fit("", LABEL)),
             Span::styled("n ", theme.focus()),
-            Span::raw(if field == Field::Signs { "none seen   " } else { "none   " }),
-            Span::styled(if field == Field::Signs { "F5 " } else { "Enter " }, theme.focus()),
+            Span::raw(if field == Field::Signs {
+                "none seen   "
+            } else {
+                "none   "
+            }),
+            Span::styled(
+                if field == Field::Signs {
+                    "F5 "
+                } else {
+                    "Enter "
+                },
+                theme.focus(),
+            ),
             Span::raw("choose from the list"),
         ])],
         _ => Vec::new(),
@@ -177,20 +221,36 @@ fn choice_lines(bench: &Bench, columns: usize, theme: Theme) -> Vec<Line<'static
 
 fn head(bench: &Bench, columns: usize, theme: Theme) -> Vec<Line<'static>> {
     let child = &bench.child;
-    let age = child.age.map_or_else(|| "age unknown".to_owned(), |a| a.to_string());
+    let age = child
+        .age
+        .map_or_else(|| "age unknown".to_owned(), |a| a.to_string());
     let grade = match (child.grade, child.class.as_str()) {
         (Some(grade), "") => format!(" · grade {grade}"),
         (Some(grade), class) => format!(" · grade {grade}, {}", safe(class)),
         (None, "") => String::new(),
         (None, class) => format!(" · {}", safe(class)),
     };
-    let born = child.dob.map_or_else(|| " · birth date unknown".to_owned(), |d| format!(" · {}", spoken(d)));
-    let who = format!("{}, {}", safe(&child.family_name).to_uppercase(), safe(&child.given_name));
+    let born = child.dob.map_or_else(
+        || " · birth date unknown".to_owned(),
+        |d| format!(" · {}", spoken(d)),
+    );
+    let who = format!(
+        "{}, {}",
+        safe(&child.family_name).to_uppercase(),
+        safe(&child.given_name)
+    );
     let facts = format!("{age}{grade}{born}");
     let (left, right) = if width(&who) + width(&facts) + 2 <= columns {
         ends(&who, &facts, columns.saturating_sub(1))
     } else {
-        let short = format!("{age}{}", if child.class.is_empty() { String::new() } else { format!(" · {}", safe(&child.class)) });
+        let short = format!(
+            "{age}{}",
+            if child.class.is_empty() {
+                String::new()
+            } else {
+                format!(" · {}", safe(&child.class))
+            }
+        );
         let (left, right) = ends(&who, &format!("{short}{born}"), columns.saturating_sub(1));
         (left, right)
     };
@@ -212,7 +272,9 @@ fn standing(bench: &Bench, theme: Theme) -> Vec<Span<'static>> {
         add(status.title().to_uppercase(), theme.attention());
     }
     if child.attempt == Attempt::Rescreen {
-        let due = child.due_on.map_or(String::new(), |d| format!(" due {}", spoken(d)));
+        let due = child
+            .due_on
+            .map_or(String::new(), |d| format!(" due {}", spoken(d)));
         add(format!("rescreen{due}"), theme.attention());
     } else if let Some(due) = child.due_on {
         add(format!("return due {}", spoken(due)), theme.attention());
@@ -231,17 +293,36 @@ fn standing(bench: &Bench, theme: Theme) -> Vec<Span<'static>> {
     spans
 }
 
-fn row_line(row: Row, bench: &Bench, column: usize, columns: usize, focused: bool, theme: Theme) -> (Line<'static>, usize) {
+fn row_line(
+    row: Row,
+    bench: &Bench,
+    column: usize,
+    columns: usize,
+    focused: bool,
+    theme: Theme,
+) -> (Line<'static>, usize) {
     match row {
         Row::Sign => sign_line(bench, columns, focused, theme),
         Row::One(field) => {
             let here = focused && bench.field() == Some(field);
             let (text, style) = cell(field, bench, here, theme);
             let text = cut(&text, columns.saturating_sub(LABEL));
-            let end = LABEL + if here { width(bench.raw(field)).min(width(&text)) } else { 0 };
-            let end = if matches!(kind::kind(field), Kind::Text | Kind::Acuity) { end } else { LABEL };
+            let end = LABEL
+                + if here {
+                    width(bench.raw(field)).min(width(&text))
+                } else {
+                    0
+                };
+            let end = if matches!(kind::kind(field), Kind::Text | Kind::Acuity) {
+                end
+            } else {
+                LABEL
+            };
             (
-                Line::from(vec![label_span(field, here, theme), Span::styled(text, style)]),
+                Line::from(vec![
+                    label_span(field, here, theme),
+                    Span::styled(text, style),
+                ]),
                 end,
             )
         }
@@ -257,7 +338,13 @@ fn row_line(row: Row, bench: &Bench, column: usize, columns: usize, focused: boo
                 let (text, style) = cell(field, bench, here, theme);
                 if here {
                     let typed = matches!(kind::kind(field), Kind::Text | Kind::Acuity);
-                    x = LABEL + i * column + if typed { width(bench.raw(field)).min(column.saturating_sub(1)) } else { 0 };
+                    x = LABEL
+                        + i * column
+                        + if typed {
+                            width(bench.raw(field)).min(column.saturating_sub(1))
+                        } else {
+                            0
+                        };
                 }
                 let shown = cut(&text, column.saturating_sub(1));
                 let gap = column.saturating_sub(width(&shown));
@@ -272,7 +359,11 @@ fn row_line(row: Row, bench: &Bench, column: usize, columns: usize, focused: boo
 fn label_span(field: Field, here: bool, theme: Theme) -> Span<'static> {
     Span::styled(
         fit(kind::label(field), LABEL),
-        if here { theme.focus() } else { ratatui::style::Style::new() },
+        if here {
+            theme.focus()
+        } else {
+            ratatui::style::Style::new()
+        },
     )
 }
 
@@ -289,16 +380,26 @@ fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, ratat
         State::Invalid { .. } => (format!("{} ?", safe(raw)), theme.error()),
         State::Empty => match field {
             Field::CorrectionWorn => match (bench.roster_correction(), bench.child.wears_glasses) {
-                (Some(Correction::None), _) => ("owns no glasses, says the roster".into(), focus(plain)),
-                (_, Some(true)) => ("owns glasses, says the roster: worn today?".into(), focus(theme.attention())),
+                (Some(Correction::None), _) => {
+                    ("owns no glasses, says the roster".into(), focus(plain))
+                }
+                (_, Some(true)) => (
+                    "owns glasses, says the roster: worn today?".into(),
+                    focus(theme.attention()),
+                ),
                 _ => ("not known: ask".into(), focus(theme.attention())),
             },
-            Field::Signs if bench.will_state_no_signs() => ("none seen, said on signing".into(), focus(theme.muted())),
+            Field::Signs if bench.will_state_no_signs() => {
+                ("none seen, said on signing".into(), focus(theme.muted()))
+            }
             Field::Signs => ("not looked for".into(), focus(theme.muted())),
             _ if here => ("____".into(), theme.focus()),
             _ => ("·".into(), theme.muted()),
         },
-        State::Valid { .. } => (value_words(&bench.readings, field, raw), focus(theme.strong())),
+        State::Valid { .. } => (
+            value_words(&bench.readings, field, raw),
+            focus(theme.strong()),
+        ),
     }
 }
 
@@ -312,7 +413,12 @@ pub fn value_words(readings: &Readings, field: Field, raw: &str) -> String {
             .iter()
             .find(|(_, word, _)| *word == raw)
             .map_or_else(|| safe(raw), |(_, _, title)| (*title).to_owned()),
-        Kind::List if raw == "none" => if field == Field::Signs { "none seen" } else { "none" }.into(),
+        Kind::List if raw == "none" => if field == Field::Signs {
+            "none seen"
+        } else {
+            "none"
+        }
+        .into(),
         Kind::List if field == Field::Signs => readings
             .signs
             .iter()
@@ -342,25 +448,51 @@ pub fn sign_words(sign: crate::domain::readings::Sign) -> String {
 /// The line that signs says what will be stored.
 fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Line<'static>, usize) {
     let here = focused && bench.at == Spot::Sign;
-    let label = Span::styled(fit("sign", LABEL), if here { theme.focus() } else { ratatui::style::Style::new() });
+    let label = Span::styled(
+        fit("sign", LABEL),
+        if here {
+            theme.focus()
+        } else {
+            ratatui::style::Style::new()
+        },
+    );
     if bench.is_signed() {
         let words = "signed; F8 corrects a value, F7 moves it to another child";
         return (
-            Line::from(vec![label, Span::styled(cut(words, columns.saturating_sub(LABEL)), theme.muted())]),
+            Line::from(vec![
+                label,
+                Span::styled(cut(words, columns.saturating_sub(LABEL)), theme.muted()),
+            ]),
             LABEL,
         );
     }
     if !here {
-        return (Line::from(vec![label, Span::styled("·", theme.muted())]), LABEL);
+        return (
+            Line::from(vec![label, Span::styled("·", theme.muted())]),
+            LABEL,
+        );
     }
-    let mut words = format!("Enter signs: {}", explain::headline(&bench.outcome).split([' ', ',']).next().unwrap_or_default().to_lowercase());
+    let mut words = format!(
+        "Enter signs: {}",
+        explain::headline(&bench.outcome)
+            .split([' ', ','])
+            .next()
+            .unwrap_or_default()
+            .to_lowercase()
+    );
     if bench.will_state_no_signs() {
         words.push_str(", no signs seen");
     }
-    let mut spans = vec![label, Span::styled(cut(&words, columns.saturating_sub(LABEL)), theme.focus())];
+    let mut spans = vec![
+        label,
+        Span::styled(cut(&words, columns.saturating_sub(LABEL)), theme.focus()),
+    ];
     if bench.path.contains(&Field::PlusLens) && bench.raw(Field::PlusLens).is_empty() {
         spans.push(Span::styled(
-            cut(" · plus lens b blurred, r read", columns.saturating_sub(LABEL + width(&words))),
+            cut(
+                " · plus lens b blurred, r read",
+                columns.saturating_sub(LABEL + width(&words)),
+            ),
             theme.muted(),
         ));
     }

@@ -72,9 +72,12 @@ pub fn kind(field: Field) -> Kind {
             .to_vec(),
         ),
         F::InstrumentRight | F::InstrumentLeft => Kind::Choice(
-            [('o', InstrumentResult::Ok), ('x', InstrumentResult::NoReading)]
-                .map(|(k, v)| (k, v.word(), v.title()))
-                .to_vec(),
+            [
+                ('o', InstrumentResult::Ok),
+                ('x', InstrumentResult::NoReading),
+            ]
+            .map(|(k, v)| (k, v.word(), v.title()))
+            .to_vec(),
         ),
         F::InstrumentWorn | F::Testable => Kind::Choice(
             [('y', YesNo::Yes), ('n', YesNo::No)]

@@ -96,7 +96,11 @@ impl Ladder<'_> {
             .collect();
         let rows = i32::try_from(rows).unwrap_or(i32::MAX).max(1);
         let all = COARSEST + 1 - FINEST + 1;
-        let bottom_row = if marks.contains(&(COARSEST + 1)) { COARSEST + 1 } else { COARSEST };
+        let bottom_row = if marks.contains(&(COARSEST + 1)) {
+            COARSEST + 1
+        } else {
+            COARSEST
+        };
         if rows >= all {
             return (FINEST, bottom_row);
         }
@@ -136,27 +140,51 @@ impl Ladder<'_> {
                 let label = if step > COARSEST {
                     fit("off", label_width)
                 } else {
-                    fit(&ChartLine::at(Step(step), self.notation).to_string(), label_width)
+                    fit(
+                        &ChartLine::at(Step(step), self.notation).to_string(),
+                        label_width,
+                    )
                 };
                 let here = self.focus == Some(step);
                 let mut spans = vec![
                     Span::styled(
                         format!(" {label} "),
-                        if here { theme.focus() } else if on_pass { theme.strong() } else { theme.muted() },
+                        if here {
+                            theme.focus()
+                        } else if on_pass {
+                            theme.strong()
+                        } else {
+                            theme.muted()
+                        },
                     ),
-                    Span::styled("┤", if on_pass { theme.strong() } else { theme.muted() }),
+                    Span::styled(
+                        "┤",
+                        if on_pass {
+                            theme.strong()
+                        } else {
+                            theme.muted()
+                        },
+                    ),
                 ];
                 let on = |eye: Option<Mark>, letter: &str| {
-                    eye.filter(|m| m.row() == step).map_or(String::new(), |m| m.text(letter))
+                    eye.filter(|m| m.row() == step)
+                        .map_or(String::new(), |m| m.text(letter))
                 };
                 let filler = if on_pass { "─" } else { " " };
                 let cell = |text: &str| {
                     let used = width(text) + 1;
-                    format!("{filler}{text}{}", filler.repeat(6usize.saturating_sub(used)))
+                    format!(
+                        "{filler}{text}{}",
+                        filler.repeat(6usize.saturating_sub(used))
+                    )
                 };
                 for (eye, letter) in [(right, "R"), (left, "L")] {
                     let text = on(eye, letter);
-                    let style = if text.is_empty() { if on_pass { theme.pass() } else { theme.muted() } } else { theme.strong() };
+                    let style = if text.is_empty() {
+                        if on_pass { theme.pass() } else { theme.muted() }
+                    } else {
+                        theme.strong()
+                    };
                     spans.push(Span::styled(cell(&text), style));
                 }
                 let glyph = match bracket {
@@ -168,7 +196,11 @@ impl Ladder<'_> {
                 };
                 spans.push(Span::styled(
                     glyph.to_owned(),
-                    if glyph == "─" && on_pass { theme.pass() } else { theme.attention() },
+                    if glyph == "─" && on_pass {
+                        theme.pass()
+                    } else {
+                        theme.attention()
+                    },
                 ));
                 let middle = bracket.map(|(a, b)| i32::midpoint(a, b).max(top).max(a));
                 let words = match (middle == Some(step), on_pass) {
@@ -177,16 +209,25 @@ impl Ladder<'_> {
                     (false, true) => format!("── {}", self.pass_words()),
                     _ => String::new(),
                 };
-                let style = if middle == Some(step) { theme.attention() } else { theme.pass() };
+                let style = if middle == Some(step) {
+                    theme.attention()
+                } else {
+                    theme.pass()
+                };
                 let used = label_width + 3 + 13;
-                spans.push(Span::styled(crate::tui::text::cut(&words, columns.saturating_sub(used)), style));
+                spans.push(Span::styled(
+                    crate::tui::text::cut(&words, columns.saturating_sub(used)),
+                    style,
+                ));
                 Line::from(spans)
             })
             .collect()
     }
 
     fn pass_words(&self) -> String {
-        self.pass.map(|p| crate::tui::text::safe(&p.words)).unwrap_or_default()
+        self.pass
+            .map(|p| crate::tui::text::safe(&p.words))
+            .unwrap_or_default()
     }
 }
 

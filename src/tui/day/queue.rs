@@ -117,7 +117,9 @@ impl Queue {
     fn first_child_row(&self) -> usize {
         self.rows
             .iter()
-            .position(|r| matches!(r, Row::Child(i) if self.children[*i].state == QueueState::ToCome))
+            .position(
+                |r| matches!(r, Row::Child(i) if self.children[*i].state == QueueState::ToCome),
+            )
             .or_else(|| self.rows.iter().position(|r| matches!(r, Row::Child(_))))
             .unwrap_or(0)
     }
@@ -129,7 +131,9 @@ impl Queue {
 
     /// Returns the child of an id, whatever its case.
     pub fn child(&self, id: &str) -> Option<&DayChild> {
-        self.by_id.get(&id.trim().to_lowercase()).map(|i| &self.children[*i])
+        self.by_id
+            .get(&id.trim().to_lowercase())
+            .map(|i| &self.children[*i])
     }
 
     /// Returns the children whose name or id holds a text, the best first.
@@ -229,15 +233,18 @@ impl Queue {
     pub fn next_to_come(&self, after: &str, busy: &HashSet<String>) -> Option<&DayChild> {
         let start = self.by_id.get(&after.to_lowercase()).map_or(0, |i| i + 1);
         let n = self.children.len();
-        (0..n)
-            .map(|k| &self.children[(start + k) % n])
-            .find(|c| c.state == QueueState::ToCome && c.child_id != after && !busy.contains(&c.child_id))
+        (0..n).map(|k| &self.children[(start + k) % n]).find(|c| {
+            c.state == QueueState::ToCome && c.child_id != after && !busy.contains(&c.child_id)
+        })
     }
 
     /// Moves the cursor by so many children; class headings are passed over.
     pub fn step(&mut self, by: isize) {
         if !self.find.is_empty() {
-            self.at = self.at.saturating_add_signed(by).min(self.hits.len().saturating_sub(1));
+            self.at = self
+                .at
+                .saturating_add_signed(by)
+                .min(self.hits.len().saturating_sub(1));
             return;
         }
         let last = self.rows.len().saturating_sub(1);
@@ -267,7 +274,9 @@ impl Queue {
         self.at = self.at.min(self.rows.len().saturating_sub(1));
         if matches!(self.rows.get(self.at), Some(Row::Class(_))) {
             let after = (self.at..self.rows.len()).find(|i| matches!(self.rows[*i], Row::Child(_)));
-            let before = (0..self.at).rev().find(|i| matches!(self.rows[*i], Row::Child(_)));
+            let before = (0..self.at)
+                .rev()
+                .find(|i| matches!(self.rows[*i], Row::Child(_)));
             self.at = after.or(before).unwrap_or(self.at);
         }
     }
@@ -357,7 +366,13 @@ pub struct QueueMarks<'a> {
 }
 
 /// Draws the list and returns where the cursor belongs, if the list has the focus.
-pub fn draw(frame: &mut Frame<'_>, area: Rect, queue: &Queue, marks: QueueMarks<'_>, theme: Theme) -> (u16, u16) {
+pub fn draw(
+    frame: &mut Frame<'_>,
+    area: Rect,
+    queue: &Queue,
+    marks: QueueMarks<'_>,
+    theme: Theme,
+) -> (u16, u16) {
     let columns = usize::from(area.width);
     let height = usize::from(area.height);
     let mut lines: Vec<Line<'_>> = Vec::with_capacity(height);
@@ -372,25 +387,47 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, queue: &Queue, marks: QueueMarks<
             },
             columns.saturating_sub(1),
         );
-        Line::from(vec![Span::styled(left, theme.focus()), Span::styled(right, theme.muted())])
+        Line::from(vec![
+            Span::styled(left, theme.focus()),
+            Span::styled(right, theme.muted()),
+        ])
     } else {
         let title = if queue.all { "All" } else { "To come" };
         Line::styled(
             cut(&format!(" {title} {to_come} of {all}"), columns),
-            if marks.focused { theme.focus() } else { theme.strong() },
+            if marks.focused {
+                theme.focus()
+            } else {
+                theme.strong()
+            },
         )
     };
     lines.push(head);
     let room = height.saturating_sub(1);
-    let total = if finding { queue.hits.len() } else { queue.rows.len() };
-    let top = queue.at.saturating_sub(room / 2).min(total.saturating_sub(room));
+    let total = if finding {
+        queue.hits.len()
+    } else {
+        queue.rows.len()
+    };
+    let top = queue
+        .at
+        .saturating_sub(room / 2)
+        .min(total.saturating_sub(room));
     if total == 0 && room > 0 {
-        let words = if finding { " no child of this day" } else { " nobody is on the roster" };
+        let words = if finding {
+            " no child of this day"
+        } else {
+            " nobody is on the roster"
+        };
         lines.push(Line::styled(cut(words, columns), theme.attention()));
     }
     for row in top..total.min(top + room) {
         let here = row == queue.at;
-        let item = if finding { Row::Child(queue.hits[row]) } else { queue.rows[row] };
+        let item = if finding {
+            Row::Child(queue.hits[row])
+        } else {
+            queue.rows[row]
+        };
         lines.push(match item {
             Row::Class(c) => class_line(&queue.classes[c], columns, theme),
             Row::Child(i) => child_line(&queue.children[i], here, marks, columns, theme),
@@ -398,8 +435,16 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, queue: &Queue, marks: QueueMarks<
     }
     frame.render_widget(Paragraph::new(lines), area);
     let find_end = 6 + crate::tui::text::width(&queue.find);
-    let x = if finding { find_end.min(columns.saturating_sub(1)) } else { 1.min(columns.saturating_sub(1)) };
-    let y = if finding { 0 } else { (queue.at - top + 1).min(height.saturating_sub(1)) };
+    let x = if finding {
+        find_end.min(columns.saturating_sub(1))
+    } else {
+        1.min(columns.saturating_sub(1))
+    };
+    let y = if finding {
+        0
+    } else {
+        (queue.at - top + 1).min(height.saturating_sub(1))
+    };
     (area.x + x as u16, area.y + y as u16)
 }
 
@@ -420,7 +465,13 @@ fn class_line(class: &Class, columns: usize, theme: Theme) -> Line<'static> {
     Line::from(spans)
 }
 
-fn child_line(child: &DayChild, here: bool, marks: QueueMarks<'_>, columns: usize, theme: Theme) -> Line<'static> {
+fn child_line(
+    child: &DayChild,
+    here: bool,
+    marks: QueueMarks<'_>,
+    columns: usize,
+    theme: Theme,
+) -> Line<'static> {
     let (word, style) = state_word(child, marks, theme);
     let on_bench = marks.on_bench == Some(child.child_id.as_str());
     let mark = if on_bench { "▸" } else { " " };
@@ -438,7 +489,11 @@ fn child_line(child: &DayChild, here: bool, marks: QueueMarks<'_>, columns: usiz
     } else {
         theme.muted()
     };
-    let style = if here && marks.focused { theme.selected() } else { style };
+    let style = if here && marks.focused {
+        theme.selected()
+    } else {
+        style
+    };
     Line::from(vec![
         Span::styled(left, base),
         Span::styled(right, style),

@@ -2,8 +2,8 @@
 
 use ratatui::text::{Line, Span};
 
-use crate::domain::outcome::OutcomeKind;
 use crate::domain::age::spoken;
+use crate::domain::outcome::OutcomeKind;
 use crate::tui::day::bench::{Bench, Spot, State};
 use crate::tui::day::kind::{AcuityOf, eye};
 use crate::tui::judging::explain;
@@ -17,16 +17,15 @@ pub fn lines(bench: &Bench, columns: usize, rows: usize, theme: Theme) -> Vec<Li
     {
         let mut out = vec![Line::from(vec![
             Span::styled(" not understood ", theme.error()),
-            Span::raw(format!(
-                "{}: {}",
-                field.title(),
-                safe(bench.raw(field))
-            )),
+            Span::raw(format!("{}: {}", field.title(), safe(bench.raw(field)))),
         ])];
         out.extend(
-            wrap(&format!("expected {}", safe(expected)), columns.saturating_sub(2))
-                .into_iter()
-                .map(|l| Line::raw(format!(" {l}"))),
+            wrap(
+                &format!("expected {}", safe(expected)),
+                columns.saturating_sub(2),
+            )
+            .into_iter()
+            .map(|l| Line::raw(format!(" {l}"))),
         );
         out.truncate(rows);
         return out;
@@ -100,7 +99,10 @@ fn flow(
     wrapped.truncate(rows);
     if cut && let Some(last) = wrapped.last_mut() {
         let hint = "… F4";
-        *last = format!("{}{hint}", crate::tui::text::fit(last, room.saturating_sub(5)));
+        *last = format!(
+            "{}{hint}",
+            crate::tui::text::fit(last, room.saturating_sub(5))
+        );
     }
     let mut left = headline;
     wrapped
@@ -146,7 +148,11 @@ pub fn echo(bench: &Bench, theme: Theme) -> Line<'static> {
                 .map(crate::domain::readings::AcuityResult::in_words)
                 .unwrap_or_default();
             if let Some(echo) = echo {
-                words = if echo.contains(&words) { echo.clone() } else { format!("{words}: {echo}") };
+                words = if echo.contains(&words) {
+                    echo.clone()
+                } else {
+                    format!("{words}: {echo}")
+                };
             }
             let who = eye(field).map_or("", crate::domain::readings::Eye::title);
             if words.is_empty() {
