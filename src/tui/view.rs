@@ -139,7 +139,7 @@ impl App {
             .screener
             .as_deref()
             .map_or_else(|| "nobody is recording".to_owned(), safe);
-        let mut right = match &self.day {
+        let right = match &self.day {
             Ok(day) => format!(
                 "{} · {} · {screener}",
                 safe(&day.info.site_name),
@@ -147,12 +147,6 @@ impl App {
             ),
             Err(_) => format!("{} · {screener}", safe(&self.session.programme)),
         };
-        if self.session.demo {
-            right = format!("DEMO · {right}");
-        }
-        if self.session.read_only.is_some() {
-            right = format!("READ ONLY · {right}");
-        }
         let room = usize::from(area.width).saturating_sub(used + 1);
         let right = cut(&right, room);
         spans.push(Span::raw(" ".repeat(room.saturating_sub(width(&right)))));
@@ -210,7 +204,21 @@ impl App {
     fn draw_rule(&self, frame: &mut Frame<'_>, area: Rect, lower: bool) {
         let theme = self.session.theme;
         let columns = usize::from(area.width);
-        let mut spans = vec![Span::styled("─".repeat(columns), theme.muted())];
+        let mark = match (lower, &self.session.read_only) {
+            (true, _) => String::new(),
+            (_, Some(holder)) => format!(" READ ONLY, held by {} ", safe(holder)),
+            _ if self.session.demo => " DEMO: everybody here is invented ".into(),
+            _ => String::new(),
+        };
+        let mark = cut(&mark, columns.saturating_sub(4));
+        let mut spans = vec![
+            Span::styled(
+                "─".repeat(columns.saturating_sub(width(&mark) + 2)),
+                theme.muted(),
+            ),
+            Span::styled(mark, theme.attention()),
+            Span::styled("──", theme.muted()),
+        ];
         if lower && let Some(notice) = self.notice.as_ref().filter(|n| n.tone != Tone::Error) {
             let style = if notice.tone == Tone::Attention {
                 theme.attention()

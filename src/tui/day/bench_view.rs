@@ -13,7 +13,6 @@ use crate::tui::app::Session;
 use crate::tui::day::bench::{Bench, Spot, State};
 use crate::tui::day::kind::{self, AcuityOf, Kind};
 use crate::tui::day::{ladder, verdict};
-use crate::tui::judging::explain;
 use crate::tui::text::{cut, ends, fit, safe, width};
 use crate::tui::theme::Theme;
 
@@ -78,7 +77,7 @@ pub fn draw(
     let rows = rows(bench);
     let wide = columns >= 2 * 26 + LABEL + 40;
     let height = usize::from(area.height);
-    let below = if wide { 1 } else { 7 };
+    let below = if wide { 1 } else { 6 };
     let room = height
         .saturating_sub(fixed + below)
         .max(3)
@@ -457,7 +456,7 @@ fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Lin
         },
     );
     if bench.is_signed() {
-        let words = "signed; F8 corrects a value, F7 moves it to another child";
+        let words = "signed · F8 corrects · F7 moves · Enter next child";
         return (
             Line::from(vec![
                 label,
@@ -472,29 +471,13 @@ fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Lin
             LABEL,
         );
     }
-    let mut words = format!(
-        "Enter signs: {}",
-        explain::headline(&bench.outcome)
-            .split([' ', ','])
-            .next()
-            .unwrap_or_default()
-            .to_lowercase()
-    );
+    let mut words = format!("Enter signs: {}", bench.outcome.kind.title());
     if bench.will_state_no_signs() {
         words.push_str(", no signs seen");
     }
-    let mut spans = vec![
+    let spans = vec![
         label,
         Span::styled(cut(&words, columns.saturating_sub(LABEL)), theme.focus()),
     ];
-    if bench.path.contains(&Field::PlusLens) && bench.raw(Field::PlusLens).is_empty() {
-        spans.push(Span::styled(
-            cut(
-                " · plus lens b blurred, r read",
-                columns.saturating_sub(LABEL + width(&words)),
-            ),
-            theme.muted(),
-        ));
-    }
     (Line::from(spans), LABEL)
 }
