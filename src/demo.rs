@@ -5,6 +5,7 @@
 //! that is kept free for fiction (555-01xx), mail addresses end in `example.invalid`.
 
 mod names;
+mod populate;
 mod random;
 mod roster;
 mod samples;
@@ -16,6 +17,7 @@ use crate::domain::codes::Attempt;
 use crate::domain::readings::Readings;
 use crate::domain::roster::RosterChild;
 
+pub use populate::populate;
 pub use samples::{SAMPLE_DAY, sample_results, sample_roster};
 
 /// The seed of the demonstration when none is given.
