@@ -16,8 +16,8 @@ use crate::domain::outcome::OutcomeKind;
 
 /// Judge the rows of a results file without a store
 ///
-/// Writes every column of FILE followed by outcome, urgency, act_within_days, amblyopia_risk,
-/// criteria, unknown, reasons, rule_set and edition. A bad row is listed with row and column, and
+/// Writes every column of FILE followed by the outcome, its urgency, the kinds of amblyopia risk,
+/// the criteria that referred or stayed unknown, the reasons and the rule set. A bad row is listed with row and column, and
 /// nothing is written.
 #[derive(Debug, Args)]
 pub(super) struct Judge {
@@ -29,7 +29,7 @@ pub(super) struct Judge {
     /// Judge by this protocol
     #[arg(long, value_name = "ID", conflicts_with = "rules")]
     protocol: Option<String>,
-    /// The screening day of rows without screened_on
+    /// The screening day of rows that do not say one
     #[arg(long, value_name = "YYYY-MM-DD")]
     date: Option<NaiveDate>,
     /// The file to write; standard output without it

@@ -269,7 +269,9 @@ fn ids_are_checked_and_suggested() {
 fn standard_input_is_read_and_a_broken_pipe_is_no_error() {
     let mut many = GOOD.to_owned();
     for i in 0..20_000 {
-        many.push_str(&format!("C{i},79,20/20,20/25\n"));
+        many.push('C');
+        many.push_str(&i.to_string());
+        many.push_str(",79,20/20,20/25\n");
     }
     let mut child = twoline()
         .args(["judge", "-", "--rules", "joint-policy-2016"])

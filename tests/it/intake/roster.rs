@@ -13,8 +13,7 @@ fn today() -> NaiveDate {
 }
 
 fn read(text: &str) -> Roster {
-    read_roster("roster.csv", text.as_bytes(), today())
-        .unwrap_or_else(|problems| panic!("{problems}"))
+    read_roster("roster.csv", text.as_bytes(), today()).expect("a good roster")
 }
 
 fn said(text: &str) -> Vec<String> {
