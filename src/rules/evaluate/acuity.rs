@@ -1,0 +1,300 @@
+//! Acuity criteria: each eye against a line, and the difference between the eyes.
+
+use crate::domain::acuity::{Acuity, Line, LineCredit, LogMar, Notation, Step, StepRange};
+use crate::domain::outcome::{Answer, Margin};
+use crate::domain::readings::{AcuityResult, Eye, Eyes};
+use crate::rules::{Compare, Criterion, RuleSet, Test};
+
+use super::set::eye_words;
+use super::{Answered, Facts, deciding_eye, either_eye};
+
+/// Judges each eye against the line of a criterion.
+pub(super) fn each_eye(
+    set: &RuleSet,
+    criterion: &Criterion,
+    facts: &Facts<'_>,
+    eyes: Eyes<Option<AcuityResult>>,
+) -> Answered {
+    let (line, stricter) = match criterion.test {
+        Test::WorseThanLine(line) => (line, 0),
+        Test::LineOrWorse(line) => (line, 1),
+        _ => return Answered::new(Answer::Unknown, "not an acuity threshold"),
+    };
+    let near = criterion.measure == crate::rules::Measure::NearEachEye;
+    let shift = if near { 0 } else { facts.shift };
+    let letters = facts.letters;
+    let by_letter = criterion.compare == Compare::Letter;
+    let limit = if by_letter {
+        line.logmar().0 * i32::from(letters) - stricter
+    } else {
+        line.step().0 - stricter
+    };
+    let ranges = eyes.both().map(|value| {
+        let acuity = value?.acuity()?;
+        if by_letter {
+            acuity.letter_score(letters, shift)
+        } else {
+            acuity.steps(set.credit, letters, shift)
+        }
+    });
+    let answers = ranges.map(|range| against(range, limit));
+    let answer = either_eye(answers);
+    let mut out = Answered::new(answer, both_in_words(eyes));
+    out.by_eye = Some(answers);
+    out.eye = deciding_eye(answers);
+    out.margin = margin(ranges, limit, by_letter, letters);
+    for (eye, value) in Eye::BOTH.into_iter().zip(eyes.both()) {
+        remarks(
+            set.credit,
+            facts,
+            shift,
+            by_letter,
+            eye,
+            value,
+            &mut out.remarks,
+        );
+    }
+    if answer == Answer::Refer {
+        // By letter a line's name stands for its letter score as well.
+        let best = if stricter == 0 {
+            line
+        } else {
+            Line::at(Step(limit_step(line)), line.notation())
+        };
+        let needed = needed_line(best, facts.notation, shift);
+        let failing: Vec<Eye> = failing(answers);
+        out.would_change = match failing.as_slice() {
+            [eye] if answers.contains(&Answer::Pass) => {
+                format!("{} {needed} or better would pass", eye.title())
+            }
+            [eye] => format!("{} {needed} or better would not refer", eye.title()),
+            _ => format!("both eyes {needed} or better would pass"),
+        };
+    } else if answer == Answer::Unknown {
+        out.would_change = format!(
+            "each eye {} or better would pass",
+            needed_line(line, facts.notation, shift)
+        );
+    }
+    out
+}
+
+fn limit_step(line: Line) -> i32 {
+    line.step().0 - 1
+}
+
+/// Names the line to be read: the threshold's own name where no other notation or distance matters.
+fn needed_line(line: Line, notation: Notation, shift: i32) -> String {
+    if shift != 0 {
+        let at = Line::at(LogMar(line.logmar().0 - shift).nearest_step(), notation);
+        return format!("{at} on this chart");
+    }
+    if line.notation() == notation {
+        line.to_string()
+    } else {
+        Line::at(line.step(), notation).to_string()
+    }
+}
+
+fn failing(answers: [Answer; 2]) -> Vec<Eye> {
+    Eye::BOTH
+        .into_iter()
+        .zip(answers)
+        .filter(|(_, a)| *a == Answer::Refer)
+        .map(|(eye, _)| eye)
+        .collect()
+}
+
+fn against(range: Option<StepRange>, limit: i32) -> Answer {
+    match range {
+        Some(StepRange {
+            best: Some(best), ..
+        }) if best > limit => Answer::Refer,
+        Some(StepRange {
+            worst: Some(worst), ..
+        }) if worst <= limit => Answer::Pass,
+        _ => Answer::Unknown,
+    }
+}
+
+/// Returns the smaller margin of the two eyes, where it can be measured.
+fn margin(ranges: [Option<StepRange>; 2], limit: i32, by_letter: bool, letters: u8) -> Margin {
+    let of = |range: Option<StepRange>| {
+        let range = range.filter(|r| r.is_on_the_chart())?;
+        range.worst.or(range.best).map(|at| limit - at)
+    };
+    let smallest = ranges.into_iter().filter_map(of).min();
+    match smallest {
+        None => Margin::None,
+        Some(units) if by_letter => Margin::LogMar(units / i32::from(letters.max(1))),
+        Some(steps) => Margin::Steps(steps),
+    }
+}
+
+fn remarks(
+    credit: LineCredit,
+    facts: &Facts<'_>,
+    shift: i32,
+    by_letter: bool,
+    eye: Eye,
+    value: Option<AcuityResult>,
+    out: &mut Vec<String>,
+) {
+    let acuity = match value {
+        Some(AcuityResult::Read(acuity)) => acuity,
+        Some(AcuityResult::NotTestable(why)) => {
+            out.push(format!("{}: not testable ({})", eye.title(), why.title()));
+            return;
+        }
+        None => return,
+    };
+    if let Acuity::AsWritten(text) = acuity {
+        out.push(format!("{}: {text} has no agreed equivalent", eye.title()));
+    }
+    if let Acuity::Read { line, letters } = acuity
+        && letters < 0
+        && !by_letter
+    {
+        let missed = u32::from(letters.unsigned_abs());
+        let counts = if credit.grants(missed, u32::from(facts.letters)) {
+            "the line counts as read"
+        } else {
+            "the line does not count, the next larger one does"
+        };
+        out.push(format!(
+            "{}: {missed} of {} letters of {line} missed, {counts}",
+            eye.title(),
+            facts.letters
+        ));
+    }
+    if let Some(line) = acuity.line() {
+        if shift != 0 {
+            let at = Line::at(
+                LogMar(line.logmar().0 + shift).nearest_step(),
+                line.notation(),
+            );
+            out.push(format!(
+                "{}: {line} at the distance used stands for {at}",
+                eye.title()
+            ));
+        } else if !by_letter && line.logmar() != line.step().logmar() {
+            let at = Line::at(line.step(), line.notation());
+            out.push(format!(
+                "{}: {line} is compared as {at}, the nearest step",
+                eye.title()
+            ));
+        }
+    }
+}
+
+/// Judges the difference between the eyes in steps of 0.1 logMAR.
+pub(super) fn between_eyes(set: &RuleSet, criterion: &Criterion, facts: &Facts<'_>) -> Answered {
+    let Test::LinesOrMore(limit) = criterion.test else {
+        return Answered::new(Answer::Unknown, "not a difference in lines");
+    };
+    let eyes = facts.distance;
+    let ranges = eyes.both().map(|value| {
+        value?
+            .acuity()?
+            .steps(set.credit, facts.letters, facts.shift)
+    });
+    let [Some(right), Some(left)] = ranges else {
+        return Answered::new(Answer::Unknown, both_in_words(eyes));
+    };
+    let (least, most) = right.difference(left);
+    let off_chart = !right.is_on_the_chart() || !left.is_on_the_chart();
+    let answer = if least >= limit {
+        Answer::Refer
+    } else if most.is_some_and(|most| most < limit) {
+        Answer::Pass
+    } else {
+        Answer::Unknown
+    };
+    let exact = most == Some(least) && !off_chart;
+    let reading = if exact {
+        format!("{} between the eyes ({})", steps(least), pair(eyes))
+    } else if off_chart && answer == Answer::Refer {
+        format!("one eye off the chart ({})", pair(eyes))
+    } else if answer == Answer::Refer {
+        format!("{} or more between the eyes ({})", steps(least), pair(eyes))
+    } else {
+        format!("difference not known ({})", pair(eyes))
+    };
+    let mut out = Answered::new(answer, reading);
+    if exact {
+        out.margin = Margin::Steps(limit - 1 - least);
+    }
+    if answer == Answer::Refer && exact {
+        out.remarks.push(format!("{} of 0.1 logMAR", steps(least)));
+        if neighbours(facts, right, left) {
+            out.remarks
+                .push("neighbouring lines on this chart".to_owned());
+        }
+        out.eye = Some(if right.worst > left.worst {
+            Eye::Right
+        } else {
+            Eye::Left
+        });
+    }
+    if answer == Answer::Refer
+        && let (Some(eye), Some(best)) = (worse_eye(right, left), better_step(right, left))
+    {
+        out.eye = Some(eye);
+        let line = Line::at(
+            LogMar((best + limit - 1) * 100 - facts.shift).nearest_step(),
+            facts.notation,
+        );
+        out.would_change = format!("{} {line} would pass", eye.title());
+    }
+    out
+}
+
+fn worse_eye(right: StepRange, left: StepRange) -> Option<Eye> {
+    let (r, l) = (right.best.or(right.worst)?, left.best.or(left.worst)?);
+    Some(if r > l { Eye::Right } else { Eye::Left })
+}
+
+fn better_step(right: StepRange, left: StepRange) -> Option<i32> {
+    [right, left].into_iter().filter_map(|r| r.worst).min()
+}
+
+/// Says whether the chart in use has no line between the two.
+fn neighbours(facts: &Facts<'_>, right: StepRange, left: StepRange) -> bool {
+    let (Some(chart), Some(a), Some(b)) = (facts.case.chart, right.worst, left.worst) else {
+        return false;
+    };
+    let (low, high) = (a.min(b), a.max(b));
+    !chart.is_empty()
+        && !chart
+            .iter()
+            .any(|line| (low + 1..high).contains(&line.step().0))
+}
+
+pub(super) fn steps(n: i32) -> String {
+    const WORDS: [&str; 10] = [
+        "no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine",
+    ];
+    let plural = if n == 1 { "" } else { "s" };
+    match usize::try_from(n).ok().and_then(|i| WORDS.get(i)) {
+        Some(word) => format!("{word} step{plural}"),
+        None => format!("{n} steps"),
+    }
+}
+
+fn pair(eyes: Eyes<Option<AcuityResult>>) -> String {
+    let [right, left] = eyes.both().map(in_words);
+    format!("{right} and {left}")
+}
+
+fn in_words(value: Option<AcuityResult>) -> String {
+    value.map_or_else(|| "not done".to_owned(), AcuityResult::in_words)
+}
+
+fn both_in_words(eyes: Eyes<Option<AcuityResult>>) -> String {
+    let [right, left] = eyes.both().map(in_words);
+    format!(
+        "{}, {}",
+        eye_words(Eye::Right, &right),
+        eye_words(Eye::Left, &left)
+    )
+}

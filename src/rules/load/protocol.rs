@@ -1,0 +1,263 @@
+//! A protocol file.
+
+use std::sync::Arc;
+
+use crate::domain::acuity::LineCredit;
+use crate::domain::codes::AcuityMethod;
+use crate::domain::outcome::Source;
+use crate::rules::{Kind, Library, Measure, NotTestablePolicy, Protocol, RuleSet};
+
+use super::reader::{Reader, Section};
+use super::{criterion, hash, head, practice, sources};
+
+const KEYS: &[&str] = &[
+    "id",
+    "title",
+    "edition",
+    "kind",
+    "note",
+    "rule_sets",
+    "when_done",
+    "instrument",
+    "instrument_below_months",
+    "instrument_stands_in",
+    "required",
+    "rescreen_days",
+    "glasses_return_days",
+    "glasses_visits",
+    "consent",
+    "acuity_method",
+    "refer_at_once",
+    "at_once",
+    "not_testable",
+    "approved_by",
+    "approved_on",
+    "source",
+];
+const NOT_TESTABLE_KEYS: &[&str] = &["ages", "rescreen_months", "source"];
+
+pub(super) fn load(
+    reader: &mut Reader<'_>,
+    root: &Section<'_, '_>,
+    local: bool,
+    library: &Library,
+) -> Option<Protocol> {
+    reader.only(root, KEYS);
+    let head = head(reader, root, local);
+    let sources = sources(reader, root);
+    let rule_sets = known_sets(reader, root, "rule_sets", library);
+    let when_done = known_sets(reader, root, "when_done", library);
+    if rule_sets.is_empty() && reader.errors.is_empty() {
+        reader.fault(
+            root.span.clone(),
+            "a protocol without rule sets",
+            "rule_sets = [\"…\"]",
+            "",
+        );
+    }
+    let instrument = reader.optional(root, "instrument").and_then(|(id, span)| {
+        let found = library.rule_set(&id).map(|s| s.id.clone());
+        if found.is_none() {
+            reader.fault(
+                span,
+                format!("no rule set `{id}`"),
+                "the id of a rule set",
+                "",
+            );
+        }
+        found
+    });
+    let required = reader
+        .list(root, "required")
+        .into_iter()
+        .filter_map(|(word, span)| {
+            reader.word(
+                &word,
+                span,
+                "measure",
+                &Measure::words(),
+                Measure::from_word,
+            )
+        })
+        .collect();
+    let consent_opt_in = match reader.optional(root, "consent") {
+        None => false,
+        Some((word, span)) => reader
+            .word(&word, span, "consent", "opt-out, opt-in", |w| match w {
+                "opt-out" => Some(false),
+                "opt-in" => Some(true),
+                _ => None,
+            })
+            .unwrap_or(false),
+    };
+    let acuity_method = reader
+        .optional(root, "acuity_method")
+        .and_then(|(word, span)| {
+            reader.word(
+                &word,
+                span,
+                "acuity method",
+                &AcuityMethod::words(),
+                AcuityMethod::from_word,
+            )
+        });
+    let used: Vec<Arc<str>> = rule_sets
+        .iter()
+        .chain(&when_done)
+        .chain(&instrument)
+        .cloned()
+        .collect();
+    let refer_at_once = at_once_ids(reader, root, &used, library);
+    let at_once = criterion::load_all(reader, root, "at_once", &sources);
+    let not_testable = not_testable(reader, root, &sources);
+    let rescreen_days = reader.number(root, "rescreen_days");
+    let instrument_below_months = reader.number(root, "instrument_below_months");
+    let instrument_stands_in = reader.flag(root, "instrument_stands_in").unwrap_or(false);
+    let glasses_return_days = reader.number(root, "glasses_return_days").unwrap_or(14);
+    let glasses_visits = reader.number(root, "glasses_visits").unwrap_or(2);
+    let note = reader
+        .optional(root, "note")
+        .map(|v| v.0)
+        .unwrap_or_default();
+    let head = head?;
+    let id: Arc<str> = head.id.into();
+    let edition: Arc<str> = head.edition.into();
+    let mut texts = vec![reader.text];
+    let mut seen: Vec<&Arc<str>> = Vec::new();
+    for set in &used {
+        if !seen.contains(&set) {
+            seen.push(set);
+            texts.extend(library.rule_set(set).map(|s| &*s.text));
+        }
+    }
+    let text: Arc<str> = reader.text.into();
+    let content_hash = hash(texts);
+    Some(Protocol {
+        title: head.title,
+        note,
+        rule_sets,
+        when_done,
+        instrument,
+        instrument_below_months,
+        instrument_stands_in,
+        required,
+        rescreen_days,
+        glasses_return_days,
+        glasses_visits,
+        consent_opt_in,
+        acuity_method,
+        refer_at_once,
+        at_once: RuleSet {
+            id: id.clone(),
+            title: String::new(),
+            edition: edition.clone(),
+            kind: Kind::Signs,
+            region: String::new(),
+            status: String::new(),
+            note: String::new(),
+            credit: LineCredit::Majority,
+            credit_text: "".into(),
+            credit_source: practice(),
+            sources: sources.clone(),
+            criteria: at_once.into_iter().map(|(c, _)| c).collect(),
+            local: None,
+            text: text.clone(),
+            content_hash: content_hash.clone(),
+            span: None,
+            by_grade: false,
+        },
+        not_testable,
+        sources,
+        local: head.approval,
+        id,
+        edition,
+        text,
+        content_hash,
+    })
+}
+
+fn known_sets(
+    reader: &mut Reader<'_>,
+    root: &Section<'_, '_>,
+    key: &str,
+    library: &Library,
+) -> Vec<Arc<str>> {
+    let mut out = Vec::new();
+    for (id, span) in reader.list(root, key) {
+        match library.rule_set(&id) {
+            Some(set) => out.push(set.id.clone()),
+            None => {
+                let known = library
+                    .rule_sets()
+                    .map(|s| &*s.id)
+                    .collect::<Vec<_>>()
+                    .join(", ");
+                reader.fault(
+                    span,
+                    format!("no rule set `{id}`"),
+                    format!("one of {known}"),
+                    "",
+                );
+            }
+        }
+    }
+    out
+}
+
+fn at_once_ids(
+    reader: &mut Reader<'_>,
+    root: &Section<'_, '_>,
+    used: &[Arc<str>],
+    library: &Library,
+) -> Vec<String> {
+    let mut out = Vec::new();
+    for (id, span) in reader.list(root, "refer_at_once") {
+        let known = id.split_once('/').is_some_and(|(set, criterion)| {
+            used.iter().any(|u| &**u == set)
+                && library
+                    .rule_set(set)
+                    .is_some_and(|s| s.criteria.iter().any(|c| &*c.id == criterion))
+        });
+        if known {
+            out.push(id);
+        } else {
+            reader.fault(
+                span,
+                format!("no criterion `{id}` in this protocol"),
+                "rule-set/criterion of a rule set it uses",
+                "",
+            );
+        }
+    }
+    out
+}
+
+fn not_testable(
+    reader: &mut Reader<'_>,
+    root: &Section<'_, '_>,
+    sources: &[Arc<Source>],
+) -> Vec<NotTestablePolicy> {
+    let mut out = Vec::new();
+    for section in reader.sections(root, "not_testable") {
+        reader.only(&section, NOT_TESTABLE_KEYS);
+        let (applies, _) = criterion::applies(reader, &section);
+        let source = super::find_source(reader, &section, "source", sources);
+        if !section.table.contains_key("rescreen_months") {
+            reader.fault(
+                section.span.clone(),
+                "`rescreen_months` is missing",
+                "rescreen_months = 6",
+                "",
+            );
+        }
+        let months = reader.number(&section, "rescreen_months");
+        if let (Some(rescreen_months), Some(source)) = (months, source) {
+            out.push(NotTestablePolicy {
+                applies,
+                rescreen_months,
+                source,
+            });
+        }
+    }
+    out
+}
