@@ -10,7 +10,7 @@ use clap::Args;
 
 use super::output::say;
 use super::{Failure, Global};
-use crate::actions::judge::{By, JudgeError, JudgeRequest, Tally, judge_file};
+use crate::actions::judge::{By, JudgeError, JudgeRequest, Tally, judge_file, read_input};
 use crate::actions::rulebook::library_with;
 use crate::domain::outcome::OutcomeKind;
 
@@ -64,6 +64,8 @@ impl Judge {
             pass_through: self.pass_through,
             keep_going: self.keep_going,
         };
+        // Read before signals are caught, so that waiting for standard input can be broken off.
+        let input = read_input(&request.file)?;
         let stop = Arc::new(AtomicBool::new(false));
         for signal in [signal_hook::consts::SIGINT, signal_hook::consts::SIGTERM] {
             signal_hook::flag::register(signal, Arc::clone(&stop))?;
@@ -75,7 +77,7 @@ impl Judge {
             bar.tick();
         };
         let mut stdout = io::stdout().lock();
-        let result = judge_file(by, &request, &mut stdout, &stop, &mut progress);
+        let result = judge_file(by, &request, &input, &mut stdout, &stop, &mut progress);
         bar.finish_and_clear();
         match result {
             Ok(tally) => self.report(&tally),
