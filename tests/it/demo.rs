@@ -3,4 +3,5 @@
 #![allow(clippy::panic)]
 
 mod district;
+mod outcomes;
 mod sample_files;
