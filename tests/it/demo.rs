@@ -4,4 +4,5 @@
 
 mod district;
 mod outcomes;
+mod populated;
 mod sample_files;
