@@ -9,6 +9,7 @@ mod populate;
 mod random;
 mod roster;
 mod samples;
+mod sheet;
 mod visits;
 
 use chrono::{Days, NaiveDate};
