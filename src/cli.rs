@@ -112,7 +112,7 @@ enum Command {
 pub fn run(args: impl IntoIterator<Item = OsString>) -> Result<(), Failure> {
     let cli = match Cli::try_parse_from(args) {
         Ok(cli) => cli,
-        Err(error) if error.use_stderr() => return Err(Failure::usage_text(error)),
+        Err(error) if error.use_stderr() => return Err(Failure::usage_text(&error)),
         // Help and version are not errors; a closed pipe is none either.
         Err(text) => return output::print(&text.render().to_string()),
     };

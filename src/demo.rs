@@ -5,9 +5,11 @@
 //! that is kept free for fiction (555-01xx), mail addresses end in `example.invalid`.
 
 mod names;
+mod populate;
 mod random;
 mod roster;
 mod samples;
+mod sheet;
 mod visits;
 
 use chrono::{Days, NaiveDate};
@@ -16,6 +18,7 @@ use crate::domain::codes::Attempt;
 use crate::domain::readings::Readings;
 use crate::domain::roster::RosterChild;
 
+pub use populate::populate;
 pub use samples::{SAMPLE_DAY, sample_results, sample_roster};
 
 /// The seed of the demonstration when none is given.

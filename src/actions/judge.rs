@@ -3,7 +3,7 @@
 mod output;
 
 use std::io::{self, Write};
-use std::path::PathBuf;
+use std::path::{Path, PathBuf};
 use std::sync::atomic::{AtomicBool, Ordering};
 
 use chrono::NaiveDate;
@@ -133,24 +133,28 @@ impl From<Problems> for JudgeError {
 /// How many rows pass between two looks at the stop flag.
 const STEP: u64 = 8_192;
 
-/// Judges a file. Without `out`, rows go to `stdout`, and only once the whole file is known to be
+/// Reads the file that is to be judged.
+pub fn read_input(path: &Path) -> Result<InputFile, JudgeError> {
+    Ok(InputFile::read(path)?)
+}
+
+/// Judges a file that was read. Without `out`, rows go to `stdout`, and only once the whole file is known to be
 /// good; with it, they go to a file aside that is renamed at the end.
 pub fn judge_file(
     by: By<'_>,
     request: &JudgeRequest,
+    input: &InputFile,
     stdout: &mut dyn Write,
     stop: &AtomicBool,
     progress: &mut dyn FnMut(u64),
 ) -> Result<Tally, JudgeError> {
     let Some(out) = &request.out else {
-        let input = InputFile::read(&request.file)?;
-        let mut judging = Judging::new(by, request, &input, stop, progress);
+        let mut judging = Judging::new(by, request, input, stop, progress);
         judging.rows::<&mut dyn Write>(None, None)?;
         return judging.rows(Some(stdout), None);
     };
     let mut aside = Aside::create(out, &request.file)?;
-    let input = InputFile::read(&request.file)?;
-    let mut judging = Judging::new(by, request, &input, stop, progress);
+    let mut judging = Judging::new(by, request, input, stop, progress);
     if !request.keep_going {
         let tally = judging.rows(Some(aside.file()), None)?;
         aside.rename()?;

@@ -38,10 +38,6 @@ impl Desk {
         site: Option<&str>,
         term: Option<&str>,
     ) -> Result<RosterPlan> {
-        let term = match term {
-            Some(code) => self.term(code)?,
-            None => self.term_on(self.today)?,
-        };
         let roster = read_roster(file, bytes, self.today)?;
         let sites = self.sites()?;
         for (child, place) in roster.children.iter().zip(&roster.places) {
@@ -63,6 +59,37 @@ impl Desk {
                 }));
             }
         }
+        let plan = self.compare_roster(roster, term)?;
+        Ok(RosterPlan {
+            file: file.to_owned(),
+            file_hash: crate::store::ledger::hex(&Sha256::digest(bytes)),
+            ..plan
+        })
+    }
+
+    /// Compares children who did not come from a file with the store.
+    pub fn plan_children(
+        &self,
+        children: Vec<RosterChild>,
+        term: Option<&str>,
+    ) -> Result<RosterPlan> {
+        self.compare_roster(
+            Roster {
+                places: Vec::new(),
+                without_dob: Vec::new(),
+                without_grade: Vec::new(),
+                alike: Vec::new(),
+                children,
+            },
+            term,
+        )
+    }
+
+    fn compare_roster(&self, roster: Roster, term: Option<&str>) -> Result<RosterPlan> {
+        let term = match term {
+            Some(code) => self.term(code)?,
+            None => self.term_on(self.today)?,
+        };
         let mut known = self.read().roster(Some(&term.code))?;
         let spoken_of: HashSet<&str> = roster.children.iter().map(|c| c.site.as_str()).collect();
         let in_file: HashSet<&str> = roster
@@ -77,8 +104,8 @@ impl Desk {
             roster,
             known,
             update,
-            file: file.to_owned(),
-            file_hash: crate::store::ledger::hex(&Sha256::digest(bytes)),
+            file: String::new(),
+            file_hash: String::new(),
         })
     }
 

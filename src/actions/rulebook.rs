@@ -111,16 +111,16 @@ pub fn list(library: &Library) -> Vec<String> {
             .protocols()
             .map(|p| format!("{:width$}  {} ({})", &*p.id, &*p.title, &*p.edition)),
     );
-    safe(lines)
+    safe(&lines)
 }
 
 /// Returns a rule set or protocol in full.
 pub fn show(library: &Library, id: &str) -> Result<Vec<String>, UnknownRule> {
     if let Some(set) = library.rule_set(id) {
-        return Ok(safe(sheet_lines(&show::sheet(set))));
+        return Ok(safe(&sheet_lines(&show::sheet(set))));
     }
     if let Some(protocol) = library.protocol(id) {
-        return Ok(safe(show::protocol_lines(protocol)));
+        return Ok(safe(&show::protocol_lines(protocol)));
     }
     let ids = library
         .rule_sets()
@@ -129,7 +129,7 @@ pub fn show(library: &Library, id: &str) -> Result<Vec<String>, UnknownRule> {
     Err(UnknownRule::new("rule set or protocol", id, ids))
 }
 
-fn safe(lines: Vec<String>) -> Vec<String> {
+fn safe(lines: &[String]) -> Vec<String> {
     lines.iter().map(|line| shown(line, 10_000)).collect()
 }
 

@@ -9,7 +9,7 @@ use super::{Failure, Global};
 pub(super) struct Correct {
     /// Id of the entry
     entry: String,
-    /// New values, such as distance_right=20/40
+    /// New values, such as `distance_right=20/40`
     #[arg(value_name = "FIELD=VALUE", required = true)]
     values: Vec<String>,
     /// Why

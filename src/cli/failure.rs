@@ -44,7 +44,7 @@ impl Failure {
     }
 
     /// Wrong arguments, in the argument parser's own words: exit code 2.
-    pub(super) fn usage_text(error: clap::Error) -> Failure {
+    pub(super) fn usage_text(error: &clap::Error) -> Failure {
         Failure {
             code: 2,
             details: error.render().to_string(),
@@ -62,7 +62,7 @@ impl Failure {
 
     /// Returns the failure with lines that stand before its message.
     #[must_use]
-    pub fn details(mut self, details: impl ToString) -> Failure {
+    pub fn details(mut self, details: &impl ToString) -> Failure {
         self.details = details.to_string();
         self
     }
@@ -99,7 +99,7 @@ impl From<RuleFileError> for Failure {
     fn from(error: RuleFileError) -> Self {
         match error {
             RuleFileError::Wrong(errors) => {
-                Failure::bad_input("the rule file was not taken").details(errors)
+                Failure::bad_input("the rule file was not taken").details(&errors)
             }
             unreadable @ RuleFileError::Unreadable { .. } => {
                 Failure::bad_input(unreadable.to_string())
@@ -118,10 +118,10 @@ impl From<JudgeError> for Failure {
                 } else {
                     format!("{total} problems")
                 };
-                Failure::bad_input(format!("{count}; nothing was written")).details(problems)
+                Failure::bad_input(format!("{count}; nothing was written")).details(&problems)
             }
             JudgeError::Output(problem) => {
-                Failure::bad_input("nothing was written").details(problem)
+                Failure::bad_input("nothing was written").details(&problem)
             }
             stopped @ JudgeError::Interrupted => Failure::interrupted(stopped.to_string()),
             failed @ JudgeError::Write { .. } => Failure::failed(failed.to_string()),

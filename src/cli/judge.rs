@@ -10,14 +10,14 @@ use clap::Args;
 
 use super::output::say;
 use super::{Failure, Global};
-use crate::actions::judge::{By, JudgeError, JudgeRequest, Tally, judge_file};
+use crate::actions::judge::{By, JudgeError, JudgeRequest, Tally, judge_file, read_input};
 use crate::actions::rulebook::library_with;
 use crate::domain::outcome::OutcomeKind;
 
 /// Judge the rows of a results file without a store
 ///
-/// Writes every column of FILE followed by outcome, urgency, act_within_days, amblyopia_risk,
-/// criteria, unknown, reasons, rule_set and edition. A bad row is listed with row and column, and
+/// Writes every column of FILE followed by the outcome, its urgency, the kinds of amblyopia risk,
+/// the criteria that referred or stayed unknown, the reasons and the rule set. A bad row is listed with row and column, and
 /// nothing is written.
 #[derive(Debug, Args)]
 pub(super) struct Judge {
@@ -29,7 +29,7 @@ pub(super) struct Judge {
     /// Judge by this protocol
     #[arg(long, value_name = "ID", conflicts_with = "rules")]
     protocol: Option<String>,
-    /// The screening day of rows without screened_on
+    /// The screening day of rows that do not say one
     #[arg(long, value_name = "YYYY-MM-DD")]
     date: Option<NaiveDate>,
     /// The file to write; standard output without it
@@ -64,6 +64,8 @@ impl Judge {
             pass_through: self.pass_through,
             keep_going: self.keep_going,
         };
+        // Read before signals are caught, so that waiting for standard input can be broken off.
+        let input = read_input(&request.file)?;
         let stop = Arc::new(AtomicBool::new(false));
         for signal in [signal_hook::consts::SIGINT, signal_hook::consts::SIGTERM] {
             signal_hook::flag::register(signal, Arc::clone(&stop))?;
@@ -75,7 +77,7 @@ impl Judge {
             bar.tick();
         };
         let mut stdout = io::stdout().lock();
-        let result = judge_file(by, &request, &mut stdout, &stop, &mut progress);
+        let result = judge_file(by, &request, &input, &mut stdout, &stop, &mut progress);
         bar.finish_and_clear();
         match result {
             Ok(tally) => self.report(&tally),

@@ -9,7 +9,7 @@ use super::{Failure, Global};
 pub(super) struct Record {
     /// Child id
     child: String,
-    /// Readings, such as distance_right=20/40
+    /// Readings, such as `distance_right=20/40`
     #[arg(value_name = "FIELD=VALUE", required = true)]
     values: Vec<String>,
     /// Sign the visit: its outcome is written

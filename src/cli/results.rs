@@ -23,7 +23,7 @@ enum Command {
         /// Site code
         #[arg(long, value_name = "CODE")]
         site: String,
-        /// Date of rows without screened_on
+        /// Date of rows that do not say one
         #[arg(long, value_name = "YYYY-MM-DD")]
         date: Option<NaiveDate>,
         /// Protocol id

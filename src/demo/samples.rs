@@ -4,6 +4,7 @@ use chrono::NaiveDate;
 
 use super::random::Random;
 use super::roster::children;
+use super::sheet::{roster_csv, row};
 use super::visits::{Story, told};
 use super::{DEFAULT_SEED, DemoVisit};
 use crate::domain::age::Grade;
@@ -152,38 +153,8 @@ fn alike(a: &RosterChild, b: &RosterChild) -> bool {
 
 /// Returns `sample_data/roster.csv`.
 pub fn sample_roster() -> String {
-    let header = "child_id family_name given_name dob grade site class teacher sex language \
-                  special_education guardian_name guardian_phone guardian_email guardian_address \
-                  consent wears_glasses last_exam_on under_care history";
-    let mut out = row(header.split_whitespace());
-    for (child, _) in sample() {
-        let d = &child.details;
-        let yes_no = |value: Option<YesNo>| value.map_or("", YesNo::word).to_owned();
-        let date = |value: Option<NaiveDate>| value.map_or(String::new(), |v| v.to_string());
-        out += &row([
-            child.child_id.clone(),
-            child.family_name.clone(),
-            child.given_name.clone(),
-            date(child.dob),
-            child.grade.map_or(String::new(), |g| g.to_string()),
-            child.site.clone(),
-            d.class.clone(),
-            d.teacher.clone(),
-            d.sex.clone(),
-            d.language.clone(),
-            yes_no(d.special_education),
-            d.guardian_name.clone(),
-            d.guardian_phone.clone(),
-            d.guardian_email.clone(),
-            d.guardian_address.clone(),
-            d.consent.map_or("", Consent::word).to_owned(),
-            yes_no(d.wears_glasses),
-            date(d.last_exam_on),
-            yes_no(d.under_care),
-            d.history.clone(),
-        ]);
-    }
-    out
+    let sample = sample();
+    roster_csv(sample.iter().map(|(child, _)| child))
 }
 
 /// Returns `sample_data/results.csv`: the columns that any of the visits fills.
@@ -210,26 +181,6 @@ pub fn sample_results() -> String {
             .map(|field| visit.readings.get(*field).unwrap_or_default());
         out += &row(known.into_iter().chain(values));
     }
-    out
-}
-
-/// Writes one row by RFC 4180, with a plain line feed at its end.
-fn row<T: AsRef<str>>(cells: impl IntoIterator<Item = T>) -> String {
-    let mut out = String::new();
-    for (i, cell) in cells.into_iter().enumerate() {
-        if i > 0 {
-            out.push(',');
-        }
-        let cell = cell.as_ref();
-        if cell.contains(['"', ',', '\n', '\r']) {
-            out.push('"');
-            out += &cell.replace('"', "\"\"");
-            out.push('"');
-        } else {
-            out += cell;
-        }
-    }
-    out.push('\n');
     out
 }
 

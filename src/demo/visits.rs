@@ -78,13 +78,17 @@ pub fn told(random: &mut Random, children: &[RosterChild], day: NaiveDate) -> To
     let site = |child: &&RosterChild| child.site == super::roster::SITES[0].code;
     let mut due: Vec<Story> = MUST.to_vec();
     let mut today = Vec::new();
+    let mut to_come: usize = COME.iter().map(|(_, count)| count).sum();
     for (class, count) in COME {
         let members = children
             .iter()
             .filter(site)
             .filter(|c| c.details.class == class);
         for child in members.take(count) {
-            let story = story(random, child, day, &mut due);
+            to_come -= 1;
+            // What must occur is spread over the classes, and squeezed in at the end if need be.
+            let hurry = due.len() * 3 >= to_come;
+            let story = story(random, child, day, &mut due, hurry);
             let visit = visit(random, child, Attempt::First, story, day);
             today.push((story, visit));
         }
@@ -140,7 +144,13 @@ fn may_be_tested(child: &RosterChild) -> bool {
 }
 
 /// Chooses what happens to a child: what the roster settles, else what must still occur, else chance.
-fn story(random: &mut Random, child: &RosterChild, day: NaiveDate, due: &mut Vec<Story>) -> Story {
+fn story(
+    random: &mut Random,
+    child: &RosterChild,
+    day: NaiveDate,
+    due: &mut Vec<Story>,
+    hurry: bool,
+) -> Story {
     if child.details.consent == Some(Consent::No) {
         return Story::OptedOut;
     }
@@ -152,8 +162,7 @@ fn story(random: &mut Random, child: &RosterChild, day: NaiveDate, due: &mut Vec
         .dob
         .and_then(|born| AgeMonths::between(born, day))
         .map_or(0, |m| m.0);
-    // Most days are quiet: what must occur is spread over the classes.
-    if random.percent(if glasses { 90 } else { 30 })
+    if (hurry || random.percent(if glasses { 90 } else { 22 }))
         && let Some(at) = due.iter().position(|story| story.suits(glasses, months))
     {
         return due.remove(at);

@@ -1,6 +1,7 @@
 //! Bytes recognised as text. Only UTF-8 is read; what else it seems to be is said, never guessed.
 
 use super::problem::{Place, Problem};
+use super::quoting::line_breaks;
 
 const CURE: &str = "open it in the spreadsheet and save it as \"CSV UTF-8\"";
 
@@ -59,7 +60,7 @@ fn other_format(bytes: &[u8]) -> Option<&'static str> {
 /// Names the place of the first byte that is not UTF-8 and how its line would read otherwise.
 fn not_utf8(file: &str, bytes: &[u8], at: usize) -> Problem {
     let before = &bytes[..at];
-    let line = before.iter().filter(|b| **b == b'\n').count() as u64 + 1;
+    let line = line_breaks(before) + 1;
     let start = before
         .iter()
         .rposition(|b| *b == b'\n')
@@ -68,7 +69,7 @@ fn not_utf8(file: &str, bytes: &[u8], at: usize) -> Problem {
         .iter()
         .rposition(|b| *b == b',')
         .map_or(start, |i| start + i + 1);
-    let column = bytes[start..at].iter().filter(|b| **b == b',').count() + 1;
+    let column = bytes[start..at].split(|b| *b == b',').count();
     let cell_end = bytes[at..]
         .iter()
         .position(|b| matches!(b, b',' | b'\n' | b'\r'))

@@ -35,9 +35,9 @@ impl fmt::Display for Place {
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub enum Found {
     /// The text of a cell or header, shortened and safe to print.
-    Text(String),
+    Text(Box<str>),
     /// Something that has no text of its own ("a quote that is never closed").
-    What(String),
+    What(Box<str>),
 }
 
 impl Found {
@@ -63,24 +63,24 @@ impl fmt::Display for Found {
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Problem {
     /// The file's name.
-    pub file: String,
+    pub file: Box<str>,
     /// The row and line, unless the whole file is meant.
     pub place: Option<Place>,
     /// The column by its header, or by its number where there is none.
-    pub column: Option<String>,
+    pub column: Option<Box<str>>,
     /// What was there.
     pub found: Found,
     /// What would have been taken.
-    pub expected: String,
+    pub expected: Box<str>,
     /// How to go on, where that is not plain from what was expected.
-    pub cure: Option<String>,
+    pub cure: Option<Box<str>>,
 }
 
 impl Problem {
     /// Makes a problem of a whole file.
     pub fn of_file(file: &str, what: impl Into<String>, expected: impl Into<String>) -> Problem {
         Problem {
-            file: shown(file, 200),
+            file: safe(file, 200),
             place: None,
             column: None,
             found: Found::What(safe(&what.into(), 200)),
@@ -99,8 +99,8 @@ impl Problem {
     ) -> Problem {
         Problem {
             place: Some(place),
-            column: Some(shown(column, SHOWN)),
-            found: Found::Text(shown(text.trim_end_matches(['\r', '\n']), SHOWN)),
+            column: Some(safe(column, SHOWN)),
+            found: Found::Text(safe(text.trim_end_matches(['\r', '\n']), SHOWN)),
             ..Problem::of_file(file, "", expected)
         }
     }
@@ -115,7 +115,7 @@ impl Problem {
     /// Returns the problem with a column.
     #[must_use]
     pub fn in_column(mut self, column: &str) -> Problem {
-        self.column = Some(shown(column, SHOWN));
+        self.column = Some(safe(column, SHOWN));
         self
     }
 
@@ -127,8 +127,8 @@ impl Problem {
     }
 }
 
-fn safe(text: &str, limit: usize) -> String {
-    shown(text, limit)
+fn safe(text: &str, limit: usize) -> Box<str> {
+    shown(text, limit).into()
 }
 
 impl fmt::Display for Problem {

@@ -44,7 +44,7 @@ pub fn check(text: &str) -> Result<(), Fault> {
         kind,
         at,
         row,
-        line: bytes[..at].iter().filter(|b| **b == b'\n').count() as u64 + 1,
+        line: line_breaks(&bytes[..at]) + 1,
         field,
     };
     while at < bytes.len() {
@@ -82,6 +82,12 @@ pub fn check(text: &str) -> Result<(), Fault> {
         at += 1;
     }
     Ok(())
+}
+
+/// Counts line feeds.
+#[allow(clippy::naive_bytecount)] // The compiler makes it fast enough without one more crate.
+pub(super) fn line_breaks(bytes: &[u8]) -> u64 {
+    bytes.iter().filter(|b| **b == b'\n').count() as u64
 }
 
 /// Returns the offset of the quote that closes the one at `open`.

@@ -38,6 +38,7 @@ pub enum Column {
 
 /// How a results file is read.
 #[derive(Debug, Clone, Copy, Default)]
+#[allow(clippy::struct_excessive_bools)] // Each is one switch of a command.
 pub struct Options {
     /// Whether each row needs a child id.
     pub needs_child: bool,

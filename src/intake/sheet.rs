@@ -4,7 +4,7 @@ use csv::StringRecord;
 
 use super::encoding;
 use super::problem::{Found, Place, Problem, Problems};
-use super::quoting::{self, Break, Fault, LONGEST_FIELD};
+use super::quoting::{self, Break, Fault, LONGEST_FIELD, line_breaks};
 use crate::domain::text::{nearest, shown};
 
 /// A CSV file that is UTF-8 and obeys RFC 4180, with its header read.
@@ -119,7 +119,6 @@ impl<'a> Sheet<'a> {
     /// The parser's own line count is off after CR LF and blank lines, so both are counted here.
     fn place(&mut self, at: usize) -> Place {
         let bytes = self.text.as_bytes();
-        let lines = |part: &[u8]| part.iter().filter(|b| **b == b'\n').count() as u64;
         let breaks = bytes[at..]
             .iter()
             .take_while(|b| matches!(b, b'\r' | b'\n'))
@@ -127,13 +126,13 @@ impl<'a> Sheet<'a> {
         let start = at + breaks;
         // The line feed of a CR LF that ended the row before belongs to that row.
         let ended = at > 0 && bytes[at - 1] == b'\r' && bytes[at] == b'\n';
-        let blank = lines(&bytes[at..start]) - u64::from(ended);
+        let blank = line_breaks(&bytes[at..start]) - u64::from(ended);
         let old = self.counted;
         self.counted = Counted {
             byte: start,
             place: Place {
                 row: old.place.row + 1 + blank,
-                line: old.place.line + lines(&bytes[old.byte..start]),
+                line: old.place.line + line_breaks(&bytes[old.byte..start]),
             },
         };
         self.counted.place
@@ -262,12 +261,15 @@ fn broken(file: &str, headers: &[String], text: &str, fault: Fault) -> Problem {
     };
     let mut problem = Problem::of_file(file, what, expected);
     if fault.kind == Break::TooLong {
-        problem.found = Found::What(format!(
-            "a cell of more than {} KB, beginning \"{}\"",
-            LONGEST_FIELD / 1024,
-            shown(&text[fault.at..], 20)
-        ));
-        problem.expected = format!("cells of at most {} KB", LONGEST_FIELD / 1024);
+        problem.found = Found::What(
+            format!(
+                "a cell of more than {} KB, beginning \"{}\"",
+                LONGEST_FIELD / 1024,
+                shown(&text[fault.at..], 20)
+            )
+            .into(),
+        );
+        problem.expected = format!("cells of at most {} KB", LONGEST_FIELD / 1024).into();
     }
     problem
         .at(Place {

@@ -268,16 +268,12 @@ pub fn about(about: &About<'_>) -> String {
             } else {
                 format!(" {}", source.locator)
             };
-            let quoted = if source.quoted_in.is_empty() {
-                String::new()
+            let basis = if source.quoted_in.is_empty() {
+                source.basis.title().to_owned()
             } else {
-                format!(", quoted in {}", source.quoted_in)
+                format!("as quoted in {}", source.quoted_in)
             };
-            line(&format!(
-                "  source: {}{locator} ({}{quoted})",
-                source.citation,
-                source.basis.title()
-            ));
+            line(&format!("  source: {}{locator} ({basis})", source.citation));
         }
     }
     line("");

@@ -9,14 +9,12 @@ mod set;
 use std::sync::Arc;
 
 use crate::domain::age::days_after;
-use crate::domain::outcome::{
-    Answer, DecidedBy, Margin, Outcome, OutcomeKind, Reason, RiskKind, Urgency,
-};
+use crate::domain::outcome::{Answer, DecidedBy, Margin, Outcome, OutcomeKind, RiskKind, Urgency};
 use crate::domain::readings::Eye;
 use crate::rules::{Case, RuleSet};
 
 pub(super) use facts::Facts;
-pub(super) use set::{Scope, Spoken, pass_line, scope, speak};
+pub(super) use set::{Spoken, pass_line, scope, speak};
 
 /// What one criterion answered, before it is put beside its source.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -123,7 +121,7 @@ pub fn judge_rule_set(set: &RuleSet, case: &Case<'_>) -> Outcome {
             .qualifiers
             .push(critical_line_words(&outcome.unknown));
     }
-    settle(&mut outcome, case, |_| true);
+    settle(&mut outcome, case);
     outcome
 }
 
@@ -141,38 +139,18 @@ pub(super) fn critical_line_words(unknown: &[String]) -> String {
     }
 }
 
-/// Fills urgency, days, date and risks from the referring reasons that count.
-pub(super) fn settle(outcome: &mut Outcome, case: &Case<'_>, counts: impl Fn(&Reason) -> bool) {
-    if !matches!(outcome.kind, OutcomeKind::Refer | OutcomeKind::Rescreen) {
-        // Risks are factors found; they stand whatever else is missing.
-        outcome.risks = risks(&outcome.reasons, &counts);
-        return;
-    }
-    let referring = || {
-        outcome
-            .reasons
-            .iter()
-            .filter(|r| r.answer == Answer::Refer && counts(r))
-    };
-    let urgency = referring()
-        .map(|r| r.urgency)
-        .min()
-        .unwrap_or(Urgency::Routine);
-    let days = referring().filter_map(|r| r.act_within_days).min();
-    let risks = risks(&outcome.reasons, &counts);
-    outcome.urgency = Some(urgency);
-    outcome.act_within_days = days;
-    outcome.act_by = case.on.zip(days).map(|(on, days)| days_after(on, days));
-    outcome.risks = risks;
-}
-
-fn risks(reasons: &[Reason], counts: &impl Fn(&Reason) -> bool) -> Vec<RiskKind> {
-    let mut risks: Vec<RiskKind> = reasons
-        .iter()
-        .filter(|r| r.answer == Answer::Refer && counts(r))
-        .filter_map(|r| r.risk)
-        .collect();
+/// Fills urgency, days, date and risks from the criteria that refer.
+pub(super) fn settle(outcome: &mut Outcome, case: &Case<'_>) {
+    let referring = || outcome.reasons.iter().filter(|r| r.answer == Answer::Refer);
+    let mut risks: Vec<RiskKind> = referring().filter_map(|r| r.risk).collect();
     risks.sort_unstable();
     risks.dedup();
-    risks
+    if matches!(outcome.kind, OutcomeKind::Refer | OutcomeKind::Rescreen) {
+        let urgency = referring().map(|r| r.urgency).min();
+        let days = referring().filter_map(|r| r.act_within_days).min();
+        outcome.urgency = Some(urgency.unwrap_or(Urgency::Routine));
+        outcome.act_within_days = days;
+        outcome.act_by = case.on.zip(days).map(|(on, days)| days_after(on, days));
+    }
+    outcome.risks = risks;
 }

@@ -1,6 +1,14 @@
 //! An outcome in words: for the foot of a screen, a cell of a file, the whole-reason view.
 
-use crate::domain::outcome::{Answer, Outcome};
+mod words;
+
+use std::fmt::Write;
+
+use crate::domain::age::spoken;
+use crate::domain::outcome::{Answer, DecidedBy, Outcome, OutcomeKind, Reason, RiskKind, Urgency};
+use crate::rules::CAUTIONS;
+
+pub use words::{basis_words, criterion_words, margin_words, source_words};
 
 /// One row of the whole-reason view.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -21,25 +29,342 @@ pub struct ReasonLine {
     pub note: String,
 }
 
-/// Appends the reasons as one cell of text: what refers first, then what is unknown, then what passes.
-pub fn reasons_text(_outcome: &Outcome, _out: &mut String) {}
+/// Appends the reasons as one cell of text: what refers first, then what is unknown, then what
+/// passes, shortly.
+pub fn reasons_text(outcome: &Outcome, out: &mut String) {
+    let start = out.len();
+    let mut part = |out: &mut String| {
+        if out.len() > start {
+            out.push_str(". ");
+        }
+    };
+    for reason in referring(outcome) {
+        part(out);
+        refer_sentence(reason, out);
+    }
+    for reason in outcome
+        .reasons
+        .iter()
+        .filter(|r| r.answer == Answer::Unknown)
+    {
+        part(out);
+        let _ = write!(
+            out,
+            "unknown: {}, {}{}",
+            criterion_words(&reason.criterion),
+            reason.reading,
+            in_brackets(&reason.remarks)
+        );
+        if !could_change(outcome, reason) {
+            out.push_str(" (would not change the outcome)");
+        }
+    }
+    for word in outcome
+        .unknown
+        .iter()
+        .filter(|w| matches!(w.as_str(), "age" | "grade"))
+    {
+        part(out);
+        let _ = write!(
+            out,
+            "no criterion for this {word}, or the {word} is unknown"
+        );
+    }
+    let mut signs_said: Vec<&str> = Vec::new();
+    for reason in outcome.reasons.iter().filter(|r| r.answer == Answer::Pass) {
+        if is_sign(reason) {
+            if signs_said.contains(&&*reason.rule_set) {
+                continue;
+            }
+            signs_said.push(&reason.rule_set);
+        }
+        part(out);
+        pass_words(reason, out);
+    }
+    for note in outcome.qualifiers.iter().chain(&outcome.protocol_notes) {
+        part(out);
+        out.push_str(note);
+    }
+}
+
+fn referring(outcome: &Outcome) -> impl Iterator<Item = &Reason> {
+    let mut list: Vec<&Reason> = outcome
+        .reasons
+        .iter()
+        .filter(|r| r.answer == Answer::Refer)
+        .collect();
+    list.sort_by_key(|r| r.urgency);
+    list.into_iter()
+}
+
+fn refer_sentence(reason: &Reason, out: &mut String) {
+    out.push_str(&reason.reading);
+    if is_sign(reason) {
+        let _ = write!(out, "; {}", reason.urgency.title());
+        if let Some(days) = reason.act_within_days {
+            let _ = write!(out, ", act within {days} days");
+        }
+    } else {
+        let _ = write!(out, "; refers when {}", reason.threshold);
+        let margin = margin_words(reason);
+        if !margin.is_empty() {
+            let _ = write!(out, "; {margin}");
+        }
+    }
+    let _ = write!(out, "; {}", source_words(&reason.source));
+    out.push_str(&in_brackets(&reason.remarks));
+}
+
+fn pass_words(reason: &Reason, out: &mut String) {
+    let finding = criterion_words(&reason.criterion);
+    if is_sign(reason) {
+        let _ = write!(out, "{}: none seen", reason.rule_set.replace('-', " "));
+    } else if finding.starts_with("line") {
+        out.push_str("both lines pass");
+    } else if finding.starts_with("near") {
+        out.push_str("both near lines pass");
+    } else if finding.starts_with("between") {
+        out.push_str(reason.reading.split(" (").next().unwrap_or_default());
+    } else {
+        let _ = write!(out, "{finding} passes ({})", reason.reading);
+    }
+    out.push_str(&in_brackets(&reason.remarks));
+}
+
+fn in_brackets(remarks: &[String]) -> String {
+    if remarks.is_empty() {
+        String::new()
+    } else {
+        format!(" ({})", remarks.join("; "))
+    }
+}
+
+fn is_sign(reason: &Reason) -> bool {
+    &*reason.threshold == "present"
+}
+
+/// Says whether an answer to this unknown criterion could change the outcome.
+fn could_change(outcome: &Outcome, reason: &Reason) -> bool {
+    match outcome.kind {
+        OutcomeKind::Pass | OutcomeKind::Incomplete | OutcomeKind::Exempt => true,
+        OutcomeKind::Rescreen => reason.urgency < Urgency::Routine,
+        OutcomeKind::Refer => outcome.urgency.is_some_and(|u| reason.urgency < u),
+    }
+}
 
 /// Returns one sentence for the foot of a narrow screen.
-pub fn short(_outcome: &Outcome) -> String {
-    String::new()
+pub fn short(outcome: &Outcome) -> String {
+    let mut out = String::new();
+    match outcome.decided_by {
+        DecidedBy::GlassesNotWorn
+        | DecidedBy::GlassesNeverAvailable
+        | DecidedBy::Exempt
+        | DecidedBy::NotTestable => {
+            let _ = write!(out, "{}.", capital(&outcome.qualifiers.join("; ")));
+        }
+        _ => {
+            if let Some(reason) = referring(outcome).next() {
+                out.push_str(&capital(&reason.reading));
+                if !is_sign(reason) {
+                    let _ = write!(out, "; refers when {}", reason.threshold);
+                }
+                let _ = write!(out, ". {}.", source_words(&reason.source));
+                if !outcome.risks.is_empty() {
+                    let _ = write!(out, " Amblyopia risk: {}.", risk_words(&outcome.risks));
+                }
+                if !reason.would_change.is_empty() {
+                    let _ = write!(out, " {}.", capital(&reason.would_change));
+                }
+            } else if outcome.kind == OutcomeKind::Incomplete {
+                let missing: Vec<String> = missing_words(outcome);
+                let _ = write!(out, "Not known: {}.", missing.join("; "));
+            } else {
+                let mut passes: Vec<String> = Vec::new();
+                for reason in outcome
+                    .reasons
+                    .iter()
+                    .filter(|r| r.answer == Answer::Pass && !is_sign(r))
+                {
+                    let mut text = String::new();
+                    pass_words(reason, &mut text);
+                    passes.push(text);
+                }
+                let _ = write!(out, "{}.", capital(&passes.join("; ")));
+            }
+        }
+    }
+    out
+}
+
+fn missing_words(outcome: &Outcome) -> Vec<String> {
+    let mut out: Vec<String> = outcome
+        .unknown
+        .iter()
+        .filter(|w| matches!(w.as_str(), "age" | "grade"))
+        .cloned()
+        .collect();
+    out.extend(
+        outcome
+            .reasons
+            .iter()
+            .filter(|r| r.required && r.answer == Answer::Unknown)
+            .map(|r| format!("{} ({})", criterion_words(&r.criterion), r.reading)),
+    );
+    out
+}
+
+fn capital(text: &str) -> String {
+    let mut chars = text.chars();
+    chars
+        .next()
+        .map_or_else(String::new, |c| c.to_uppercase().chain(chars).collect())
+}
+
+fn risk_words(risks: &[RiskKind]) -> String {
+    risks
+        .iter()
+        .map(|r| r.title())
+        .collect::<Vec<_>>()
+        .join(", ")
 }
 
 /// Returns the outcome with its date: `RESCREEN by 28 Oct 2026`.
-pub fn headline(_outcome: &Outcome) -> String {
-    String::new()
+pub fn headline(outcome: &Outcome) -> String {
+    let mut out = outcome.kind.title().to_uppercase();
+    match outcome.kind {
+        OutcomeKind::Refer => {
+            if let Some(urgency) = outcome.urgency {
+                let _ = write!(out, ", {}", urgency.title());
+            }
+            if let Some(by) = outcome.act_by {
+                let _ = write!(out, ", act by {}", spoken(by));
+            } else if let Some(days) = outcome.act_within_days {
+                let _ = write!(out, ", act within {days} days");
+            }
+        }
+        OutcomeKind::Rescreen => {
+            if let Some(on) = outcome.due_on {
+                let _ = write!(out, " by {}", spoken(on));
+            }
+        }
+        OutcomeKind::Incomplete => {
+            if let Some(on) = outcome.due_on {
+                let _ = write!(out, ", return by {}", spoken(on));
+            }
+        }
+        OutcomeKind::Pass => {
+            if let Some(on) = outcome.due_on {
+                let _ = write!(out, ", chart due by {}", spoken(on));
+            }
+        }
+        OutcomeKind::Exempt => {}
+    }
+    if !outcome.qualifiers.is_empty() {
+        let _ = write!(out, " ({})", outcome.qualifiers.join("; "));
+    }
+    out
 }
 
-/// Returns a row per criterion for the whole-reason view.
-pub fn table(_outcome: &Outcome) -> Vec<ReasonLine> {
-    Vec::new()
+/// Returns a row per criterion for the whole-reason view; signs that were not seen are one row.
+pub fn table(outcome: &Outcome) -> Vec<ReasonLine> {
+    let mut rows: Vec<ReasonLine> = Vec::new();
+    let mut signs_said: Vec<&str> = Vec::new();
+    let rank = |r: &&Reason| match r.answer {
+        Answer::Refer => 0,
+        Answer::Unknown => 1,
+        Answer::Pass => 2,
+    };
+    let mut reasons: Vec<&Reason> = outcome.reasons.iter().collect();
+    reasons.sort_by_key(|r| (rank(r), r.urgency));
+    for reason in reasons {
+        let collapsed = is_sign(reason) && reason.answer == Answer::Pass;
+        if collapsed {
+            if signs_said.contains(&&*reason.rule_set) {
+                continue;
+            }
+            signs_said.push(&reason.rule_set);
+        }
+        let mut note = reason.remarks.clone();
+        if !reason.note.is_empty() && !collapsed {
+            note.push(reason.note.to_string());
+        }
+        if reason.answer == Answer::Unknown && !could_change(outcome, reason) {
+            note.push("would not change the outcome".to_owned());
+        }
+        rows.push(ReasonLine {
+            criterion: if collapsed {
+                reason.rule_set.replace('-', " ")
+            } else {
+                criterion_words(&reason.criterion)
+            },
+            reading: if collapsed {
+                "none seen".to_owned()
+            } else {
+                reason.reading.clone()
+            },
+            answer: reason.answer,
+            margin: margin_words(reason),
+            threshold: reason.threshold.to_string(),
+            source: if collapsed {
+                String::new()
+            } else {
+                source_words(&reason.source)
+            },
+            note: note.join("; "),
+        });
+    }
+    rows
 }
 
 /// Returns the whole reason as plain lines, with the cautions.
-pub fn whole(_outcome: &Outcome) -> Vec<String> {
-    Vec::new()
+pub fn whole(outcome: &Outcome) -> Vec<String> {
+    let mut out = vec![headline(outcome)];
+    for row in table(outcome) {
+        let answer = match row.answer {
+            Answer::Refer => "refers",
+            Answer::Pass => "passes",
+            Answer::Unknown => "unknown",
+        };
+        out.push(String::new());
+        out.push(format!("{}: {answer}", row.criterion));
+        out.push(format!("  reading    {}", row.reading));
+        if row.threshold != "present" {
+            out.push(format!("  threshold  {}", row.threshold));
+        }
+        for (name, text) in [
+            ("margin", row.margin),
+            ("source", row.source),
+            ("note", row.note),
+        ] {
+            if !text.is_empty() {
+                out.push(format!("  {name:<9}  {text}"));
+            }
+        }
+    }
+    out.push(String::new());
+    if !outcome.unknown.is_empty() {
+        out.push(format!("Unknown     {}", outcome.unknown.join(", ")));
+    }
+    if !outcome.risks.is_empty() {
+        out.push(format!("Amblyopia risk  {}", risk_words(&outcome.risks)));
+        if outcome.risks.contains(&RiskKind::Anisometropic) {
+            out.push("Amblyopia can come from anisometropia without any strabismus.".to_owned());
+        }
+    }
+    for reason in referring(outcome).filter(|r| !r.would_change.is_empty()) {
+        out.push(format!("Would change it  {}", reason.would_change));
+    }
+    for note in &outcome.protocol_notes {
+        out.push(format!("Protocol    {note}"));
+    }
+    out.push(format!(
+        "Rules       {}, edition {}",
+        outcome.rule_set, outcome.edition
+    ));
+    out.push(
+        "Words for a screener: meets a rule, for review by a professional; never a diagnosis."
+            .to_owned(),
+    );
+    out.extend(CAUTIONS.iter().map(|c| (*c).to_owned()));
+    out
 }

@@ -1,6 +1,8 @@
 //! Rule sets and protocols as tables and lines, for `rules list`, `rules show` and the Rules place.
 
-use crate::rules::{Protocol, RuleSet};
+use crate::domain::outcome::{Basis, Source};
+use crate::rules::explain::{basis_words, criterion_words};
+use crate::rules::{Applies, Kind, Measure, Protocol, RuleSet, threshold};
 
 /// A rule set as a table: bands across, findings down.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -25,27 +27,208 @@ pub struct RuleSheet {
     pub approval: String,
 }
 
-/// Returns the line of a rule set in the list: id, title, basis.
-pub fn list_line(_set: &RuleSet) -> String {
-    String::new()
-}
-
-/// Returns a rule set as a table.
-pub fn sheet(_set: &RuleSet) -> RuleSheet {
-    RuleSheet {
-        id: String::new(),
-        title: String::new(),
-        edition: String::new(),
-        columns: Vec::new(),
-        rows: Vec::new(),
-        line_credit: String::new(),
-        sources: Vec::new(),
-        notes: Vec::new(),
-        approval: String::new(),
+fn basis_note(sources: &[std::sync::Arc<Source>]) -> &'static str {
+    match sources.iter().map(|s| s.basis).max() {
+        None | Some(Basis::Primary) => "read in the source",
+        Some(Basis::Secondary) => "in part as quoted elsewhere",
+        Some(Basis::Memory) => "in part from memory: check before use",
+        Some(Basis::Practice) if sources.iter().any(|s| s.basis == Basis::Memory) => {
+            "in part from memory and common practice: check before use"
+        }
+        Some(Basis::Practice) => "in part common practice",
     }
 }
 
+/// Returns the line of a rule set in the list: id, title, basis.
+pub fn list_line(set: &RuleSet) -> String {
+    let place = match &set.local {
+        Some(approval) => format!("local, approved by {} on {}", approval.by, approval.on),
+        None => set.region.clone(),
+    };
+    format!(
+        "{:<22} {}; {}; {}; {}",
+        set.id,
+        set.title,
+        place,
+        if set.status.is_empty() {
+            "current"
+        } else {
+            &set.status
+        },
+        basis_note(&set.sources)
+    )
+}
+
+/// Returns a rule set as a table.
+pub fn sheet(set: &RuleSet) -> RuleSheet {
+    let mut columns: Vec<String> = Vec::new();
+    for criterion in &set.criteria {
+        let name = column(&criterion.applies, set.span);
+        if criterion.applies != Applies::Everyone && !columns.contains(&name) {
+            columns.push(name);
+        }
+    }
+    if columns.is_empty() {
+        columns.push(column(&Applies::Everyone, set.span));
+    }
+    let mut rows: Vec<(String, Vec<String>)> = Vec::new();
+    for criterion in &set.criteria {
+        let finding = match criterion.measure {
+            Measure::DistanceEachEye | Measure::NearEachEye => {
+                format!("{}, refer if", criterion.measure.title())
+            }
+            _ => criterion_words(threshold::split_band(&criterion.id).0),
+        };
+        let mut cell = criterion.threshold.to_string();
+        if let Some(beyond) = criterion.axis_beyond {
+            cell.push_str(&format!(", axis more than {beyond}° from 90 and 180"));
+        }
+        if cell == "present" {
+            cell = criterion.urgency.title().to_owned();
+            if let Some(days) = criterion.act_within_days {
+                cell.push_str(&format!(", act within {days} days"));
+            }
+        }
+        let row = match rows.iter().position(|(name, _)| *name == finding) {
+            Some(at) => at,
+            None => {
+                rows.push((finding, vec![String::new(); columns.len()]));
+                rows.len() - 1
+            }
+        };
+        let name = column(&criterion.applies, set.span);
+        for (i, column) in columns.iter().enumerate() {
+            if criterion.applies == Applies::Everyone || *column == name {
+                rows[row].1[i].clone_from(&cell);
+            }
+        }
+    }
+    let mut notes: Vec<String> = Vec::new();
+    if !set.note.is_empty() {
+        notes.push(set.note.clone());
+    }
+    for criterion in set.criteria.iter().filter(|c| !c.note.is_empty()) {
+        let note = format!(
+            "{}: {}",
+            criterion_words(threshold::split_band(&criterion.id).0),
+            criterion.note
+        );
+        if !notes.contains(&note) {
+            notes.push(note);
+        }
+    }
+    RuleSheet {
+        id: set.id.to_string(),
+        title: set.title.clone(),
+        edition: [&*set.edition, &set.region, &set.status]
+            .into_iter()
+            .filter(|s| !s.is_empty())
+            .collect::<Vec<_>>()
+            .join(" · "),
+        columns,
+        rows,
+        line_credit: if set.kind == Kind::Acuity {
+            format!("{} ({})", set.credit_text, basis_words(&set.credit_source))
+        } else {
+            String::new()
+        },
+        sources: set.sources.iter().map(|s| cited(s)).collect(),
+        notes,
+        approval: set.local.as_ref().map_or_else(String::new, |a| {
+            format!("local, approved by {} on {}", a.by, a.on)
+        }),
+    }
+}
+
+fn column(applies: &Applies, span: Option<(u32, Option<u32>)>) -> String {
+    match (applies, span) {
+        (Applies::Everyone, Some((from, to))) => Applies::Ages { from, to }.to_string(),
+        (applies, _) => applies.to_string(),
+    }
+}
+
+fn cited(source: &Source) -> String {
+    let locator = if source.locator.is_empty() {
+        String::new()
+    } else {
+        format!(", {}", source.locator)
+    };
+    format!(
+        "{}{locator}. Basis: {}",
+        source.citation,
+        basis_words(source)
+    )
+}
+
 /// Returns a protocol as plain lines.
-pub fn protocol_lines(_protocol: &Protocol) -> Vec<String> {
-    Vec::new()
+pub fn protocol_lines(protocol: &Protocol) -> Vec<String> {
+    let list =
+        |ids: &[std::sync::Arc<str>]| ids.iter().map(|i| &**i).collect::<Vec<_>>().join(", ");
+    let mut out = vec![
+        format!(
+            "{}  {}  edition {}",
+            protocol.id, protocol.title, protocol.edition
+        ),
+        format!("Rule sets        {}", list(&protocol.rule_sets)),
+    ];
+    if !protocol.when_done.is_empty() {
+        out.push(format!("When done        {}", list(&protocol.when_done)));
+    }
+    if let Some(id) = &protocol.instrument {
+        let mut text = format!("Instrument       {id}");
+        if let Some(months) = protocol.instrument_below_months {
+            text.push_str(&format!(", the test below {months} months"));
+        }
+        if protocol.instrument_stands_in {
+            text.push_str(", stands in for a chart that is not testable when both eyes were read");
+        }
+        out.push(text);
+    }
+    let required: Vec<&str> = protocol.required.iter().map(|m| m.title()).collect();
+    out.push(format!("Required         {}", required.join("; ")));
+    out.push(match protocol.rescreen_days {
+        Some(days) => format!("First fail       rescreen within {days} calendar days, then refer"),
+        None => "First fail       refer at once".to_owned(),
+    });
+    for criterion in &protocol.at_once.criteria {
+        out.push(format!(
+            "Never waits      {}: {} ({})",
+            criterion.measure.title(),
+            criterion.threshold,
+            basis_words(&criterion.source)
+        ));
+    }
+    for id in &protocol.refer_at_once {
+        out.push(format!("Never waits      {id}"));
+    }
+    for policy in &protocol.not_testable {
+        out.push(format!(
+            "Not testable     {}: again within {} months, then refer ({})",
+            policy.applies,
+            policy.rescreen_months,
+            cited(&policy.source)
+        ));
+    }
+    out.push(format!(
+        "Glasses          back within {} days; after {} such visits refer",
+        protocol.glasses_return_days, protocol.glasses_visits
+    ));
+    out.push(format!(
+        "Consent          {}",
+        if protocol.consent_opt_in {
+            "opt-in"
+        } else {
+            "opt-out"
+        }
+    ));
+    if !protocol.note.is_empty() {
+        out.push(format!("Note             {}", protocol.note));
+    }
+    if let Some(approval) = &protocol.local {
+        out.push(format!(
+            "Local            approved by {} on {}",
+            approval.by, approval.on
+        ));
+    }
+    out
 }

@@ -58,7 +58,7 @@ mod tests {
                 .unwrap()
                 .query_map([], |r| r.get(0))
                 .unwrap()
-                .map(Result::unwrap)
+                .map(std::result::Result::unwrap)
                 .collect();
             let mut expected = vec!["id", "v", "salt", "tx", "ord"];
             expected.extend(table.columns);

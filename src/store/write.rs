@@ -378,3 +378,118 @@ fn insert_sql(table: &'static Table) -> &'static str {
     .get(table.name)
     .map_or("", String::as_str)
 }
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::store::row::Site;
+    use crate::store::{Kdf, New, Secret};
+
+    fn store(dir: &std::path::Path) -> Store {
+        let new = New {
+            programme: "Quillmere".to_owned(),
+            programme_id: None,
+            station: "east".to_owned(),
+            notation: "feet".to_owned(),
+            secret: Secret::None,
+            kdf: Kdf::test(),
+        };
+        Store::create(dir, new).unwrap().0
+    }
+
+    fn site(name: &str) -> Site {
+        Site {
+            id: new_id(),
+            code: "QE".to_owned(),
+            name: name.to_owned(),
+        }
+    }
+
+    fn now() -> Author {
+        Author {
+            screener: None,
+            at: crate::clock::now(),
+        }
+    }
+
+    /// A COMMIT that fails is looked up, and what is not there is said not to be.
+    #[test]
+    fn a_failed_commit_is_not_confirmed_and_can_be_tried_again() {
+        let temp = tempfile::TempDir::new().unwrap();
+        let mut store = store(temp.path());
+        let head = store.head().unwrap();
+        store.conn.commit_hook(Some(|| true)).unwrap();
+        let site = site("Quillmere East");
+        let error = store.append(&now(), |tx| tx.add(&site)).unwrap_err();
+        assert_eq!(error.kind(), ErrorKind::NotConfirmed);
+        assert!(
+            error
+                .to_string()
+                .starts_with("not confirmed: the entry was not found after saving failed ("),
+            "{error}"
+        );
+        assert_eq!(
+            error.hint().unwrap(),
+            "the draft is kept; save again: an entry keeps its id, so it cannot be saved twice"
+        );
+        store.conn.commit_hook(None::<fn() -> bool>).unwrap();
+        assert_eq!(store.head().unwrap(), head);
+        store.append(&now(), |tx| tx.add(&site)).unwrap();
+        assert_eq!(store.read().sites().unwrap(), [site]);
+        store.verify(None, |_, _| {}).unwrap();
+    }
+
+    #[test]
+    fn a_full_disk_saves_nothing_and_says_so() {
+        let temp = tempfile::TempDir::new().unwrap();
+        let mut store = store(temp.path());
+        let head = store.head().unwrap();
+        let pages: i64 = store
+            .conn
+            .query_row("PRAGMA page_count", [], |r| r.get(0))
+            .unwrap();
+        store
+            .conn
+            .query_row(
+                &format!("PRAGMA max_page_count = {}", pages + 2),
+                [],
+                |_| Ok(()),
+            )
+            .unwrap();
+        let error = store
+            .append(&now(), |tx| tx.add(&site(&"x".repeat(100_000))))
+            .unwrap_err();
+        assert_eq!(error.kind(), ErrorKind::DiskFull);
+        assert_eq!(error.to_string(), "not saved: the disk is full");
+        assert_eq!(
+            error.hint().unwrap(),
+            "make room on the disk, then save again; everything saved before is safe"
+        );
+        assert_eq!(store.head().unwrap(), head);
+        store.append(&now(), |tx| tx.add(&site("small"))).unwrap();
+        store.verify(None, |_, _| {}).unwrap();
+    }
+
+    /// The engine reports a failure although the transaction is in the file: it is found.
+    #[test]
+    fn what_was_kept_in_spite_of_an_error_is_found() {
+        let temp = tempfile::TempDir::new().unwrap();
+        let mut store = store(temp.path());
+        let (chain, seq) = (store.chain, 1);
+        let hash: Vec<u8> = store
+            .conn
+            .query_row("SELECT tx_hash FROM tx WHERE seq = 1", [], |r| r.get(0))
+            .unwrap();
+        let mut hash: ledger::Hash = hash.try_into().unwrap();
+        assert!(found(&store.conn, chain, seq, &hash));
+        hash[0] ^= 1;
+        assert!(
+            !found(&store.conn, chain, seq, &hash),
+            "another's entry is not ours"
+        );
+        assert!(!found(&store.conn, chain, 2, &hash));
+        store
+            .append(&now(), |tx| tx.add(&site("still usable")))
+            .unwrap();
+    }
+}

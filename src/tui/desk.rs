@@ -170,8 +170,8 @@ impl Clerk {
                 Answer::Found(text, found)
             }
             Request::History(child) => Answer::History(self.desk.history(&child)?.map(Box::new)),
-            Request::Referrals => Answer::Referrals(Vec::new()),
-            Request::Term => Answer::Term(Vec::new()),
+            Request::Referrals => Answer::Referrals(self.desk.referrals()?),
+            Request::Term => Answer::Term(self.desk.term_table()?),
             Request::Screener(name) => {
                 self.desk.set_screener(&name)?;
                 Answer::Screener(name)

@@ -3,4 +3,6 @@
 #![allow(clippy::panic)]
 
 mod district;
+mod outcomes;
+mod populated;
 mod sample_files;

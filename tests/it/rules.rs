@@ -1,1 +1,11 @@
 //! Tests of `rules`.
+
+mod broken;
+mod children;
+mod local;
+mod nhanes;
+mod parts;
+mod properties;
+mod shipped;
+mod support;
+mod thresholds;

@@ -87,7 +87,6 @@ impl Story {
     pub fn readings(self, random: &mut Random, age: Option<AgeMonths>) -> Readings {
         let mut r = Readings {
             status: Some(Status::Present),
-            acuity_method: Some(AcuityMethod::Threshold),
             correction: Some(Correction::None),
             signs: Some(Vec::new()),
             ..Readings::default()

@@ -45,7 +45,8 @@ pub struct Alike {
 const NEARLY_SAME: f64 = 0.95;
 
 /// Up to this many children born on one day are all compared with each other; of more, each is
-/// compared with its neighbours in the order of names, so that time stays linear.
+/// compared with its neighbours in the order of names and named with the first that is alike, so
+/// that time and list stay linear.
 const ALL_PAIRS: usize = 64;
 const NEIGHBOURS: usize = 12;
 
@@ -98,13 +99,13 @@ pub(super) fn find(children: &[RosterChild]) -> Vec<Alike> {
         } else {
             group.len()
         };
+        let most = if reach == group.len() { reach } else { 1 };
         for (at, &a) in group.iter().enumerate() {
-            for &b in group.iter().skip(at + 1).take(reach) {
+            let found = group.iter().skip(at + 1).take(reach).filter_map(|&b| {
                 let same_site = children[a].site == children[b].site;
-                if let Some(kind) = born_together(&names[a], &names[b], same_site) {
-                    alike.push(pair(kind, a, b));
-                }
-            }
+                born_together(&names[a], &names[b], same_site).map(|kind| pair(kind, a, b))
+            });
+            alike.extend(found.take(most));
         }
     }
     for group in by_name.into_values() {

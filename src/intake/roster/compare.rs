@@ -2,6 +2,7 @@
 
 use std::collections::{HashMap, HashSet};
 
+use crate::domain::codes::{Consent, YesNo};
 use crate::domain::roster::RosterChild;
 
 /// A child whose row differs from what is known.
@@ -87,7 +88,7 @@ fn cells(child: &RosterChild) -> Vec<(&'static str, String)> {
         ("insurance", d.insurance.clone()),
         (
             "special_education",
-            text(d.special_education.map(|v| v.word())),
+            text(d.special_education.map(YesNo::word)),
         ),
         ("state_id", d.state_id.clone()),
         ("guardian_name", d.guardian_name.clone()),
@@ -97,10 +98,10 @@ fn cells(child: &RosterChild) -> Vec<(&'static str, String)> {
         ("guardian2_name", d.guardian2_name.clone()),
         ("guardian2_phone", d.guardian2_phone.clone()),
         ("guardian2_email", d.guardian2_email.clone()),
-        ("consent", text(d.consent.map(|v| v.word()))),
-        ("wears_glasses", text(d.wears_glasses.map(|v| v.word()))),
+        ("consent", text(d.consent.map(Consent::word))),
+        ("wears_glasses", text(d.wears_glasses.map(YesNo::word))),
         ("last_exam_on", text(d.last_exam_on)),
-        ("under_care", text(d.under_care.map(|v| v.word()))),
+        ("under_care", text(d.under_care.map(YesNo::word))),
         ("known_condition", d.known_condition.clone()),
         ("doctor_name", d.doctor_name.clone()),
         ("doctor_phone", d.doctor_phone.clone()),

@@ -265,11 +265,47 @@ fn ids_are_checked_and_suggested() {
     assert_eq!(bench.run(&["judge", "in.csv"]).code, 2);
 }
 
+#[cfg(unix)]
+#[test]
+fn an_interrupt_leaves_nothing_behind() {
+    use std::os::unix::process::ExitStatusExt;
+    let bench = Bench::new();
+    let mut many = GOOD.to_owned();
+    for i in 0..400_000 {
+        many.push('C');
+        many.push_str(&i.to_string());
+        many.push_str(",79,20/20,20/25\n");
+    }
+    bench.write("in.csv", many);
+    let mut child = bench
+        .command(&judge(&["-o", "out.csv"]))
+        .stderr(Stdio::piped())
+        .spawn()
+        .expect("the program runs");
+    // The file aside shows that the work has begun.
+    while bench.names().len() < 2 {
+        assert!(child.try_wait().expect("runs").is_none(), "ended too soon");
+        std::thread::yield_now();
+    }
+    let pid = rustix::process::Pid::from_child(&child);
+    rustix::process::kill_process(pid, rustix::process::Signal::INT).expect("sent");
+    let output = child.wait_with_output().expect("ends");
+    assert_eq!(output.status.signal(), None);
+    assert_eq!(output.status.code(), Some(130));
+    assert_eq!(
+        String::from_utf8_lossy(&output.stderr),
+        "error: stopped; nothing was written\n"
+    );
+    assert_eq!(bench.names(), ["in.csv"]);
+}
+
 #[test]
 fn standard_input_is_read_and_a_broken_pipe_is_no_error() {
     let mut many = GOOD.to_owned();
     for i in 0..20_000 {
-        many.push_str(&format!("C{i},79,20/20,20/25\n"));
+        many.push('C');
+        many.push_str(&i.to_string());
+        many.push_str(",79,20/20,20/25\n");
     }
     let mut child = twoline()
         .args(["judge", "-", "--rules", "joint-policy-2016"])

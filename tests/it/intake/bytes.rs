@@ -106,7 +106,7 @@ fn a_field_of_five_megabytes_is_refused_and_not_shown() {
     let problem = only(&bytes);
     assert_eq!(problem.place, Some(Place { row: 3, line: 3 }));
     assert_eq!(problem.column.as_deref(), Some("distance_right"));
-    assert_eq!(problem.expected, "cells of at most 64 KB");
+    assert_eq!(&*problem.expected, "cells of at most 64 KB");
     assert!(problem.to_string().len() < 400);
 }
 

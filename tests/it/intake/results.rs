@@ -27,7 +27,7 @@ fn bad(text: &str, column: &str, found: &str, expected: &str) {
     let problems = read(text).expect_err("the row is bad");
     assert_eq!(problems.len(), 1, "{problems:?}");
     let problem = &problems[0];
-    assert_eq!(problem.file, "results.csv");
+    assert_eq!(&*problem.file, "results.csv");
     assert_eq!(problem.place, Some(Place { row: 2, line: 2 }));
     assert_eq!(problem.column.as_deref(), Some(column));
     assert_eq!(problem.found.as_str(), found);
@@ -169,11 +169,11 @@ fn columns_unknown_missing_and_twice() {
     assert_eq!(problems[0].column.as_deref(), Some("number 2"));
     assert_eq!(problems[0].found.as_str(), "distence_right");
     assert_eq!(
-        problems[0].expected,
+        &*problems[0].expected,
         "a known column (did you mean distance_right?)"
     );
     let problems = read("signs,signs\nnone,none\n").expect_err("twice");
-    assert_eq!(problems[0].expected, "each column once");
+    assert_eq!(&*problems[0].expected, "each column once");
     let problems = read("child_id,grade\nA,1\n").expect_err("no reading");
     assert_eq!(problems[0].found.as_str(), "no column with a reading");
     let options = Options {

@@ -1,0 +1,84 @@
+//! Small words: criteria, margins, sources.
+
+use crate::domain::outcome::{Answer, Basis, Margin, Reason, Source};
+use crate::domain::readings::Hundredths;
+use crate::domain::refraction::Diopters;
+use crate::rules::threshold::split_band;
+
+/// Returns a criterion's id in words: `line.60+` is "line, 60 months and over".
+pub fn criterion_words(id: &str) -> String {
+    let (finding, band) = split_band(id);
+    let finding = match finding {
+        "between-eyes" => "between the eyes".to_owned(),
+        "near" => "near line".to_owned(),
+        "media-opacity" => "media opacity".to_owned(),
+        other => other.replace(['_', '.'], " ").replace('-', " "),
+    };
+    match band {
+        None => finding,
+        Some(band) if band.ends_with('+') => {
+            format!("{finding}, {} months and over", band.trim_end_matches('+'))
+        }
+        Some(band)
+            if band.starts_with(|c: char| c.is_ascii_alphabetic())
+                || band.starts_with('0') && band.len() == 5 =>
+        {
+            format!("{finding}, grade {band}")
+        }
+        Some(band) => format!("{finding}, {} months", band.replace('-', " to ")),
+    }
+}
+
+/// Returns how well a number is known, in words.
+pub fn basis_words(source: &Source) -> String {
+    match source.basis {
+        Basis::Secondary => format!("as quoted in {}", source.quoted_in),
+        basis => basis.title().to_owned(),
+    }
+}
+
+/// Returns a source with its basis: citation, how it was read.
+pub fn source_words(source: &Source) -> String {
+    if source.basis == Basis::Practice {
+        return source.citation.clone();
+    }
+    let locator = if source.locator.is_empty() {
+        String::new()
+    } else {
+        format!(", {}", source.locator)
+    };
+    format!("{}{locator} ({})", source.citation, basis_words(source))
+}
+
+/// Returns the distance to the threshold in words; empty where there is none.
+pub fn margin_words(reason: &Reason) -> String {
+    let refers = reason.answer == Answer::Refer;
+    let (size, unit) = match reason.margin {
+        Margin::None => return String::new(),
+        Margin::Steps(n) if reason.criterion.starts_with("between-eyes") => (
+            n,
+            format!("{} step{}", n.abs(), if n.abs() == 1 { "" } else { "s" }),
+        ),
+        Margin::Steps(n) => (
+            n,
+            format!("{} line{}", n.abs(), if n.abs() == 1 { "" } else { "s" }),
+        ),
+        Margin::Diopters(n) => (n, format!("{} D", Diopters(n.abs()).unsigned().trim())),
+        Margin::Millimetres(n) => (n, format!("{} mm", Hundredths(n.abs()))),
+        Margin::PrismDiopters(n) => (n, format!("{} prism dioptres", Hundredths(n.abs()))),
+        Margin::Count(n) => (n, format!("{} answers", n.abs())),
+        Margin::LogMar(n) => (
+            n,
+            format!("{} logMAR", crate::domain::acuity::LogMar(n.abs())),
+        ),
+    };
+    let line =
+        matches!(reason.margin, Margin::Steps(_)) && !reason.criterion.starts_with("between-eyes");
+    match (size, refers) {
+        (0, _) if line => "at the line".to_owned(),
+        (0, _) => "at the limit".to_owned(),
+        (n, _) if n < 0 && line => format!("{unit} short"),
+        (n, _) if n < 0 => format!("{unit} over"),
+        _ => format!("{unit} to spare"),
+    }
+}
