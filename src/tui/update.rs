@@ -462,7 +462,7 @@ impl App {
             return Vec::new();
         };
         let kind = App::sign_at(signs.at);
-        let mut mark = |side: Option<Side>, signs: &mut crate::tui::prompt::SignMarks| {
+        let mark = |side: Option<Side>, signs: &mut crate::tui::prompt::SignMarks| {
             if let Some(kind) = kind {
                 let same = signs.marked.iter().position(|s| s.kind == kind);
                 let was = same.map(|i| signs.marked.remove(i));
