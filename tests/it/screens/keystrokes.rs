@@ -95,7 +95,7 @@ fn the_five_children_come_out_as_written() {
         .sees("PASS");
     h.enter().sees("saved Oyelaran, Tunde: pass");
     // Fourth: glasses left at home, 20/80 and 20/63.
-    h.scan("q-10485").sees("owns glasses, says the roster");
+    h.scan("q-10485").sees("owns glasses (roster)");
     h.typed("h").typed("80").enter().typed("63").enter();
     h.sees("INCOMPLETE").sees("28 Oct 2026");
     h.enter()
