@@ -3,12 +3,34 @@
 //! A [`Desk`] is an open store with the rule library beside it: what a nurse sits down at. The
 //! screens and the command line ask it and tell it things; neither sees a table.
 
+mod children;
+mod days;
+mod desk;
+mod error;
 pub mod judge;
+mod judging;
+mod report;
+mod results;
+mod roster;
 pub mod rulebook;
 mod search;
+mod setup;
+mod sign;
+mod urgent;
 mod views;
+mod visit_rows;
 
+pub use crate::rules::{CAUTIONS, Library, PassLine, explain, show};
+pub use crate::store::new_id as new_visit_id;
+pub use crate::store::{Draft, Drafts, Kdf, RecoveryKey, Secret};
+pub use desk::{Desk, DeskOptions};
+pub use error::{ActionError, Kind, Result};
+pub use judging::{bench_fields, correction_from_roster, pass_line_for, preview};
+pub use report::Report;
+pub use results::{Different, PlannedVisit, ResultsPlan};
+pub use roster::RosterPlan;
 pub use search::SearchIndex;
+pub use setup::{NewChart, NewStore, init};
 pub use views::{
     ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay, OpenUrgent,
     QueueState, SignRequest, Signed, StoredOutcome, UrgentAnswer, VisitView,

@@ -131,8 +131,6 @@ pub struct SignRequest {
     pub visit: Uuid,
     /// All readings of the visit.
     pub readings: Readings,
-    /// When the child was tested, if that is not today (entered later from paper).
-    pub tested_on: Option<NaiveDate>,
 }
 
 /// What was stored.

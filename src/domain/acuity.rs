@@ -65,8 +65,10 @@ pub enum Notation {
     LogMar,
 }
 
-/// Denominators of the standard chart in thousandths, with the step each stands for.
-const CHART: [(i32, i32, i32, i32); 15] = [
+/// Denominators of the standard chart in thousandths, with the step each stands for. Below 20/200
+/// the series of the chart repeats at ten times the size (1.1 to 1.5 so printed in DICOM PS3.17,
+/// table RR-1; basis: secondary).
+const CHART: [(i32, i32, i32, i32); 24] = [
     // step, 20/x, 6/x, decimal
     (-3, 10_000, 3_000, 2_000),
     (-2, 12_500, 3_800, 1_600),
@@ -82,7 +84,16 @@ const CHART: [(i32, i32, i32, i32); 15] = [
     (8, 125_000, 38_000, 160),
     (9, 160_000, 48_000, 125),
     (10, 200_000, 60_000, 100),
+    (11, 250_000, 75_000, 80),
+    (12, 320_000, 95_000, 63),
     (13, 400_000, 120_000, 50),
+    (14, 500_000, 150_000, 40),
+    (15, 630_000, 190_000, 32),
+    (16, 800_000, 240_000, 25),
+    (17, 1_000_000, 300_000, 20),
+    (18, 1_250_000, 380_000, 16),
+    (19, 1_600_000, 480_000, 13),
+    (20, 2_000_000, 600_000, 10),
 ];
 
 /// Lines of older charts that lie between two steps: they keep their name, are compared by line at
@@ -160,7 +171,7 @@ impl Line {
             (Notation::Feet, Some(row)) => row.1,
             (Notation::Metres, Some(row)) => row.2,
             (Notation::Decimal, Some(row)) => row.3,
-            // Steps that no standard chart prints are named by their ratio, to three figures.
+            // Steps beyond the table, reached by a shorter distance, are named by their ratio.
             (_, None) => {
                 let ratio = 10f64.powf(f64::from(step.0) / 10.0);
                 let exact = match notation {
@@ -200,9 +211,15 @@ impl Line {
 
     /// Says whether a chart prints this line; other denominators were taken at their nearest step.
     pub fn is_on_a_chart(self) -> bool {
+        // Charts in metres print the exact twin of a 20 ft line (6/9.6) or its rounded name (6/9.5).
+        let twin = || {
+            self.notation == Notation::Metres
+                && self.thousandths * 10 == Line::at(self.step, Notation::Feet).thousandths * 3
+        };
         self.notation == Notation::LogMar
             || Line::at(self.step, self.notation).thousandths == self.thousandths
             || TRADITIONAL.contains(&(self.notation, self.thousandths))
+            || twin()
     }
 }
 

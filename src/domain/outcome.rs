@@ -136,29 +136,20 @@ impl Reason {
     }
 }
 
-/// Which line of a protocol decided.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
-pub enum DecidedBy {
-    /// An emergency or prompt sign.
-    UrgentSign,
-    /// Exempt and nothing tested.
-    Exempt,
-    /// A direct-referral group.
-    DirectReferral,
-    /// A criterion that never waits for a rescreen.
-    ReferAtOnce,
-    /// Glasses owned and not worn.
-    GlassesNotWorn,
-    /// Glasses never available, broken or lost.
-    GlassesNeverAvailable,
-    /// A criterion.
-    Criterion,
-    /// Not testable.
-    NotTestable,
-    /// A required test is unknown.
-    Missing,
-    /// Nothing speaks against a pass.
-    Nothing,
+code_list! {
+    /// Which line of a protocol decided.
+    DecidedBy {
+        UrgentSign = "urgent_sign", "an emergency or prompt sign";
+        Exempt = "exempt", "exempt and nothing tested";
+        DirectReferral = "direct_referral", "a direct-referral group";
+        ReferAtOnce = "refer_at_once", "a finding that never waits for a rescreen";
+        GlassesNotWorn = "glasses_not_worn", "glasses owned and not worn";
+        GlassesNeverAvailable = "glasses_never_available", "glasses never available";
+        Criterion = "criterion", "a criterion";
+        NotTestable = "not_testable", "not testable";
+        Missing = "missing", "a required test is unknown";
+        Nothing = "nothing", "nothing speaks against a pass";
+    }
 }
 
 /// An outcome with its explanation.

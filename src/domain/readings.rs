@@ -3,6 +3,7 @@
 //! A value is set from text by its [`Field`] and read back as canonical text, so that the results
 //! file, the store, the command line and the screens share one understanding of each field.
 
+mod contradictions;
 mod text;
 
 use crate::domain::acuity::{Acuity, Distances, Notation};

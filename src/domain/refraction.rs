@@ -23,6 +23,7 @@ impl Diopters {
     }
 
     /// Returns the size without its sign.
+    #[must_use]
     pub fn magnitude(self) -> Diopters {
         Diopters(self.0.abs())
     }
@@ -36,17 +37,12 @@ impl Diopters {
 
 impl fmt::Display for Diopters {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        let sign = if self.0 < 0 {
-            '-'
-        } else if self.0 > 0 {
-            '+'
-        } else {
-            ' '
-        };
         let v = self.0.unsigned_abs();
-        if sign != ' ' {
-            write!(f, "{sign}")?;
-        }
+        f.write_str(match self.0.signum() {
+            -1 => "-",
+            1 => "+",
+            _ => "",
+        })?;
         if v.is_multiple_of(10) {
             write!(f, "{}.{:02}", v / 1000, v % 1000 / 10)
         } else {
@@ -74,6 +70,7 @@ impl Axis {
     }
 
     /// Returns the axis at right angles.
+    #[must_use]
     pub fn perpendicular(self) -> Axis {
         Axis(if self.0 > 90 {
             self.0 - 90

@@ -3,10 +3,11 @@
 use unicode_normalization::UnicodeNormalization;
 use unicode_normalization::char::is_combining_mark;
 
-/// Says whether a character must never reach a terminal: controls, and the marks that reorder text.
+/// Says whether a character must never reach a terminal: controls, line
+/// separators, and the marks that reorder or hide text.
 pub fn is_unsafe(c: char) -> bool {
     c.is_control()
-        || matches!(c, '\u{200B}' | '\u{200E}' | '\u{200F}' | '\u{202A}'..='\u{202E}' | '\u{2060}'..='\u{2064}' | '\u{2066}'..='\u{2069}' | '\u{FEFF}' | '\u{FFF9}'..='\u{FFFB}')
+        || matches!(c, '\u{061C}' | '\u{2028}' | '\u{2029}' | '\u{206A}'..='\u{206F}' | '\u{E0000}'..='\u{E007F}' | '\u{200B}' | '\u{200E}' | '\u{200F}' | '\u{202A}'..='\u{202E}' | '\u{2060}'..='\u{2064}' | '\u{2066}'..='\u{2069}' | '\u{FEFF}' | '\u{FFF9}'..='\u{FFFB}')
 }
 
 /// Returns the text with unsafe characters shown as `�`, at most `limit` characters long.
@@ -39,6 +40,7 @@ pub fn folded(text: &str) -> String {
             'œ' | 'Œ' => out.push_str("oe"),
             'þ' | 'Þ' => out.push_str("th"),
             'ı' => out.push('i'),
+            'ς' => out.push('σ'),
             'ħ' | 'Ħ' => out.push('h'),
             '\u{2019}' | '\u{02BC}' | '`' => out.push('\''),
             c => out.extend(c.to_lowercase()),

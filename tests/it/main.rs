@@ -1,5 +1,6 @@
 //! The one integration test binary: each further one would link the encrypted engine again.
 
+mod actions;
 mod architecture;
 mod cli;
 mod demo;

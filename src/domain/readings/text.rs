@@ -43,7 +43,7 @@ impl Readings {
                 } else {
                     Some(
                         $list::from_word(text)
-                            .ok_or_else(|| wrong(one_of($list::words(), text)))?,
+                            .ok_or_else(|| wrong(one_of(&$list::words(), text)))?,
                     )
                 };
             }};
@@ -251,117 +251,6 @@ impl Readings {
             .filter_map(|f| self.get(*f).map(|text| (*f, text)))
             .collect()
     }
-
-    /// Checks what must hold between fields and returns everything that does not.
-    pub fn contradictions(&self) -> Vec<FieldError> {
-        let mut out = Vec::new();
-        let mut axis = |eye: &InstrumentEye, cylinder: Field, field: Field| {
-            let has_cylinder = eye
-                .cylinder
-                .is_some_and(|c| c != Power::Value(super::super::refraction::Diopters(0)));
-            if has_cylinder && eye.axis.is_none() {
-                out.push(FieldError::new(
-                    field,
-                    "",
-                    format!("an axis from 1 to 180 beside {}", cylinder.word()),
-                ));
-            }
-            if eye.axis.is_some() && eye.cylinder.is_none() {
-                out.push(FieldError::new(
-                    cylinder,
-                    "",
-                    format!("a cylinder beside {}", field.word()),
-                ));
-            }
-        };
-        axis(
-            &self.instrument.right,
-            Field::CylinderRight,
-            Field::AxisRight,
-        );
-        axis(&self.instrument.left, Field::CylinderLeft, Field::AxisLeft);
-        match (self.chart_distance, self.used_distance) {
-            (Some(chart), None) => {
-                let field = if chart.in_feet {
-                    Field::UsedDistanceFt
-                } else {
-                    Field::UsedDistanceM
-                };
-                out.push(FieldError::new(
-                    field,
-                    "",
-                    "the distance used beside the chart's distance",
-                ));
-            }
-            (None, Some(used)) => {
-                let field = if used.in_feet {
-                    Field::ChartDistanceFt
-                } else {
-                    Field::ChartDistanceM
-                };
-                out.push(FieldError::new(
-                    field,
-                    "",
-                    "the chart's distance beside the distance used",
-                ));
-            }
-            _ => {}
-        }
-        if self.testable == Some(YesNo::No) {
-            let read = [
-                (Field::DistanceRight, self.distance.right),
-                (Field::DistanceLeft, self.distance.left),
-                (Field::DistanceBoth, self.distance_both),
-            ];
-            for (field, value) in read {
-                if let Some(AcuityResult::Read(acuity)) = value {
-                    out.push(FieldError::new(
-                        field,
-                        &acuity.to_string(),
-                        "no distance acuity beside testable=no",
-                    ));
-                }
-            }
-        }
-        let over = |part: Option<u8>, whole: Option<u8>| matches!((part, whole), (Some(p), Some(w)) if p > w);
-        if over(self.stereo_correct, self.stereo_shown) {
-            out.push(FieldError::new(
-                Field::StereoCorrect,
-                &self.stereo_correct.unwrap_or(0).to_string(),
-                "no more than stereo_shown",
-            ));
-        }
-        if over(self.plates_missed, self.plates_shown) {
-            out.push(FieldError::new(
-                Field::PlatesMissed,
-                &self.plates_missed.unwrap_or(0).to_string(),
-                "no more than plates_shown",
-            ));
-        }
-        for (eye, result, sphere) in [
-            (
-                &self.instrument.right,
-                Field::InstrumentRight,
-                Field::SphereRight,
-            ),
-            (
-                &self.instrument.left,
-                Field::InstrumentLeft,
-                Field::SphereLeft,
-            ),
-        ] {
-            if eye.result == Some(InstrumentResult::NoReading)
-                && (eye.sphere.is_some() || eye.cylinder.is_some())
-            {
-                out.push(FieldError::new(
-                    result,
-                    "no_reading",
-                    format!("ok, or no values in {} and its cylinder", sphere.word()),
-                ));
-            }
-        }
-        out
-    }
 }
 
 fn optional<T>(text: &str, parse: impl FnOnce(&str) -> Option<T>) -> Result<Option<T>, ()> {
@@ -372,7 +261,7 @@ fn optional<T>(text: &str, parse: impl FnOnce(&str) -> Option<T>) -> Result<Opti
     }
 }
 
-fn one_of(words: String, text: &str) -> String {
+fn one_of(words: &str, text: &str) -> String {
     match nearest(&text.to_lowercase(), words.split(", ")) {
         Some(word) => format!("one of {words} (did you mean {word}?)"),
         None => format!("one of {words}"),
@@ -475,7 +364,7 @@ fn signs_expected(text: &str) -> String {
     if SignKind::from_word(kind).is_some() {
         return format!("{kind}, {kind}:right, {kind}:left or {kind}:both");
     }
-    one_of(format!("none, {}", SignKind::words()), kind)
+    one_of(&format!("none, {}", SignKind::words()), kind)
 }
 
 fn history_expected(text: &str) -> String {
@@ -484,5 +373,5 @@ fn history_expected(text: &str) -> String {
         .map(str::trim)
         .find(|w| History::from_word(w).is_none())
         .unwrap_or(text);
-    one_of(format!("none, {}", History::words()), bad)
+    one_of(&format!("none, {}", History::words()), bad)
 }

@@ -1,0 +1,143 @@
+//! From a child at the bench to an outcome: pure, called on every key.
+
+use crate::actions::views::{DayChild, DayInfo};
+use crate::domain::age::AgeMonths;
+use crate::domain::codes::{Correction, History, Status};
+use crate::domain::field::Field;
+use crate::domain::outcome::Outcome;
+use crate::domain::readings::Readings;
+use crate::rules::{
+    Applies, Case, Criterion, Earlier, Library, Measure, PassLine, Protocol, judge_protocol,
+    pass_line,
+};
+
+/// Returns what the readings come to for this child on this day.
+///
+/// A protocol that the library does not hold (a local file was removed) gives nothing.
+pub fn preview(
+    library: &Library,
+    day: &DayInfo,
+    child: &DayChild,
+    readings: &Readings,
+) -> Option<Outcome> {
+    let protocol = library.protocol(&day.protocol)?;
+    let with_history;
+    let readings = if readings.history.is_none() && !child.history.is_empty() {
+        with_history = Readings {
+            history: Some(child.history.clone()),
+            ..readings.clone()
+        };
+        &with_history
+    } else {
+        readings
+    };
+    Some(judge_protocol(
+        library,
+        protocol,
+        &case(day, child, readings),
+    ))
+}
+
+fn case<'a>(day: &DayInfo, child: &DayChild, readings: &'a Readings) -> Case<'a> {
+    Case {
+        age: child.age,
+        grade: child.grade,
+        on: Some(day.date),
+        attempt: child.attempt,
+        method: Some(day.method),
+        consent: child.consent,
+        under_care: child.under_care
+            || readings.status == Some(Status::UnderCare)
+            || readings.has_history(History::UnderCare),
+        examined_recently: child.examined_recently,
+        earlier: Earlier {
+            glasses_visits: child.glasses_visits,
+            not_testable: child.not_testable_before,
+        },
+        ..Case::new(readings)
+    }
+}
+
+/// Returns the worst line that still passes for this child, if the protocol has one.
+pub fn pass_line_for(library: &Library, day: &DayInfo, child: &DayChild) -> Option<PassLine> {
+    pass_line(
+        library,
+        library.protocol(&day.protocol)?,
+        child.age,
+        child.grade,
+    )
+}
+
+/// Returns the fields that the protocol and this age ask for, in the order of the bench (common
+/// practice): history and signs are said on signing, stereo, cover, distance right, distance left,
+/// near, instrument, red reflex, color, the plus lens last.
+pub fn bench_fields(library: &Library, day: &DayInfo, child: &DayChild) -> Vec<Field> {
+    let Some(protocol) = library.protocol(&day.protocol) else {
+        return Vec::new();
+    };
+    let asked = |measure: Measure| {
+        protocol.required.contains(&measure)
+            || always(library, protocol).any(|c| {
+                c.measure == measure && holds(&c.applies, child) && (c.required || c.informs)
+            })
+    };
+    let instrument = protocol
+        .instrument_below_months
+        .zip(child.age)
+        .is_some_and(|(below, AgeMonths(age))| age < below);
+    let mut fields = Vec::new();
+    if child.wears_glasses != Some(false) {
+        fields.push(Field::CorrectionWorn);
+    }
+    if instrument {
+        fields.extend([
+            Field::SphereRight,
+            Field::CylinderRight,
+            Field::AxisRight,
+            Field::SphereLeft,
+            Field::CylinderLeft,
+            Field::AxisLeft,
+        ]);
+    } else {
+        if asked(Measure::Stereo) {
+            fields.extend([Field::StereoCorrect, Field::StereoShown]);
+        }
+        if asked(Measure::DistanceEachEye) {
+            fields.extend([Field::DistanceRight, Field::DistanceLeft]);
+        }
+        if asked(Measure::NearEachEye) {
+            fields.extend([Field::NearRight, Field::NearLeft]);
+        }
+        if asked(Measure::ColorPlates) {
+            fields.extend([Field::PlatesMissed, Field::PlatesShown]);
+        }
+        let plus_lens = always(library, protocol)
+            .any(|c| c.measure == Measure::PlusLens && holds(&c.applies, child));
+        if plus_lens && child.wears_glasses != Some(true) {
+            fields.push(Field::PlusLens);
+        }
+    }
+    fields.push(Field::Signs);
+    fields
+}
+
+fn always<'a>(library: &'a Library, protocol: &'a Protocol) -> impl Iterator<Item = &'a Criterion> {
+    protocol
+        .rule_sets
+        .iter()
+        .filter_map(|id| library.rule_set(id))
+        .flat_map(|set| set.criteria.iter())
+}
+
+fn holds(applies: &Applies, child: &DayChild) -> bool {
+    match applies {
+        Applies::Everyone => true,
+        Applies::Ages { .. } => child.age.is_some_and(|age| applies.holds_age(age)),
+        Applies::Grades(grades) => child.grade.is_some_and(|g| grades.contains(&g)),
+    }
+}
+
+/// Returns the correction that the roster implies before anybody asked, if it says so.
+pub fn correction_from_roster(child: &DayChild) -> Option<Correction> {
+    (child.wears_glasses == Some(false)).then_some(Correction::None)
+}

@@ -1,0 +1,230 @@
+//! Reports and tables: typed rows out of the store.
+
+use chrono::{DateTime, FixedOffset};
+
+use super::days::key_of;
+use super::desk::Desk;
+use super::error::{ActionError, Result};
+use super::views::DayInfo;
+use super::visit_rows::{judged, stored_outcome, tries_of};
+use crate::clock::Moment;
+use crate::domain::age::{AgeMonths, spoken};
+use crate::reports::csv::Form;
+use crate::reports::day::{self, About, DayReportRow, RuleSetUsed, StoreState};
+use crate::rules::CAUTIONS;
+
+/// A report as bytes, and the text that goes beside it.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Report {
+    /// The file.
+    pub bytes: Vec<u8>,
+    /// `OUT.about.txt`: the rule sets used and the cautions.
+    pub about: String,
+    /// How many rows it has.
+    pub rows: usize,
+}
+
+impl Desk {
+    /// Returns the report of a screening day in CSV: one row per child.
+    ///
+    /// With `exact`, text is as it is and there is no byte order mark.
+    pub fn day_report(&self, day: &DayInfo, exact: bool) -> Result<Report> {
+        let screeners = self.screener_names()?;
+        let stations = self.stations()?;
+        let mut rows = Vec::new();
+        for stored in self.read().day_report(&key_of(day))? {
+            let child = stored.child;
+            let mut row = DayReportRow {
+                child_id: child.child_id,
+                family_name: child.family_name,
+                given_name: child.given_name,
+                dob: child.dob,
+                age: child
+                    .dob
+                    .and_then(|born| AgeMonths::between(born, day.date)),
+                site: day.site.clone(),
+                class: child.class.unwrap_or_default(),
+                grade: child.grade,
+                screened_on: Some(day.date),
+                ..DayReportRow::default()
+            };
+            if let Some(visit) = &stored.visit {
+                row.attempt = Some(visit.attempt);
+                row.readings = judged(&tries_of(&stored.readings)?);
+            }
+            if let Some(signed) = &stored.outcome {
+                let outcome = stored_outcome(signed);
+                row.outcome = Some(outcome.kind);
+                row.qualifiers = outcome.qualifiers;
+                row.urgency = outcome.urgency;
+                row.act_by = outcome.act_by;
+                row.rescreen_by = outcome.due_on;
+                row.risks = outcome.risks;
+                row.criteria = outcome.criteria;
+                row.unknown = outcome.unknown;
+                row.reasons = outcome.reasons;
+                row.rule_set = outcome.rule_set;
+                row.edition = outcome.edition;
+                row.grade = signed.grade.or(row.grade);
+                row.tested_on = Some(signed.tested_on);
+                row.screener = signed
+                    .screener_id
+                    .and_then(|id| screeners.get(&id).cloned())
+                    .unwrap_or_default();
+                row.station = signed
+                    .station_id
+                    .and_then(|id| stations.get(&id).map(|s| s.name.clone()))
+                    .unwrap_or_default();
+            }
+            if let Some(visit) = &stored.visit {
+                row.entered_at = instant(Moment {
+                    utc_ms: visit.recorded_at_ms,
+                    offset_minutes: 0,
+                });
+            }
+            rows.push(row);
+        }
+        let head = self.head()?;
+        let state = StoreState {
+            head: head.whole(),
+            entries: head.entries,
+        };
+        let count = rows.len();
+        let bytes = day::write(Vec::new(), Form::exact(exact), rows, &state)
+            .map_err(|e| ActionError::failed(e.to_string()))?;
+        let title = format!("Day report, {}, {}", day.site_name, spoken(day.date));
+        let used = self.rule_sets_of(day);
+        let about = day::about(&About {
+            title: &title,
+            state: Some(&state),
+            rule_sets: &used,
+            cautions: &CAUTIONS,
+            guarded: !exact,
+        });
+        Ok(Report {
+            bytes,
+            about,
+            rows: count,
+        })
+    }
+
+    fn rule_sets_of(&self, day: &DayInfo) -> Vec<RuleSetUsed> {
+        let Some(protocol) = self.library.protocol(&day.protocol) else {
+            return Vec::new();
+        };
+        let sets = protocol
+            .rule_sets
+            .iter()
+            .chain(&protocol.when_done)
+            .chain(&protocol.instrument);
+        std::iter::once(RuleSetUsed {
+            id: protocol.id.to_string(),
+            title: protocol.title.clone(),
+            edition: protocol.edition.to_string(),
+            content_hash: protocol.content_hash.to_string(),
+            sources: protocol.sources.iter().map(|s| (**s).clone()).collect(),
+        })
+        .chain(
+            sets.filter_map(|id| self.library.rule_set(id))
+                .map(|set| RuleSetUsed {
+                    id: set.id.to_string(),
+                    title: set.title.clone(),
+                    edition: set.edition.to_string(),
+                    content_hash: set.content_hash.to_string(),
+                    sources: set.sources.iter().map(|s| (**s).clone()).collect(),
+                }),
+        )
+        .collect()
+    }
+
+    /// Returns who was referred or is due to come back, soonest first, as a table with its header.
+    pub fn referrals(&self) -> Result<Vec<Vec<String>>> {
+        let mut table = vec![row([
+            "due", "child", "born", "class", "outcome", "urgency", "screened",
+        ])];
+        let read = self.read();
+        for (child, visit) in read.referred()?.into_iter().chain(read.due()?) {
+            let due = visit.act_by.or(visit.due_on);
+            table.push(vec![
+                due.map_or_else(
+                    || "no date printed".to_owned(),
+                    |d| {
+                        if d < self.today {
+                            format!("{d}, overdue")
+                        } else {
+                            d.to_string()
+                        }
+                    },
+                ),
+                format!("{}, {}", child.family_name, child.given_name),
+                child.dob.map(|d| d.to_string()).unwrap_or_default(),
+                child.class.unwrap_or_default(),
+                visit.kind.map(|k| k.title().to_owned()).unwrap_or_default(),
+                visit
+                    .urgency
+                    .map(|u| u.title().to_owned())
+                    .unwrap_or_default(),
+                visit.screened_on.to_string(),
+            ]);
+        }
+        Ok(table)
+    }
+
+    /// Returns the counts of the present term by site as a table with its header. The latest signed
+    /// visit of each child counts.
+    pub fn term_table(&self) -> Result<Vec<Vec<String>>> {
+        let mut table = vec![row([
+            "site",
+            "enrolled",
+            "visited",
+            "pass",
+            "rescreen",
+            "refer",
+            "incomplete",
+            "exempt",
+        ])];
+        let Ok(term) = self.term_on(self.today) else {
+            return Ok(table);
+        };
+        let sites = self.sites()?;
+        let places = sites
+            .iter()
+            .map(|(code, name)| (Some(code.as_str()), name.as_str()));
+        for (code, name) in places.chain([(None, "all sites")]) {
+            let c = self
+                .read()
+                .term_counts(&term.code, term.starts_on, term.ends_on, code)?;
+            let counts = [
+                c.enrolled,
+                c.visited,
+                c.passed,
+                c.rescreen,
+                c.referred,
+                c.incomplete,
+                c.exempt,
+            ];
+            table.push(
+                std::iter::once(name.to_owned())
+                    .chain(counts.iter().map(ToString::to_string))
+                    .collect(),
+            );
+        }
+        Ok(table)
+    }
+}
+
+fn row<const N: usize>(cells: [&str; N]) -> Vec<String> {
+    cells.iter().map(|c| (*c).to_owned()).collect()
+}
+
+/// Writes a moment as an ISO instant with its offset.
+pub(super) fn instant(at: Moment) -> String {
+    let offset = FixedOffset::east_opt(at.offset_minutes * 60);
+    match (DateTime::from_timestamp_millis(at.utc_ms), offset) {
+        (Some(utc), Some(offset)) => utc
+            .with_timezone(&offset)
+            .format("%Y-%m-%dT%H:%M:%S%:z")
+            .to_string(),
+        _ => String::new(),
+    }
+}

@@ -1,0 +1,142 @@
+//! Signing, correcting, moving and taking back a visit.
+
+use uuid::Uuid;
+
+use super::days::key_of;
+use super::desk::Desk;
+use super::error::{ActionError, Result};
+use super::views::{DayChild, DayInfo, SignRequest, Signed};
+use super::visit_rows::{reasoned, stored_outcome, take_back};
+use crate::domain::field::Field;
+use crate::domain::readings::Readings;
+use crate::store::new_id;
+use crate::store::read::VisitNow;
+
+impl Desk {
+    /// Signs a visit: readings, outcome and, for an emergency, the running line, in one transaction.
+    ///
+    /// The same visit with the same readings again is a retry and writes nothing. Another try of a
+    /// child whose chart was not testable is kept as a second try of the same visit.
+    pub fn sign(&mut self, request: SignRequest) -> Result<Signed> {
+        let day = self.day_info(request.day)?;
+        let child = self.day_child(&day, &request.child_id)?;
+        let child = DayChild {
+            attempt: request.attempt,
+            ..child
+        };
+        let readings = self
+            .by_method(&day, &child, request.readings)
+            .map_err(|e| ActionError::bad(e.to_string()))?;
+        let existing = self
+            .read()
+            .visit_on(&request.child_id, &key_of(&day), request.attempt)?;
+        let Some(visit) = existing else {
+            let rows = self.new_visit(&day, &child, request.visit, &[readings])?;
+            self.write_visits(vec![rows])?;
+            return self.signed(&day, &request.child_id, request.visit);
+        };
+        let mut tries = self.tries(visit.visit_id)?;
+        if tries.last() == Some(&readings) {
+            return self.signed(&day, &request.child_id, visit.visit_id);
+        }
+        if !tries.last().is_some_and(Readings::any_eye_not_testable) {
+            return Err(ActionError::bad(format!(
+                "{}, {} is signed already on this day",
+                child.family_name, child.given_name
+            ))
+            .hint("correct the signed value with a reason"));
+        }
+        tries.push(readings);
+        let rows = self.further_try(&day, &child, visit.visit_id, &tries)?;
+        self.write_visits(vec![rows])?;
+        self.signed(&day, &request.child_id, visit.visit_id)
+    }
+
+    /// Corrects fields of a signed visit, with a reason; an empty text takes a value back.
+    pub fn correct(
+        &mut self,
+        visit: Uuid,
+        changes: &[(Field, String)],
+        reason: &str,
+    ) -> Result<Signed> {
+        let (now, day) = self.visit_and_day(visit)?;
+        let rows = self.corrected_visit(visit, changes, reason)?;
+        self.write_visits(vec![rows])?;
+        self.signed(&day, &now.child_id, visit)
+    }
+
+    /// Moves a whole visit to the child it belongs to, and leaves the other one to come.
+    pub fn move_visit(
+        &mut self,
+        visit: Uuid,
+        to_child_id: &str,
+        reason: &str,
+    ) -> Result<(Signed, DayChild)> {
+        let reason = reasoned(reason)?;
+        let (now, day) = self.visit_and_day(visit)?;
+        if now.child_id == to_child_id {
+            return Err(ActionError::bad("this visit is that child's already"));
+        }
+        let to = self.day_child(&day, to_child_id)?;
+        if self
+            .read()
+            .visit_on(to_child_id, &key_of(&day), to.attempt)?
+            .is_some()
+        {
+            return Err(ActionError::bad(format!(
+                "{}, {} has a visit on this day already",
+                to.family_name, to.given_name
+            ))
+            .hint("take that one back or move it first"));
+        }
+        let there = new_id();
+        let rows = self.new_visit(&day, &to, there, &self.tries(visit)?)?;
+        let author = self.author();
+        self.store.append(&author, |tx| {
+            take_back(tx, visit, &reason)?;
+            rows.write(tx)
+        })?;
+        let from = self.day_child(&day, &now.child_id)?;
+        Ok((self.signed(&day, to_child_id, there)?, from))
+    }
+
+    /// Takes a signed visit back; everything stays in the history.
+    pub fn retract(&mut self, visit: Uuid, reason: &str) -> Result<DayChild> {
+        let reason = reasoned(reason)?;
+        let (now, day) = self.visit_and_day(visit)?;
+        let author = self.author();
+        self.store
+            .append(&author, |tx| take_back(tx, visit, &reason))?;
+        self.day_child(&day, &now.child_id)
+    }
+
+    pub(super) fn visit_and_day(&self, visit: Uuid) -> Result<(VisitNow, DayInfo)> {
+        let now = self
+            .read()
+            .visit(visit)?
+            .ok_or_else(|| ActionError::bad("there is no such visit, or it was taken back"))?;
+        let key = now.day();
+        let day = self
+            .days()?
+            .into_iter()
+            .find(|d| key_of(d) == key)
+            .ok_or_else(|| ActionError::failed("the screening day of this visit is missing"))?;
+        Ok((now, day))
+    }
+
+    /// Returns what was stored, read back.
+    fn signed(&self, day: &DayInfo, child_id: &str, visit: Uuid) -> Result<Signed> {
+        let outcome = self
+            .read()
+            .outcomes(visit)?
+            .into_iter()
+            .next()
+            .ok_or_else(|| ActionError::failed("the outcome was not found after saving"))?;
+        Ok(Signed {
+            visit,
+            child: self.day_child(day, child_id)?,
+            outcome: stored_outcome(&outcome),
+            head: self.head()?.short(),
+        })
+    }
+}

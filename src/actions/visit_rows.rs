@@ -1,0 +1,524 @@
+//! The entries that a signature, a further try or a correction consists of.
+
+use uuid::Uuid;
+
+use super::desk::Desk;
+use super::error::{ActionError, Result};
+use super::judging::{pass_line_for, preview};
+use super::views::{DayChild, DayInfo, StoredOutcome};
+use crate::clock;
+use crate::domain::codes::AcuityMethod;
+use crate::domain::field::{Field, FieldError};
+use crate::domain::outcome::{Outcome, RiskKind, Urgency};
+use crate::domain::readings::{AcuityResult, ReadingContext, Readings};
+use crate::rules::explain;
+use crate::store::read::ReadingNow;
+use crate::store::row::{self, Reading, RuleSetUsed, UrgentAction, Visit};
+use crate::store::{Row, Tx, new_id};
+
+/// What separates list items in a stored cell.
+const SEPARATOR: &str = ";";
+
+/// Everything that one intention about one visit writes.
+pub(super) struct VisitRows {
+    visit: Uuid,
+    /// The visit itself, where it is new.
+    new: Option<Visit>,
+    readings: Vec<Reading>,
+    edits: Vec<Edit>,
+    outcome: row::Outcome,
+    raise: Option<UrgentAction>,
+    rules: Vec<RuleSetUsed>,
+    /// Why the present outcome is replaced, where there is one.
+    reason: Option<String>,
+}
+
+/// One value that replaces, adds to or takes back what stands there.
+struct Edit {
+    old: Vec<Uuid>,
+    new: Option<Reading>,
+}
+
+impl VisitRows {
+    /// Adds the entries; a correction that changes nothing adds none.
+    pub(super) fn write(self, tx: &mut Tx<'_>) -> crate::store::Result<()> {
+        if self.new.is_none() && self.readings.is_empty() && self.edits.is_empty() {
+            return Ok(());
+        }
+        if let Some(visit) = &self.new {
+            tx.add(visit)?;
+        }
+        for reading in &self.readings {
+            tx.add(reading)?;
+        }
+        let reason = self.reason.as_deref().unwrap_or_default();
+        for Edit { old, new } in self.edits {
+            match (old.is_empty(), new) {
+                (true, Some(new)) => tx.add(&new)?,
+                (_, new) => {
+                    tx.supersede(&old, new, reason)?;
+                }
+            }
+        }
+        if self.new.is_some() {
+            tx.add(&self.outcome)?;
+        } else {
+            replace_outcome(tx, self.visit, self.outcome, reason)?;
+        }
+        for rules in self.rules {
+            if tx.read().rule_set_used(&rules.content_hash)?.is_none() {
+                tx.add(&rules)?;
+            }
+        }
+        self.raise.map_or(Ok(()), |raise| tx.add(&raise))
+    }
+}
+
+impl Desk {
+    /// Writes all of them in one transaction.
+    pub(super) fn write_visits(&mut self, visits: Vec<VisitRows>) -> Result<()> {
+        let author = self.author();
+        Ok(self.store.append(&author, |tx| {
+            for visit in visits {
+                visit.write(tx)?;
+            }
+            Ok(())
+        })?)
+    }
+
+    /// Returns the readings as the day's method understands them: on a critical-line day a bare pass
+    /// line is "this line or better", and what is worse is "worse than it".
+    pub(super) fn by_method(
+        &self,
+        day: &DayInfo,
+        child: &DayChild,
+        mut readings: Readings,
+    ) -> std::result::Result<Readings, FieldError> {
+        let method = *readings.acuity_method.get_or_insert(day.method);
+        if method == AcuityMethod::CriticalLine {
+            let context = ReadingContext {
+                critical_line: pass_line_for(&self.library, day, child).map(|p| p.line),
+                ..ReadingContext::default()
+            };
+            for field in [
+                Field::DistanceRight,
+                Field::DistanceLeft,
+                Field::DistanceBoth,
+            ] {
+                if let Some(text) = readings.get(field) {
+                    readings.set(field, &text, context)?;
+                }
+            }
+        } else if day.method == AcuityMethod::Threshold {
+            // The ordinary case needs no entry of its own.
+            readings.acuity_method = None;
+        }
+        match readings.contradictions().into_iter().next() {
+            Some(problem) => Err(problem),
+            None => Ok(readings),
+        }
+    }
+
+    /// Prepares a visit that is not in the store yet.
+    pub(super) fn new_visit(
+        &self,
+        day: &DayInfo,
+        child: &DayChild,
+        visit: Uuid,
+        tries: &[Readings],
+    ) -> Result<VisitRows> {
+        let mut rows = self.further_try(day, child, visit, tries)?;
+        rows.readings = tries
+            .iter()
+            .zip(1..)
+            .flat_map(|(r, n)| reading_rows(visit, n, r))
+            .collect();
+        rows.new = Some(Visit {
+            id: new_id(),
+            visit_id: visit,
+            child_id: child.child_id.clone(),
+            site: day.site.clone(),
+            screened_on: day.date,
+            protocol: day.protocol.clone(),
+            attempt: child.attempt,
+        });
+        Ok(rows)
+    }
+
+    /// Prepares the last of several tries of a visit; the earlier ones are in the store.
+    pub(super) fn further_try(
+        &self,
+        day: &DayInfo,
+        child: &DayChild,
+        visit: Uuid,
+        tries: &[Readings],
+    ) -> Result<VisitRows> {
+        let readings = judged(tries);
+        let outcome = self.outcome_of(day, child, &readings)?;
+        Ok(VisitRows {
+            visit,
+            new: None,
+            readings: tries
+                .last()
+                .map(|last| reading_rows(visit, tries.len() as i64, last))
+                .unwrap_or_default(),
+            edits: Vec::new(),
+            outcome: self.outcome_row(visit, day, child, &outcome),
+            raise: self.emergency(visit, child, &readings, &outcome)?,
+            rules: self.rules_used(day),
+            reason: Some("another try of the same visit".to_owned()),
+        })
+    }
+
+    /// Prepares a correction; an empty text takes a value back.
+    pub(super) fn corrected_visit(
+        &self,
+        visit: Uuid,
+        changes: &[(Field, String)],
+        reason: &str,
+    ) -> Result<VisitRows> {
+        let reason = reasoned(reason)?;
+        let (now, day) = self.visit_and_day(visit)?;
+        let child = DayChild {
+            attempt: now.attempt,
+            ..self.day_child(&day, &now.child_id)?
+        };
+        let present = self.read().readings(visit)?;
+        let mut tries = tries_of(&present)?;
+        if tries.is_empty() {
+            tries.push(Readings::default());
+        }
+        let try_no = tries.len() as i64;
+        let last = tries.len() - 1;
+        let readings = &mut tries[last];
+        let context = ReadingContext {
+            bare: Some(self.notation()),
+            critical_line: pass_line_for(&self.library, &day, &child).map(|p| p.line),
+        };
+        let mut edits = Vec::new();
+        for (field, text) in changes {
+            readings
+                .set(*field, text, context)
+                .map_err(|e| ActionError::bad(e.to_string()))?;
+            let value = readings.get(*field);
+            let old: Vec<&ReadingNow> = present
+                .iter()
+                .filter(|r| r.field == *field && r.try_no == try_no)
+                .collect();
+            if matches!(&old[..], [one] if Some(&one.value) == value.as_ref())
+                || (old.is_empty() && value.is_none())
+            {
+                continue;
+            }
+            edits.push(Edit {
+                old: old.iter().map(|r| r.id).collect(),
+                new: value.map(|value| Reading {
+                    id: new_id(),
+                    visit_id: visit,
+                    try_no,
+                    field: *field,
+                    value,
+                }),
+            });
+        }
+        if let Some(problem) = readings.contradictions().first() {
+            return Err(ActionError::bad(problem.to_string()));
+        }
+        let readings = judged(&tries);
+        let outcome = self.outcome_of(&day, &child, &readings)?;
+        Ok(VisitRows {
+            visit,
+            new: None,
+            readings: Vec::new(),
+            edits,
+            outcome: self.outcome_row(visit, &day, &child, &outcome),
+            raise: self.emergency(visit, &child, &readings, &outcome)?,
+            rules: self.rules_used(&day),
+            reason: Some(reason),
+        })
+    }
+
+    /// Returns the tries of a visit, oldest first, as typed readings.
+    pub(super) fn tries(&self, visit: Uuid) -> Result<Vec<Readings>> {
+        tries_of(&self.read().readings(visit)?)
+    }
+
+    fn outcome_of(&self, day: &DayInfo, child: &DayChild, readings: &Readings) -> Result<Outcome> {
+        preview(&self.library, day, child, readings).ok_or_else(|| {
+            ActionError::failed(format!(
+                "the protocol {} is not among the rule files",
+                day.protocol
+            ))
+            .hint("put its file back into the store's rules folder")
+        })
+    }
+
+    /// Returns the running line that an emergency raises, unless this visit has one.
+    fn emergency(
+        &self,
+        visit: Uuid,
+        child: &DayChild,
+        readings: &Readings,
+        outcome: &Outcome,
+    ) -> Result<Option<UrgentAction>> {
+        if outcome.urgency != Some(Urgency::Emergency)
+            || self
+                .read()
+                .urgent_open()?
+                .iter()
+                .any(|u| u.raised.visit_id == Some(visit))
+        {
+            return Ok(None);
+        }
+        let at = clock::now();
+        Ok(Some(UrgentAction {
+            id: new_id(),
+            urgent_id: new_id(),
+            step: "raised".to_owned(),
+            child_id: child.child_id.clone(),
+            visit_id: Some(visit),
+            signs: emergency_words(readings, outcome),
+            told: String::new(),
+            at_ms: at.utc_ms,
+            at_offset_minutes: i64::from(at.offset_minutes),
+            screener_id: self.screener.as_ref().map(|s| s.screener_id),
+            note: String::new(),
+        }))
+    }
+
+    fn outcome_row(
+        &self,
+        visit: Uuid,
+        day: &DayInfo,
+        child: &DayChild,
+        outcome: &Outcome,
+    ) -> row::Outcome {
+        let mut reasons = String::new();
+        explain::reasons_text(outcome, &mut reasons);
+        let entered_on = clock::today();
+        row::Outcome {
+            id: new_id(),
+            visit_id: visit,
+            kind: outcome.kind,
+            decided_by: outcome.decided_by.word().to_owned(),
+            urgency: outcome.urgency,
+            act_within_days: outcome.act_within_days.map(i64::from),
+            act_by: outcome.act_by,
+            due_on: outcome.due_on,
+            risks: outcome
+                .risks
+                .iter()
+                .map(|r| r.word())
+                .collect::<Vec<_>>()
+                .join(SEPARATOR),
+            criteria: outcome.criteria.join(SEPARATOR),
+            unknown: outcome.unknown.join(SEPARATOR),
+            qualifiers: outcome.qualifiers.join(SEPARATOR),
+            reasons,
+            protocol_notes: outcome.protocol_notes.join(SEPARATOR),
+            rule_set: outcome.rule_set.to_string(),
+            edition: outcome.edition.to_string(),
+            content_hash: outcome.content_hash.to_string(),
+            age_months: child.age.map(|a| i64::from(a.0)),
+            grade: child.grade,
+            screener_id: self.screener.as_ref().map(|s| s.screener_id),
+            station_id: Some(self.store.station_id()),
+            tested_on: day.date,
+            entered_on,
+            late: entered_on > day.date,
+        }
+    }
+
+    /// Returns the texts that this day's outcomes are made with: the protocol's and its rule sets'.
+    fn rules_used(&self, day: &DayInfo) -> Vec<RuleSetUsed> {
+        let Some(protocol) = self.library.protocol(&day.protocol) else {
+            return Vec::new();
+        };
+        let used = |hash: &str, id: &str, edition: &str, text: &str| RuleSetUsed {
+            id: new_id(),
+            content_hash: hash.to_owned(),
+            rule_set: id.to_owned(),
+            edition: edition.to_owned(),
+            text: text.to_owned(),
+        };
+        let sets = protocol
+            .rule_sets
+            .iter()
+            .chain(&protocol.when_done)
+            .chain(&protocol.instrument);
+        std::iter::once(used(
+            &protocol.content_hash,
+            &protocol.id,
+            &protocol.edition,
+            &protocol.text,
+        ))
+        .chain(
+            sets.filter_map(|id| self.library.rule_set(id))
+                .map(|set| used(&set.content_hash, &set.id, &set.edition, &set.text)),
+        )
+        .collect()
+    }
+}
+
+fn reading_rows(visit: Uuid, try_no: i64, readings: &Readings) -> Vec<Reading> {
+    readings
+        .recorded()
+        .into_iter()
+        .map(|(field, value)| Reading {
+            id: new_id(),
+            visit_id: visit,
+            try_no,
+            field,
+            value,
+        })
+        .collect()
+}
+
+/// Puts a new outcome in the place of the present ones.
+fn replace_outcome(
+    tx: &mut Tx<'_>,
+    visit: Uuid,
+    new: row::Outcome,
+    reason: &str,
+) -> crate::store::Result<()> {
+    let old = tx.read().outcomes(visit)?;
+    let (same, other): (Vec<_>, Vec<_>) = old
+        .into_iter()
+        .partition(|o| o.rule_set == new.rule_set && o.edition == new.edition);
+    let ids = |rows: &[row::Outcome]| rows.iter().map(Row::id).collect::<Vec<_>>();
+    if !other.is_empty() {
+        tx.supersede::<row::Outcome>(&ids(&other), None, reason)?;
+    }
+    if same.is_empty() {
+        tx.add(&new)
+    } else {
+        tx.supersede(&ids(&same), Some(new), reason).map(|_| ())
+    }
+}
+
+/// Takes back everything of a visit.
+pub(super) fn take_back(tx: &mut Tx<'_>, visit: Uuid, reason: &str) -> crate::store::Result<()> {
+    let readings: Vec<Uuid> = tx.read().readings(visit)?.iter().map(|r| r.id).collect();
+    for reading in readings {
+        tx.supersede::<Reading>(&[reading], None, reason)?;
+    }
+    let outcomes: Vec<Uuid> = tx.read().outcomes(visit)?.iter().map(Row::id).collect();
+    for outcome in outcomes {
+        tx.supersede::<row::Outcome>(&[outcome], None, reason)?;
+    }
+    for urgent in tx.read().urgent_open()? {
+        if urgent.raised.visit_id == Some(visit) {
+            tx.supersede::<UrgentAction>(&[urgent.raised.id], None, reason)?;
+        }
+    }
+    let Some(now) = tx.read().visit(visit)? else {
+        return Ok(());
+    };
+    let record = tx.read().visit_record(now)?;
+    let visits: Vec<Uuid> = record
+        .visit
+        .iter()
+        .filter(|v| !v.superseded)
+        .map(|v| v.row.id)
+        .collect();
+    if !visits.is_empty() {
+        tx.supersede::<Visit>(&visits, None, reason)?;
+    }
+    Ok(())
+}
+
+/// Returns the tries of a visit, oldest first.
+pub(super) fn tries_of(readings: &[ReadingNow]) -> Result<Vec<Readings>> {
+    let count = readings.iter().map(|r| r.try_no).max().unwrap_or(0);
+    let mut tries = vec![Readings::default(); count as usize];
+    let mut sorted: Vec<&ReadingNow> = readings.iter().collect();
+    // Letters and method decide what an acuity means: the field list has them first.
+    sorted.sort_by_key(|r| r.field);
+    for reading in sorted {
+        let place = usize::try_from(reading.try_no - 1).unwrap_or(0);
+        tries[place]
+            .set(reading.field, &reading.value, ReadingContext::default())
+            .map_err(|e| ActionError::failed(format!("a stored value cannot be read: {e}")))?;
+    }
+    Ok(tries)
+}
+
+/// Returns what is judged of several tries: the distance acuity of the latest complete try (else of
+/// the last one), and the latest of everything else.
+pub(super) fn judged(tries: &[Readings]) -> Readings {
+    let Some(last) = tries.last() else {
+        return Readings::default();
+    };
+    let mut out = Readings::default();
+    for readings in tries {
+        for (field, value) in readings.recorded() {
+            // Canonical text of a typed value reads back to that value.
+            let _ = out.set(field, &value, ReadingContext::default());
+        }
+    }
+    let complete = |r: &&Readings| {
+        r.distance
+            .both()
+            .iter()
+            .all(|eye| matches!(eye, Some(AcuityResult::Read(_))))
+    };
+    let chart = tries.iter().rev().find(complete).unwrap_or(last);
+    Readings {
+        distance: chart.distance,
+        distance_both: chart.distance_both,
+        testable: chart.testable,
+        not_testable_reason: chart.not_testable_reason,
+        ..out
+    }
+}
+
+fn emergency_words(readings: &Readings, outcome: &Outcome) -> String {
+    let signs: Vec<String> = readings
+        .signs
+        .iter()
+        .flatten()
+        .map(|sign| match sign.side {
+            Some(side) => format!("{}, {}", sign.kind.title(), side.title()),
+            None => sign.kind.title().to_owned(),
+        })
+        .collect();
+    if signs.is_empty() {
+        outcome.criteria.join(", ")
+    } else {
+        signs.join("; ")
+    }
+}
+
+pub(super) fn stored_outcome(row: &row::Outcome) -> StoredOutcome {
+    let list = |text: &str| -> Vec<String> {
+        text.split(SEPARATOR)
+            .map(str::trim)
+            .filter(|t| !t.is_empty())
+            .map(str::to_owned)
+            .collect()
+    };
+    StoredOutcome {
+        kind: row.kind,
+        urgency: row.urgency,
+        act_by: row.act_by,
+        due_on: row.due_on,
+        risks: list(&row.risks)
+            .iter()
+            .filter_map(|r| RiskKind::from_word(r))
+            .collect(),
+        criteria: list(&row.criteria),
+        unknown: list(&row.unknown),
+        qualifiers: list(&row.qualifiers),
+        reasons: row.reasons.clone(),
+        rule_set: row.rule_set.clone(),
+        edition: row.edition.clone(),
+    }
+}
+
+pub(super) fn reasoned(reason: &str) -> Result<String> {
+    let reason = reason.trim();
+    if reason.is_empty() {
+        return Err(ActionError::bad("a correction needs a reason"));
+    }
+    Ok(crate::domain::text::shown(reason, 200))
+}

@@ -1,0 +1,239 @@
+//! Making and opening a store.
+
+use std::path::Path;
+
+use rusqlite::{Connection, OpenFlags};
+use uuid::Uuid;
+
+use super::cell::Value;
+use super::error::{Error, ErrorKind, Result};
+use super::key::{KeyFile, RawKey, RecoveryKey, Secret};
+use super::ledger::hex;
+use super::row::{Chain, Programme, Setting, Station};
+use super::{Access, Author, New, Store, files, lock, new_id, project, schema, write};
+
+/// Name of the database.
+pub(super) const FILE: &str = "store.db";
+
+/// What a connection is opened for.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(super) enum For {
+    /// Entries: every commit is durable.
+    Entries,
+    /// Reading only.
+    Reading,
+    /// Drafts: a power loss may cost the last second.
+    Drafts,
+}
+
+/// Opens a keyed connection, with the pragmas in the order they must have.
+pub(super) fn connect(path: &Path, key: &RawKey, purpose: For) -> Result<Connection> {
+    let flags = OpenFlags::SQLITE_OPEN_NO_MUTEX
+        | if purpose == For::Reading {
+            OpenFlags::SQLITE_OPEN_READ_ONLY
+        } else {
+            files::private_file(path)?;
+            OpenFlags::SQLITE_OPEN_READ_WRITE
+        };
+    let conn = Connection::open_with_flags(path, flags)?;
+    // First of all, else the engine writes about a wrong key to the terminal.
+    pragma(&conn, "cipher_log_level = NONE")?;
+    let raw = zeroize::Zeroizing::new(format!("key = \"x'{}'\"", hex(&key[..])));
+    pragma(&conn, &raw)?;
+    for one in [
+        "foreign_keys = ON",
+        "recursive_triggers = ON",
+        "trusted_schema = OFF",
+    ] {
+        pragma(&conn, one)?;
+    }
+    if purpose != For::Reading {
+        pragma(&conn, "journal_mode = WAL").map_err(|e| not_ours(path, e))?;
+    }
+    pragma(
+        &conn,
+        match purpose {
+            For::Drafts => "synchronous = NORMAL",
+            For::Entries | For::Reading => "synchronous = FULL",
+        },
+    )?;
+    pragma(&conn, "cache_size = -65536")?;
+    conn.busy_timeout(std::time::Duration::from_secs(5))?;
+    conn.set_prepared_statement_cache_capacity(256);
+    conn.query_row("SELECT count(*) FROM sqlite_schema", [], |_| Ok(()))
+        .map_err(|e| not_ours(path, e))?;
+    project::functions(&conn)?;
+    Ok(conn)
+}
+
+fn not_ours(path: &Path, error: rusqlite::Error) -> Error {
+    match error.sqlite_error_code() {
+        Some(rusqlite::ErrorCode::NotADatabase) => Error::new(
+            ErrorKind::Damaged,
+            format!("{} does not fit its key file", path.display()),
+        )
+        .with_hint("store.db and store.key belong together: copy both from the same backup"),
+        _ => error.into(),
+    }
+}
+
+fn pragma(conn: &Connection, text: &str) -> rusqlite::Result<()> {
+    let mut statement = conn.prepare(&format!("PRAGMA {text}"))?;
+    let mut rows = statement.query([])?;
+    while rows.next()?.is_some() {}
+    Ok(())
+}
+
+impl Store {
+    /// Makes a new store in a folder that has none.
+    ///
+    /// Returns the recovery key, to be printed once, where the store is protected.
+    pub fn create(dir: &Path, new: New) -> Result<(Store, Option<RecoveryKey>)> {
+        files::keep_private();
+        if dir.join(super::key::FILE).exists() || dir.join(FILE).exists() {
+            return Err(Error::new(
+                ErrorKind::Exists,
+                format!("there is a store in {} already", dir.display()),
+            )
+            .with_hint("open it, or name another folder with --store"));
+        }
+        let programme = new.programme_id.unwrap_or_else(new_id);
+        let raw_key = super::key::random::<32>()?;
+        // Refuses a weak passphrase before anything is made.
+        let (file, recovery) =
+            KeyFile::make(&new.programme, programme, &new.secret, new.kdf, &raw_key)?;
+        files::private_dir(dir)?;
+        files::refuse_network(dir)?;
+        let lock = lock::take(dir, std::time::Duration::ZERO)?;
+        let mut conn = connect(&dir.join(FILE), &raw_key, For::Entries)?;
+        pragma(
+            &conn,
+            &format!("application_id = {}", schema::APPLICATION_ID),
+        )?;
+        schema::migrate(&mut conn)?;
+        let (station, chain) = (new_id(), new_id());
+        let author = Author {
+            screener: None,
+            at: crate::clock::now(),
+        };
+        write::append(&mut conn, chain, &author, |tx| {
+            tx.add(&Chain {
+                id: new_id(),
+                chain_id: chain,
+                why: "init".to_owned(),
+                follows_chain: None,
+                follows_seq: None,
+                follows_hash: None,
+            })?;
+            tx.add(&Programme {
+                id: new_id(),
+                programme_id: programme,
+                name: new.programme.clone(),
+            })?;
+            tx.add(&Station {
+                id: new_id(),
+                station_id: station,
+                name: new.station.clone(),
+                chart_id: None,
+            })?;
+            tx.add(&Setting {
+                id: new_id(),
+                name: "notation".to_owned(),
+                value: new.notation.clone(),
+            })?;
+            tx.write_first_here(programme, station, chain)
+        })?;
+        // The key file last: a folder without one is no store.
+        file.write(dir)?;
+        let store = Store {
+            conn,
+            dir: dir.to_owned(),
+            info: file.info()?,
+            raw_key,
+            lock: Some(lock),
+            programme,
+            station,
+            chain,
+        };
+        Ok((store, recovery))
+    }
+
+    /// Opens a store.
+    pub fn open(dir: &Path, secret: &Secret, access: Access) -> Result<Store> {
+        let raw_key = KeyFile::read(dir)?.unlock(secret)?;
+        Store::with_key(dir, raw_key, access)
+    }
+
+    pub(super) fn with_key(dir: &Path, raw_key: RawKey, access: Access) -> Result<Store> {
+        files::keep_private();
+        let file = KeyFile::read(dir)?;
+        files::refuse_network(dir)?;
+        let path = dir.join(FILE);
+        if !path.exists() {
+            return Err(Error::new(
+                ErrorKind::NotAStore,
+                format!("{} is missing beside its key file", path.display()),
+            )
+            .with_hint("copy store.db back from a backup of this store"));
+        }
+        let (lock, purpose) = match access {
+            Access::Write { wait } => (Some(lock::take(dir, wait)?), For::Entries),
+            Access::ReadOnly => (None, For::Reading),
+        };
+        let mut conn = connect(&path, &raw_key, purpose)?;
+        let id: i32 = conn.query_row("PRAGMA application_id", [], |r| r.get(0))?;
+        if id != schema::APPLICATION_ID {
+            return Err(Error::new(
+                ErrorKind::NotAStore,
+                format!("{} was not made by twoline", path.display()),
+            ));
+        }
+        if schema::version(&conn)? < schema::NEWEST {
+            if lock.is_none() {
+                return Err(Error::new(
+                    ErrorKind::Older,
+                    "this store was made by an older twoline and must be brought up to date first",
+                )
+                .with_hint("open it once for writing"));
+            }
+            schema::migrate(&mut conn)?;
+        }
+        let here = conn.query_row("SELECT programme, station, chain FROM here", [], |r| {
+            let id = |at| r.get_ref(at).map(Uuid::from_stored);
+            Ok((id(0)?, id(1)?, id(2)?))
+        });
+        let Ok((Some(programme), Some(station), Some(chain))) = here else {
+            return Err(Error::damaged(
+                "here",
+                None,
+                "it does not say what this installation is",
+            ));
+        };
+        Ok(Store {
+            conn,
+            dir: dir.to_owned(),
+            info: file.info()?,
+            raw_key,
+            lock,
+            programme,
+            station,
+            chain,
+        })
+    }
+
+    /// Opens a store for writing, or, while another process writes, for reading only; then
+    /// [`Store::holder`] says who.
+    pub fn open_or_read(dir: &Path, secret: &Secret, wait: std::time::Duration) -> Result<Store> {
+        match Store::open(dir, secret, Access::Write { wait }) {
+            Err(error) if error.kind() == ErrorKind::Locked => {
+                Store::open(dir, secret, Access::ReadOnly)
+            }
+            opened => opened,
+        }
+    }
+
+    /// Returns the head of the ledger.
+    pub fn head(&self) -> Result<super::Head> {
+        self.read().head()
+    }
+}

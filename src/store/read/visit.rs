@@ -1,0 +1,216 @@
+//! Visits with their readings, outcomes and corrections.
+
+use chrono::NaiveDate;
+use rusqlite::params;
+use uuid::Uuid;
+
+use super::{Columns, Corrected, Reads};
+use crate::domain::codes::{Attempt, Status};
+use crate::domain::field::Field;
+use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::store::cell::Value;
+use crate::store::error::Result;
+use crate::store::row::{DayKey, Outcome, Reading, Visit};
+
+/// What a screen shows of a visit.
+#[derive(Debug, Clone, PartialEq, Eq)]
+#[allow(missing_docs)]
+pub struct VisitNow {
+    pub visit_id: Uuid,
+    pub child_id: String,
+    pub site: String,
+    pub screened_on: NaiveDate,
+    pub protocol: String,
+    pub attempt: Attempt,
+    pub status: Option<Status>,
+    /// How many readings are present, all tries together.
+    pub readings: i64,
+    /// The highest try.
+    pub tries: i64,
+    /// The present outcome entry; none while nobody signed.
+    pub outcome_id: Option<Uuid>,
+    pub kind: Option<OutcomeKind>,
+    pub decided_by: Option<String>,
+    pub urgency: Option<Urgency>,
+    pub act_by: Option<NaiveDate>,
+    pub due_on: Option<NaiveDate>,
+    pub qualifiers: Option<String>,
+    pub screener_id: Option<Uuid>,
+    pub station_id: Option<Uuid>,
+    /// Whether anything of it was corrected.
+    pub corrected: bool,
+    /// Whether two present values stand for one fact.
+    pub conflict: bool,
+    /// When it was last recorded, UTC milliseconds.
+    pub recorded_at_ms: i64,
+}
+
+pub(super) const VISIT_NOW: &str = "v.visit_id, v.child_id, v.site, v.screened_on, v.protocol, \
+    v.attempt, v.status, v.readings, v.tries, v.outcome_id, v.kind, v.decided_by, v.urgency, \
+    v.act_by, v.due_on, v.qualifiers, v.screener_id, v.station_id, v.corrected, v.conflict, \
+    v.recorded_at_ms";
+
+impl VisitNow {
+    pub(super) fn take(c: &mut Columns<'_, '_>) -> Result<VisitNow> {
+        Ok(VisitNow {
+            visit_id: c.take()?,
+            child_id: c.take()?,
+            site: c.take()?,
+            screened_on: c.take()?,
+            protocol: c.take()?,
+            attempt: c.take()?,
+            status: c.take()?,
+            readings: c.take()?,
+            tries: c.take()?,
+            outcome_id: c.take()?,
+            kind: c.take()?,
+            decided_by: c.take()?,
+            urgency: c.take()?,
+            act_by: c.take()?,
+            due_on: c.take()?,
+            qualifiers: c.take()?,
+            screener_id: c.take()?,
+            station_id: c.take()?,
+            corrected: c.take()?,
+            conflict: c.take()?,
+            recorded_at_ms: c.take()?,
+        })
+    }
+
+    /// Returns the key of its day.
+    pub fn day(&self) -> DayKey {
+        DayKey {
+            site: self.site.clone(),
+            screened_on: self.screened_on,
+            protocol: self.protocol.clone(),
+        }
+    }
+}
+
+/// A present reading.
+#[derive(Debug, Clone, PartialEq, Eq)]
+#[allow(missing_docs)]
+pub struct ReadingNow {
+    pub id: Uuid,
+    pub try_no: i64,
+    pub field: Field,
+    pub value: String,
+    /// Whether another present value stands beside it.
+    pub conflict: bool,
+}
+
+/// A visit with every entry of it.
+#[derive(Debug, Clone, PartialEq, Eq)]
+#[allow(missing_docs)]
+pub struct VisitRecord {
+    pub now: VisitNow,
+    pub visit: Corrected<Visit>,
+    pub readings: Corrected<Reading>,
+    pub outcomes: Corrected<Outcome>,
+}
+
+impl Reads<'_> {
+    /// Returns a visit as it is now.
+    pub fn visit(&self, visit_id: Uuid) -> Result<Option<VisitNow>> {
+        Ok(self
+            .visits_where("v.visit_id = ?1", params![visit_id.cell()])?
+            .pop())
+    }
+
+    /// Returns the visit of a child on a day, the retracted ones left out.
+    pub fn visit_on(
+        &self,
+        child_id: &str,
+        day: &DayKey,
+        attempt: Attempt,
+    ) -> Result<Option<VisitNow>> {
+        Ok(self
+            .visits_where(
+                "v.child_id = ?1 AND v.site = ?2 AND v.screened_on = ?3 AND v.protocol = ?4 \
+                 AND v.attempt = ?5",
+                params![
+                    child_id,
+                    day.site,
+                    day.screened_on.cell(),
+                    day.protocol,
+                    attempt.word()
+                ],
+            )?
+            .pop())
+    }
+
+    /// Returns the visits of a child as they are now, earliest day first.
+    pub fn visits_now(&self, child_id: &str) -> Result<Vec<VisitNow>> {
+        self.visits_where("v.child_id = ?1", params![child_id])
+    }
+
+    /// Returns the present readings of a visit, by try and field.
+    ///
+    /// Where two present values stand for one fact both are here and say so.
+    pub fn readings(&self, visit_id: Uuid) -> Result<Vec<ReadingNow>> {
+        let mut found = self.conn.prepare_cached(
+            "SELECT x.id, x.try_no, x.field, x.value, count(*) OVER (PARTITION BY x.try_no, x.field) > 1 \
+             FROM reading x WHERE x.visit_id = ?1 \
+             AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) \
+             ORDER BY x.try_no, x.tx, x.ord",
+        )?;
+        let mut rows = found.query([visit_id.cell()])?;
+        let mut out = Vec::new();
+        while let Some(row) = rows.next()? {
+            let c = &mut Columns::of(row, "reading");
+            out.push(ReadingNow {
+                id: c.take()?,
+                try_no: c.take()?,
+                field: c.take()?,
+                value: c.take()?,
+                conflict: c.take()?,
+            });
+        }
+        Ok(out)
+    }
+
+    /// Returns the present outcomes of a visit, latest first.
+    pub fn outcomes(&self, visit_id: Uuid) -> Result<Vec<Outcome>> {
+        let id = visit_id.cell();
+        self.rows(
+            &format!("x.visit_id = ?1 AND {}", super::generic::LIVE),
+            super::generic::LATEST_FIRST,
+            &[id],
+        )
+    }
+
+    /// Returns the visits of a child with every entry of them, latest day first.
+    pub fn visits_of(&self, child_id: &str) -> Result<Vec<VisitRecord>> {
+        let mut now = self.visits_now(child_id)?;
+        now.reverse();
+        now.into_iter().map(|now| self.visit_record(now)).collect()
+    }
+
+    /// Returns a visit with every entry of it.
+    pub fn visit_record(&self, now: VisitNow) -> Result<VisitRecord> {
+        let id = now.visit_id;
+        Ok(VisitRecord {
+            visit: self.recorded("x.visit_id = ?1", &[id.cell()])?,
+            readings: self.recorded("x.visit_id = ?1", &[id.cell()])?,
+            outcomes: self.recorded("x.visit_id = ?1", &[id.cell()])?,
+            now,
+        })
+    }
+
+    pub(super) fn visits_where(
+        &self,
+        condition: &str,
+        params: impl rusqlite::Params,
+    ) -> Result<Vec<VisitNow>> {
+        let mut found = self.conn.prepare_cached(&format!(
+            "SELECT {VISIT_NOW} FROM visit_current v WHERE {condition} \
+             ORDER BY v.screened_on, v.attempt, v.recorded_at_ms, v.visit_id"
+        ))?;
+        let mut rows = found.query(params)?;
+        let mut out = Vec::new();
+        while let Some(row) = rows.next()? {
+            out.push(VisitNow::take(&mut Columns::of(row, "visit_current"))?);
+        }
+        Ok(out)
+    }
+}

@@ -1,0 +1,495 @@
+//! Recomputing everything the ledger says, and every projection.
+
+use std::collections::BTreeMap;
+use std::fmt;
+
+use rusqlite::fallible_streaming_iterator::FallibleStreamingIterator;
+use rusqlite::{Connection, OptionalExtension, Rows};
+use uuid::Uuid;
+
+use super::cell::{Cell, Value};
+use super::error::Error;
+use super::ledger::{self, ExpectedHead, Head, Named, TxHeader, TxRows};
+use super::row::{TABLES, Table};
+use super::{Store, project};
+
+/// What a store that verified holds.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Verified {
+    /// The head.
+    pub head: Head,
+    /// Transactions.
+    pub transactions: u64,
+    /// Chains.
+    pub chains: u64,
+}
+
+/// The first thing found that is not as the ledger says.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Damage {
+    /// The table, or `file`.
+    pub table: String,
+    /// The entry, where it is one.
+    pub entry: Option<Uuid>,
+    /// What is wrong with it.
+    pub what: String,
+}
+
+impl Damage {
+    fn at(table: &str, entry: Option<Uuid>, what: impl Into<String>) -> Damage {
+        Damage {
+            table: table.to_owned(),
+            entry,
+            what: what.into(),
+        }
+    }
+
+    /// Returns what can be done about it.
+    pub fn hint(&self) -> Option<String> {
+        Error::from(self.clone()).hint()
+    }
+}
+
+impl fmt::Display for Damage {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        Error::from(self.clone()).fmt(f)
+    }
+}
+
+impl std::error::Error for Damage {}
+
+impl From<Damage> for Error {
+    fn from(damage: Damage) -> Error {
+        Error::damaged(&damage.table, damage.entry, &damage.what)
+    }
+}
+
+impl From<rusqlite::Error> for Damage {
+    fn from(error: rusqlite::Error) -> Damage {
+        Damage::at("file", None, error.to_string())
+    }
+}
+
+type Result<T> = std::result::Result<T, Damage>;
+
+impl Store {
+    /// Recomputes every hash, link, count and projection; `progress` gets entries done and in all.
+    ///
+    /// With the head that was printed on a report, also finds entries cut off the end since.
+    pub fn verify(
+        &self,
+        expected: Option<&ExpectedHead>,
+        progress: impl FnMut(u64, u64),
+    ) -> Result<Verified> {
+        let snapshot = self.conn.unchecked_transaction()?;
+        file_is_sound(&snapshot)?;
+        let walk = Walk::new(&snapshot, expected, progress)?;
+        let verified = walk.run()?;
+        projections(&snapshot)?;
+        here(&snapshot)?;
+        Ok(verified)
+    }
+}
+
+fn file_is_sound(conn: &Connection) -> Result<()> {
+    for check in ["cipher_integrity_check", "integrity_check"] {
+        let mut statement = conn.prepare(&format!("PRAGMA {check}"))?;
+        let mut rows = statement.query([])?;
+        while let Some(row) = rows.next()? {
+            let text: String = row.get(0)?;
+            if text != "ok" {
+                return Err(Damage::at("file", None, text));
+            }
+        }
+    }
+    Ok(())
+}
+
+/// The rows of one table, in the order of transactions.
+struct Cursor<'s> {
+    table: &'static Table,
+    rows: Rows<'s>,
+    at: Option<(i64, i64)>,
+}
+
+impl Cursor<'_> {
+    fn step(&mut self) -> Result<()> {
+        self.at = match self.rows.next()? {
+            Some(row) => Some((row.get(0)?, row.get(1)?)),
+            None => None,
+        };
+        Ok(())
+    }
+
+    fn id(&self) -> Option<Uuid> {
+        let row = self.rows.get()?;
+        Uuid::from_stored(row.get_ref(2).ok()?)
+    }
+
+    /// Hashes the row it stands at.
+    fn hash(&self, bytes: &mut Vec<u8>) -> std::result::Result<ledger::Hash, &'static str> {
+        const BROKEN: &str = "a value is of no kind that is ever written";
+        let row = self.rows.get().ok_or(BROKEN)?;
+        let version: i64 = row.get(3).map_err(|_| BROKEN)?;
+        let fields = usize::try_from(version - 1)
+            .ok()
+            .and_then(|i| self.table.versions.get(i))
+            .ok_or("its version is not known")?;
+        let cell = |at| {
+            row.get_ref(at)
+                .ok()
+                .and_then(Cell::from_stored)
+                .ok_or(BROKEN)
+        };
+        let (Cell::Blob(id), Cell::Blob(salt)) = (cell(2)?, cell(4)?) else {
+            return Err(BROKEN);
+        };
+        ledger::begin_row(bytes, self.table.name, version, &id, &salt);
+        for field in 0..self.table.columns.len() {
+            let cell = cell(5 + field)?;
+            if field < *fields {
+                cell.write(bytes);
+            } else if cell != Cell::Null {
+                return Err("a field is filled that its version does not have");
+            }
+        }
+        Ok(ledger::hash(bytes))
+    }
+}
+
+/// Walks the transactions, and beside them the rows of every table.
+struct Walk<'c, 'e, P> {
+    conn: &'c Connection,
+    expected: Option<&'e ExpectedHead>,
+    seen: bool,
+    progress: P,
+    total: u64,
+    done: u64,
+    /// Of each chain: highest number, its hash, its place in the merge order.
+    chains: BTreeMap<Uuid, Tip>,
+}
+
+struct Tip {
+    seq: i64,
+    hash: Vec<u8>,
+    lamport: i64,
+    entries: i64,
+}
+
+impl<'c, 'e, P: FnMut(u64, u64)> Walk<'c, 'e, P> {
+    fn new(conn: &'c Connection, expected: Option<&'e ExpectedHead>, progress: P) -> Result<Self> {
+        let total: i64 = conn.query_row("SELECT coalesce(sum(n), 0) FROM tx", [], |r| r.get(0))?;
+        Ok(Walk {
+            conn,
+            expected,
+            seen: expected.is_none(),
+            progress,
+            total: total.unsigned_abs(),
+            done: 0,
+            chains: BTreeMap::new(),
+        })
+    }
+
+    fn run(mut self) -> Result<Verified> {
+        let conn = self.conn;
+        let mut statements = Vec::new();
+        for table in TABLES {
+            let sql = format!(
+                "SELECT tx, ord, id, v, salt, {} FROM {} ORDER BY tx, ord",
+                table.columns.join(", "),
+                table.name
+            );
+            statements.push(conn.prepare(&sql)?);
+        }
+        let mut cursors = Vec::new();
+        for (table, statement) in TABLES.iter().zip(&mut statements) {
+            let mut cursor = Cursor {
+                table,
+                rows: statement.query([])?,
+                at: None,
+            };
+            cursor.step()?;
+            cursors.push(cursor);
+        }
+        let mut transactions = 0;
+        let mut statement = conn.prepare(
+            "SELECT tx, chain, seq, lamport, recorded_at_ms, offset_minutes, screener, \
+             program_version, prev, n, tx_hash, entries FROM tx ORDER BY tx",
+        )?;
+        let mut rows = statement.query([])?;
+        while let Some(row) = rows.next()? {
+            self.transaction(row, &mut cursors)?;
+            transactions += 1;
+        }
+        for cursor in &cursors {
+            if cursor.at.is_some() {
+                return Err(not_named(cursor));
+            }
+        }
+        (self.progress)(self.done, self.total);
+        self.finish(transactions)
+    }
+
+    fn transaction(&mut self, row: &rusqlite::Row<'_>, cursors: &mut [Cursor<'_>]) -> Result<()> {
+        let tx: i64 = row.get(0)?;
+        let id = |at| row.get_ref(at).map(Uuid::from_stored);
+        let seq: i64 = row.get(2)?;
+        let chain = id(1)?.ok_or_else(|| damaged_tx(tx, "its chain is not an id"))?;
+        let header = TxHeader {
+            chain,
+            seq,
+            lamport: row.get(3)?,
+            recorded_at_ms: row.get(4)?,
+            offset_minutes: row.get(5)?,
+            screener: Option::<Uuid>::from_stored(row.get_ref(6)?)
+                .ok_or_else(|| damaged_tx(tx, "its screener is not an id"))?,
+            program_version: row.get(7)?,
+            prev: row.get(8)?,
+        };
+        let (n, tx_hash): (i64, Vec<u8>) = (row.get(9)?, row.get(10)?);
+        let entries = row.get_ref(11)?.as_blob().unwrap_or_default();
+        // The rows first: a damaged one is named before the transaction it breaks.
+        let count = self.entries(tx, entries, cursors)?;
+        if count != n {
+            return Err(damaged_tx(
+                tx,
+                &format!("it says {n} entries and names {count}"),
+            ));
+        }
+        if TxRows::from_stored(entries, n).tx_hash(&header)[..] != tx_hash[..] {
+            return Err(damaged_tx(
+                tx,
+                &format!("number {seq} of chain {chain} is not as it was hashed"),
+            ));
+        }
+        self.link(tx, header, tx_hash, n)
+    }
+
+    /// Compares the rows a transaction names with those that are there.
+    fn entries(&mut self, tx: i64, mut named: &[u8], cursors: &mut [Cursor<'_>]) -> Result<i64> {
+        let mut bytes = Vec::new();
+        let mut ord = 0;
+        while !named.is_empty() {
+            let entry = ledger::next_named(&mut named)
+                .ok_or_else(|| damaged_tx(tx, "its list of entries is not well formed"))?;
+            let cursor = cursors
+                .iter_mut()
+                .find(|c| c.table.name == entry.table)
+                .ok_or_else(|| damaged_tx(tx, "it names a table that is not there"))?;
+            compare(&entry, (tx, ord), cursor, &mut bytes)?;
+            cursor.step()?;
+            ord += 1;
+            self.done += 1;
+            if self.done.is_multiple_of(8192) {
+                (self.progress)(self.done, self.total);
+            }
+        }
+        Ok(ord)
+    }
+
+    /// Links a transaction to the one before in its chain.
+    fn link(&mut self, tx: i64, header: TxHeader, hash: Vec<u8>, n: i64) -> Result<()> {
+        let before = self.chains.get(&header.chain);
+        let expected = before.map_or(1, |tip| tip.seq + 1);
+        if header.seq != expected {
+            return Err(damaged_tx(
+                tx,
+                &format!(
+                    "number {} of chain {} follows where {expected} should",
+                    header.seq, header.chain
+                ),
+            ));
+        }
+        if header.prev.as_deref() != before.map(|tip| tip.hash.as_slice()) {
+            return Err(damaged_tx(
+                tx,
+                "it does not follow the one before it in its chain",
+            ));
+        }
+        if before.is_some_and(|tip| tip.lamport >= header.lamport) {
+            return Err(damaged_tx(tx, "its place in the merge order goes back"));
+        }
+        let entries = before.map_or(0, |tip| tip.entries) + n;
+        self.chains.insert(
+            header.chain,
+            Tip {
+                seq: header.seq,
+                hash,
+                lamport: header.lamport,
+                entries,
+            },
+        );
+        if let Some(expected) = self.expected
+            && !self.seen
+        {
+            self.seen = expected.matches(&self.head());
+        }
+        Ok(())
+    }
+
+    fn head(&self) -> Head {
+        Head::of(
+            self.chains
+                .iter()
+                .map(|(c, t)| (c, t.seq, t.hash.as_slice())),
+            self.done,
+        )
+    }
+
+    fn finish(self, transactions: u64) -> Result<Verified> {
+        let mut statement = self
+            .conn
+            .prepare("SELECT chain, seq, tx_hash, entries FROM chain_current")?;
+        let mut rows = statement.query([])?;
+        let mut known = 0;
+        while let Some(row) = rows.next()? {
+            let chain = Uuid::from_stored(row.get_ref(0)?);
+            let tip = chain.and_then(|chain| self.chains.get(&chain));
+            let same = tip.is_some_and(|tip| {
+                row.get(1) == Ok(tip.seq)
+                    && row.get::<_, Vec<u8>>(2).as_ref() == Ok(&tip.hash)
+                    && row.get(3) == Ok(tip.entries)
+            });
+            if !same {
+                return Err(Damage::at(
+                    "chain_current",
+                    chain,
+                    "does not agree with the transactions: the end was cut off or changed",
+                ));
+            }
+            known += 1;
+        }
+        if known != self.chains.len() {
+            return Err(Damage::at("chain_current", None, "a chain is missing"));
+        }
+        let head = self.head();
+        if let Some(expected) = self.expected
+            && !self.seen
+        {
+            let of = expected
+                .entries
+                .map_or_else(String::new, |n| format!(" ({n} entries)"));
+            return Err(Damage::at(
+                "tx",
+                None,
+                format!(
+                    "the head {}{of} was never that of this store, which is now {head}: the end was cut off, or this is another store",
+                    expected.prefix
+                ),
+            ));
+        }
+        Ok(Verified {
+            head,
+            transactions,
+            chains: self.chains.len() as u64,
+        })
+    }
+}
+
+fn damaged_tx(tx: i64, what: &str) -> Damage {
+    Damage::at("tx", None, format!("transaction {tx}: {what}"))
+}
+
+fn not_named(cursor: &Cursor<'_>) -> Damage {
+    Damage::at(
+        cursor.table.name,
+        cursor.id(),
+        "no transaction names it here: it was put in, or moved",
+    )
+}
+
+fn compare(
+    entry: &Named<'_>,
+    place: (i64, i64),
+    cursor: &Cursor<'_>,
+    bytes: &mut Vec<u8>,
+) -> Result<()> {
+    let id = Uuid::from_slice(entry.id).ok();
+    match cursor.at {
+        Some(at) if at < place => return Err(not_named(cursor)),
+        Some(at) if at == place => {}
+        _ => return Err(Damage::at(entry.table, id, "is missing")),
+    }
+    if cursor.id() != id {
+        return Err(Damage::at(
+            entry.table,
+            id,
+            "another entry stands in its place",
+        ));
+    }
+    match cursor.hash(bytes) {
+        Err(what) => Err(Damage::at(entry.table, id, what)),
+        Ok(hash) if hash[..] != *entry.row_hash => {
+            Err(Damage::at(entry.table, id, "is not as it was recorded"))
+        }
+        Ok(_) => Ok(()),
+    }
+}
+
+/// Rebuilds the projections aside and compares.
+fn projections(conn: &Connection) -> Result<()> {
+    superseded(conn)?;
+    for (table, rebuilt, key) in [
+        ("child_current", project::CHILDREN, "child_id"),
+        ("visit_current", project::VISITS, "hex(visit_id)"),
+    ] {
+        let stored = format!("SELECT * FROM {table}");
+        for (less, more, what) in [
+            (stored.as_str(), rebuilt, "does not agree with the entries"),
+            (rebuilt, stored.as_str(), "is missing or out of date"),
+        ] {
+            // The column names come from the first part of a compound; the table's are wanted.
+            let sql = format!(
+                "SELECT {key} FROM (SELECT * FROM {table} WHERE 0 UNION ALL SELECT * FROM ({less} EXCEPT {more})) LIMIT 1"
+            );
+            let found: Option<String> = conn.query_row(&sql, [], |r| r.get(0)).optional()?;
+            if let Some(key) = found {
+                return Err(Damage::at(table, key.parse().ok(), format!("{key} {what}")));
+            }
+        }
+    }
+    Ok(())
+}
+
+fn superseded(conn: &Connection) -> Result<()> {
+    let mut expected = std::collections::BTreeSet::new();
+    let mut statement = conn.prepare("SELECT supersedes FROM correction")?;
+    let mut rows = statement.query([])?;
+    while let Some(row) = rows.next()? {
+        if let Some(ids) = super::Ids::from_stored(row.get_ref(0)?) {
+            expected.extend(ids.0);
+        }
+    }
+    let mut statement = conn.prepare("SELECT id FROM superseded")?;
+    let mut rows = statement.query([])?;
+    while let Some(row) = rows.next()? {
+        let id = Uuid::from_stored(row.get_ref(0)?);
+        if !id.is_some_and(|id| expected.remove(&id)) {
+            return Err(Damage::at("superseded", id, "no correction says so"));
+        }
+    }
+    match expected.first() {
+        None => Ok(()),
+        Some(id) => Err(Damage::at("superseded", Some(*id), "is missing")),
+    }
+}
+
+fn here(conn: &Connection) -> Result<()> {
+    for (column, table, field) in [
+        ("chain", "chain", "chain_id"),
+        ("programme", "programme", "programme_id"),
+        ("station", "station", "station_id"),
+    ] {
+        let sql =
+            format!("SELECT count(*) FROM here WHERE {column} IN (SELECT {field} FROM {table})");
+        let known: i64 = conn.query_row(&sql, [], |r| r.get(0))?;
+        if known != 1 {
+            return Err(Damage::at(
+                "here",
+                None,
+                format!("its {column} is not in this store"),
+            ));
+        }
+    }
+    Ok(())
+}
