@@ -47,7 +47,11 @@ fn two_steps_within_the_passing_range_are_rescreened() {
     assert_eq!(row["outcome"], "rescreen");
     assert_eq!(row["criteria"], "joint-policy-2016/between-eyes");
     assert_eq!(row["amblyopia_risk"], "interocular_difference");
-    assert!(row["reasons"].contains("28 Oct 2026"), "{}", row["reasons"]);
+    assert!(
+        row["reasons"].contains("by 28 Oct 2026"),
+        "{}",
+        row["reasons"]
+    );
 }
 
 #[test]
@@ -86,7 +90,11 @@ fn glasses_left_at_home_are_not_a_fail() {
         "2018-05-20,2026-10-14,,left_at_home,20/80,20/63,,none",
     );
     assert_eq!(row["outcome"], "incomplete");
-    assert!(row["reasons"].contains("28 Oct 2026"), "{}", row["reasons"]);
+    assert!(
+        row["reasons"].contains("by 28 Oct 2026"),
+        "{}",
+        row["reasons"]
+    );
 }
 
 #[test]
