@@ -49,12 +49,6 @@ fn the_queue_is_the_district() {
     assert_eq!(desk.screeners().expect("screeners").len(), 2);
     let index = desk.search_index().expect("the index");
     assert_eq!(index.len(), district.children.len());
-    assert!(
-        district
-            .visits
-            .iter()
-            .any(|v| v.attempt == Attempt::Rescreen)
-    );
 }
 
 /// A district of any day of the year fits into its term.
