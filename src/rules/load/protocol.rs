@@ -159,7 +159,7 @@ pub(super) fn load(
             credit_text: "".into(),
             credit_source: practice(),
             sources: sources.clone(),
-            criteria: at_once.into_iter().map(|(c, _)| c).collect(),
+            criteria: at_once,
             local: None,
             text: text.clone(),
             content_hash: content_hash.clone(),
