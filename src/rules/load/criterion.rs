@@ -54,6 +54,7 @@ pub(super) fn load_all(
     out
 }
 
+#[allow(clippy::too_many_lines)] // one key after the other
 fn load(
     reader: &mut Reader<'_>,
     section: &Section<'_, '_>,
@@ -92,7 +93,7 @@ fn load(
     let source = super::find_source(reader, section, "source", sources);
     let test = match (measure, &refer) {
         (Some(measure), Some((text, span))) => match threshold::parse(measure, text) {
-            Ok(test) => Some(test),
+            Ok(typed) => Some(typed),
             Err(expected) => {
                 let what = format!("`{text}` is not a threshold for {}", measure.title());
                 reader.fault(span.clone(), what, expected, "");
@@ -191,18 +192,16 @@ pub(super) fn applies(
         reader.fault(span.clone(), "both ages and grades", "one of the two", "");
     }
     if let Some((text, span)) = ages {
-        return match threshold::ages(&text) {
-            Some((from, to)) => (Applies::Ages { from, to }, Some(span)),
-            None => {
-                reader.fault(
-                    span,
-                    format!("`{text}` is not an age band"),
-                    "completed months, such as 36..48 or 60..",
-                    "36..48 is 36 completed months or more and fewer than 48",
-                );
-                (Applies::Everyone, None)
-            }
-        };
+        if let Some((from, to)) = threshold::ages(&text) {
+            return (Applies::Ages { from, to }, Some(span));
+        }
+        reader.fault(
+            span,
+            format!("`{text}` is not an age band"),
+            "completed months, such as 36..48 or 60..",
+            "36..48 is 36 completed months or more and fewer than 48",
+        );
+        return (Applies::Everyone, None);
     }
     if section.table.contains_key("grades") {
         let mut list = Vec::new();
