@@ -5,7 +5,6 @@ use std::collections::BTreeMap;
 use chrono::NaiveDate;
 use twoline::actions::{DayInfo, Desk, QueueState};
 use twoline::demo::{DEFAULT_SEED, generate, populate};
-use twoline::domain::codes::Attempt;
 
 /// Returns a populated desk and its newest day.
 fn populated(dir: &std::path::Path, seed: u64, day: NaiveDate) -> (Desk, DayInfo) {
