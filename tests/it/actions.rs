@@ -25,7 +25,10 @@ pub fn child(id: &str, family: &str, given: &str, dob: &str, grade: &str) -> Ros
         dob: Some(date(dob)),
         grade: Grade::parse(grade),
         site: "QE".into(),
-        details: RosterDetails { class: "1B".into(), ..RosterDetails::default() },
+        details: RosterDetails {
+            class: "1B".into(),
+            ..RosterDetails::default()
+        },
     }
 }
 
@@ -39,12 +42,20 @@ pub fn empty_desk() -> (tempfile::TempDir, Desk) {
         secret: Secret::None,
         kdf: Kdf::test(),
     };
-    let options = DeskOptions { today: Some(date("2026-10-14")), ..DeskOptions::default() };
+    let options = DeskOptions {
+        today: Some(date("2026-10-14")),
+        ..DeskOptions::default()
+    };
     let (mut desk, _) = init(&folder.path().join("store"), new, &options).expect("a store");
     desk.add_screener("JI", "J. Imani").expect("a screener");
     desk.add_site("QE", "Quillmere East").expect("a site");
-    desk.add_term("2026-autumn", "Autumn 2026", date("2026-08-01"), date("2026-12-31"))
-        .expect("a term");
+    desk.add_term(
+        "2026-autumn",
+        "Autumn 2026",
+        date("2026-08-01"),
+        date("2026-12-31"),
+    )
+    .expect("a term");
     (folder, desk)
 }
 
@@ -61,8 +72,16 @@ pub fn desk_with_children() -> (tempfile::TempDir, Desk) {
         with(child("Q-1", "Sands", "Oliver", "2020-03-02", "1"), no, None),
         with(child("Q-2", "Okafor", "Ada", "2020-09-01", "1"), no, None),
         with(child("Q-3", "Petit", "Léa", "2022-04-10", "PK"), no, None),
-        with(child("Q-4", "Quiroga", "Inés", "2018-05-20", "3"), Some(YesNo::Yes), None),
-        with(child("Q-5", "Idris", "Noor", "2021-01-08", "KG"), None, Some(Consent::No)),
+        with(
+            child("Q-4", "Quiroga", "Inés", "2018-05-20", "3"),
+            Some(YesNo::Yes),
+            None,
+        ),
+        with(
+            child("Q-5", "Idris", "Noor", "2021-01-08", "KG"),
+            None,
+            Some(Consent::No),
+        ),
         with(child("Q-6", "Tran", "Bảo", "2020-05-05", "1"), no, None),
     ];
     let plan = desk.plan_children(children, None).expect("a plan");
@@ -70,20 +89,37 @@ pub fn desk_with_children() -> (tempfile::TempDir, Desk) {
     (folder, desk)
 }
 
-pub fn open(desk: &mut Desk, on: &str, protocol: &str, method: AcuityMethod) -> twoline::actions::DayInfo {
-    desk.open_day(NewDay { site: "QE".into(), date: date(on), protocol: protocol.into(), method })
-        .expect("a day")
+pub fn open(
+    desk: &mut Desk,
+    on: &str,
+    protocol: &str,
+    method: AcuityMethod,
+) -> twoline::actions::DayInfo {
+    desk.open_day(NewDay {
+        site: "QE".into(),
+        date: date(on),
+        protocol: protocol.into(),
+        method,
+    })
+    .expect("a day")
 }
 
 pub fn readings(values: &[(Field, &str)]) -> Readings {
     let mut readings = Readings::default();
     for (field, text) in values {
-        readings.set(*field, text, ReadingContext::default()).expect("a value of this test");
+        readings
+            .set(*field, text, ReadingContext::default())
+            .expect("a value of this test");
     }
     readings
 }
 
-pub fn sign(desk: &mut Desk, day: &twoline::actions::DayInfo, id: &str, values: &[(Field, &str)]) -> Signed {
+pub fn sign(
+    desk: &mut Desk,
+    day: &twoline::actions::DayInfo,
+    id: &str,
+    values: &[(Field, &str)],
+) -> Signed {
     let child = desk.day_child(day, id).expect("a child");
     desk.sign(SignRequest {
         day: day.id,
@@ -101,16 +137,30 @@ const DAY: &str = "2026-10-14";
 fn a_passing_child_with_one_step_between_the_eyes() {
     let (_folder, mut desk) = desk_with_children();
     let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
-    let signed = sign(&mut desk, &day, "Q-1", &[
-        (Field::CorrectionWorn, "none"),
-        (Field::DistanceRight, "20/20"),
-        (Field::DistanceLeft, "20/25"),
-        (Field::PlusLens, "blurred"),
-        (Field::Signs, "none"),
-    ]);
+    let signed = sign(
+        &mut desk,
+        &day,
+        "Q-1",
+        &[
+            (Field::CorrectionWorn, "none"),
+            (Field::DistanceRight, "20/20"),
+            (Field::DistanceLeft, "20/25"),
+            (Field::PlusLens, "blurred"),
+            (Field::Signs, "none"),
+        ],
+    );
     assert_eq!(signed.child.age.map(|a| a.0), Some(79));
-    assert_eq!(signed.outcome.kind, OutcomeKind::Pass, "{}", signed.outcome.reasons);
-    assert!(signed.outcome.reasons.contains("one step"), "{}", signed.outcome.reasons);
+    assert_eq!(
+        signed.outcome.kind,
+        OutcomeKind::Pass,
+        "{}",
+        signed.outcome.reasons
+    );
+    assert!(
+        signed.outcome.reasons.contains("one step"),
+        "{}",
+        signed.outcome.reasons
+    );
     assert_eq!(signed.child.state, QueueState::Signed(OutcomeKind::Pass));
 }
 
@@ -118,11 +168,16 @@ fn a_passing_child_with_one_step_between_the_eyes() {
 fn two_steps_between_the_eyes_are_rescreened_within_fourteen_days() {
     let (_folder, mut desk) = desk_with_children();
     let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
-    let signed = sign(&mut desk, &day, "Q-2", &[
-        (Field::DistanceRight, "20/20"),
-        (Field::DistanceLeft, "20/32"),
-        (Field::Signs, "none"),
-    ]);
+    let signed = sign(
+        &mut desk,
+        &day,
+        "Q-2",
+        &[
+            (Field::DistanceRight, "20/20"),
+            (Field::DistanceLeft, "20/32"),
+            (Field::Signs, "none"),
+        ],
+    );
     assert_eq!(signed.child.age.map(|a| a.0), Some(73));
     assert_eq!(signed.outcome.kind, OutcomeKind::Rescreen);
     assert_eq!(signed.outcome.due_on, Some(date("2026-10-28")));
@@ -130,14 +185,27 @@ fn two_steps_between_the_eyes_are_rescreened_within_fourteen_days() {
     assert_eq!(signed.outcome.criteria, ["joint-policy-2016/between-eyes"]);
 
     // The rescreen two weeks later starts as one, due first; the same readings then refer.
-    let later = open(&mut desk, "2026-10-28", "us-school", AcuityMethod::Threshold);
+    let later = open(
+        &mut desk,
+        "2026-10-28",
+        "us-school",
+        AcuityMethod::Threshold,
+    );
     let first = desk.day_children(&later).expect("children").remove(0);
-    assert_eq!((first.child_id.as_str(), first.attempt), ("Q-2", Attempt::Rescreen));
-    let signed = sign(&mut desk, &later, "Q-2", &[
-        (Field::DistanceRight, "20/20"),
-        (Field::DistanceLeft, "20/32"),
-        (Field::Signs, "none"),
-    ]);
+    assert_eq!(
+        (first.child_id.as_str(), first.attempt),
+        ("Q-2", Attempt::Rescreen)
+    );
+    let signed = sign(
+        &mut desk,
+        &later,
+        "Q-2",
+        &[
+            (Field::DistanceRight, "20/20"),
+            (Field::DistanceLeft, "20/32"),
+            (Field::Signs, "none"),
+        ],
+    );
     assert_eq!(signed.outcome.kind, OutcomeKind::Refer);
     assert_eq!(signed.outcome.urgency, Some(Urgency::Routine));
 }
@@ -146,17 +214,34 @@ fn two_steps_between_the_eyes_are_rescreened_within_fourteen_days() {
 fn on_a_critical_line_day_both_eyes_pass_and_the_difference_is_not_tested() {
     let (_folder, mut desk) = desk_with_children();
     let day = open(&mut desk, DAY, "us-school", AcuityMethod::CriticalLine);
-    let signed = sign(&mut desk, &day, "Q-2", &[
-        (Field::DistanceRight, "20/32"),
-        (Field::DistanceLeft, "20/32"),
-        (Field::Signs, "none"),
-    ]);
+    let signed = sign(
+        &mut desk,
+        &day,
+        "Q-2",
+        &[
+            (Field::DistanceRight, "20/32"),
+            (Field::DistanceLeft, "20/32"),
+            (Field::Signs, "none"),
+        ],
+    );
     assert_eq!(signed.outcome.kind, OutcomeKind::Pass);
     let said = signed.outcome.qualifiers.join("; ");
-    assert!(said.contains("critical line") && said.contains("not tested"), "{said}");
-    assert!(signed.outcome.unknown.iter().any(|u| u == "joint-policy-2016/between-eyes"));
+    assert!(
+        said.contains("critical line") && said.contains("not tested"),
+        "{said}"
+    );
+    assert!(
+        signed
+            .outcome
+            .unknown
+            .iter()
+            .any(|u| u == "joint-policy-2016/between-eyes")
+    );
     let visit = desk.visit(&day, "Q-2").expect("read").expect("a visit");
-    assert_eq!(visit.readings.get(Field::DistanceRight).as_deref(), Some(">=20/32"));
+    assert_eq!(
+        visit.readings.get(Field::DistanceRight).as_deref(),
+        Some(">=20/32")
+    );
 }
 
 #[test]
@@ -165,15 +250,25 @@ fn not_testable_is_never_a_pass_and_comes_back_in_six_months() {
     let day = open(&mut desk, DAY, "us-preschool", AcuityMethod::Threshold);
     let first_try = [(Field::DistanceRight, "NT:shy")];
     sign(&mut desk, &day, "Q-3", &first_try);
-    let signed = sign(&mut desk, &day, "Q-3", &[
-        (Field::DistanceRight, "NT:shy"),
-        (Field::DistanceLeft, "NT"),
-        (Field::InstrumentRight, "no_reading"),
-        (Field::SphereLeft, "+1.25"),
-        (Field::CylinderLeft, "-0.50"),
-        (Field::AxisLeft, "180"),
-    ]);
-    assert_eq!(signed.outcome.kind, OutcomeKind::Rescreen, "{}", signed.outcome.reasons);
+    let signed = sign(
+        &mut desk,
+        &day,
+        "Q-3",
+        &[
+            (Field::DistanceRight, "NT:shy"),
+            (Field::DistanceLeft, "NT"),
+            (Field::InstrumentRight, "no_reading"),
+            (Field::SphereLeft, "+1.25"),
+            (Field::CylinderLeft, "-0.50"),
+            (Field::AxisLeft, "180"),
+        ],
+    );
+    assert_eq!(
+        signed.outcome.kind,
+        OutcomeKind::Rescreen,
+        "{}",
+        signed.outcome.reasons
+    );
     assert_eq!(signed.outcome.due_on, Some(date("2027-04-14")));
     assert_eq!(signed.child.state, QueueState::NotTestable);
     let visit = desk.visit(&day, "Q-3").expect("read").expect("a visit");
@@ -196,20 +291,39 @@ fn glasses_at_home_are_incomplete_and_do_not_use_up_the_first_attempt() {
     assert!(signed.outcome.criteria.is_empty(), "not judged as a fail");
     assert_eq!(signed.child.state, QueueState::GlassesAtHome);
 
-    let second = open(&mut desk, "2026-10-28", "us-school", AcuityMethod::Threshold);
+    let second = open(
+        &mut desk,
+        "2026-10-28",
+        "us-school",
+        AcuityMethod::Threshold,
+    );
     let child = desk.day_child(&second, "Q-4").expect("a child");
     assert_eq!((child.attempt, child.glasses_visits), (Attempt::First, 1));
     sign(&mut desk, &second, "Q-4", &values);
-    let third = open(&mut desk, "2026-11-11", "us-school", AcuityMethod::Threshold);
+    let third = open(
+        &mut desk,
+        "2026-11-11",
+        "us-school",
+        AcuityMethod::Threshold,
+    );
     let signed = sign(&mut desk, &third, "Q-4", &values);
-    assert_eq!(signed.outcome.kind, OutcomeKind::Refer, "after two visits without the glasses");
+    assert_eq!(
+        signed.outcome.kind,
+        OutcomeKind::Refer,
+        "after two visits without the glasses"
+    );
 }
 
 #[test]
 fn an_emergency_needs_no_consent_and_stays_until_somebody_was_told() {
     let (_folder, mut desk) = desk_with_children();
     let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
-    let signed = sign(&mut desk, &day, "Q-5", &[(Field::Signs, "white_pupil:left")]);
+    let signed = sign(
+        &mut desk,
+        &day,
+        "Q-5",
+        &[(Field::Signs, "white_pupil:left")],
+    );
     assert_eq!(signed.outcome.kind, OutcomeKind::Refer);
     assert_eq!(signed.outcome.urgency, Some(Urgency::Emergency));
     assert_eq!(signed.outcome.act_by, Some(date(DAY)));
@@ -223,9 +337,13 @@ fn an_emergency_needs_no_consent_and_stays_until_somebody_was_told() {
         told_at: "10:42".into(),
         told_by: "J. Imani".into(),
     };
-    assert!(desk.urgent_answer(answer(" ")).is_err(), "somebody must have been told");
+    assert!(
+        desk.urgent_answer(answer(" ")).is_err(),
+        "somebody must have been told"
+    );
     assert_eq!(desk.urgent_open().expect("read").len(), 1);
-    desk.urgent_answer(answer("on-call eye doctor")).expect("answered");
+    desk.urgent_answer(answer("on-call eye doctor"))
+        .expect("answered");
     assert!(desk.urgent_open().expect("read").is_empty());
     assert!(desk.urgent_answer(answer("again")).is_err());
 }
@@ -234,25 +352,42 @@ fn an_emergency_needs_no_consent_and_stays_until_somebody_was_told() {
 fn a_correction_keeps_what_stood_before_and_judges_again() {
     let (_folder, mut desk) = desk_with_children();
     let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
-    let values =
-        [(Field::DistanceRight, "20/20"), (Field::DistanceLeft, "20/40"), (Field::Signs, "none")];
+    let values = [
+        (Field::DistanceRight, "20/20"),
+        (Field::DistanceLeft, "20/40"),
+        (Field::Signs, "none"),
+    ];
     let signed = sign(&mut desk, &day, "Q-2", &values);
     assert_eq!(signed.outcome.kind, OutcomeKind::Rescreen);
     let before = desk.head().expect("head");
     let change = [(Field::DistanceLeft, "20/25".to_owned())];
-    assert!(desk.correct(signed.visit, &change, "  ").is_err(), "a reason is needed");
+    assert!(
+        desk.correct(signed.visit, &change, "  ").is_err(),
+        "a reason is needed"
+    );
     assert_eq!(desk.head().expect("head"), before);
 
-    let corrected = desk.correct(signed.visit, &change, "typed the wrong row").expect("corrected");
+    let corrected = desk
+        .correct(signed.visit, &change, "typed the wrong row")
+        .expect("corrected");
     assert_eq!(corrected.outcome.kind, OutcomeKind::Pass);
     let after = desk.head().expect("head");
-    desk.correct(signed.visit, &change, "once more").expect("no change");
-    assert_eq!(desk.head().expect("head"), after, "the same values again are no entry");
+    desk.correct(signed.visit, &change, "once more")
+        .expect("no change");
+    assert_eq!(
+        desk.head().expect("head"),
+        after,
+        "the same values again are no entry"
+    );
 
     let history = desk.history("Q-2").expect("read").expect("a child");
     let correction = &history.visits[0].corrections[0];
     assert_eq!(
-        (correction.before.as_str(), correction.after.as_str(), correction.reason.as_str()),
+        (
+            correction.before.as_str(),
+            correction.after.as_str(),
+            correction.reason.as_str()
+        ),
         ("20/40", "20/25", "typed the wrong row")
     );
     assert_eq!(correction.screener, "J. Imani");
@@ -262,15 +397,26 @@ fn a_correction_keeps_what_stood_before_and_judges_again() {
 fn a_visit_moves_to_the_child_it_belongs_to() {
     let (_folder, mut desk) = desk_with_children();
     let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
-    let values =
-        [(Field::DistanceRight, "20/20"), (Field::DistanceLeft, "20/20"), (Field::Signs, "none")];
+    let values = [
+        (Field::DistanceRight, "20/20"),
+        (Field::DistanceLeft, "20/20"),
+        (Field::Signs, "none"),
+    ];
     let signed = sign(&mut desk, &day, "Q-2", &values);
     sign(&mut desk, &day, "Q-1", &values);
-    assert!(desk.move_visit(signed.visit, "Q-1", "wrong child").is_err(), "Q-1 has a visit");
-    let (moved, from) = desk.move_visit(signed.visit, "Q-6", "wrong child").expect("moved");
+    assert!(
+        desk.move_visit(signed.visit, "Q-1", "wrong child").is_err(),
+        "Q-1 has a visit"
+    );
+    let (moved, from) = desk
+        .move_visit(signed.visit, "Q-6", "wrong child")
+        .expect("moved");
     assert_eq!(moved.child.child_id, "Q-6");
     assert_eq!(moved.outcome.kind, OutcomeKind::Pass);
-    assert_eq!((from.child_id.as_str(), from.state), ("Q-2", QueueState::ToCome));
+    assert_eq!(
+        (from.child_id.as_str(), from.state),
+        ("Q-2", QueueState::ToCome)
+    );
     sign(&mut desk, &day, "Q-2", &values);
 }
 
@@ -283,11 +429,17 @@ fn a_retry_of_the_same_signature_writes_nothing() {
         child_id: "Q-1".into(),
         attempt: Attempt::First,
         visit: new_visit_id(),
-        readings: readings(&[(Field::DistanceRight, "20/20"), (Field::DistanceLeft, "20/20")]),
+        readings: readings(&[
+            (Field::DistanceRight, "20/20"),
+            (Field::DistanceLeft, "20/20"),
+        ]),
     };
     let first = desk.sign(request.clone()).expect("signed");
     assert_eq!(desk.sign(request.clone()).expect("the same"), first);
-    let other = SignRequest { readings: readings(&[(Field::DistanceRight, "20/40")]), ..request };
+    let other = SignRequest {
+        readings: readings(&[(Field::DistanceRight, "20/40")]),
+        ..request
+    };
     let refused = desk.sign(other).expect_err("signed already");
     assert!(refused.hint.is_some_and(|h| h.contains("correct")));
 }
@@ -302,7 +454,10 @@ fn each_not_passed_state_is_one_of_its_own() {
     assert_eq!(state(&mut desk, "Q-1", "absent"), QueueState::Absent);
     assert_eq!(state(&mut desk, "Q-2", "opted_out"), QueueState::OptedOut);
     assert_eq!(state(&mut desk, "Q-6", "under_care"), QueueState::UnderCare);
-    assert_eq!(state(&mut desk, "Q-4", "not_attempted"), QueueState::NotAttempted);
+    assert_eq!(
+        state(&mut desk, "Q-4", "not_attempted"),
+        QueueState::NotAttempted
+    );
     assert_eq!(state(&mut desk, "Q-5", "left_early"), QueueState::LeftEarly);
 }
 
@@ -320,8 +475,16 @@ fn a_child_added_at_the_table_is_next() {
     };
     let added = desk.add_child(new.clone(), &day).expect("added");
     assert!(added.child_id.starts_with("P-"));
-    assert!(desk.day_children(&day).expect("children").iter().any(|c| c.child_id == added.child_id));
-    let unborn = NewChild { dob: Some(date("2026-10-15")), ..new };
+    assert!(
+        desk.day_children(&day)
+            .expect("children")
+            .iter()
+            .any(|c| c.child_id == added.child_id)
+    );
+    let unborn = NewChild {
+        dob: Some(date("2026-10-15")),
+        ..new
+    };
     assert!(desk.add_child(unborn, &day).is_err(), "born after the day");
     let mut index = desk.search_index().expect("index");
     assert_eq!(index.find("vega", 5)[0].child_id, added.child_id);
@@ -340,15 +503,35 @@ fn a_second_roster_is_an_update() {
     again[1].details.wears_glasses = Some(YesNo::No);
     let plan = desk.plan_children(again, None).expect("a plan");
     let count = |p: &twoline::actions::RosterPlan| {
-        (p.update.new.len(), p.update.changed.len(), p.update.unchanged.len(), p.update.gone.len())
+        (
+            p.update.new.len(),
+            p.update.changed.len(),
+            p.update.unchanged.len(),
+            p.update.gone.len(),
+        )
     };
     assert_eq!(count(&plan), (1, 1, 1, 4));
     assert_eq!(desk.head().expect("head"), head, "a plan writes nothing");
     desk.add_roster(&plan).expect("written");
-    let day = open(&mut desk, "2026-10-15", "us-school", AcuityMethod::Threshold);
-    let ids: Vec<String> =
-        desk.day_children(&day).expect("children").into_iter().map(|c| c.child_id).collect();
-    assert_eq!(ids, ["Q-2", "Q-1", "Q-7"], "by class and name; those gone are gone");
-    let plan = desk.plan_children(plan.roster.children, None).expect("a plan");
+    let day = open(
+        &mut desk,
+        "2026-10-15",
+        "us-school",
+        AcuityMethod::Threshold,
+    );
+    let ids: Vec<String> = desk
+        .day_children(&day)
+        .expect("children")
+        .into_iter()
+        .map(|c| c.child_id)
+        .collect();
+    assert_eq!(
+        ids,
+        ["Q-2", "Q-1", "Q-7"],
+        "by class and name; those gone are gone"
+    );
+    let plan = desk
+        .plan_children(plan.roster.children, None)
+        .expect("a plan");
     assert_eq!(count(&plan), (0, 0, 3, 0));
 }

@@ -7,13 +7,18 @@ use twoline::domain::outcome::{DecidedBy, RiskKind, Urgency};
 use twoline::rules::explain;
 
 fn age(born: &str) -> u32 {
-    AgeMonths::between(date(born), date("2026-10-14")).unwrap().0
+    AgeMonths::between(date(born), date("2026-10-14"))
+        .unwrap()
+        .0
 }
 
 #[test]
 fn a_pass_at_79_months_with_one_step_between_the_eyes() {
     assert_eq!(age("2020-03-02"), 79);
-    let mut it = child(79, "correction_worn=none distance_right=20/20 distance_left=20/25 plus_lens=blurred signs=none");
+    let mut it = child(
+        79,
+        "correction_worn=none distance_right=20/20 distance_left=20/25 plus_lens=blurred signs=none",
+    );
     it.grade = Some("01");
     let outcome = it.by_protocol("us-school");
     assert_eq!(word(&outcome), "pass", "{outcome:#?}");
@@ -37,13 +42,20 @@ fn two_steps_between_the_eyes_are_rescreened() {
     assert_eq!(outcome.urgency, Some(Urgency::Routine));
     assert_eq!(explain::headline(&outcome), "RESCREEN by 28 Oct 2026");
     let short = explain::short(&outcome);
-    assert!(short.contains("wo steps between the eyes (20/20 and 20/32)"), "{short}");
+    assert!(
+        short.contains("wo steps between the eyes (20/20 and 20/32)"),
+        "{short}"
+    );
     assert!(short.contains("Left eye 20/25 would pass"), "{short}");
 
     it.readings = readings("acuity_method=critical_line distance_right=20/32 distance_left=20/32");
     let outcome = it.by_protocol("us-school");
     assert_eq!(word(&outcome), "pass", "{outcome:#?}");
-    assert!(outcome.unknown.contains(&"joint-policy-2016/between-eyes".to_owned()));
+    assert!(
+        outcome
+            .unknown
+            .contains(&"joint-policy-2016/between-eyes".to_owned())
+    );
     assert_eq!(
         outcome.to_string(),
         "pass (critical line; difference between the eyes not tested)"
@@ -66,7 +78,10 @@ fn not_testable_with_half_an_instrument_result_is_rescreened_in_six_months() {
 
 #[test]
 fn glasses_at_home_are_not_judged_as_a_fail() {
-    let it = child(age("2018-05-20"), "correction_worn=left_at_home distance_right=20/80 distance_left=20/63");
+    let it = child(
+        age("2018-05-20"),
+        "correction_worn=left_at_home distance_right=20/80 distance_left=20/63",
+    );
     let outcome = it.by_protocol("us-school");
     assert_eq!(word(&outcome), "incomplete", "{outcome:#?}");
     assert_eq!(outcome.decided_by, DecidedBy::GlassesNotWorn);
@@ -86,5 +101,8 @@ fn a_white_pupil_is_referred_at_once_without_consent() {
     assert_eq!(outcome.act_by, Some(date("2026-10-14")));
     assert_eq!(outcome.act_within_days, Some(0));
     assert_eq!(outcome.risks, [RiskKind::Deprivation]);
-    assert_eq!(explain::headline(&outcome), "REFER, emergency, act by 14 Oct 2026");
+    assert_eq!(
+        explain::headline(&outcome),
+        "REFER, emergency, act by 14 Oct 2026"
+    );
 }

@@ -13,20 +13,46 @@ fn every_shipped_file_loads() {
 fn what_is_promised_is_there() {
     let library = Library::shipped();
     for id in [
-        "expert-panel-2015", "joint-policy-2016", "joint-policy-2003", "arizona-school",
-        "missouri-school", "washington-school", "texas-school", "england-school-entry",
-        "ireland-school-entry", "iapb-school-6-9", "iapb-school-6-12", "instrument-2003",
-        "instrument-2013", "instrument-2021", "direct-referral", "urgent-signs", "plus-lens-2.50",
-        "plus-lens-2.00", "color-plates", "stereo-random-dot-e", "cover-test", "red-reflex",
+        "expert-panel-2015",
+        "joint-policy-2016",
+        "joint-policy-2003",
+        "arizona-school",
+        "missouri-school",
+        "washington-school",
+        "texas-school",
+        "england-school-entry",
+        "ireland-school-entry",
+        "iapb-school-6-9",
+        "iapb-school-6-12",
+        "instrument-2003",
+        "instrument-2013",
+        "instrument-2021",
+        "direct-referral",
+        "urgent-signs",
+        "plus-lens-2.50",
+        "plus-lens-2.00",
+        "color-plates",
+        "stereo-random-dot-e",
+        "cover-test",
+        "red-reflex",
     ] {
-        let set = library.rule_set(id).unwrap_or_else(|| panic!("{id} is missing"));
+        let set = library
+            .rule_set(id)
+            .unwrap_or_else(|| panic!("{id} is missing"));
         assert_eq!(set.content_hash.len(), 64);
         assert!(set.local.is_none());
         assert!(!show::sheet(set).rows.is_empty(), "{id}");
         assert!(show::list_line(set).contains(id));
     }
-    for id in ["us-school", "us-preschool", "uk-school-entry", "international-school"] {
-        let protocol = library.protocol(id).unwrap_or_else(|| panic!("{id} is missing"));
+    for id in [
+        "us-school",
+        "us-preschool",
+        "uk-school-entry",
+        "international-school",
+    ] {
+        let protocol = library
+            .protocol(id)
+            .unwrap_or_else(|| panic!("{id} is missing"));
         assert_eq!(protocol.content_hash.len(), 64);
         assert!(show::protocol_lines(protocol).len() > 4);
     }

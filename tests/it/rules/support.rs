@@ -55,7 +55,11 @@ impl Child {
         case.age = self.age.map(AgeMonths);
         case.grade = self.grade.map(|g| Grade::parse(g).unwrap());
         case.on = Some(date("2026-10-14"));
-        case.attempt = if self.rescreen { Attempt::Rescreen } else { Attempt::First };
+        case.attempt = if self.rescreen {
+            Attempt::Rescreen
+        } else {
+            Attempt::First
+        };
         case.consent = self.consent;
         case.under_care = self.under_care;
         case.earlier.glasses_visits = self.glasses_visits;
