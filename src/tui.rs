@@ -1,1 +1,29 @@
-//! The terminal screens.
+//! The terminal screens: where a nurse with 300 children lives.
+//!
+//! A key press becomes a message, `update` changes the state without any I/O, effects go to the
+//! thread that owns the store, its answers come back as messages, and `view` draws from a shared
+//! reference.
+
+mod answers;
+pub mod app;
+mod ask;
+mod children;
+mod day;
+mod days;
+mod desk;
+mod judging;
+mod prompt;
+mod prompt_view;
+mod rules;
+mod run;
+mod submit;
+mod tables;
+mod text;
+mod theme;
+mod update;
+pub mod view;
+
+pub use desk::{Clerk, session};
+pub use judging::Draft;
+pub use run::{Error, Options, run};
+pub use theme::Theme;

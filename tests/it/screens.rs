@@ -1,1 +1,10 @@
-//! Tests of `screens`.
+//! The screens through the real update loop, on a real store in a temporary folder.
+
+#![allow(clippy::unwrap_used, clippy::panic)]
+
+mod bench;
+mod desk;
+mod drawn;
+mod keystrokes;
+mod people;
+mod urgent;

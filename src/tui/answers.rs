@@ -1,0 +1,143 @@
+//! What the store answered.
+
+use crate::actions::Signed;
+use crate::domain::outcome::Urgency;
+use crate::tui::app::{Answer, App, Effect, Notice, Refused, Request, Tone};
+use crate::tui::day::Day;
+use crate::tui::days::Days;
+use crate::tui::text::name;
+
+impl App {
+    /// Takes an answer.
+    pub(crate) fn answer(&mut self, answer: Answer) -> Vec<Effect> {
+        match answer {
+            Answer::Days(days) => {
+                if self.day.is_err() {
+                    self.day = Err(Days::new(days));
+                }
+            }
+            Answer::Day(info, children, drafts) => {
+                let n = drafts.len();
+                let (day, effects) = Day::new(&self.session, info, children, drafts);
+                self.day = Ok(day);
+                if n > 0 {
+                    self.say(
+                        Tone::Attention,
+                        format!(
+                            "{n} draft{} kept from before",
+                            if n == 1 { "" } else { "s" }
+                        ),
+                    );
+                }
+                return effects;
+            }
+            Answer::Signed(signed) => return self.signed(*signed, "saved"),
+            Answer::NotSigned(id, refused) => {
+                let who = self
+                    .day
+                    .as_mut()
+                    .map_or_else(|_| id.clone(), |d| d.not_signed(&id));
+                self.refuse(Refused {
+                    message: format!(
+                        "{who}: not confirmed, the draft is kept. {}",
+                        refused.message
+                    ),
+                    hint: refused.hint,
+                });
+            }
+            Answer::Visit(id, visit) => {
+                if let Ok(day) = &mut self.day {
+                    day.show_visit(&id, visit.map(|v| *v));
+                }
+            }
+            Answer::Corrected(signed) => {
+                return self.signed(*signed, "corrected");
+            }
+            Answer::Moved(signed, from) => {
+                let mut effects = self
+                    .day
+                    .as_mut()
+                    .map_or_else(|_| Vec::new(), |d| d.refresh(&self.session, *from));
+                let to = signed.child.child_id.clone();
+                effects.extend(self.signed(*signed, "moved to"));
+                if let Ok(day) = &mut self.day {
+                    effects.extend(day.bring(&self.session, &to).effects);
+                }
+                return effects;
+            }
+            Answer::Retracted(child) => {
+                let who = name(&child.family_name, &child.given_name);
+                let id = child.child_id.clone();
+                let mut effects = Vec::new();
+                if let Ok(day) = &mut self.day {
+                    day.last_signed = None;
+                    effects.extend(day.refresh(&self.session, *child));
+                    effects.extend(day.bring(&self.session, &id).effects);
+                }
+                self.say(
+                    Tone::Quiet,
+                    format!("the signature for {who} is taken back; both entries stay"),
+                );
+                effects.push(Effect::ask(Request::Urgent));
+                return effects;
+            }
+            Answer::Added(child) => {
+                let id = child.child_id.clone();
+                self.say(
+                    Tone::Quiet,
+                    format!(
+                        "added {} as {id}",
+                        name(&child.family_name, &child.given_name)
+                    ),
+                );
+                if let Ok(day) = &mut self.day {
+                    day.queue.update(*child);
+                    return day.bring(&self.session, &id).effects;
+                }
+            }
+            Answer::Urgent(urgent) => {
+                if urgent.len() < self.urgent.len() {
+                    self.say(Tone::Quiet, "saved: who was told of the emergency");
+                }
+                self.urgent = urgent;
+            }
+            Answer::Found(text, found) => self.children.found(&text, found),
+            Answer::History(history) => self.children.show(history.map(|h| *h)),
+            Answer::Referrals(rows) => self.tables[0].fill(rows),
+            Answer::Term(rows) => self.tables[1].fill(rows),
+            Answer::Screener(name) => {
+                self.say(
+                    Tone::Quiet,
+                    format!("recording as {}", crate::tui::text::safe(&name)),
+                );
+                self.session.screener = Some(name);
+            }
+            Answer::Refused(refused) => self.refuse(refused),
+        }
+        Vec::new()
+    }
+
+    fn signed(&mut self, signed: Signed, verb: &str) -> Vec<Effect> {
+        let outcome = &signed.outcome;
+        let who = name(&signed.child.family_name, &signed.child.given_name);
+        let mut words = format!("{verb} {who}: {}", outcome.kind.title());
+        if !outcome.qualifiers.is_empty() {
+            words.push_str(&format!(" ({})", outcome.qualifiers.join("; ")));
+        }
+        let emergency = outcome.urgency == Some(Urgency::Emergency);
+        self.notice = Some(Notice {
+            tone: Tone::Quiet,
+            text: words,
+            hint: signed.head.clone(),
+        });
+        let urgent_now = emergency || self.urgent.iter().any(|u| u.visit == signed.visit);
+        let mut effects = match &mut self.day {
+            Ok(day) => day.signed(signed),
+            Err(_) => Vec::new(),
+        };
+        if urgent_now || verb != "saved" {
+            effects.push(Effect::ask(Request::Urgent));
+        }
+        effects
+    }
+}

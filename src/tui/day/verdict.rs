@@ -1,0 +1,165 @@
+//! The outcome as it stands, in three lines at the foot of the bench.
+
+use ratatui::text::{Line, Span};
+
+use crate::domain::age::spoken;
+use crate::domain::outcome::OutcomeKind;
+use crate::tui::day::bench::{Bench, Spot, State};
+use crate::tui::day::kind::{AcuityOf, eye};
+use crate::tui::judging::explain;
+use crate::tui::text::{safe, wrap};
+use crate::tui::theme::Theme;
+
+/// Returns the lines under the bench, at most so many.
+pub fn lines(bench: &Bench, columns: usize, rows: usize, theme: Theme) -> Vec<Line<'static>> {
+    if let Some((field, State::Invalid { expected })) =
+        bench.field().map(|field| (field, bench.state(field)))
+    {
+        let mut out = vec![Line::from(vec![
+            Span::styled(" not understood ", theme.error()),
+            Span::raw(format!("{}: {}", field.title(), safe(bench.raw(field)))),
+        ])];
+        out.extend(
+            wrap(
+                &format!("expected {}", safe(expected)),
+                columns.saturating_sub(2),
+            )
+            .into_iter()
+            .map(|l| Line::raw(format!(" {l}"))),
+        );
+        out.truncate(rows);
+        return out;
+    }
+    if let Some(visit) = &bench.signed {
+        return signed_lines(bench, visit, columns, rows, theme);
+    }
+    let nothing_yet = bench.is_blank() && bench.outcome.kind == OutcomeKind::Incomplete;
+    let (headline, style, rest) = if nothing_yet {
+        (
+            String::new(),
+            theme.muted(),
+            "The outcome stands here with its reasons as soon as something is entered.".to_owned(),
+        )
+    } else {
+        (
+            safe(&explain::headline(&bench.outcome)),
+            theme.outcome(bench.outcome.kind, bench.outcome.urgency),
+            safe(&explain::short(&bench.outcome)),
+        )
+    };
+    flow(&headline, style, &rest, columns, rows, theme)
+}
+
+fn signed_lines(
+    bench: &Bench,
+    visit: &crate::actions::VisitView,
+    columns: usize,
+    rows: usize,
+    theme: Theme,
+) -> Vec<Line<'static>> {
+    let Some(outcome) = &visit.outcome else {
+        return flow("SIGNED", theme.strong(), "", columns, rows, theme);
+    };
+    let mut headline = format!("signed: {}", outcome.kind.title().to_uppercase());
+    if !outcome.qualifiers.is_empty() {
+        headline.push_str(&format!(" ({})", outcome.qualifiers.join("; ")));
+    }
+    if let Some(due) = outcome.due_on {
+        headline.push_str(&format!(" by {}", spoken(due)));
+    }
+    if let Some(act) = outcome.act_by {
+        headline.push_str(&format!(", act by {}", spoken(act)));
+    }
+    let mut rest = String::new();
+    if let Some(now) = &visit.now {
+        rest.push_str(&format!("Now it would be {}. ", safe(now)));
+    }
+    rest.push_str(&safe(&outcome.reasons));
+    let style = theme.outcome(bench.outcome.kind, outcome.urgency);
+    flow(&headline, style, &rest, columns, rows, theme)
+}
+
+/// Sets a headline and a text that flows on after it.
+fn flow(
+    headline: &str,
+    style: ratatui::style::Style,
+    rest: &str,
+    columns: usize,
+    rows: usize,
+    theme: Theme,
+) -> Vec<Line<'static>> {
+    let room = columns.saturating_sub(2);
+    let joined = if headline.is_empty() {
+        rest.to_owned()
+    } else {
+        format!("{headline}   {rest}")
+    };
+    let mut wrapped = wrap(&joined, room);
+    let cut = wrapped.len() > rows;
+    wrapped.truncate(rows);
+    if cut && let Some(last) = wrapped.last_mut() {
+        let hint = "… F4";
+        *last = format!(
+            "{}{hint}",
+            crate::tui::text::fit(last, room.saturating_sub(5))
+        );
+    }
+    let mut left = headline;
+    wrapped
+        .into_iter()
+        .map(|line| {
+            // The headline may itself be wrapped: colour as much of each line as belongs to it.
+            let shared = left
+                .char_indices()
+                .map(|(i, c)| i + c.len_utf8())
+                .take_while(|end| line.starts_with(&left[..*end]))
+                .last()
+                .unwrap_or(0);
+            let (head, tail) = line.split_at(shared);
+            left = left[shared..].trim_start();
+            let mut spans = vec![Span::raw(" "), Span::styled(head.to_owned(), style)];
+            match tail.strip_suffix("… F4") {
+                Some(tail) => {
+                    spans.push(Span::raw(tail.to_owned()));
+                    spans.push(Span::styled("… F4", theme.focus()));
+                }
+                None => spans.push(Span::raw(tail.to_owned())),
+            }
+            Line::from(spans)
+        })
+        .collect()
+}
+
+/// Returns what the focused field understood or offers, in one line.
+pub fn echo(bench: &Bench, theme: Theme) -> Line<'static> {
+    let Spot::Field(_) = bench.at else {
+        return Line::default();
+    };
+    let Some(field) = bench.field() else {
+        return Line::default();
+    };
+    match bench.state(field) {
+        State::Empty => Line::default(),
+        State::Invalid { .. } => Line::styled("not understood", theme.error()),
+        State::Valid { echo } => {
+            let mut words = bench
+                .readings
+                .acuity_of(field)
+                .map(crate::domain::readings::AcuityResult::in_words)
+                .unwrap_or_default();
+            if let Some(echo) = echo {
+                words = if echo.contains(&words) {
+                    echo.clone()
+                } else {
+                    format!("{words}: {echo}")
+                };
+            }
+            let who = eye(field).map_or("", crate::domain::readings::Eye::title);
+            if words.is_empty() {
+                Line::default()
+            } else {
+                Line::styled(format!("{who} {}", safe(&words)), theme.focus())
+            }
+        }
+    }
+}

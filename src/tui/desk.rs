@@ -1,0 +1,210 @@
+//! The thread that owns the store: one request is one action.
+
+use std::collections::HashMap;
+
+use uuid::Uuid;
+
+use crate::actions::{self, ActionError, DayInfo, Desk, DraftDay, Drafts, SearchIndex};
+use crate::tui::app::{Answer, App, Refused, Request, Session};
+use crate::tui::judging::Draft;
+use crate::tui::theme::Theme;
+
+/// How many children a find shows.
+const FOUND: usize = 200;
+
+/// Answers the screens' requests at a desk.
+pub struct Clerk {
+    desk: Desk,
+    index: Option<SearchIndex>,
+    drafts: Option<Drafts>,
+    days: HashMap<Uuid, DayInfo>,
+}
+
+/// Makes what the screens begin with: session, days, what is urgent.
+pub fn session(
+    desk: &Desk,
+    color: bool,
+    now_ms: i64,
+    offset_minutes: i32,
+) -> Result<App, ActionError> {
+    let session = Session {
+        programme: desk.programme(),
+        station: desk.station(),
+        demo: desk.is_demo(),
+        read_only: desk.is_read_only(),
+        notation: desk.notation(),
+        scan_prefix: desk.scan_prefix(),
+        screener: desk.screener(),
+        screeners: desk.screeners()?,
+        sites: desk.sites()?,
+        today: desk.today(),
+        library: desk.library(),
+        theme: Theme::new(color),
+        new_id: Uuid::now_v7,
+        now_ms,
+        offset_minutes,
+    };
+    let mut app = App::new(session, desk.days()?, desk.urgent_open()?);
+    if let Some(warning) = desk.clock_warning()? {
+        app.refuse(Refused {
+            message: warning,
+            hint: String::new(),
+        });
+    }
+    Ok(app)
+}
+
+impl Clerk {
+    /// Sits down at a desk.
+    pub fn new(desk: Desk) -> Clerk {
+        let drafts = desk.drafts().ok();
+        Clerk {
+            desk,
+            index: None,
+            drafts,
+            days: HashMap::new(),
+        }
+    }
+
+    /// Gives the desk back, with every draft written.
+    pub fn into_desk(self) -> Desk {
+        self.desk
+    }
+
+    /// Keeps a draft, soon.
+    pub fn save_draft(&self, draft: Draft, now_ms: i64) {
+        if let (Some(drafts), Some(day)) = (&self.drafts, self.days.get(&draft.day)) {
+            // A failure shows at the next flush, which is waited for.
+            let _ = drafts.save(actions::Draft {
+                day: draft_day(day),
+                child_id: draft.child_id,
+                visit_id: draft.visit,
+                attempt: draft.attempt,
+                fields: draft.fields,
+                cursor: draft.cursor,
+                updated_at_ms: now_ms,
+            });
+        }
+    }
+
+    /// Forgets a draft.
+    pub fn drop_draft(&self, day: Uuid, child_id: &str) {
+        if let (Some(drafts), Some(day)) = (&self.drafts, self.days.get(&day)) {
+            let _ = drafts.delete(&draft_day(day), child_id);
+        }
+    }
+
+    /// Writes every draft, and says what went wrong if one could not be written.
+    pub fn flush(&self) -> Result<(), Refused> {
+        match &self.drafts {
+            Some(drafts) => drafts.flush().map_err(|e| Refused {
+                message: format!("drafts could not be written: {e}"),
+                hint: String::new(),
+            }),
+            None => Ok(()),
+        }
+    }
+
+    /// Answers a request.
+    pub fn answer(&mut self, request: Request) -> Answer {
+        let signing = match &request {
+            Request::Sign(sign) => Some(sign.child_id.clone()),
+            _ => None,
+        };
+        match self.try_answer(request) {
+            Ok(answer) => answer,
+            Err(error) => {
+                let refused = Refused {
+                    message: error.message,
+                    hint: error.hint.unwrap_or_default(),
+                };
+                match signing {
+                    Some(child) => Answer::NotSigned(child, refused),
+                    None => Answer::Refused(refused),
+                }
+            }
+        }
+    }
+
+    fn try_answer(&mut self, request: Request) -> Result<Answer, ActionError> {
+        Ok(match request {
+            Request::Days => Answer::Days(self.desk.days()?),
+            Request::NewDay(new) => {
+                let day = self.desk.open_day(new)?;
+                self.load_day(day)?
+            }
+            Request::LoadDay(day) => self.load_day(day)?,
+            Request::Sign(sign) => Answer::Signed(Box::new(self.desk.sign(sign)?)),
+            Request::Visit(day, child) => {
+                let visit = self.desk.visit(&day, &child)?;
+                Answer::Visit(child, visit.map(Box::new))
+            }
+            Request::Correct(visit, changes, reason) => {
+                Answer::Corrected(Box::new(self.desk.correct(visit, &changes, &reason)?))
+            }
+            Request::MoveVisit(visit, to, reason) => {
+                let (signed, from) = self.desk.move_visit(visit, &to, &reason)?;
+                Answer::Moved(Box::new(signed), Box::new(from))
+            }
+            Request::Retract(visit, reason) => {
+                Answer::Retracted(Box::new(self.desk.retract(visit, &reason)?))
+            }
+            Request::AddChild(child, day) => {
+                self.index = None;
+                Answer::Added(Box::new(self.desk.add_child(child, &day)?))
+            }
+            Request::Told(answer) => {
+                self.desk.urgent_answer(answer)?;
+                Answer::Urgent(self.desk.urgent_open()?)
+            }
+            Request::Urgent => Answer::Urgent(self.desk.urgent_open()?),
+            Request::Find(text) => {
+                if self.index.is_none() {
+                    self.index = Some(self.desk.search_index()?);
+                }
+                let found = self
+                    .index
+                    .as_mut()
+                    .map(|i| i.find(&text, FOUND))
+                    .unwrap_or_default();
+                Answer::Found(text, found)
+            }
+            Request::History(child) => Answer::History(self.desk.history(&child)?.map(Box::new)),
+            Request::Referrals => Answer::Referrals(self.desk.referrals()?),
+            Request::Term => Answer::Term(self.desk.term_table()?),
+            Request::Screener(name) => {
+                self.desk.set_screener(&name)?;
+                Answer::Screener(name)
+            }
+        })
+    }
+
+    fn load_day(&mut self, day: DayInfo) -> Result<Answer, ActionError> {
+        let children = self.desk.day_children(&day)?;
+        self.days.insert(day.id, day.clone());
+        let drafts = self
+            .drafts
+            .as_ref()
+            .and_then(|d| d.load_all(&draft_day(&day)).ok())
+            .unwrap_or_default()
+            .into_iter()
+            .map(|d| Draft {
+                day: day.id,
+                child_id: d.child_id,
+                visit: d.visit_id,
+                attempt: d.attempt,
+                fields: d.fields,
+                cursor: d.cursor,
+            })
+            .collect();
+        Ok(Answer::Day(day, children, drafts))
+    }
+}
+
+fn draft_day(day: &DayInfo) -> DraftDay {
+    DraftDay {
+        site: day.site.clone(),
+        screened_on: day.date,
+        protocol: day.protocol.clone(),
+    }
+}

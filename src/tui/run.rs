@@ -1,0 +1,285 @@
+//! The run loop: the terminal, its events, the signals, and the thread that owns the store.
+//!
+//! The terminal is given back after an error and after a panic; a panic message is shown only then.
+
+use std::io::{self, Stdout};
+use std::sync::Arc;
+use std::sync::atomic::{AtomicBool, Ordering};
+use std::sync::mpsc::{Receiver, Sender, channel};
+use std::thread;
+use std::time::Duration;
+
+use crossterm::event::{
+    DisableBracketedPaste, EnableBracketedPaste, Event, KeyEventKind, poll, read,
+};
+use crossterm::execute;
+use crossterm::terminal::{
+    EnterAlternateScreen, LeaveAlternateScreen, disable_raw_mode, enable_raw_mode,
+};
+use ratatui::Terminal;
+use ratatui::backend::CrosstermBackend;
+
+use crate::actions::Desk;
+use crate::clock;
+use crate::keys::Key;
+use crate::tui::app::{Answer, App, Effect, Message, Request};
+use crate::tui::desk::{Clerk, session};
+use crate::tui::judging::Draft;
+
+/// How the screens are shown.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Options {
+    /// Whether colors are used; `NO_COLOR` turns them off.
+    pub color: bool,
+}
+
+impl Default for Options {
+    fn default() -> Self {
+        Options {
+            color: std::env::var_os("NO_COLOR").is_none_or(|v| v.is_empty()),
+        }
+    }
+}
+
+/// Why the screens ended.
+#[derive(Debug, thiserror::Error)]
+pub enum Error {
+    /// The terminal could not be read or written.
+    #[error("terminal: {0}")]
+    Terminal(#[from] io::Error),
+    /// The store could not be read.
+    #[error("{0}")]
+    Store(#[from] crate::actions::ActionError),
+    /// The thread that owns the store has ended.
+    #[error("the store's thread has ended; what was signed is saved, what was typed is a draft")]
+    Gone,
+}
+
+/// Longest wait for a key before the clock and the answers are looked at.
+const PAUSE: Duration = Duration::from_millis(250);
+
+/// Shortest wait, while an answer is on its way.
+const BRIEF: Duration = Duration::from_millis(8);
+
+/// Runs the screens until the person leaves.
+pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
+    let now = clock::now();
+    let mut app = session(&desk, options.color, now.utc_ms, now.offset_minutes)?;
+    let (to_store, jobs) = channel();
+    let (answers, from_store) = channel();
+    let clerk = thread::Builder::new()
+        .name("store".into())
+        .spawn(move || serve(Clerk::new(desk), &jobs, &answers))?;
+    let leave = Arc::new(AtomicBool::new(false));
+    let mut handlers = Vec::new();
+    for signal in [
+        signal_hook::consts::SIGTERM,
+        signal_hook::consts::SIGHUP,
+        signal_hook::consts::SIGINT,
+    ] {
+        handlers.push(signal_hook::flag::register(signal, Arc::clone(&leave))?);
+    }
+    let result = Screen::open().and_then(|mut screen| {
+        let mut wires = Wires {
+            to_store: to_store.clone(),
+            from_store,
+            waiting: 0,
+        };
+        let result = event_loop(&mut app, &mut screen, &mut wires, &leave);
+        if result.is_err() {
+            // Whatever happened, what was typed is kept.
+            let effects = app.update(Message::Leave);
+            let _ = wires.carry_out(effects);
+        }
+        result
+    });
+    for handler in handlers {
+        signal_hook::low_level::unregister(handler);
+    }
+    drop(to_store);
+    // Every job already given is done and every draft written before the program ends.
+    clerk.join().map_err(|_| Error::Gone)?;
+    result
+}
+
+/// Something for the store's thread.
+enum Job {
+    Ask(Box<Request>),
+    SaveDraft(Draft),
+    DropDraft(uuid::Uuid, String),
+    Flush,
+}
+
+fn serve(mut clerk: Clerk, jobs: &Receiver<Job>, answers: &Sender<Answer>) {
+    while let Ok(job) = jobs.recv() {
+        let answer = match job {
+            Job::Ask(request) => clerk.answer(*request),
+            Job::SaveDraft(draft) => {
+                clerk.save_draft(draft, clock::now().utc_ms);
+                continue;
+            }
+            Job::DropDraft(day, child) => {
+                clerk.drop_draft(day, &child);
+                continue;
+            }
+            Job::Flush => match clerk.flush() {
+                Ok(()) => continue,
+                Err(refused) => Answer::Refused(refused),
+            },
+        };
+        if answers.send(answer).is_err() {
+            // The screens are gone; drafts are still written when the clerk is dropped.
+            break;
+        }
+    }
+    // The screens may leave while jobs wait: drafts among them are not lost.
+    while let Ok(job) = jobs.try_recv() {
+        match job {
+            Job::SaveDraft(draft) => clerk.save_draft(draft, clock::now().utc_ms),
+            Job::DropDraft(day, child) => clerk.drop_draft(day, &child),
+            Job::Ask(request) if matches!(*request, Request::Sign(_)) => {
+                drop(clerk.answer(*request))
+            }
+            Job::Ask(_) | Job::Flush => {}
+        }
+    }
+    let _ = clerk.flush();
+}
+
+/// The channels to the store's thread.
+struct Wires {
+    to_store: Sender<Job>,
+    from_store: Receiver<Answer>,
+    waiting: usize,
+}
+
+impl Wires {
+    /// Carries effects out; says whether the program is to suspend or to end.
+    fn carry_out(&mut self, effects: Vec<Effect>) -> Result<Next, Error> {
+        let mut next = Next::GoOn;
+        for effect in effects {
+            let job = match effect {
+                Effect::Ask(request) => {
+                    self.waiting += 1;
+                    Job::Ask(request)
+                }
+                Effect::SaveDraft(draft) => Job::SaveDraft(draft),
+                Effect::FlushDrafts => Job::Flush,
+                Effect::DropDraft(day, child) => Job::DropDraft(day, child),
+                Effect::Suspend => {
+                    next = Next::Suspend;
+                    continue;
+                }
+                Effect::Quit => {
+                    next = Next::End;
+                    continue;
+                }
+            };
+            self.to_store.send(job).map_err(|_| Error::Gone)?;
+        }
+        Ok(next)
+    }
+
+    fn answers(&mut self) -> Vec<Message> {
+        let answers: Vec<Message> = self.from_store.try_iter().map(Message::Answer).collect();
+        self.waiting = self.waiting.saturating_sub(answers.len());
+        answers
+    }
+}
+
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum Next {
+    GoOn,
+    Suspend,
+    End,
+}
+
+fn event_loop(
+    app: &mut App,
+    screen: &mut Screen,
+    wires: &mut Wires,
+    leave: &AtomicBool,
+) -> Result<(), Error> {
+    wires.carry_out(app.start())?;
+    loop {
+        screen.terminal.draw(|frame| app.draw(frame))?;
+        let mut messages = Vec::new();
+        let pause = if wires.waiting > 0 { BRIEF } else { PAUSE };
+        if poll(pause)? {
+            // Whatever has been typed meanwhile is taken before the next frame.
+            while messages.len() < 64 && poll(Duration::ZERO)? {
+                messages.extend(message_of(read()?));
+            }
+        }
+        messages.extend(wires.answers());
+        if leave.load(Ordering::Relaxed) {
+            messages.push(Message::Leave);
+        }
+        let now = clock::now();
+        app.session.now_ms = now.utc_ms;
+        app.session.offset_minutes = now.offset_minutes;
+        for message in messages {
+            match wires.carry_out(app.update(message))? {
+                Next::GoOn => {}
+                Next::Suspend => screen.suspend()?,
+                Next::End => return Ok(()),
+            }
+        }
+    }
+}
+
+/// Returns the message of a terminal event; releases and repeats of the release kind are none.
+fn message_of(event: Event) -> Option<Message> {
+    match event {
+        Event::Key(key) if key.kind != KeyEventKind::Release => Some(Message::Key(Key::of(&key))),
+        Event::Paste(text) => Some(Message::Paste(text)),
+        Event::Resize(_, _) => Some(Message::Tick),
+        _ => None,
+    }
+}
+
+/// The terminal while it is ours; dropping it gives it back.
+struct Screen {
+    terminal: Terminal<CrosstermBackend<Stdout>>,
+}
+
+impl Screen {
+    fn open() -> Result<Screen, Error> {
+        let before = std::panic::take_hook();
+        std::panic::set_hook(Box::new(move |info| {
+            let _ = give_back();
+            before(info);
+        }));
+        take()?;
+        let mut screen = Screen {
+            terminal: Terminal::new(CrosstermBackend::new(io::stdout()))?,
+        };
+        screen.terminal.clear()?;
+        Ok(screen)
+    }
+
+    fn suspend(&mut self) -> Result<(), Error> {
+        give_back()?;
+        signal_hook::low_level::emulate_default_handler(signal_hook::consts::SIGTSTP)?;
+        take()?;
+        self.terminal.clear()?;
+        Ok(())
+    }
+}
+
+impl Drop for Screen {
+    fn drop(&mut self) {
+        let _ = give_back();
+        let _ = self.terminal.show_cursor();
+    }
+}
+
+fn take() -> io::Result<()> {
+    enable_raw_mode()?;
+    execute!(io::stdout(), EnterAlternateScreen, EnableBracketedPaste)
+}
+
+fn give_back() -> io::Result<()> {
+    disable_raw_mode()?;
+    execute!(io::stdout(), DisableBracketedPaste, LeaveAlternateScreen)
+}
