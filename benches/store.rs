@@ -22,18 +22,25 @@ use twoline::domain::readings::{ReadingContext, Readings};
 use twoline::store::{Access, Store, key, ledger, row};
 
 fn main() {
-    let n: usize = std::env::args().skip(1).find_map(|a| a.parse().ok()).unwrap_or(100_000);
+    let n: usize = std::env::args()
+        .skip(1)
+        .find_map(|a| a.parse().ok())
+        .unwrap_or(100_000);
     let folder = tempfile::TempDir::new_in(".").expect("a folder on this disk");
     let dir = folder.path().join("store");
     let mut desk = desk(&dir);
 
     let csv = roster(n);
     let start = Instant::now();
-    let plan = desk.plan_roster("roster.csv", csv.as_bytes(), None, None).expect("a plan");
+    let plan = desk
+        .plan_roster("roster.csv", csv.as_bytes(), None, None)
+        .expect("a plan");
     let planned = start.elapsed();
     desk.add_roster(&plan).expect("written");
     let ours = start.elapsed();
-    println!("roster of {n} children from CSV: {ours:.2?} (of which reading and comparing {planned:.2?})");
+    println!(
+        "roster of {n} children from CSV: {ours:.2?} (of which reading and comparing {planned:.2?})"
+    );
     let base = bare_inserts(&dir, &folder.path().join("bare.db"), n);
     println!(
         "bare INSERTs of the same rows:    {base:.2?}; ratio {:.2}",
@@ -55,7 +62,9 @@ fn main() {
             method: AcuityMethod::Threshold,
         })
         .expect("a day");
-    timed("queue of the day", || desk.day_children(&day).expect("children").len());
+    timed("queue of the day", || {
+        desk.day_children(&day).expect("children").len()
+    });
 
     let mut readings = Readings::default();
     for (field, text) in [
@@ -64,7 +73,9 @@ fn main() {
         (Field::DistanceLeft, "20/25"),
         (Field::Signs, "none"),
     ] {
-        readings.set(field, text, ReadingContext::default()).expect("a value");
+        readings
+            .set(field, text, ReadingContext::default())
+            .expect("a value");
     }
     let mut each = Vec::new();
     for i in 0..300 {
@@ -80,13 +91,18 @@ fn main() {
         each.push(start.elapsed());
     }
     each.sort();
-    println!("one signed child, durable: median {:.2?}, 99% {:.2?}", each[150], each[297]);
+    println!(
+        "one signed child, durable: median {:.2?}, 99% {:.2?}",
+        each[150], each[297]
+    );
 
     drop(desk);
     let store = Store::open(&dir, &Secret::None, Access::ReadOnly).expect("a store");
     let entries = store.read().head().expect("a head").entries;
     let start = Instant::now();
-    store.verify(None, |_, _| {}).expect("a store without damage");
+    store
+        .verify(None, |_, _| {})
+        .expect("a store without damage");
     let took = start.elapsed();
     println!(
         "verify of {entries} entries: {took:.2?}; at this pace 1,000,000 in {:.1} s",
@@ -113,12 +129,20 @@ fn desk(dir: &Path) -> Desk {
         secret: Secret::None,
         kdf: Kdf::test(),
     };
-    let options = DeskOptions { today: Some(date("2026-10-14")), ..DeskOptions::default() };
+    let options = DeskOptions {
+        today: Some(date("2026-10-14")),
+        ..DeskOptions::default()
+    };
     let (mut desk, _) = init(dir, new, &options).expect("a store");
     desk.add_screener("JI", "J. Imani").expect("a screener");
     desk.add_site("QE", "Quillmere East").expect("a site");
-    desk.add_term("2026-autumn", "Autumn 2026", date("2026-08-01"), date("2026-12-31"))
-        .expect("a term");
+    desk.add_term(
+        "2026-autumn",
+        "Autumn 2026",
+        date("2026-08-01"),
+        date("2026-12-31"),
+    )
+    .expect("a term");
     desk
 }
 
@@ -156,18 +180,25 @@ fn bare_inserts(dir: &Path, to: &Path, n: usize) -> Duration {
     };
     let source = open(&dir.join("store.db"));
     let mut bare = open(to);
-    bare.execute_batch(include_str!("../migrations/0001_entries.sql")).expect("tables");
+    bare.execute_batch(include_str!("../migrations/0001_entries.sql"))
+        .expect("tables");
     let triggers: Vec<String> = bare
         .prepare("SELECT name FROM sqlite_schema WHERE type = 'trigger'")
         .and_then(|mut s| s.query_map([], |r| r.get(0))?.collect())
         .expect("triggers");
     for trigger in triggers {
-        bare.execute_batch(&format!("DROP TRIGGER \"{trigger}\"")).expect("dropped");
+        bare.execute_batch(&format!("DROP TRIGGER \"{trigger}\""))
+            .expect("dropped");
     }
-    let tables = row::TABLES.iter().map(|t| t.name).chain(["tx", "child_current", "chain_current"]);
+    let tables = row::TABLES
+        .iter()
+        .map(|t| t.name)
+        .chain(["tx", "child_current", "chain_current"]);
     let mut data: Vec<(&str, usize, Vec<Vec<Value>>)> = Vec::new();
     for table in tables {
-        let mut select = source.prepare(&format!("SELECT * FROM {table}")).expect("a table");
+        let mut select = source
+            .prepare(&format!("SELECT * FROM {table}"))
+            .expect("a table");
         let width = select.column_count();
         let rows: Vec<Vec<Value>> = select
             .query_map([], |r| (0..width).map(|i| r.get(i)).collect())
@@ -181,14 +212,19 @@ fn bare_inserts(dir: &Path, to: &Path, n: usize) -> Duration {
         let mut inserts: Vec<_> = data
             .iter()
             .map(|(table, width, _)| {
-                tx.prepare(&format!("INSERT INTO {table} VALUES (?{})", ", ?".repeat(width - 1)))
-                    .expect("a statement")
+                tx.prepare(&format!(
+                    "INSERT INTO {table} VALUES (?{})",
+                    ", ?".repeat(width - 1)
+                ))
+                .expect("a statement")
             })
             .collect();
         for i in 0..n {
             for (insert, (_, _, rows)) in inserts.iter_mut().zip(&data) {
                 if let Some(row) = rows.get(i) {
-                    insert.execute(rusqlite::params_from_iter(row)).expect("a row");
+                    insert
+                        .execute(rusqlite::params_from_iter(row))
+                        .expect("a row");
                 }
             }
         }
