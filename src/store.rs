@@ -134,6 +134,15 @@ impl Store {
         }
     }
 
+    /// Returns who writes the store in a folder just now, without opening it.
+    pub fn writer(dir: &Path) -> Result<Option<Holder>> {
+        match lock::take(dir, Duration::ZERO) {
+            Ok(_) => Ok(None),
+            Err(error) if error.kind() == ErrorKind::Locked => Ok(lock::holder(dir)),
+            Err(error) => Err(error),
+        }
+    }
+
     /// Returns the typed reads.
     pub fn read(&self) -> Reads<'_> {
         Reads::new(&self.conn)
