@@ -16,13 +16,17 @@ pub mod rulebook;
 mod search;
 mod setup;
 mod sign;
+mod upkeep;
 mod urgent;
 mod views;
 mod visit_rows;
 
 pub use crate::rules::{CAUTIONS, Library, PassLine, explain, show};
 pub use crate::store::new_id as new_visit_id;
-pub use crate::store::{Draft, DraftDay, Drafts, Kdf, RecoveryKey, Secret};
+pub use crate::store::{
+    Damage, Draft, DraftDay, Drafts, ExpectedHead, Head, Info, Kdf, Put, RecoveryKey, Secret,
+    Verified,
+};
 pub use desk::{Desk, DeskOptions};
 pub use error::{ActionError, Kind, Result};
 pub use judging::{bench_fields, correction_from_roster, pass_line_for, preview};
@@ -31,6 +35,7 @@ pub use results::{Different, PlannedVisit, ResultsPlan};
 pub use roster::RosterPlan;
 pub use search::SearchIndex;
 pub use setup::{NewChart, NewStore, init};
+pub use upkeep::{protected, remove_demo, store_info, writer};
 pub use views::{
     ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay, OpenUrgent,
     QueueState, SignRequest, Signed, StoredOutcome, UrgentAnswer, VisitView,

@@ -1,7 +1,10 @@
 //! The command line: arguments to actions. One command, one file.
 
 mod failure;
+mod open;
 mod output;
+mod values;
+mod write;
 
 mod backup;
 mod chart;

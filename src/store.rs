@@ -73,7 +73,6 @@ pub enum Access {
 }
 
 /// An open store: one connection, one chain, one thread.
-#[derive(Debug)]
 pub struct Store {
     conn: Connection,
     dir: PathBuf,
@@ -83,6 +82,16 @@ pub struct Store {
     programme: Uuid,
     station: Uuid,
     chain: Uuid,
+}
+
+// By hand: the key must never reach a log.
+impl std::fmt::Debug for Store {
+    fn fmt(&self, f: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        f.debug_struct("Store")
+            .field("dir", &self.dir)
+            .field("writable", &self.is_writable())
+            .finish_non_exhaustive()
+    }
 }
 
 impl Store {
@@ -125,6 +134,15 @@ impl Store {
         }
     }
 
+    /// Returns who writes the store in a folder just now, without opening it.
+    pub fn writer(dir: &Path) -> Result<Option<Holder>> {
+        match lock::take(dir, Duration::ZERO) {
+            Ok(_) => Ok(None),
+            Err(error) if error.kind() == ErrorKind::Locked => Ok(lock::holder(dir)),
+            Err(error) => Err(error),
+        }
+    }
+
     /// Returns the typed reads.
     pub fn read(&self) -> Reads<'_> {
         Reads::new(&self.conn)
@@ -139,7 +157,7 @@ impl Store {
     }
 }
 
-/// Makes the id of a new entry: UUIDv7, so that entries lie in the file in the order they were made.
+/// Makes the id of a new entry: `UUIDv7`, so that entries lie in the file in the order they were made.
 pub fn new_id() -> Uuid {
     static CONTEXT: Mutex<Option<ContextV7>> = Mutex::new(None);
     let now = u64::try_from(crate::clock::now().utc_ms).unwrap_or(0);

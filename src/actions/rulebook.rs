@@ -144,7 +144,7 @@ fn sheet_lines(sheet: &RuleSheet) -> Vec<String> {
     }
     lines.push(String::new());
     let mut table = vec![
-        std::iter::once("refer when".to_owned())
+        std::iter::once("measure".to_owned())
             .chain(sheet.columns.iter().cloned())
             .collect::<Vec<_>>(),
     ];

@@ -82,7 +82,11 @@ impl SearchIndex {
         if hits.is_empty() {
             hits = self.forgiving(&typed);
         }
-        hits.sort_by_key(|(rank, at)| (*rank, *at));
+        if hits.len() > limit {
+            hits.select_nth_unstable(limit);
+            hits.truncate(limit);
+        }
+        hits.sort_unstable();
         hits.into_iter()
             .take(limit)
             .map(|(_, at)| self.children[at].clone())

@@ -88,7 +88,10 @@ impl Desk {
 
     /// Returns the readings as the day's method understands them: on a critical-line day a bare pass
     /// line is "this line or better", and what is worse is "worse than it".
-    pub(super) fn by_method(
+    ///
+    /// # Errors
+    /// The first contradiction between the readings.
+    pub fn by_method(
         &self,
         day: &DayInfo,
         child: &DayChild,

@@ -4,17 +4,25 @@ use std::path::PathBuf;
 
 use clap::Args;
 
-use super::{Failure, Global};
+use super::output::{clean, print_lines};
+use super::{Failure, Global, open};
 
-/// Copy the store
+/// Copy the store to a new folder and verify the copy
 #[derive(Debug, Args)]
 pub(super) struct Backup {
-    /// Folder to write
+    /// Folder to write; it must not be there yet
     to: PathBuf,
 }
 
 impl Backup {
-    pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
-        Err(Failure::failed("backup is not part of this version"))
+    pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        let head = open::to_read(global)?.backup(&self.to)?;
+        print_lines(&[
+            format!(
+                "copied to {} and verified",
+                clean(&self.to.to_string_lossy())
+            ),
+            format!("store head {} ({} entries)", head.short(), head.entries),
+        ])
     }
 }

@@ -2,7 +2,14 @@
 
 use clap::{Args, Subcommand};
 
-use super::{Failure, Global};
+use super::output::{aligned, clean, print_clean};
+use super::record::{outcome_lines, recorded_lines};
+use super::{Failure, Global, open};
+use crate::actions::{ChildHistory, CorrectionView, VisitView};
+use crate::clock::Moment;
+
+/// How many hits are listed.
+const LISTED: usize = 50;
 
 /// Find and show children
 #[derive(Debug, Args)]
@@ -26,7 +33,156 @@ enum Command {
 }
 
 impl Child {
-    pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
-        Err(Failure::failed("child is not part of this version"))
+    pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        let desk = open::to_read(global)?;
+        match &self.command {
+            Command::Find { text } => {
+                let mut found = desk.search_index()?.find(text, LISTED + 1);
+                if found.is_empty() {
+                    return Err(Failure::failed(format!(
+                        "nobody is found by {:?}",
+                        clean(text)
+                    )));
+                }
+                let more = found.len() > LISTED;
+                found.truncate(LISTED);
+                let rows: Vec<Vec<String>> = found
+                    .into_iter()
+                    .map(|c| {
+                        vec![
+                            clean(&c.child_id),
+                            clean(&format!("{}, {}", c.family_name, c.given_name)),
+                            born(c.dob),
+                            clean(&c.site),
+                            clean(&c.class),
+                        ]
+                    })
+                    .collect();
+                let mut lines = aligned(&rows);
+                if more {
+                    lines.push(format!("… the first {LISTED}; type more of the name"));
+                }
+                print_clean(&lines)
+            }
+            Command::Show { id } => {
+                let history = desk.history(id)?.ok_or_else(|| {
+                    Failure::bad_input(format!("no child has the id {:?}", clean(id)))
+                        .hint("twoline child find TEXT")
+                })?;
+                print_clean(&history_lines(&history))
+            }
+        }
     }
+}
+
+fn born(dob: Option<chrono::NaiveDate>) -> String {
+    dob.map_or_else(
+        || "birth date unknown".to_owned(),
+        |dob| format!("born {dob}"),
+    )
+}
+
+fn history_lines(history: &ChildHistory) -> Vec<String> {
+    let mut lines = vec![
+        format!(
+            "{}, {} ({})",
+            history.family_name, history.given_name, history.child_id
+        ),
+        [
+            born(history.dob),
+            format!("site {}", history.site),
+            history
+                .grade
+                .map_or_else(|| "grade unknown".to_owned(), |g| format!("grade {g}")),
+            format!("class {}", history.class),
+        ]
+        .into_iter()
+        .filter(|part| !part.ends_with(' '))
+        .collect::<Vec<_>>()
+        .join(", "),
+    ];
+    let facts: Vec<Vec<String>> = history
+        .facts
+        .iter()
+        .map(|(what, value)| vec![format!("  {}", clean(what)), clean(value)])
+        .collect();
+    lines.extend(aligned(&facts));
+    if history.visits.is_empty() {
+        lines.push("no signed visit".to_owned());
+    }
+    for visit in &history.visits {
+        lines.push(String::new());
+        lines.extend(visit_lines(visit));
+    }
+    lines
+}
+
+fn visit_lines(visit: &VisitView) -> Vec<String> {
+    let mut lines = vec![
+        format!(
+            "{}, {}, site {}",
+            visit.date,
+            visit.attempt.title(),
+            visit.site
+        ),
+        format!("  visit {}", visit.id),
+    ];
+    for (n, earlier) in visit.earlier_tries.iter().enumerate() {
+        lines.push(format!("  try {}:", n + 1));
+        lines.extend(recorded_lines(earlier));
+    }
+    if !visit.earlier_tries.is_empty() {
+        lines.push("  judged:".to_owned());
+    }
+    lines.extend(recorded_lines(&visit.readings));
+    if let Some(signed) = &visit.outcome {
+        match &visit.now {
+            Some(now) => lines.push(format!("  signed as {}, now {now}", signed.headline())),
+            None => lines.push(format!("  {}", signed.headline())),
+        }
+        lines.extend(outcome_lines(signed));
+    }
+    let who = if visit.screener.is_empty() {
+        "screener not named"
+    } else {
+        &visit.screener
+    };
+    lines.push(format!(
+        "  entered {} by {who}, station {}{}",
+        at(visit.entered),
+        visit.station,
+        if visit.late { ", late" } else { "" }
+    ));
+    lines.extend(visit.corrections.iter().map(correction_line));
+    lines
+}
+
+fn correction_line(correction: &CorrectionView) -> String {
+    let said = |value: &str| {
+        if value.is_empty() {
+            "nothing".to_owned()
+        } else {
+            value.to_owned()
+        }
+    };
+    let who = if correction.screener.is_empty() {
+        String::new()
+    } else {
+        format!(" by {}", correction.screener)
+    };
+    format!(
+        "  corrected {}{who}: {} from {} to {}, because: {}",
+        at(correction.at),
+        correction.what,
+        said(&correction.before),
+        said(&correction.after),
+        correction.reason
+    )
+}
+
+/// Writes a moment as the clock on the wall showed it.
+fn at(moment: Moment) -> String {
+    let wall_ms = moment.utc_ms + i64::from(moment.offset_minutes) * 60_000;
+    chrono::DateTime::from_timestamp_millis(wall_ms)
+        .map_or_else(String::new, |t| t.format("%Y-%m-%d %H:%M").to_string())
 }

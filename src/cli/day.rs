@@ -3,7 +3,11 @@
 use chrono::NaiveDate;
 use clap::{Args, Subcommand};
 
-use super::{Failure, Global};
+use super::output::print_lines;
+use super::values::title;
+use super::{Failure, Global, open};
+use crate::actions::NewDay;
+use crate::domain::codes::AcuityMethod;
 
 /// Open screening days
 #[derive(Debug, Args)]
@@ -14,7 +18,7 @@ pub(super) struct Day {
 
 #[derive(Debug, Subcommand)]
 enum Command {
-    /// Open a screening day
+    /// Open a screening day; one that is open already stays as it is
     Open {
         /// Site code
         #[arg(long, value_name = "CODE")]
@@ -32,7 +36,31 @@ enum Command {
 }
 
 impl Day {
-    pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
-        Err(Failure::failed("day open is not part of this version"))
+    pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        let Command::Open {
+            site,
+            date,
+            protocol,
+            method,
+        } = &self.command;
+        let mut desk = open::to_write(global)?;
+        let day = desk.open_day(NewDay {
+            site: site.clone(),
+            date: date.unwrap_or(desk.today()),
+            protocol: protocol.clone(),
+            method: AcuityMethod::from_word(method).unwrap_or(AcuityMethod::Threshold),
+        })?;
+        let children = desk.day_children(&day)?;
+        let due = children
+            .iter()
+            .filter(|c| c.due_on.is_some_and(|due| due <= day.date))
+            .count();
+        print_lines(&[
+            format!("open: {}", title(&day)),
+            format!(
+                "{} children expected, {due} of them due to come back",
+                children.len()
+            ),
+        ])
     }
 }

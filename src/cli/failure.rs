@@ -5,6 +5,8 @@ use std::io;
 
 use crate::actions::judge::JudgeError;
 use crate::actions::rulebook::{RuleFileError, UnknownRule};
+use crate::actions::{ActionError, Damage, Kind};
+use crate::domain::text::shown;
 
 /// A message, a hint and an exit code. Its text ends with a line break and is safe to print.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -127,6 +129,45 @@ impl From<JudgeError> for Failure {
             failed @ JudgeError::Write { .. } => Failure::failed(failed.to_string()),
         }
     }
+}
+
+impl From<ActionError> for Failure {
+    fn from(error: ActionError) -> Self {
+        const NOTHING: &str = "nothing was written";
+        let code = match error.kind {
+            Kind::BadInput => 2,
+            Kind::Failed | Kind::NotConfirmed => 1,
+        };
+        let failure = Failure {
+            code,
+            ..Failure::failed(safe(&error.message))
+        };
+        match error.hint {
+            // The problems of a file stand before the message, a line each.
+            Some(hint) if hint == NOTHING => Failure {
+                code,
+                ..Failure::failed(NOTHING).details(&failure.message)
+            },
+            Some(hint) => failure.hint(safe(&hint)),
+            None => failure,
+        }
+    }
+}
+
+impl From<Damage> for Failure {
+    fn from(damage: Damage) -> Self {
+        let failure = Failure::failed(safe(&damage.to_string()));
+        match damage.hint() {
+            Some(hint) => failure.hint(hint),
+            None => failure,
+        }
+    }
+}
+
+/// Makes what must not reach a terminal visible, line by line.
+fn safe(text: &str) -> String {
+    let lines: Vec<String> = text.lines().map(|line| shown(line, 10_000)).collect();
+    lines.join("\n")
 }
 
 impl From<io::Error> for Failure {

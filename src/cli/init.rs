@@ -1,10 +1,20 @@
 //! `twoline init`: makes a store.
 
-use clap::Args;
+use std::io::{IsTerminal, Write, stderr, stdin};
 
+use clap::Args;
+use zeroize::Zeroizing;
+
+use super::open::{ask_hidden, folder, from_file, options};
+use super::output::{clean, print_lines, say};
 use super::{Failure, Global};
+use crate::actions::{Kdf, NewStore, RecoveryKey, Secret, init};
+use crate::domain::acuity::Notation;
 
 /// Make a store
+///
+/// The passphrase is asked for twice, or read from the passphrase file. The recovery key is shown
+/// once and kept nowhere: it opens the store when the passphrase is lost.
 #[derive(Debug, Args)]
 pub(super) struct Init {
     /// Name of the programme
@@ -16,10 +26,91 @@ pub(super) struct Init {
     /// What a bare acuity number stands under: 40 is 20/40, or 12 is 6/12
     #[arg(long, value_parser = ["feet", "metres"], default_value = "feet")]
     notation: String,
+    /// Join the programme of a packet (not part of this version)
+    #[arg(long, value_name = "PACKET", hide = true)]
+    join: Option<String>,
 }
 
 impl Init {
-    pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
-        Err(Failure::failed("init is not part of this version"))
+    pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        if self.join.is_some() {
+            return Err(Failure::bad_input("--join is not part of this version")
+                .hint("without it init makes a programme of its own"));
+        }
+        let dir = folder(global)?;
+        let new = NewStore {
+            programme: self.programme.clone(),
+            station: self.station.clone(),
+            notation: if self.notation == "metres" {
+                Notation::Metres
+            } else {
+                Notation::Feet
+            },
+            secret: chosen(global)?,
+            kdf: Kdf::Calibrated,
+        };
+        let (desk, recovery) = init(&dir, new, &options(global))?;
+        let mut lines = vec![format!(
+            "made the store of {}, station {}, in {}",
+            clean(&desk.programme()),
+            clean(&desk.station()),
+            clean(&dir.to_string_lossy())
+        )];
+        if let Some(key) = &recovery {
+            lines.extend([
+                "recovery key, shown this once; write it down and keep it away from this computer:"
+                    .to_owned(),
+                format!("  {}", &*key.grouped()),
+            ]);
+        }
+        print_lines(&lines)?;
+        recovery.as_ref().map_or(Ok(()), typed_back)
+    }
+}
+
+/// Returns the chosen passphrase: from the file, or typed twice.
+fn chosen(global: &Global) -> Result<Secret, Failure> {
+    let text = match from_file(global)? {
+        Some(text) => text,
+        None => {
+            let first = ask_hidden("Passphrase, 15 characters or more: ")?;
+            if ask_hidden("The same again: ")? != first {
+                return Err(Failure::bad_input(
+                    "the two are not the same; nothing was made",
+                ));
+            }
+            first
+        }
+    };
+    match Secret::from_file(&text) {
+        Secret::Recovery(text) => Ok(Secret::Passphrase(text)),
+        secret => Ok(secret),
+    }
+}
+
+/// Wants the last four characters of the recovery key, where there is a terminal to type them on.
+fn typed_back(key: &RecoveryKey) -> Result<(), Failure> {
+    if !stdin().is_terminal() {
+        return Ok(());
+    }
+    loop {
+        let mut err = stderr().lock();
+        let _ = write!(
+            err,
+            "Type its last four characters, to show that you have it: "
+        );
+        let _ = err.flush();
+        drop(err);
+        let mut typed = Zeroizing::new(String::new());
+        if stdin().read_line(&mut typed)? == 0 {
+            return Err(Failure::failed(
+                "the store is made, but its recovery key was not typed back",
+            )
+            .hint("without the recovery key a lost passphrase is the loss of the store"));
+        }
+        if key.ends_with(&typed) {
+            return Ok(());
+        }
+        say("those are not its last four characters");
     }
 }

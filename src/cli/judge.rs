@@ -1,6 +1,6 @@
 //! `twoline judge`: rows of a file in, rows with their outcome out.
 
-use std::io::{self, ErrorKind};
+use std::io::{self, ErrorKind, IsTerminal};
 use std::path::PathBuf;
 use std::sync::Arc;
 use std::sync::atomic::AtomicBool;
@@ -71,7 +71,12 @@ impl Judge {
             signal_hook::flag::register(signal, Arc::clone(&stop))?;
         }
         // Drawn on standard error, and only where that is a terminal.
-        let bar = indicatif::ProgressBar::new_spinner().with_message("rows read");
+        // Not among the rows, though, where they go to the same terminal.
+        let bar = if self.out.is_none() && io::stdout().is_terminal() {
+            indicatif::ProgressBar::hidden()
+        } else {
+            indicatif::ProgressBar::new_spinner().with_message("rows read")
+        };
         let mut progress = |rows| {
             bar.set_message(format!("{rows} rows read"));
             bar.tick();

@@ -2,10 +2,11 @@
 
 use std::path::PathBuf;
 
-use chrono::NaiveDate;
 use clap::{Args, Subcommand};
 
-use super::{Failure, Global};
+use super::output::{clean, print_bytes, say};
+use super::values::{WhichDay, title};
+use super::{Failure, Global, open, write};
 
 /// Write reports
 #[derive(Debug, Args)]
@@ -18,13 +19,10 @@ pub(super) struct Report {
 enum Command {
     /// One row per child of a screening day
     Day {
-        /// Site code; the only open day without it
-        #[arg(long, value_name = "CODE")]
-        site: Option<String>,
-        /// Date of the day; today without it
-        #[arg(long, value_name = "YYYY-MM-DD")]
-        date: Option<NaiveDate>,
-        /// The file to write; standard output without it
+        #[command(flatten)]
+        day: WhichDay,
+        /// The file to write, with the rule sets used and the cautions beside it in OUT.about.txt;
+        /// standard output without it
         #[arg(short, long, value_name = "OUT")]
         out: Option<PathBuf>,
         /// Form of the file
@@ -37,7 +35,27 @@ enum Command {
 }
 
 impl Report {
-    pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
-        Err(Failure::failed("report day is not part of this version"))
+    pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        let Command::Day {
+            day, out, exact, ..
+        } = &self.command;
+        let desk = open::to_read(global)?;
+        let day = day.of(&desk)?;
+        let report = desk.day_report(&day, *exact)?;
+        let Some(out) = out else {
+            return print_bytes(&report.bytes);
+        };
+        let mut about = out.as_os_str().to_owned();
+        about.push(".about.txt");
+        let about = PathBuf::from(about);
+        write::whole(&[(&about, report.about.as_bytes()), (out, &report.bytes)])?;
+        say(&format!(
+            "{} children of {}: {} and {}",
+            report.rows,
+            title(&day),
+            clean(&out.to_string_lossy()),
+            clean(&about.to_string_lossy())
+        ));
+        Ok(())
     }
 }

@@ -2,7 +2,8 @@
 
 use clap::{Args, Subcommand};
 
-use super::{Failure, Global};
+use super::output::{clean, print_lines};
+use super::{Failure, Global, open};
 
 /// Add people who record
 #[derive(Debug, Args)]
@@ -15,15 +16,23 @@ pub(super) struct Screener {
 enum Command {
     /// Add a screener
     Add {
-        /// Initials
-        initials: String,
         /// Name
+        #[arg(long, value_name = "NAME")]
         name: String,
+        /// Initials
+        #[arg(long, value_name = "XX")]
+        initials: String,
     },
 }
 
 impl Screener {
-    pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
-        Err(Failure::failed("screener add is not part of this version"))
+    pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        let Command::Add { name, initials } = &self.command;
+        open::to_write(global)?.add_screener(initials, name)?;
+        print_lines(&[format!(
+            "added screener {} ({})",
+            clean(name.trim()),
+            clean(initials.trim())
+        )])
     }
 }

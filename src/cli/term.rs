@@ -3,7 +3,9 @@
 use chrono::NaiveDate;
 use clap::{Args, Subcommand};
 
-use super::{Failure, Global};
+use super::output::{clean, print_lines};
+use super::site::done;
+use super::{Failure, Global, open};
 
 /// Add terms
 #[derive(Debug, Args)]
@@ -14,10 +16,13 @@ pub(super) struct Term {
 
 #[derive(Debug, Subcommand)]
 enum Command {
-    /// Add a term
+    /// Add a term, or change the title and dates of the one of this code
     Add {
-        /// Name of the term
-        name: String,
+        /// Code of the term, such as 2026-autumn
+        code: String,
+        /// Title for people; the code without it
+        #[arg(long, value_name = "TITLE")]
+        title: Option<String>,
         /// First day
         #[arg(long, value_name = "YYYY-MM-DD")]
         from: NaiveDate,
@@ -28,7 +33,19 @@ enum Command {
 }
 
 impl Term {
-    pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
-        Err(Failure::failed("term add is not part of this version"))
+    pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        let Command::Add {
+            code,
+            title,
+            from,
+            to,
+        } = &self.command;
+        let title = title.as_ref().unwrap_or(code);
+        let put = open::to_write(global)?.add_term(code, title, *from, *to)?;
+        print_lines(&[format!(
+            "{} term {}, {from} to {to}",
+            done(put),
+            clean(code.trim())
+        )])
     }
 }

@@ -23,12 +23,14 @@ pub fn forbidden(kind: Kind, text: &str) -> Option<String> {
     if kind != Kind::Name && text.bytes().all(|b| matches!(b, 0x20..=0x7E)) {
         return None;
     }
-    let bad = text.chars().find(|c| match kind {
+    let bad = text.char_indices().find(|(i, c)| match kind {
         Kind::Code => is_unsafe(*c),
         Kind::Name | Kind::Line => c.is_control(),
-        Kind::Note => c.is_control() && !matches!(c, '\n' | '\r' | '\t'),
+        // A carriage return alone would let the end of a line overwrite its beginning.
+        Kind::Note if *c == '\r' => !text[i + 1..].starts_with('\n'),
+        Kind::Note => c.is_control() && !matches!(c, '\n' | '\t'),
     });
-    if let Some(c) = bad {
+    if let Some((_, c)) = bad {
         return Some(format!(
             "text without {} (U+{:04X})",
             if c.is_control() {

@@ -2,6 +2,7 @@
 
 use csv::StringRecord;
 
+use super::cells::{Kind, forbidden};
 use super::encoding;
 use super::problem::{Found, Place, Problem, Problems};
 use super::quoting::{self, Break, Fault, LONGEST_FIELD, line_breaks};
@@ -181,6 +182,10 @@ impl<'a> Sheet<'a> {
                     Problem::of_cell(&self.file, place, &number, header, "each column once")
                         .cure(format!("it is also column number {}", first + 1)),
                 );
+            } else if let Some(expected) = forbidden(Kind::Code, header) {
+                problems.push(Problem::of_cell(
+                    &self.file, place, &number, header, expected,
+                ));
             } else if meaning.is_none() && !pass_through {
                 let problem = Problem::of_cell(
                     &self.file,

@@ -33,7 +33,7 @@ pub struct ReasonLine {
 /// passes, shortly.
 pub fn reasons_text(outcome: &Outcome, out: &mut String) {
     let start = out.len();
-    let mut part = |out: &mut String| {
+    let part = |out: &mut String| {
         if out.len() > start {
             out.push_str(". ");
         }

@@ -92,7 +92,10 @@ pub(super) fn load(
     };
     match loaded {
         Some(loaded) if reader.errors.is_empty() => Ok(loaded),
-        _ => Err(reader.errors),
+        _ => {
+            reader.errors.sort_by_key(|e| (e.line, e.column));
+            Err(reader.errors)
+        }
     }
 }
 
@@ -127,8 +130,6 @@ fn rule_set(
             "",
         );
     }
-    criterion::check_bands(reader, &criteria);
-    let criteria: Vec<Criterion> = criteria.into_iter().map(|(c, _)| c).collect();
     let (head, kind) = (head?, kind?);
     let span = set_ages.or_else(|| span_of(&criteria));
     let by_grade = criteria
@@ -268,10 +269,12 @@ fn sources(reader: &mut Reader<'_>, root: &Section<'_, '_>) -> Vec<Arc<Source>> 
             .map(|v| format!("doi {}", v.0))
             .or_else(|| reader.optional(&section, "url").map(|v| v.0))
             .unwrap_or_default();
-        let (Some((key, key_span)), Some((citation, _)), Some(basis)) = (key, citation, basis)
-        else {
+        // A source with another fault is still known by its key, so that one fault is one error.
+        let Some((key, key_span)) = key else {
             continue;
         };
+        let citation = citation.map(|v| v.0).unwrap_or_default();
+        let basis = basis.unwrap_or(Basis::Memory);
         if out.iter().any(|s| s.key == key) {
             reader.fault(
                 key_span,

@@ -99,7 +99,7 @@ impl fmt::Display for Applies {
             Applies::Ages { from, to: Some(to) } => write!(f, "{from}–{} months", to - 1),
             Applies::Grades(list) => match list.as_slice() {
                 [one] => write!(f, "grade {one}"),
-                [first, .., last] => write!(f, "grades {first}–{last}"),
+                [low, .., high] => write!(f, "grades {low}–{high}"),
                 [] => f.write_str("no grade"),
             },
         }
@@ -272,7 +272,7 @@ pub struct NotTestablePolicy {
 
 /// What a programme does with the answers.
 #[derive(Debug, Clone, PartialEq)]
-#[allow(clippy::struct_excessive_bools)]
+#[allow(clippy::struct_excessive_bools)] // each is one key of the file
 pub struct Protocol {
     /// Its id, which appears in files.
     pub id: Arc<str>,

@@ -1,5 +1,7 @@
 //! Rule sets and protocols as tables and lines, for `rules list`, `rules show` and the Rules place.
 
+use std::fmt::Write;
+
 use crate::domain::outcome::{Basis, Source};
 use crate::rules::explain::{basis_words, criterion_words};
 use crate::rules::{Applies, Kind, Measure, Protocol, RuleSet, threshold};
@@ -81,21 +83,21 @@ pub fn sheet(set: &RuleSet) -> RuleSheet {
         };
         let mut cell = criterion.threshold.to_string();
         if let Some(beyond) = criterion.axis_beyond {
-            cell.push_str(&format!(", axis more than {beyond}° from 90 and 180"));
+            let _ = write!(cell, ", axis more than {beyond}° from 90 and 180");
         }
         if cell == "present" {
-            cell = criterion.urgency.title().to_owned();
+            criterion.urgency.title().clone_into(&mut cell);
             if let Some(days) = criterion.act_within_days {
-                cell.push_str(&format!(", act within {days} days"));
+                let _ = write!(cell, ", act within {days} days");
             }
         }
-        let row = match rows.iter().position(|(name, _)| *name == finding) {
-            Some(at) => at,
-            None => {
+        let row = rows
+            .iter()
+            .position(|(name, _)| *name == finding)
+            .unwrap_or_else(|| {
                 rows.push((finding, vec![String::new(); columns.len()]));
                 rows.len() - 1
-            }
-        };
+            });
         let name = column(&criterion.applies, set.span);
         for (i, column) in columns.iter().enumerate() {
             if criterion.applies == Applies::Everyone || *column == name {
@@ -177,7 +179,7 @@ pub fn protocol_lines(protocol: &Protocol) -> Vec<String> {
     if let Some(id) = &protocol.instrument {
         let mut text = format!("Instrument       {id}");
         if let Some(months) = protocol.instrument_below_months {
-            text.push_str(&format!(", the test below {months} months"));
+            let _ = write!(text, ", the test below {months} months");
         }
         if protocol.instrument_stands_in {
             text.push_str(", stands in for a chart that is not testable when both eyes were read");

@@ -113,7 +113,7 @@ pub(super) fn refuse_network(dir: &Path) -> Result<()> {
 #[cfg(target_os = "linux")]
 fn network_name(dir: &Path) -> Option<String> {
     let stat = rustix::fs::statfs(dir).ok()?;
-    network_magic(i64::from(stat.f_type)).map(str::to_owned)
+    network_magic(stat.f_type).map(str::to_owned)
 }
 
 /// Names the network filesystems by the numbers Linux gives them (statfs(2)).
@@ -163,7 +163,10 @@ mod tests {
         // Source: statfs(2), Linux man-pages. Basis: memory of the manual page.
         assert_eq!(network_magic(0x6969), Some("nfs"));
         assert_eq!(network_magic(0xFF53_4D42), Some("cifs"));
-        assert_eq!(network_magic(0xFF53_4D42_u32 as i32 as i64), Some("cifs"));
+        assert_eq!(
+            network_magic(i64::from(0xFF53_4D42_u32.cast_signed())),
+            Some("cifs")
+        );
         assert_eq!(network_magic(0xEF53), None, "ext4");
         assert_eq!(network_magic(0x0102_1994), None, "tmpfs");
     }

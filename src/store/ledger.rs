@@ -230,7 +230,7 @@ pub fn hex(bytes: &[u8]) -> String {
 /// Reads hex; nothing for anything else.
 pub fn unhex(text: &str) -> Option<Vec<u8>> {
     let bytes = text.as_bytes();
-    if bytes.len() % 2 != 0 || !bytes.iter().all(u8::is_ascii_hexdigit) {
+    if !bytes.len().is_multiple_of(2) || !bytes.iter().all(u8::is_ascii_hexdigit) {
         return None;
     }
     (0..bytes.len() / 2)

@@ -58,6 +58,8 @@ pub(super) fn connect(path: &Path, key: &RawKey, purpose: For) -> Result<Connect
         },
     )?;
     pragma(&conn, "cache_size = -65536")?;
+    // A large import leaves no large log behind.
+    pragma(&conn, "journal_size_limit = 67108864")?;
     conn.busy_timeout(std::time::Duration::from_secs(5))?;
     conn.set_prepared_statement_cache_capacity(256);
     conn.query_row("SELECT count(*) FROM sqlite_schema", [], |_| Ok(()))
@@ -84,34 +86,47 @@ fn pragma(conn: &Connection, text: &str) -> rusqlite::Result<()> {
     Ok(())
 }
 
-impl Store {
-    /// Makes a new store in a folder that has none.
-    ///
-    /// Returns the recovery key, to be printed once, where the store is protected.
-    pub fn create(dir: &Path, new: New) -> Result<(Store, Option<RecoveryKey>)> {
-        files::keep_private();
-        if dir.join(super::key::FILE).exists() || dir.join(FILE).exists() {
-            return Err(Error::new(
-                ErrorKind::Exists,
-                format!("there is a store in {} already", dir.display()),
-            )
-            .with_hint("open it, or name another folder with --store"));
-        }
-        let programme = new.programme_id.unwrap_or_else(new_id);
-        let raw_key = super::key::random::<32>()?;
-        // Refuses a weak passphrase before anything is made.
-        let (file, recovery) =
-            KeyFile::make(&new.programme, programme, &new.secret, new.kdf, &raw_key)?;
+fn refuse_taken(dir: &Path) -> Result<()> {
+    if dir.join(super::key::FILE).exists() {
+        return Err(Error::new(
+            ErrorKind::Exists,
+            format!("there is a store in {} already", dir.display()),
+        )
+        .with_hint("open it, or name another folder with --store"));
+    }
+    if dir.join(FILE).exists() {
+        return Err(Error::new(
+            ErrorKind::Exists,
+            format!("{} holds a {FILE} without its key file", dir.display()),
+        )
+        .with_hint("copy store.key back from a backup, or name another folder with --store"));
+    }
+    Ok(())
+}
+
+/// The first entries of a store.
+struct First {
+    programme: Programme,
+    station: Station,
+    notation: Setting,
+}
+
+impl First {
+    fn make(&self, dir: &Path, raw_key: &RawKey, file: &KeyFile) -> Result<Store> {
         files::private_dir(dir)?;
         files::refuse_network(dir)?;
         let lock = lock::take(dir, std::time::Duration::ZERO)?;
-        let mut conn = connect(&dir.join(FILE), &raw_key, For::Entries)?;
+        let mut conn = connect(&dir.join(FILE), raw_key, For::Entries)?;
         pragma(
             &conn,
             &format!("application_id = {}", schema::APPLICATION_ID),
         )?;
         schema::migrate(&mut conn)?;
-        let (station, chain) = (new_id(), new_id());
+        let (programme, station, chain) = (
+            self.programme.programme_id,
+            self.station.station_id,
+            new_id(),
+        );
         let author = Author {
             screener: None,
             at: crate::clock::now(),
@@ -125,37 +140,74 @@ impl Store {
                 follows_seq: None,
                 follows_hash: None,
             })?;
-            tx.add(&Programme {
-                id: new_id(),
-                programme_id: programme,
-                name: new.programme.clone(),
-            })?;
-            tx.add(&Station {
-                id: new_id(),
-                station_id: station,
-                name: new.station.clone(),
-                chart_id: None,
-            })?;
-            tx.add(&Setting {
-                id: new_id(),
-                name: "notation".to_owned(),
-                value: new.notation.clone(),
-            })?;
+            tx.add(&self.programme)?;
+            tx.add(&self.station)?;
+            tx.add(&self.notation)?;
             tx.write_first_here(programme, station, chain)
         })?;
         // The key file last: a folder without one is no store.
         file.write(dir)?;
-        let store = Store {
+        Ok(Store {
             conn,
             dir: dir.to_owned(),
             info: file.info()?,
-            raw_key,
+            raw_key: raw_key.clone(),
             lock: Some(lock),
             programme,
             station,
             chain,
+        })
+    }
+}
+
+impl Store {
+    /// Makes a new store in a folder that has none.
+    ///
+    /// Returns the recovery key, to be printed once, where the store is protected.
+    pub fn create(dir: &Path, new: New) -> Result<(Store, Option<RecoveryKey>)> {
+        files::keep_private();
+        refuse_taken(dir)?;
+        let New {
+            programme,
+            programme_id,
+            station,
+            notation,
+            secret,
+            kdf,
+        } = new;
+        let programme_id = programme_id.unwrap_or_else(new_id);
+        let raw_key = super::key::random::<32>()?;
+        // Refuses a weak passphrase before anything is made.
+        let (file, recovery) = KeyFile::make(&programme, programme_id, &secret, kdf, &raw_key)?;
+        let first = First {
+            programme: Programme {
+                id: new_id(),
+                programme_id,
+                name: programme,
+            },
+            station: Station {
+                id: new_id(),
+                station_id: new_id(),
+                name: station,
+                chart_id: None,
+            },
+            notation: Setting {
+                id: new_id(),
+                name: "notation".to_owned(),
+                value: notation,
+            },
         };
-        Ok((store, recovery))
+        let stood = dir.exists();
+        let made = first.make(dir, &raw_key, &file);
+        if made.is_err() {
+            for name in [FILE, "store.db-wal", "store.db-shm", "lock"] {
+                let _ = std::fs::remove_file(dir.join(name));
+            }
+            if !stood {
+                let _ = std::fs::remove_dir(dir);
+            }
+        }
+        made.map(|store| (store, recovery))
     }
 
     /// Opens a store.

@@ -6,7 +6,7 @@
 use std::collections::BTreeSet;
 
 use rusqlite::functions::FunctionFlags;
-use rusqlite::{Connection, params};
+use rusqlite::{Connection, ErrorCode, params};
 use uuid::Uuid;
 
 use super::cell::Value;
@@ -45,13 +45,23 @@ macro_rules! latest {
     };
 }
 
+/// The columns of `child_current`, from a child `c`, its enrolment `e`, detail `d`, guardian `g` and
+/// consent `k`; the second guardian's id follows.
+macro_rules! child_columns {
+    () => {
+        concat!(
+            "SELECT c.child_id, c.family_name, c.given_name, c.dob, c.provisional, ",
+            "folded(c.family_name || ' ' || c.given_name), ",
+            "e.site, e.term, e.grade, e.class, e.teacher, e.left_on, ",
+            "d.sex, d.language, d.wears_glasses, d.under_care, d.last_exam_on, d.known_condition, ",
+            "d.history, d.notes, g.name, g.phone, k.consent, d.id, g.id, ",
+        )
+    };
+}
+
 /// The state of children; ends in a WHERE clause to add to.
 pub(super) const CHILDREN: &str = concat!(
-    "SELECT c.child_id, c.family_name, c.given_name, c.dob, c.provisional, ",
-    "folded(c.family_name || ' ' || c.given_name), ",
-    "e.site, e.term, e.grade, e.class, e.teacher, e.left_on, ",
-    "d.sex, d.language, d.wears_glasses, d.under_care, d.last_exam_on, d.known_condition, ",
-    "d.history, d.notes, g.name, g.phone, k.consent, d.id, g.id, ",
+    child_columns!(),
     latest!("guardian", "AND x.place = 2", ""),
     " FROM child c LEFT JOIN enrolment e ON e.id = ",
     latest!("enrolment", "", "x.from_on DESC, "),
@@ -63,6 +73,19 @@ pub(super) const CHILDREN: &str = concat!(
     latest!("consent", "", ""),
     " WHERE c.id = ",
     latest!("child", "", ""),
+);
+
+/// The same for a child with one entry of each kind and no correction: a plain join, three times as
+/// fast. It gives no row where a correction is in play, and breaks the key where there is a choice.
+const PLAIN_CHILD: &str = concat!(
+    child_columns!(),
+    "h.id FROM child c LEFT JOIN enrolment e ON e.child_id = c.child_id ",
+    "LEFT JOIN child_detail d ON d.child_id = c.child_id ",
+    "LEFT JOIN guardian g ON g.child_id = c.child_id AND g.place = 1 ",
+    "LEFT JOIN guardian h ON h.child_id = c.child_id AND h.place = 2 ",
+    "LEFT JOIN consent k ON k.child_id = c.child_id ",
+    "WHERE c.child_id = ?1 AND NOT EXISTS (SELECT 1 FROM superseded s ",
+    "WHERE s.id IN (c.id, e.id, d.id, g.id, h.id, k.id))",
 );
 
 /// The state of visits; ends in a WHERE clause to add to.
@@ -107,9 +130,19 @@ pub(super) fn children(conn: &Connection, touched: &BTreeSet<String>) -> Result<
     let mut come = conn.prepare_cached(&format!(
         "INSERT INTO child_current {CHILDREN} AND c.child_id = ?1"
     ))?;
+    let mut plain = conn.prepare_cached(&format!("INSERT INTO child_current {PLAIN_CHILD}"))?;
     for child in touched {
         gone.execute([child])?;
-        come.execute([child])?;
+        match plain.execute([child]) {
+            Ok(1) => {}
+            Ok(_) => {
+                come.execute([child])?;
+            }
+            Err(e) if e.sqlite_error_code() == Some(ErrorCode::ConstraintViolation) => {
+                come.execute([child])?;
+            }
+            Err(e) => return Err(e.into()),
+        }
     }
     Ok(())
 }

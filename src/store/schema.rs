@@ -35,6 +35,7 @@ pub(super) fn migrate(conn: &mut Connection) -> Result<()> {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
     use crate::store::row::TABLES;
@@ -42,6 +43,29 @@ mod tests {
     #[test]
     fn migrations_are_sound() {
         MIGRATIONS.validate().unwrap();
+    }
+
+    /// From every earlier version the same tables come out.
+    #[test]
+    fn every_earlier_version_comes_up_to_date() {
+        let schema = |conn: &Connection| -> Vec<String> {
+            conn.prepare("SELECT sql FROM sqlite_schema WHERE sql IS NOT NULL ORDER BY name")
+                .unwrap()
+                .query_map([], |r| r.get(0))
+                .unwrap()
+                .map(std::result::Result::unwrap)
+                .collect()
+        };
+        let mut newest = Connection::open_in_memory().unwrap();
+        migrate(&mut newest).unwrap();
+        assert_eq!(version(&newest).unwrap(), NEWEST);
+        for from in 0..=NEWEST {
+            let mut conn = Connection::open_in_memory().unwrap();
+            MIGRATIONS.to_version(&mut conn, from).unwrap();
+            assert_eq!(version(&conn).unwrap(), from);
+            migrate(&mut conn).unwrap();
+            assert_eq!(schema(&conn), schema(&newest), "from version {from}");
+        }
     }
 
     /// The declaration in `row` and the migrations say the same, column by column.

@@ -262,7 +262,7 @@ impl<'c, 'e, P: FnMut(u64, u64)> Walk<'c, 'e, P> {
                 &format!("number {seq} of chain {chain} is not as it was hashed"),
             ));
         }
-        self.link(tx, header, tx_hash, n)
+        self.link(tx, &header, tx_hash, n)
     }
 
     /// Compares the rows a transaction names with those that are there.
@@ -288,7 +288,7 @@ impl<'c, 'e, P: FnMut(u64, u64)> Walk<'c, 'e, P> {
     }
 
     /// Links a transaction to the one before in its chain.
-    fn link(&mut self, tx: i64, header: TxHeader, hash: Vec<u8>, n: i64) -> Result<()> {
+    fn link(&mut self, tx: i64, header: &TxHeader, hash: Vec<u8>, n: i64) -> Result<()> {
         let before = self.chains.get(&header.chain);
         let expected = before.map_or(1, |tip| tip.seq + 1);
         if header.seq != expected {

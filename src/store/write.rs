@@ -37,7 +37,7 @@ pub enum Put {
 pub struct Tx<'a> {
     conn: &'a Connection,
     author: Author,
-    tx: i64,
+    number: i64,
     rows: TxRows,
     salts: Salts,
     bytes: Vec<u8>,
@@ -92,7 +92,7 @@ pub(super) fn append<T>(
 ) -> Result<T> {
     let sql = conn.transaction_with_behavior(TransactionBehavior::Immediate)?;
     let mut tx = Tx {
-        tx: sql
+        number: sql
             .prepare_cached("SELECT coalesce(max(tx), 0) + 1 FROM tx")?
             .query_one([], |r| r.get(0))?,
         conn: &sql,
@@ -167,7 +167,7 @@ impl Tx<'_> {
             insert.raw_bind_parameter(1, id.cell())?;
             insert.raw_bind_parameter(2, version)?;
             insert.raw_bind_parameter(3, &salt[..])?;
-            insert.raw_bind_parameter(4, self.tx)?;
+            insert.raw_bind_parameter(4, self.number)?;
             insert.raw_bind_parameter(5, ord)?;
             let (mut at, mut bound) = (6, Ok(()));
             let bytes = &mut self.bytes;
@@ -223,8 +223,9 @@ impl Tx<'_> {
         for id in old {
             before.push(self.present::<R>(*id)?);
         }
-        if let Some(new) = &replacement {
-            let key = key_of(new);
+        let replaced_by = replacement.as_ref().map(Row::id);
+        if let Some(new) = replacement {
+            let key = key_of(&new);
             if before.iter().any(|row| key_of(row) != key) {
                 return Err(Error::new(
                     ErrorKind::Refused,
@@ -236,17 +237,17 @@ impl Tx<'_> {
                 .with_hint("take the entry back and record it where it belongs"));
             }
             if let [only] = &before[..]
-                && only.clone().with_id(new.id()) == *new
+                && only.clone().with_id(new.id()) == new
             {
                 return Ok(Put::Unchanged);
             }
-            self.add(new)?;
+            self.add(&new)?;
         }
         self.add(&Correction {
             id: new_id(),
             table_name: R::TABLE.name.to_owned(),
             supersedes: Ids(old.to_vec()),
-            replacement: replacement.as_ref().map(Row::id),
+            replacement: replaced_by,
             reason: reason.to_owned(),
             screener_id: self.author.screener,
         })?;
@@ -318,7 +319,7 @@ impl Tx<'_> {
                  program_version, prev, n, tx_hash, entries) VALUES (?1,?2,?3,?4,?5,?6,?7,?8,?9,?10,?11,?12)",
             )?
             .execute(params![
-                self.tx,
+                self.number,
                 header.chain.cell(),
                 header.seq,
                 header.lamport,
@@ -380,6 +381,7 @@ fn insert_sql(table: &'static Table) -> &'static str {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
     use crate::store::row::Site;

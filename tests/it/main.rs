@@ -3,6 +3,7 @@
 mod actions;
 mod architecture;
 mod cli;
+mod cli_store;
 mod demo;
 mod domain;
 mod intake;

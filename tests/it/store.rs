@@ -1,4 +1,5 @@
 //! Tests of `store`.
+#![allow(clippy::unwrap_used, clippy::panic)]
 
 mod append;
 mod drafts;

@@ -8,8 +8,9 @@ use csv::StringRecord;
 use tempfile::NamedTempFile;
 
 use super::JudgeError;
+use crate::domain::age::spoken;
 use crate::domain::formula::unguarded;
-use crate::domain::outcome::{Outcome, Urgency};
+use crate::domain::outcome::{Outcome, OutcomeKind, Urgency};
 use crate::intake::Problem;
 use crate::intake::results::{Column, ResultsReader, RowColumn};
 use crate::reports::csv::{Form, Kind, Table};
@@ -111,6 +112,7 @@ impl<W: Write> OutcomeTable<W> {
         self.list(outcome.criteria.iter().map(String::as_str))?;
         self.list(outcome.unknown.iter().map(String::as_str))?;
         self.text.clear();
+        dates(outcome, &mut self.text);
         explain::reasons_text(outcome, &mut self.text);
         self.table.cell(&self.text)?;
         self.table.cell(&outcome.rule_set)?;
@@ -132,6 +134,23 @@ impl<W: Write> OutcomeTable<W> {
     pub(super) fn finish(self) -> Result<(), JudgeError> {
         let mut out = self.table.finish().map_err(failed)?;
         out.flush().map_err(failed)
+    }
+}
+
+/// Appends the dates of an outcome, which have no column of their own.
+fn dates(outcome: &Outcome, text: &mut String) {
+    if let Some(date) = outcome.act_by {
+        text.push_str("act by ");
+        text.push_str(&spoken(date));
+        text.push_str(". ");
+    }
+    if let Some(date) = outcome.due_on {
+        text.push_str(match outcome.kind {
+            OutcomeKind::Incomplete => "return by ",
+            _ => "rescreen by ",
+        });
+        text.push_str(&spoken(date));
+        text.push_str(". ");
     }
 }
 

@@ -133,7 +133,12 @@ fn born_together(a: &Names, b: &Names, same_site: bool) -> Option<AlikeKind> {
     if a.tokens == b.tokens {
         return (!a.tokens.is_empty()).then_some(AlikeKind::ProbableDuplicate);
     }
-    // Names that differ much in length or in their first letters are not worth measuring.
+    // One slip leaves one of the two names whole; measuring every pair costs more than reading.
+    let one_whole =
+        a.family == b.family || a.given == b.given || a.family == b.given || a.given == b.family;
+    if !one_whole {
+        return None;
+    }
     let near = a.tokens.len().abs_diff(b.tokens.len()) <= 2
         && strsim::jaro_winkler(&a.tokens, &b.tokens) >= NEARLY_SAME;
     if a.family == b.family && same_site && !a.family.is_empty() {

@@ -1,5 +1,7 @@
 //! Everything beside acuity and refraction: alignment, lids and media, signs, lens, stereo, color.
 
+use std::fmt::Write;
+
 use crate::domain::codes::{Correction, Cover, PlusLens, Reflex, YesNo};
 use crate::domain::outcome::{Answer, Margin};
 use crate::domain::readings::{Eye, Hundredths, Sign};
@@ -27,7 +29,7 @@ pub(super) fn strabismus(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
     };
     let mut reading = cover.map_or("cover test not done", Cover::title).to_owned();
     if let Some(size) = size {
-        reading.push_str(&format!(", {size} prism dioptres"));
+        let _ = write!(reading, ", {size} prism dioptres");
     }
     let mut out = Answered::new(answer, reading);
     if let (Test::MoreThanPrism(limit), Some(size)) = (&criterion.test, size) {

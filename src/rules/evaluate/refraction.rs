@@ -1,5 +1,7 @@
 //! Refraction criteria, by interval arithmetic on what the instrument gave.
 
+use std::fmt::Write;
+
 use crate::domain::codes::YesNo;
 use crate::domain::outcome::{Answer, Margin};
 use crate::domain::readings::{Eye, InstrumentEye};
@@ -257,10 +259,11 @@ fn reading(
         && by_equivalent != Answer::Refer
         && let Some(v) = cylinders.low.filter(|_| cylinders.low == cylinders.high)
     {
-        text.push_str(&format!(
+        let _ = write!(
+            text,
             ", cylinders differ by {} D",
             Diopters(v).unsigned().trim()
-        ));
+        );
     }
     text
 }

@@ -114,7 +114,7 @@ pub(in crate::rules) fn speak<'s>(set: &'s RuleSet, facts: &Facts<'_>) -> Vec<Sp
         if let Some(list) = list.filter(|_| answered.answer == Answer::Unknown) {
             let mut spoken = to_spoken(set, criterion, answered);
             spoken.reason.criterion = Arc::from(list);
-            spoken.reason.reading = "not looked for".to_owned();
+            "not looked for".clone_into(&mut spoken.reason.reading);
             spoken.reason.note = Arc::from("");
             spoken.reason.urgency = not_looked.as_ref().map_or(spoken.reason.urgency, |s| {
                 s.reason.urgency.min(spoken.reason.urgency)

@@ -31,39 +31,55 @@ const KEYS: &[&str] = &[
     "informs",
 ];
 
-/// Loads every criterion under a key, each with the place of its band (or of itself).
+/// Whom one criterion is for and where the file says so, kept even if the rest of it is faulty.
+struct Band {
+    id: String,
+    applies: Applies,
+    span: Range<usize>,
+}
+
+/// Loads every criterion under a key and checks their bands against each other.
 pub(super) fn load_all(
     reader: &mut Reader<'_>,
     root: &Section<'_, '_>,
     key: &str,
     sources: &[Arc<Source>],
-) -> Vec<(Criterion, Range<usize>)> {
-    let mut out: Vec<(Criterion, Range<usize>)> = Vec::new();
+) -> Vec<Criterion> {
+    let mut out: Vec<Criterion> = Vec::new();
+    let mut bands: Vec<Band> = Vec::new();
     for section in reader.sections(root, key) {
-        let Some((criterion, span, id_span)) = load(reader, &section, sources) else {
-            continue;
-        };
-        if out.iter().any(|(c, _)| c.id == criterion.id) {
-            reader.fault(
-                id_span,
-                format!("criterion `{}` stands twice", criterion.id),
-                "an id of its own",
-                "",
-            );
-        }
-        out.push((criterion, span));
+        out.extend(load(reader, &section, sources, &mut bands));
     }
+    check_bands(reader, &bands);
     out
 }
 
+#[allow(clippy::too_many_lines)] // one key after the other
 fn load(
     reader: &mut Reader<'_>,
     section: &Section<'_, '_>,
     sources: &[Arc<Source>],
-) -> Option<(Criterion, Range<usize>, Range<usize>)> {
+    bands: &mut Vec<Band>,
+) -> Option<Criterion> {
     reader.only(section, KEYS);
     let id = reader.string(section, "id");
     let (applies, band_span) = applies(reader, section);
+    if let Some((id, id_span)) = &id {
+        if bands.iter().any(|b| b.id == *id) {
+            reader.fault(
+                id_span.clone(),
+                format!("criterion `{id}` stands twice"),
+                "an id of its own",
+                "",
+            );
+        }
+        check_id(reader, id, id_span, &applies);
+        bands.push(Band {
+            id: id.clone(),
+            applies: applies.clone(),
+            span: band_span.unwrap_or_else(|| section.span.clone()),
+        });
+    }
     let measure = reader.string(section, "measure").and_then(|(word, span)| {
         reader.word(
             &word,
@@ -77,7 +93,7 @@ fn load(
     let source = super::find_source(reader, section, "source", sources);
     let test = match (measure, &refer) {
         (Some(measure), Some((text, span))) => match threshold::parse(measure, text) {
-            Ok(test) => Some(test),
+            Ok(typed) => Some(typed),
             Err(expected) => {
                 let what = format!("`{text}` is not a threshold for {}", measure.title());
                 reader.fault(span.clone(), what, expected, "");
@@ -135,8 +151,7 @@ fn load(
         .optional(section, "note")
         .map(|v| v.0)
         .unwrap_or_default();
-    let ((id, id_span), measure, test) = (id?, measure?, test?);
-    check_id(reader, &id, &id_span, &applies);
+    let ((id, _), measure, test) = (id?, measure?, test?);
     let default_required = !matches!(
         measure,
         Measure::DistanceBetweenEyes
@@ -145,7 +160,7 @@ fn load(
             | Measure::Ptosis
     ) && axis_beyond.is_none()
         && !informs;
-    let criterion = Criterion {
+    Some(Criterion {
         id: id.into(),
         applies,
         measure,
@@ -164,9 +179,7 @@ fn load(
         act_within_days,
         required: required.unwrap_or(default_required),
         informs,
-    };
-    let span = band_span.unwrap_or_else(|| section.span.clone());
-    Some((criterion, span, id_span))
+    })
 }
 
 pub(super) fn applies(
@@ -179,18 +192,16 @@ pub(super) fn applies(
         reader.fault(span.clone(), "both ages and grades", "one of the two", "");
     }
     if let Some((text, span)) = ages {
-        return match threshold::ages(&text) {
-            Some((from, to)) => (Applies::Ages { from, to }, Some(span)),
-            None => {
-                reader.fault(
-                    span,
-                    format!("`{text}` is not an age band"),
-                    "completed months, such as 36..48 or 60..",
-                    "36..48 is 36 completed months or more and fewer than 48",
-                );
-                (Applies::Everyone, None)
-            }
-        };
+        if let Some((from, to)) = threshold::ages(&text) {
+            return (Applies::Ages { from, to }, Some(span));
+        }
+        reader.fault(
+            span,
+            format!("`{text}` is not an age band"),
+            "completed months, such as 36..48 or 60..",
+            "36..48 is 36 completed months or more and fewer than 48",
+        );
+        return (Applies::Everyone, None);
     }
     if section.table.contains_key("grades") {
         let mut list = Vec::new();
@@ -298,22 +309,18 @@ fn finding(word: &str) -> Option<Finding> {
 }
 
 /// Notes overlaps and holes between the bands of one finding.
-pub(super) fn check_bands(reader: &mut Reader<'_>, criteria: &[(Criterion, Range<usize>)]) {
-    let mut findings: Vec<&str> = criteria
-        .iter()
-        .map(|(c, _)| threshold::split_band(&c.id).0)
-        .collect();
+fn check_bands(reader: &mut Reader<'_>, all: &[Band]) {
+    let mut findings: Vec<&str> = all.iter().map(|b| threshold::split_band(&b.id).0).collect();
     findings.sort_unstable();
     findings.dedup();
     for finding in findings {
         let of_finding = || {
-            criteria
-                .iter()
-                .filter(|(c, _)| threshold::split_band(&c.id).0 == finding)
+            all.iter()
+                .filter(|b| threshold::split_band(&b.id).0 == finding)
         };
         let mut bands: Vec<(u32, Option<u32>, &Range<usize>)> = of_finding()
-            .filter_map(|(c, span)| match c.applies {
-                Applies::Ages { from, to } => Some((from, to, span)),
+            .filter_map(|b| match b.applies {
+                Applies::Ages { from, to } => Some((from, to, &b.span)),
                 _ => None,
             })
             .collect();
@@ -342,11 +349,11 @@ pub(super) fn check_bands(reader: &mut Reader<'_>, criteria: &[(Criterion, Range
             }
         }
         let mut grades: Vec<Grade> = Vec::new();
-        for (c, span) in of_finding() {
-            if let Applies::Grades(list) = &c.applies {
+        for band in of_finding() {
+            if let Applies::Grades(list) = &band.applies {
                 if let Some(twice) = list.iter().find(|g| grades.contains(g)) {
                     reader.fault(
-                        span.clone(),
+                        band.span.clone(),
                         format!("grade {twice} of {finding} stands twice"),
                         "each grade once",
                         "",

@@ -36,6 +36,7 @@ const KEYS: &[&str] = &[
 ];
 const NOT_TESTABLE_KEYS: &[&str] = &["ages", "rescreen_months", "source"];
 
+#[allow(clippy::too_many_lines)] // one key after the other
 pub(super) fn load(
     reader: &mut Reader<'_>,
     root: &Section<'_, '_>,
@@ -159,7 +160,7 @@ pub(super) fn load(
             credit_text: "".into(),
             credit_source: practice(),
             sources: sources.clone(),
-            criteria: at_once.into_iter().map(|(c, _)| c).collect(),
+            criteria: at_once,
             local: None,
             text: text.clone(),
             content_hash: content_hash.clone(),
@@ -184,22 +185,21 @@ fn known_sets(
 ) -> Vec<Arc<str>> {
     let mut out = Vec::new();
     for (id, span) in reader.list(root, key) {
-        match library.rule_set(&id) {
-            Some(set) => out.push(set.id.clone()),
-            None => {
-                let known = library
-                    .rule_sets()
-                    .map(|s| &*s.id)
-                    .collect::<Vec<_>>()
-                    .join(", ");
-                reader.fault(
-                    span,
-                    format!("no rule set `{id}`"),
-                    format!("one of {known}"),
-                    "",
-                );
-            }
+        if let Some(set) = library.rule_set(&id) {
+            out.push(set.id.clone());
+            continue;
         }
+        let known = library
+            .rule_sets()
+            .map(|s| &*s.id)
+            .collect::<Vec<_>>()
+            .join(", ");
+        reader.fault(
+            span,
+            format!("no rule set `{id}`"),
+            format!("one of {known}"),
+            "",
+        );
     }
     out
 }

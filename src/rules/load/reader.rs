@@ -136,7 +136,7 @@ impl<'t> Reader<'t> {
             return Vec::new();
         };
         let mut out = Vec::new();
-        for item in array.iter() {
+        for item in array {
             match item.get_ref().as_str() {
                 Some(text) => out.push((text.to_owned(), item.span())),
                 None => self.wrong_type(item.span(), key, item.get_ref(), "a text in quotes"),
@@ -181,7 +181,7 @@ impl<'t> Reader<'t> {
             return Vec::new();
         };
         let mut out = Vec::new();
-        for item in array.iter() {
+        for item in array {
             match item.get_ref().as_table() {
                 Some(table) => out.push(Section {
                     table,

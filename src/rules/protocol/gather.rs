@@ -9,6 +9,7 @@ use crate::rules::evaluate::{self, Facts, Spoken, scope, speak};
 use crate::rules::{Case, Finding, Kind, Library, Measure, Protocol, RuleSet};
 
 /// What was asked and answered.
+#[allow(clippy::struct_excessive_bools)] // each is one fact that a line of the protocol asks
 pub(super) struct Gathered<'l> {
     pub spoken: Vec<Spoken<'l>>,
     /// `age` or `grade`, where a required test has no criterion for this child.

@@ -68,6 +68,7 @@ pub fn check(text: &str, programme: &str) -> Result<()> {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
 

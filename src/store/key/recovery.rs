@@ -89,6 +89,7 @@ pub(super) fn normal(text: &str) -> Option<Zeroizing<String>> {
 }
 
 #[cfg(test)]
+#[allow(clippy::unwrap_used)]
 mod tests {
     use super::*;
 

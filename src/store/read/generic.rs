@@ -77,7 +77,7 @@ impl Reads<'_> {
 
     /// Returns every entry of a table for which a condition on `x` holds, with its history.
     pub(super) fn recorded<R: Row>(
-        &self,
+        self,
         condition: &str,
         cells: &[Cell<'_>],
     ) -> Result<Vec<Recorded<R>>> {
@@ -108,7 +108,7 @@ impl Reads<'_> {
     }
 
     pub(super) fn rows<R: Row>(
-        &self,
+        self,
         condition: &str,
         order: &str,
         cells: &[Cell<'_>],

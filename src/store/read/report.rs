@@ -127,7 +127,7 @@ impl Reads<'_> {
         ))
     }
 
-    fn with_children(&self, sql: &str) -> Result<Vec<(ChildNow, VisitNow)>> {
+    fn with_children(self, sql: &str) -> Result<Vec<(ChildNow, VisitNow)>> {
         let mut found = self.conn.prepare_cached(sql)?;
         let mut rows = found.query([])?;
         let mut out = Vec::new();

@@ -198,7 +198,7 @@ impl Reads<'_> {
     }
 
     pub(super) fn visits_where(
-        &self,
+        self,
         condition: &str,
         params: impl rusqlite::Params,
     ) -> Result<Vec<VisitNow>> {

@@ -19,6 +19,43 @@ fn judged(protocol: &str, header: &str, row: &str) -> HashMap<String, String> {
 const SCHOOL: &str = "grade,correction_worn,distance_right,distance_left,plus_lens,signs";
 
 #[test]
+fn a_local_rule_set_with_a_band_and_a_comparator_of_its_own() {
+    // The numbers are those of the invented district in the sample file, not guidance.
+    let bench = Bench::new();
+    bench.write(
+        "local.toml",
+        include_str!("../../../sample_data/local_rules.toml"),
+    );
+    bench.write(
+        "in.csv",
+        "age_months,distance_right,distance_left\n83,20/40,20/40\n83,20/50,20/50\n84,20/40,20/40\n59,20/50,20/50\n",
+    );
+    let ran = bench.run(&[
+        "judge",
+        "in.csv",
+        "--rules",
+        "quillmere-school",
+        "--rule-file",
+        "local.toml",
+    ]);
+    assert_eq!((ran.code, ran.err.as_str()), (0, ""));
+    let judged = rows(&ran.out);
+    let said: Vec<_> = judged
+        .iter()
+        .map(|r| (&*r["outcome"], &*r["criteria"]))
+        .collect();
+    assert_eq!(
+        said,
+        [
+            ("pass", ""),
+            ("refer", "line.60-83"),
+            ("refer", "line.84+"),
+            ("pass", "")
+        ]
+    );
+}
+
+#[test]
 fn a_pass_with_one_step_between_the_eyes() {
     let row = judged(
         "us-school",
@@ -47,7 +84,11 @@ fn two_steps_within_the_passing_range_are_rescreened() {
     assert_eq!(row["outcome"], "rescreen");
     assert_eq!(row["criteria"], "joint-policy-2016/between-eyes");
     assert_eq!(row["amblyopia_risk"], "interocular_difference");
-    assert!(row["reasons"].contains("28 Oct 2026"), "{}", row["reasons"]);
+    assert!(
+        row["reasons"].contains("by 28 Oct 2026"),
+        "{}",
+        row["reasons"]
+    );
 }
 
 #[test]
@@ -86,7 +127,11 @@ fn glasses_left_at_home_are_not_a_fail() {
         "2018-05-20,2026-10-14,,left_at_home,20/80,20/63,,none",
     );
     assert_eq!(row["outcome"], "incomplete");
-    assert!(row["reasons"].contains("28 Oct 2026"), "{}", row["reasons"]);
+    assert!(
+        row["reasons"].contains("by 28 Oct 2026"),
+        "{}",
+        row["reasons"]
+    );
 }
 
 #[test]

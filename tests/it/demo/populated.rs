@@ -5,7 +5,6 @@ use std::collections::BTreeMap;
 use chrono::NaiveDate;
 use twoline::actions::{DayInfo, Desk, QueueState};
 use twoline::demo::{DEFAULT_SEED, generate, populate};
-use twoline::domain::codes::Attempt;
 
 /// Returns a populated desk and its newest day.
 fn populated(dir: &std::path::Path, seed: u64, day: NaiveDate) -> (Desk, DayInfo) {
@@ -49,12 +48,6 @@ fn the_queue_is_the_district() {
     assert_eq!(desk.screeners().expect("screeners").len(), 2);
     let index = desk.search_index().expect("the index");
     assert_eq!(index.len(), district.children.len());
-    assert!(
-        district
-            .visits
-            .iter()
-            .any(|v| v.attempt == Attempt::Rescreen)
-    );
 }
 
 /// A district of any day of the year fits into its term.

@@ -277,6 +277,17 @@ fn control_characters_and_formulas_do_not_get_in() {
     let problems = read_results("r.csv", b"signs,remark\nnone,a\x07b\n", options, None)
         .expect_err("a bell in a column handed through");
     assert_eq!(problems.kept()[0].column.as_deref(), Some("remark"));
+    for (text, refused) in [
+        (
+            "signs,\"remark\"\nnone,\"two\r\nlines\tand a tab\"\n",
+            false,
+        ),
+        ("signs,remark\nnone,\"hidden\rshown\"\n", true),
+        ("signs,re\u{1b}[2Jmark\nnone,x\n", true),
+    ] {
+        let read = read_results("r.csv", text.as_bytes(), options, None);
+        assert_eq!(read.is_err(), refused, "{text:?}");
+    }
 }
 
 #[test]
