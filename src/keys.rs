@@ -203,7 +203,7 @@ commands! {
     ToBench = "to-bench"; OpenDay = "open-day"; Days = "days"; Screener = "screener";
     Help = "keys"; Palette = "palette"; PlaceDay = "day"; PlaceChildren = "children";
     PlaceReferrals = "referrals"; PlaceTerm = "term"; PlaceRules = "rules"; Suspend = "suspend";
-    Quit = "quit"; Choose = "choose"; Cancel = "cancel"; ChoiceUp = "choice-up";
+    Redraw = "redraw"; Quit = "quit"; Choose = "choose"; Cancel = "cancel"; ChoiceUp = "choice-up";
     ChoiceDown = "choice-down"; Scope = "scope"; Toggle = "toggle"; SideRight = "side-right";
     SideLeft = "side-left"; SideBoth = "side-both"; NoneSeen = "none-seen"; Submit = "submit";
     FormNext = "form-next"; FormPrevious = "form-previous";

@@ -129,5 +129,6 @@ pub const TABLE: &[Binding] = &[
     on(C::Places, K::Help, &[Key::char('?'), Key::f(1), Key::alt('h')], "keys", "Shows all keys"),
     on(C::Places, K::Screener, &[], "", "Changes who is recording"),
     on(C::Places, K::Suspend, &[], "", "Gives the terminal back until the program is woken; drafts are saved"),
+    on(C::Places, K::Redraw, &[Key::ctrl('l')], "", "Draws the whole screen anew"),
     on(C::Everywhere, K::Quit, &[Key::ctrl('q'), Key::ctrl('c')], "", "Leaves; drafts are kept"),
 ];

@@ -1,6 +1,8 @@
 //! What the store answered.
 
-use crate::actions::Signed;
+use std::fmt::Write as _;
+
+use crate::actions::{DayChild, Signed};
 use crate::domain::outcome::Urgency;
 use crate::tui::app::{Answer, App, Effect, Notice, Refused, Request, Tone};
 use crate::tui::day::Day;
@@ -53,34 +55,8 @@ impl App {
             Answer::Corrected(signed) => {
                 return self.signed(*signed, "corrected");
             }
-            Answer::Moved(signed, from) => {
-                let mut effects = self
-                    .day
-                    .as_mut()
-                    .map_or_else(|_| Vec::new(), |d| d.refresh(&self.session, *from));
-                let to = signed.child.child_id.clone();
-                effects.extend(self.signed(*signed, "moved to"));
-                if let Ok(day) = &mut self.day {
-                    effects.extend(day.bring(&self.session, &to).effects);
-                }
-                return effects;
-            }
-            Answer::Retracted(child) => {
-                let who = name(&child.family_name, &child.given_name);
-                let id = child.child_id.clone();
-                let mut effects = Vec::new();
-                if let Ok(day) = &mut self.day {
-                    day.last_signed = None;
-                    effects.extend(day.refresh(&self.session, *child));
-                    effects.extend(day.bring(&self.session, &id).effects);
-                }
-                self.say(
-                    Tone::Quiet,
-                    format!("the signature for {who} is taken back; both entries stay"),
-                );
-                effects.push(Effect::ask(Request::Urgent));
-                return effects;
-            }
+            Answer::Moved(signed, from) => return self.moved(*signed, *from),
+            Answer::Retracted(child) => return self.retracted(*child),
             Answer::Added(child) => {
                 let id = child.child_id.clone();
                 self.say(
@@ -117,12 +93,41 @@ impl App {
         Vec::new()
     }
 
+    fn moved(&mut self, signed: Signed, from: DayChild) -> Vec<Effect> {
+        let to = signed.child.child_id.clone();
+        let mut effects = match &mut self.day {
+            Ok(day) => day.refresh(&self.session, from),
+            Err(_) => Vec::new(),
+        };
+        effects.extend(self.signed(signed, "moved to"));
+        if let Ok(day) = &mut self.day {
+            effects.extend(day.bring(&self.session, &to).effects);
+        }
+        effects
+    }
+
+    fn retracted(&mut self, child: DayChild) -> Vec<Effect> {
+        let who = name(&child.family_name, &child.given_name);
+        let id = child.child_id.clone();
+        let mut effects = vec![Effect::ask(Request::Urgent)];
+        if let Ok(day) = &mut self.day {
+            day.last_signed = None;
+            effects.extend(day.refresh(&self.session, child));
+            effects.extend(day.bring(&self.session, &id).effects);
+        }
+        self.say(
+            Tone::Quiet,
+            format!("the signature for {who} is taken back; both entries stay"),
+        );
+        effects
+    }
+
     fn signed(&mut self, signed: Signed, verb: &str) -> Vec<Effect> {
         let outcome = &signed.outcome;
         let who = name(&signed.child.family_name, &signed.child.given_name);
         let mut words = format!("{verb} {who}: {}", outcome.kind.title());
         if !outcome.qualifiers.is_empty() {
-            words.push_str(&format!(" ({})", outcome.qualifiers.join("; ")));
+            let _ = write!(words, " ({})", outcome.qualifiers.join("; "));
         }
         let emergency = outcome.urgency == Some(Urgency::Emergency);
         self.notice = Some(Notice {

@@ -167,6 +167,8 @@ pub enum Effect {
     FlushDrafts,
     /// Deletes the draft of a day and a child.
     DropDraft(Uuid, String),
+    /// Draws the whole screen anew.
+    Redraw,
     /// Gives the terminal back until the program is woken.
     Suspend,
     /// Leaves.
@@ -281,7 +283,12 @@ impl App {
     }
 
     /// Returns what to ask first: today's day if there is one and only one.
-    pub fn start(&self) -> Vec<Effect> {
+    ///
+    /// Who is recording is asked once, where it is not known.
+    pub fn start(&mut self) -> Vec<Effect> {
+        if self.session.screener.is_none() && !self.session.screeners.is_empty() {
+            self.ask_screener();
+        }
         match &self.day {
             Err(days) => days
                 .of_today(self.session.today)

@@ -5,6 +5,7 @@ use crate::domain::field::Field;
 use crate::domain::readings::{Eye, NotTestable};
 use crate::keys::{self, Command};
 use crate::tui::app::{App, Tone};
+use crate::tui::day::bench::Bench;
 use crate::tui::day::bench_view::value_words;
 use crate::tui::day::kind;
 use crate::tui::judging::explain;
@@ -36,51 +37,8 @@ impl App {
             return;
         }
         let prompt = match command {
-            Command::NotTestable => {
-                let mut choices = listed(
-                    NotTestable::ALL
-                        .iter()
-                        .zip('1'..)
-                        .map(|(why, key)| (key, why.title(), why.word())),
-                );
-                choices.scope = Some(
-                    bench
-                        .field()
-                        .and_then(kind::eye)
-                        .map_or(Scope::Both, Scope::One),
-                );
-                Prompt::choices(
-                    Ask::NotTestable,
-                    format!("{who}: distance not testable, why?"),
-                    choices,
-                )
-            }
-            Command::NotPresent => Prompt::choices(
-                Ask::NotPresent,
-                format!("{who}: not tested today, why?"),
-                listed([
-                    ('a', Status::Absent.title(), Status::Absent.word()),
-                    ('o', Status::OptedOut.title(), Status::OptedOut.word()),
-                    (
-                        'n',
-                        Status::NotAttempted.title(),
-                        Status::NotAttempted.word(),
-                    ),
-                    ('l', Status::LeftEarly.title(), Status::LeftEarly.word()),
-                    ('u', Status::UnderCare.title(), Status::UnderCare.word()),
-                    (
-                        'h',
-                        Correction::LeftAtHome.title(),
-                        Correction::LeftAtHome.word(),
-                    ),
-                    (
-                        'b',
-                        Correction::BrokenOrLost.title(),
-                        Correction::BrokenOrLost.word(),
-                    ),
-                    ('p', "present after all: take the answer back", ""),
-                ]),
-            ),
+            Command::NotTestable => ask_not_testable(&who, bench),
+            Command::NotPresent => ask_not_present(&who),
             Command::Signs => Prompt {
                 ask: Ask::Signs,
                 title: format!("{who}: signs seen"),
@@ -89,66 +47,14 @@ impl App {
                     at: 0,
                 }),
             },
-            Command::Why => {
-                let mut lines = Vec::new();
-                if let Some(outcome) = bench.signed.as_ref().and_then(|v| v.outcome.as_ref()) {
-                    lines.push(format!(
-                        "Signed as {}: {}",
-                        outcome.kind.title(),
-                        safe(&outcome.reasons)
-                    ));
-                    lines.push(String::new());
-                    lines.push("The same readings now:".into());
-                }
-                lines.extend(explain::whole(&bench.outcome).iter().map(|l| safe(l)));
-                Prompt::page(format!("{who}: the whole reason"), lines)
-            }
+            Command::Why => whole_reason(&who, bench),
             Command::Swap if signed => Prompt::form(
                 Ask::SwapSigned,
                 format!("{who}: swap right eye and left eye"),
                 Form::new(&[("reason", "entered for the other eye", false)]),
             ),
-            Command::Move => {
-                let reason = [
-                    ("to", "name or id of the child they belong to", false),
-                    ("reason", "wrong child on the bench", false),
-                ];
-                let fields = if signed { &reason[..] } else { &reason[..1] };
-                Prompt::form(
-                    Ask::MoveTo,
-                    format!("move what was entered for {who} to another child"),
-                    Form::new(fields),
-                )
-            }
-            Command::Correct if signed => {
-                let keys = "123456789abcdefghijklmnopqrstuvwxyz".chars();
-                let fields: Vec<Field> = bench
-                    .readings
-                    .recorded()
-                    .into_iter()
-                    .map(|(f, _)| f)
-                    .chain(bench.path.iter().copied())
-                    .filter(|f| *f != Field::AcuityMethod)
-                    .collect();
-                let mut seen = Vec::new();
-                let items = fields.into_iter().filter(|f| {
-                    let new = !seen.contains(f);
-                    seen.push(*f);
-                    new
-                });
-                let readings = &bench.readings;
-                let choices = listed(items.zip(keys).map(|(f, key)| {
-                    let now = readings
-                        .get(f)
-                        .map_or_else(|| "·".to_owned(), |raw| value_words(readings, f, &raw));
-                    (key, format!("{}: {now}", f.title()), f.word())
-                }));
-                Prompt::choices(
-                    Ask::CorrectWhat,
-                    format!("{who}: which value is wrong?"),
-                    choices,
-                )
-            }
+            Command::Move => ask_move(&who, signed),
+            Command::Correct if signed => ask_correct(&who, bench),
             Command::Correct => {
                 self.say(
                     Tone::Attention,
@@ -395,4 +301,111 @@ impl App {
             Scope::Both => Eye::BOTH.to_vec(),
         }
     }
+}
+
+fn ask_not_testable(who: &str, bench: &Bench) -> Prompt {
+    let mut choices = listed(
+        NotTestable::ALL
+            .iter()
+            .zip('1'..)
+            .map(|(why, key)| (key, why.title(), why.word())),
+    );
+    choices.scope = Some(
+        bench
+            .field()
+            .and_then(kind::eye)
+            .map_or(Scope::Both, Scope::One),
+    );
+    Prompt::choices(
+        Ask::NotTestable,
+        format!("{who}: distance not testable, why?"),
+        choices,
+    )
+}
+
+fn ask_not_present(who: &str) -> Prompt {
+    Prompt::choices(
+        Ask::NotPresent,
+        format!("{who}: not tested today, why?"),
+        listed([
+            ('a', Status::Absent.title(), Status::Absent.word()),
+            ('o', Status::OptedOut.title(), Status::OptedOut.word()),
+            (
+                'n',
+                Status::NotAttempted.title(),
+                Status::NotAttempted.word(),
+            ),
+            ('l', Status::LeftEarly.title(), Status::LeftEarly.word()),
+            ('u', Status::UnderCare.title(), Status::UnderCare.word()),
+            (
+                'h',
+                Correction::LeftAtHome.title(),
+                Correction::LeftAtHome.word(),
+            ),
+            (
+                'b',
+                Correction::BrokenOrLost.title(),
+                Correction::BrokenOrLost.word(),
+            ),
+            ('p', "present after all: take the answer back", ""),
+        ]),
+    )
+}
+
+fn whole_reason(who: &str, bench: &Bench) -> Prompt {
+    let mut lines = Vec::new();
+    if let Some(outcome) = bench.signed.as_ref().and_then(|v| v.outcome.as_ref()) {
+        lines.push(format!(
+            "Signed as {}: {}",
+            outcome.kind.title(),
+            safe(&outcome.reasons)
+        ));
+        lines.push(String::new());
+        lines.push("The same readings now:".into());
+    }
+    lines.extend(explain::whole(&bench.outcome).iter().map(|l| safe(l)));
+    Prompt::page(format!("{who}: the whole reason"), lines)
+}
+
+fn ask_move(who: &str, signed: bool) -> Prompt {
+    let reason = [
+        ("to", "name or id of the child they belong to", false),
+        ("reason", "wrong child on the bench", false),
+    ];
+    let fields = if signed { &reason[..] } else { &reason[..1] };
+    Prompt::form(
+        Ask::MoveTo,
+        format!("move what was entered for {who} to another child"),
+        Form::new(fields),
+    )
+}
+
+fn ask_correct(who: &str, bench: &Bench) -> Prompt {
+    let keys = "123456789abcdefghijklmnopqrstuvwxyz".chars();
+    let fields: Vec<Field> = bench
+        .readings
+        .recorded()
+        .into_iter()
+        .map(|(f, _)| f)
+        .chain(bench.path.iter().copied())
+        .filter(|f| *f != Field::AcuityMethod)
+        .collect();
+    let mut seen = Vec::new();
+    let items = fields.into_iter().filter(|f| {
+        let new = !seen.contains(f);
+        seen.push(*f);
+        new
+    });
+    let readings = &bench.readings;
+    let choices = listed(items.zip(keys).map(|(f, key)| {
+        let now = readings
+            .get(f)
+            .map_or_else(|| "·".to_owned(), |raw| value_words(readings, f, &raw));
+        (key, format!("{}: {now}", f.title()), f.word())
+    }));
+    Prompt::choices(
+        Ask::CorrectWhat,
+        format!("{who}: which value is wrong?"),
+        choices,
+    )
 }

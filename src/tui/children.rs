@@ -1,5 +1,7 @@
 //! The Children place: find as one types, and the whole history with every correction.
 
+use std::fmt::Write as _;
+
 use ratatui::Frame;
 use ratatui::layout::{Position, Rect};
 use ratatui::text::{Line, Span};
@@ -107,7 +109,7 @@ impl Children {
                 theme.muted(),
             )),
             Some(found) if found.is_empty() => {
-                lines.push(Line::styled(" no matches", theme.attention()))
+                lines.push(Line::styled(" no matches", theme.attention()));
             }
             Some(found) => {
                 let room = list_rows.saturating_sub(2).max(1);
@@ -352,7 +354,7 @@ fn over_visits(history: &ChildHistory, session: &Session) -> Vec<Line<'static>> 
                         " ".to_owned()
                     }
                 };
-                text.push_str(&format!("  {}{}", on(*r, "R"), on(*l, "L")));
+                let _ = write!(text, "  {}{}", on(*r, "R"), on(*l, "L"));
             }
             Line::raw(text)
         })

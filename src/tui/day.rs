@@ -57,21 +57,24 @@ pub struct Done {
 }
 
 impl Done {
-    fn effects(effects: Vec<Effect>) -> Done {
+    /// Makes what came of it: only something to carry out.
+    pub fn effects(effects: Vec<Effect>) -> Done {
         Done {
             effects,
             said: None,
         }
     }
 
-    fn refused(words: impl Into<String>) -> Done {
+    /// Makes what came of it: a refusal in words.
+    pub fn refused(words: impl Into<String>) -> Done {
         Done {
             effects: Vec::new(),
             said: Some((true, words.into())),
         }
     }
 
-    fn said(words: impl Into<String>) -> Done {
+    /// Makes what came of it: only words.
+    pub fn said(words: impl Into<String>) -> Done {
         Done {
             effects: Vec::new(),
             said: Some((false, words.into())),
@@ -412,16 +415,12 @@ impl Day {
         let mut effects = self.keep_draft();
         self.saving.insert(id.clone());
         effects.push(Effect::ask(Request::Sign(request)));
-        match self
-            .queue
-            .next_to_come(&id, &self.saving)
-            .map(|c| c.child_id.clone())
-        {
-            Some(next) => effects.extend(self.bring(session, &next).effects),
-            None => {
-                self.bench = None;
-                self.list_focus = true;
-            }
+        let next = self.queue.next_to_come(&id, &self.saving);
+        if let Some(next) = next.map(|c| c.child_id.clone()) {
+            effects.extend(self.bring(session, &next).effects);
+        } else {
+            self.bench = None;
+            self.list_focus = true;
         }
         Done {
             effects,
@@ -514,6 +513,20 @@ impl Day {
         }
     }
 
+    /// Swaps right and left acuity on the bench.
+    pub fn swap(&mut self) -> Done {
+        if let Some(bench) = &mut self.bench {
+            bench.swap();
+        }
+        Done {
+            effects: self.keep_draft(),
+            said: Some((
+                false,
+                "right eye and left eye swapped; Ctrl-Z swaps them back".into(),
+            )),
+        }
+    }
+
     /// Sets a field of the bench from a question, as one edit.
     pub fn put(&mut self, field: Field, text: &str) -> Vec<Effect> {
         if let Some(bench) = &mut self.bench {
@@ -553,19 +566,11 @@ impl Day {
             .map(|_| Line::styled("│", theme.muted()))
             .collect();
         frame.render_widget(Paragraph::new(bar), rule);
-        let bench_cursor = match &self.bench {
-            Some(bench) => bench_view::draw(frame, bench_area, bench, session, !self.in_list()),
-            None => {
-                let words = vec![
-                    Line::default(),
-                    Line::styled("  Nobody is on the bench.", theme.strong()),
-                    Line::default(),
-                    Line::raw("  Type a name or an id to find a child, or scan the id."),
-                    Line::raw("  Alt-l lists those who are done as well."),
-                ];
-                frame.render_widget(Paragraph::new(words), bench_area);
-                Position::new(bench_area.x, bench_area.y)
-            }
+        let bench_cursor = if let Some(bench) = &self.bench {
+            bench_view::draw(frame, bench_area, bench, session, !self.in_list())
+        } else {
+            draw_nobody(frame, bench_area, session);
+            Position::new(bench_area.x, bench_area.y)
         };
         if self.in_list() {
             Position::new(x, y)
@@ -573,4 +578,15 @@ impl Day {
             bench_cursor
         }
     }
+}
+
+fn draw_nobody(frame: &mut Frame<'_>, area: Rect, session: &Session) {
+    let words = vec![
+        Line::default(),
+        Line::styled("  Nobody is on the bench.", session.theme.strong()),
+        Line::default(),
+        Line::raw("  Type a name or an id to find a child, or scan the id."),
+        Line::raw("  Alt-l lists those who are done as well."),
+    ];
+    frame.render_widget(Paragraph::new(words), area);
 }

@@ -8,7 +8,8 @@ use ratatui::widgets::Paragraph;
 
 use crate::actions::DayInfo;
 use crate::domain::age::spoken;
-use crate::tui::app::Session;
+use crate::keys::Command;
+use crate::tui::app::{Effect, Request, Session};
 use crate::tui::judging::CAUTIONS;
 use crate::tui::text::{cut, fit, safe};
 
@@ -34,12 +35,29 @@ impl Days {
     }
 
     /// Returns the day under the cursor.
-    pub fn selected(&self) -> Option<&DayInfo> {
+    fn selected(&self) -> Option<&DayInfo> {
         self.days.get(self.at)
     }
 
+    /// Carries out a command of the list.
+    pub fn command(&mut self, command: Command) -> Vec<Effect> {
+        match command {
+            Command::ListUp => self.step(-1),
+            Command::ListDown => self.step(1),
+            Command::Open => {
+                let day = self.selected().cloned();
+                return day
+                    .map(|d| Effect::ask(Request::LoadDay(d)))
+                    .into_iter()
+                    .collect();
+            }
+            _ => {}
+        }
+        Vec::new()
+    }
+
     /// Moves the cursor.
-    pub fn step(&mut self, by: isize) {
+    fn step(&mut self, by: isize) {
         self.at = self
             .at
             .saturating_add_signed(by)

@@ -17,7 +17,7 @@ use crossterm::terminal::{
     EnterAlternateScreen, LeaveAlternateScreen, disable_raw_mode, enable_raw_mode,
 };
 use ratatui::Terminal;
-use ratatui::backend::CrosstermBackend;
+use ratatui::backend::{Backend, CrosstermBackend};
 
 use crate::actions::Desk;
 use crate::clock;
@@ -138,7 +138,7 @@ fn serve(mut clerk: Clerk, jobs: &Receiver<Job>, answers: &Sender<Answer>) {
             Job::SaveDraft(draft) => clerk.save_draft(draft, clock::now().utc_ms),
             Job::DropDraft(day, child) => clerk.drop_draft(day, &child),
             Job::Ask(request) if matches!(*request, Request::Sign(_)) => {
-                drop(clerk.answer(*request))
+                drop(clerk.answer(*request));
             }
             Job::Ask(_) | Job::Flush => {}
         }
@@ -166,6 +166,10 @@ impl Wires {
                 Effect::SaveDraft(draft) => Job::SaveDraft(draft),
                 Effect::FlushDrafts => Job::Flush,
                 Effect::DropDraft(day, child) => Job::DropDraft(day, child),
+                Effect::Redraw => {
+                    next = Next::Redraw;
+                    continue;
+                }
                 Effect::Suspend => {
                     next = Next::Suspend;
                     continue;
@@ -191,6 +195,7 @@ impl Wires {
 enum Next {
     GoOn,
     Suspend,
+    Redraw,
     End,
 }
 
@@ -201,7 +206,13 @@ fn event_loop(
     leave: &AtomicBool,
 ) -> Result<(), Error> {
     wires.carry_out(app.start())?;
+    let mut place = app.at;
     loop {
+        // Terminals do not agree on the width of some scripts; a new place starts on a clean screen.
+        if place != app.at {
+            place = app.at;
+            screen.redraw()?;
+        }
         screen.terminal.draw(|frame| app.draw(frame))?;
         let mut messages = Vec::new();
         let pause = if wires.waiting > 0 { BRIEF } else { PAUSE };
@@ -222,6 +233,7 @@ fn event_loop(
             match wires.carry_out(app.update(message))? {
                 Next::GoOn => {}
                 Next::Suspend => screen.suspend()?,
+                Next::Redraw => screen.redraw()?,
                 Next::End => return Ok(()),
             }
         }
@@ -254,7 +266,7 @@ impl Screen {
         let mut screen = Screen {
             terminal: Terminal::new(CrosstermBackend::new(io::stdout()))?,
         };
-        screen.terminal.clear()?;
+        screen.redraw()?;
         Ok(screen)
     }
 
@@ -262,7 +274,16 @@ impl Screen {
         give_back()?;
         signal_hook::low_level::emulate_default_handler(signal_hook::consts::SIGTSTP)?;
         take()?;
-        self.terminal.clear()?;
+        self.redraw()
+    }
+
+    /// Clears the terminal and forgets what stood there, so that the next frame draws everything.
+    ///
+    /// `Terminal::clear` would ask the terminal where its cursor is, which takes long on a slow line
+    /// and fails where nothing answers.
+    fn redraw(&mut self) -> Result<(), Error> {
+        self.terminal.backend_mut().clear()?;
+        self.terminal.swap_buffers();
         Ok(())
     }
 }

@@ -12,6 +12,9 @@ use crate::tui::app::{App, Effect, Request, Tone};
 use crate::tui::prompt::{Ask, Body, Form, Prompt};
 use crate::tui::text::safe;
 
+/// What to carry out, or the field that stands against it and why.
+type Taken = Result<Vec<Effect>, (usize, String)>;
+
 impl App {
     /// Takes a choice.
     pub(crate) fn chosen(&mut self, prompt: &Prompt, word: &str) -> Vec<Effect> {
@@ -167,7 +170,7 @@ impl App {
         }
     }
 
-    fn take_form(&mut self, ask: &Ask, form: &Form) -> Result<Vec<Effect>, (usize, String)> {
+    fn take_form(&mut self, ask: &Ask, form: &Form) -> Taken {
         let one = |request| Ok(vec![Effect::ask(request)]);
         let visit = self
             .day
@@ -222,70 +225,74 @@ impl App {
                 Some((visit, _, _)) => one(Request::Retract(visit, form.value(0).to_owned())),
                 None => Ok(Vec::new()),
             },
-            Ask::AddChild => {
-                let Ok(day) = &self.day else {
-                    return Ok(Vec::new());
-                };
-                let dob = date(form.value(2)).map_err(|w| (2, w))?;
-                if dob.is_some_and(|d| d > day.info.date) {
-                    return Err((2, "a birth date before the screening day".into()));
-                }
-                let grade = match form.value(3) {
-                    "" => None,
-                    text => {
-                        Some(Grade::parse(text).ok_or((3, "PK, TK, KG or 1 to 12".to_owned()))?)
-                    }
-                };
-                let child = NewChild {
-                    family_name: form.value(0).to_owned(),
-                    given_name: form.value(1).to_owned(),
-                    dob,
-                    grade,
-                    class: form.value(4).to_owned(),
-                    site: day.info.site.clone(),
-                };
-                one(Request::AddChild(child, (*day.info).clone()))
-            }
+            Ask::AddChild => self.add_child(form),
             Ask::Told(urgent) => one(Request::Told(UrgentAnswer {
                 visit: urgent.visit,
                 told: form.value(0).to_owned(),
                 told_at: form.value(1).to_owned(),
                 told_by: form.value(2).to_owned(),
             })),
-            Ask::NewDay => {
-                let site = self
-                    .session
-                    .sites
-                    .iter()
-                    .find(|(code, name)| {
-                        code.eq_ignore_ascii_case(form.value(0))
-                            || name.eq_ignore_ascii_case(form.value(0))
-                    })
-                    .map(|(code, _)| code.clone())
-                    .ok_or((0, "one of the sites".to_owned()))?;
-                let on = date(form.value(1))
-                    .map_err(|w| (1, w))?
-                    .unwrap_or(self.session.today);
-                let protocols = crate::tui::judging::protocol_ids(&self.session.library);
-                let protocol = protocols
-                    .iter()
-                    .find(|p| p.eq_ignore_ascii_case(form.value(2)))
-                    .cloned()
-                    .ok_or_else(|| (2, format!("one of {}", protocols.join(", "))))?;
-                let method = match form.value(3) {
-                    "" => AcuityMethod::Threshold,
-                    word => AcuityMethod::from_word(word)
-                        .ok_or_else(|| (3, format!("one of {}", AcuityMethod::words())))?,
-                };
-                one(Request::NewDay(NewDay {
-                    site,
-                    date: on,
-                    protocol,
-                    method,
-                }))
-            }
+            Ask::NewDay => self.new_day(form),
             _ => Ok(Vec::new()),
         }
+    }
+
+    fn add_child(&self, form: &Form) -> Taken {
+        let Ok(day) = &self.day else {
+            return Ok(Vec::new());
+        };
+        let dob = date(form.value(2)).map_err(|w| (2, w))?;
+        if dob.is_some_and(|d| d > day.info.date) {
+            return Err((2, "a birth date before the screening day".into()));
+        }
+        let grade = match form.value(3) {
+            "" => None,
+            text => Some(Grade::parse(text).ok_or((3, "PK, TK, KG or 1 to 12".to_owned()))?),
+        };
+        let child = NewChild {
+            family_name: form.value(0).to_owned(),
+            given_name: form.value(1).to_owned(),
+            dob,
+            grade,
+            class: form.value(4).to_owned(),
+            site: day.info.site.clone(),
+        };
+        Ok(vec![Effect::ask(Request::AddChild(
+            child,
+            (*day.info).clone(),
+        ))])
+    }
+
+    fn new_day(&self, form: &Form) -> Taken {
+        let site = self
+            .session
+            .sites
+            .iter()
+            .find(|(code, name)| {
+                code.eq_ignore_ascii_case(form.value(0)) || name.eq_ignore_ascii_case(form.value(0))
+            })
+            .map(|(code, _)| code.clone())
+            .ok_or((0, "one of the sites".to_owned()))?;
+        let on = date(form.value(1))
+            .map_err(|w| (1, w))?
+            .unwrap_or(self.session.today);
+        let protocols = crate::tui::judging::protocol_ids(&self.session.library);
+        let protocol = protocols
+            .iter()
+            .find(|p| p.eq_ignore_ascii_case(form.value(2)))
+            .cloned()
+            .ok_or_else(|| (2, format!("one of {}", protocols.join(", "))))?;
+        let method = match form.value(3) {
+            "" => AcuityMethod::Threshold,
+            word => AcuityMethod::from_word(word)
+                .ok_or_else(|| (3, format!("one of {}", AcuityMethod::words())))?,
+        };
+        Ok(vec![Effect::ask(Request::NewDay(NewDay {
+            site,
+            date: on,
+            protocol,
+            method,
+        }))])
     }
 
     /// Checks a corrected value and returns it as it is stored.
@@ -308,7 +315,7 @@ impl App {
         Ok(readings.get(field).unwrap_or_default())
     }
 
-    fn move_to(&mut self, form: &Form) -> Result<Vec<Effect>, (usize, String)> {
+    fn move_to(&mut self, form: &Form) -> Taken {
         let Ok(day) = &mut self.day else {
             return Ok(Vec::new());
         };

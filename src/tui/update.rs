@@ -4,7 +4,8 @@ use tui_input::InputRequest;
 
 use crate::keys::{self, Command, Context, Key};
 use crate::tui::app::{App, Effect, Message, PlaceName, Request, Tone};
-use crate::tui::day::Done;
+use crate::tui::day::bench::Bench;
+use crate::tui::day::{Day, Done};
 use crate::tui::days::Days;
 use crate::tui::prompt::{Ask, Body};
 
@@ -24,7 +25,7 @@ impl App {
         let mut effects = self
             .day
             .as_mut()
-            .map_or_else(|_| Vec::new(), crate::tui::day::Day::keep_draft);
+            .map_or_else(|_| Vec::new(), Day::keep_draft);
         effects.push(Effect::FlushDrafts);
         effects.push(Effect::Quit);
         effects
@@ -129,11 +130,12 @@ impl App {
     pub(crate) fn run(&mut self, command: Command) -> Vec<Effect> {
         match command {
             Command::Quit => return self.leave(),
+            Command::Redraw => return vec![Effect::Redraw],
             Command::Suspend => {
                 let mut effects = self
                     .day
                     .as_mut()
-                    .map_or_else(|_| Vec::new(), crate::tui::day::Day::keep_draft);
+                    .map_or_else(|_| Vec::new(), Day::keep_draft);
                 effects.extend([Effect::FlushDrafts, Effect::Suspend]);
                 return effects;
             }
@@ -160,7 +162,7 @@ impl App {
         let mut effects = self
             .day
             .as_mut()
-            .map_or_else(|_| Vec::new(), crate::tui::day::Day::keep_draft);
+            .map_or_else(|_| Vec::new(), Day::keep_draft);
         self.at = place;
         match place {
             PlaceName::Referrals => effects.push(Effect::ask(Request::Referrals)),
@@ -203,27 +205,16 @@ impl App {
             }
             _ => {}
         }
+        match &mut self.day {
+            Err(days) => days.command(command),
+            Ok(_) => self.run_on_day(command),
+        }
+    }
+
+    fn run_on_day(&mut self, command: Command) -> Vec<Effect> {
         let in_list = self.context() == Context::List;
-        let day = match &mut self.day {
-            Err(days) => {
-                return match command {
-                    Command::ListUp => {
-                        days.step(-1);
-                        Vec::new()
-                    }
-                    Command::ListDown => {
-                        days.step(1);
-                        Vec::new()
-                    }
-                    Command::Open => days
-                        .selected()
-                        .map(|d| Effect::ask(Request::LoadDay(d.clone())))
-                        .into_iter()
-                        .collect(),
-                    _ => Vec::new(),
-                };
-            }
-            Ok(day) => day,
+        let Ok(day) = &mut self.day else {
+            return Vec::new();
         };
         let done = match command {
             Command::Sign => {
@@ -233,33 +224,12 @@ impl App {
                 day.sign(&self.session)
             }
             Command::NextChild => day.next_child(&self.session),
-            Command::ShowAll => {
-                let all = day.queue.toggle_all();
-                Done {
-                    effects: Vec::new(),
-                    said: Some((
-                        false,
-                        if all {
-                            "all children of the day are listed"
-                        } else {
-                            "those who are done are not listed"
-                        }
-                        .into(),
-                    )),
-                }
-            }
-            Command::Swap => {
-                if let Some(bench) = &mut day.bench {
-                    bench.swap();
-                }
-                Done {
-                    effects: day.keep_draft(),
-                    said: Some((
-                        false,
-                        "right eye and left eye swapped; Ctrl-Z swaps them back".into(),
-                    )),
-                }
-            }
+            Command::ShowAll => Done::said(if day.queue.toggle_all() {
+                "all children of the day are listed"
+            } else {
+                "those who are done are not listed"
+            }),
+            Command::Swap => day.swap(),
             Command::Undo => {
                 let undone = day
                     .bench
@@ -269,10 +239,7 @@ impl App {
                     self.ask_retract();
                     return Vec::new();
                 }
-                Done {
-                    effects: day.keep_draft(),
-                    said: None,
-                }
+                Done::effects(day.keep_draft())
             }
             Command::Days => {
                 let mut effects = day.keep_draft();
@@ -281,24 +248,8 @@ impl App {
                 self.day = Err(Days::default());
                 return effects;
             }
-            Command::Accept
-                if day
-                    .bench
-                    .as_ref()
-                    .is_some_and(crate::tui::day::bench::Bench::wants_list) =>
-            {
-                let signs = day
-                    .bench
-                    .as_ref()
-                    .and_then(crate::tui::day::bench::Bench::field)
-                    == Some(crate::domain::field::Field::Signs);
-                if signs {
-                    day.bench
-                        .as_mut()
-                        .map_or((), crate::tui::day::bench::Bench::advance);
-                } else {
-                    self.ask_history();
-                }
+            Command::Accept if day.bench.as_ref().is_some_and(Bench::wants_history) => {
+                self.ask_history();
                 return Vec::new();
             }
             command if in_list => day.list_command(command, &self.session),

@@ -139,15 +139,17 @@ impl App {
             .screener
             .as_deref()
             .map_or_else(|| "nobody is recording".to_owned(), safe);
-        let right = match &self.day {
-            Ok(day) => format!(
-                "{} · {} · {screener}",
-                safe(&day.info.site_name),
-                spoken(day.info.date)
-            ),
-            Err(_) => format!("{} · {screener}", safe(&self.session.programme)),
-        };
         let room = usize::from(area.width).saturating_sub(used + 1);
+        let (place, rest) = match &self.day {
+            Ok(day) => (
+                &day.info.site_name,
+                format!(" · {} · {screener}", spoken(day.info.date)),
+            ),
+            Err(_) => (&self.session.programme, format!(" · {screener}")),
+        };
+        // Where space is short the place gives way first: who records and when must be seen.
+        let place = cut(&safe(place), room.saturating_sub(width(&rest)).max(8));
+        let right = format!("{place}{rest}");
         let right = cut(&right, room);
         spans.push(Span::raw(" ".repeat(room.saturating_sub(width(&right)))));
         spans.push(Span::raw(right));

@@ -7,4 +7,5 @@ mod desk;
 mod drawn;
 mod keystrokes;
 mod people;
+mod terminal;
 mod urgent;

@@ -336,12 +336,11 @@ impl Bench {
         self.readings.status.filter(|s| *s != Status::Present)
     }
 
-    /// Says whether the focus is in an empty list of signs or history.
-    pub fn wants_list(&self) -> bool {
+    /// Says whether the focus is in the history, unasked yet.
+    pub fn wants_history(&self) -> bool {
         !self.is_signed()
-            && self
-                .field()
-                .is_some_and(|f| kind::kind(f) == Kind::List && self.raw(f).is_empty())
+            && self.field() == Some(Field::History)
+            && self.raw(Field::History).is_empty()
     }
 
     /// Says whether signing will state "no signs seen".

@@ -151,7 +151,6 @@ fn lower(
         eyes: bench.readings.distance,
         pass: bench.pass_line.as_ref(),
         notation: session.notation,
-        focus: None,
     };
     let shows_ladder = bench.path.contains(&Field::DistanceRight);
     match beside {

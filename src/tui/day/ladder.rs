@@ -68,8 +68,6 @@ pub struct Ladder<'a> {
     pub pass: Option<&'a PassLine>,
     /// How lines are written.
     pub notation: Notation,
-    /// Which eye has the focus, as the step its field names.
-    pub focus: Option<i32>,
 }
 
 impl Ladder<'_> {
@@ -92,7 +90,6 @@ impl Ladder<'_> {
             .flatten()
             .map(Mark::row)
             .chain(pass)
-            .chain(self.focus)
             .collect();
         let rows = i32::try_from(rows).unwrap_or(i32::MAX).max(1);
         let all = COARSEST + 1 - FINEST + 1;
@@ -122,71 +119,21 @@ impl Ladder<'_> {
             return Vec::new();
         }
         let (top, bottom) = self.window(rows);
-        let right = mark(self.eyes.right);
-        let left = mark(self.eyes.left);
+        let marks = [mark(self.eyes.right), mark(self.eyes.left)];
         let gap = self.gap();
         let bracket = (gap >= 2).then(|| {
-            let (a, b) = (right.map_or(0, Mark::row), left.map_or(0, Mark::row));
+            let [a, b] = marks.map(|m| m.map_or(0, Mark::row));
             (a.min(b), a.max(b))
         });
-        let label_width = (top..=bottom)
+        let label = (top..=bottom)
             .map(|s| width(&ChartLine::at(Step(s), self.notation).to_string()))
-            .max()
-            .unwrap_or(6)
-            .max(6);
+            .fold(6, usize::max);
+        let columns = columns.saturating_sub(label + 16);
         (top..=bottom)
             .map(|step| {
-                let on_pass = self.pass.is_some_and(|p| p.line.step().0 == step);
-                let label = if step > COARSEST {
-                    fit("off", label_width)
-                } else {
-                    fit(
-                        &ChartLine::at(Step(step), self.notation).to_string(),
-                        label_width,
-                    )
-                };
-                let here = self.focus == Some(step);
-                let mut spans = vec![
-                    Span::styled(
-                        format!(" {label} "),
-                        if here {
-                            theme.focus()
-                        } else if on_pass {
-                            theme.strong()
-                        } else {
-                            theme.muted()
-                        },
-                    ),
-                    Span::styled(
-                        "┤",
-                        if on_pass {
-                            theme.strong()
-                        } else {
-                            theme.muted()
-                        },
-                    ),
-                ];
-                let on = |eye: Option<Mark>, letter: &str| {
-                    eye.filter(|m| m.row() == step)
-                        .map_or(String::new(), |m| m.text(letter))
-                };
+                let mut spans = self.rung(step, label, marks, theme);
+                let on_pass = self.is_pass(step);
                 let filler = if on_pass { "─" } else { " " };
-                let cell = |text: &str| {
-                    let used = width(text) + 1;
-                    format!(
-                        "{filler}{text}{}",
-                        filler.repeat(6usize.saturating_sub(used))
-                    )
-                };
-                for (eye, letter) in [(right, "R"), (left, "L")] {
-                    let text = on(eye, letter);
-                    let style = if text.is_empty() {
-                        if on_pass { theme.pass() } else { theme.muted() }
-                    } else {
-                        theme.strong()
-                    };
-                    spans.push(Span::styled(cell(&text), style));
-                }
                 let glyph = match bracket {
                     Some((a, b)) if step == a && step == b => "─",
                     Some((a, _)) if step == a => "┐",
@@ -194,34 +141,72 @@ impl Ladder<'_> {
                     Some((a, b)) if step > a && step < b => "│",
                     _ => filler,
                 };
-                spans.push(Span::styled(
-                    glyph.to_owned(),
-                    if glyph == "─" && on_pass {
-                        theme.pass()
-                    } else {
-                        theme.attention()
-                    },
-                ));
-                let middle = bracket.map(|(a, b)| i32::midpoint(a, b).max(top).max(a));
-                let words = match (middle == Some(step), on_pass) {
-                    (true, true) => format!(" {} {}", steps_words(gap), self.pass_words()),
+                let style = if glyph == "─" {
+                    theme.pass()
+                } else {
+                    theme.attention()
+                };
+                spans.push(Span::styled(glyph, style));
+                let middle =
+                    bracket.map(|(a, b)| i32::midpoint(a, b).max(top).max(a)) == Some(step);
+                let words = match (middle, on_pass) {
+                    (true, true) => format!(" {} ─ {}", steps_words(gap), self.pass_words()),
                     (true, false) => format!(" {}", steps_words(gap)),
                     (false, true) => format!("── {}", self.pass_words()),
                     _ => String::new(),
                 };
-                let style = if middle == Some(step) {
+                let style = if middle {
                     theme.attention()
                 } else {
                     theme.pass()
                 };
-                let used = label_width + 3 + 13;
-                spans.push(Span::styled(
-                    crate::tui::text::cut(&words, columns.saturating_sub(used)),
-                    style,
-                ));
+                spans.push(Span::styled(crate::tui::text::cut(&words, columns), style));
                 Line::from(spans)
             })
             .collect()
+    }
+
+    fn is_pass(&self, step: i32) -> bool {
+        self.pass.is_some_and(|p| p.line.step().0 == step)
+    }
+
+    /// Draws the name of a line and the eyes that stand on it.
+    fn rung(
+        &self,
+        step: i32,
+        label: usize,
+        marks: [Option<Mark>; 2],
+        theme: Theme,
+    ) -> Vec<Span<'static>> {
+        let on_pass = self.is_pass(step);
+        let quiet = if on_pass {
+            theme.strong()
+        } else {
+            theme.muted()
+        };
+        let line = if step > COARSEST {
+            "off".to_owned()
+        } else {
+            ChartLine::at(Step(step), self.notation).to_string()
+        };
+        let mut spans = vec![
+            Span::styled(format!(" {} ", fit(&line, label)), quiet),
+            Span::styled("┤", quiet),
+        ];
+        let filler = if on_pass { "─" } else { " " };
+        for (eye, letter) in marks.into_iter().zip(["R", "L"]) {
+            let text = eye
+                .filter(|m| m.row() == step)
+                .map_or(String::new(), |m| m.text(letter));
+            let style = match (text.is_empty(), on_pass) {
+                (false, _) => theme.strong(),
+                (true, true) => theme.pass(),
+                (true, false) => theme.muted(),
+            };
+            let rest = filler.repeat(5usize.saturating_sub(width(&text)));
+            spans.push(Span::styled(format!("{filler}{text}{rest}"), style));
+        }
+        spans
     }
 
     fn pass_words(&self) -> String {

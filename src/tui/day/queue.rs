@@ -333,7 +333,7 @@ fn is_open(state: QueueState) -> bool {
 
 fn heading(child: &DayChild) -> String {
     if child.due_on.is_some() || child.attempt == Attempt::Rescreen {
-        "Rescreens and returns".into()
+        "Rescreens due".into()
     } else if child.class.is_empty() {
         child
             .grade

@@ -1,5 +1,7 @@
 //! The outcome as it stands, in three lines at the foot of the bench.
 
+use std::fmt::Write as _;
+
 use ratatui::text::{Line, Span};
 
 use crate::domain::age::spoken;
@@ -92,17 +94,17 @@ fn signed_lines(
     };
     let mut headline = format!("signed: {}", outcome.kind.title().to_uppercase());
     if !outcome.qualifiers.is_empty() {
-        headline.push_str(&format!(" ({})", outcome.qualifiers.join("; ")));
+        let _ = write!(headline, " ({})", outcome.qualifiers.join("; "));
     }
     if let Some(due) = outcome.due_on {
-        headline.push_str(&format!(" by {}", spoken(due)));
+        let _ = write!(headline, " by {}", spoken(due));
     }
     if let Some(act) = outcome.act_by {
-        headline.push_str(&format!(", act by {}", spoken(act)));
+        let _ = write!(headline, ", act by {}", spoken(act));
     }
     let mut rest = String::new();
     if let Some(now) = &visit.now {
-        rest.push_str(&format!("Now it would be {}. ", safe(now)));
+        let _ = write!(rest, "Now it would be {}. ", safe(now));
     }
     rest.push_str(&safe(&outcome.reasons));
     let style = theme.outcome(bench.outcome.kind, outcome.urgency);

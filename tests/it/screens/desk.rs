@@ -46,7 +46,7 @@ pub struct Hands {
     /// Requests are held back here while the store is "slow".
     pub held: Option<Vec<Effect>>,
     pub left: bool,
-    _folder: tempfile::TempDir,
+    pub folder: tempfile::TempDir,
 }
 
 thread_local! {
@@ -119,7 +119,7 @@ impl Hands {
             keys: 0,
             held: None,
             left: false,
-            _folder: folder,
+            folder: folder,
         };
         hands.carry_out(start);
         hands
@@ -127,9 +127,9 @@ impl Hands {
 
     /// Gets up and sits down again at the same store.
     pub fn again(self) -> Hands {
-        let Hands { clerk, _folder, .. } = self;
+        let Hands { clerk, folder, .. } = self;
         clerk.flush().unwrap();
-        Hands::with(clerk.into_desk(), _folder)
+        Hands::with(clerk.into_desk(), folder)
     }
 
     fn carry_out(&mut self, effects: Vec<Effect>) {
@@ -144,7 +144,7 @@ impl Hands {
                 Effect::DropDraft(day, child) => self.clerk.drop_draft(day, &child),
                 Effect::FlushDrafts => self.clerk.flush().unwrap(),
                 Effect::Quit => self.left = true,
-                Effect::Suspend => {}
+                Effect::Suspend | Effect::Redraw => {}
             }
         }
     }

@@ -251,3 +251,32 @@ fn the_list_of_days_opens_a_day_and_shows_the_cautions() {
         .enter();
     h.typed("us-school").enter().enter().sees("28 Oct 2026");
 }
+
+#[test]
+fn who_records_is_asked_once_when_it_is_not_known() {
+    let (mut desk, folder) = super::desk::store(
+        super::desk::ROSTER,
+        twoline::domain::codes::AcuityMethod::Threshold,
+    );
+    desk.add_screener("TB", "T. Brandt").unwrap();
+    let h = Hands::with(desk, folder);
+    // The screener of the set-up is still chosen; at the next start there are two to choose from.
+    drop(h.app);
+    let folder = h.folder;
+    let drafts = h.clerk.into_desk();
+    drop(drafts);
+    let options = twoline::actions::DeskOptions {
+        today: Some(super::desk::day()),
+        ..Default::default()
+    };
+    let desk = twoline::actions::Desk::open(
+        &folder.path().join("store"),
+        &twoline::actions::Secret::None,
+        &options,
+    )
+    .unwrap();
+    let mut h = Hands::with(desk, folder);
+    h.sees("who is recording?")
+        .typed("2")
+        .sees("recording as T. Brandt");
+}

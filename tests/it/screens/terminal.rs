@@ -1,0 +1,127 @@
+//! The run loop in a real terminal: begun, resized, ended by a signal; the terminal comes back.
+
+use std::io::{Read, Write};
+use std::sync::{Arc, Mutex};
+use std::time::{Duration, Instant};
+
+use portable_pty::{Child, CommandBuilder, MasterPty, PtySize, native_pty_system};
+
+struct Terminal {
+    master: Box<dyn MasterPty>,
+    writer: Box<dyn Write + Send>,
+    child: Box<dyn Child + Send + Sync>,
+    screen: Arc<Mutex<vt100::Parser>>,
+}
+
+fn cells(n: u16) -> std::num::NonZero<u16> {
+    std::num::NonZero::new(n).unwrap()
+}
+
+fn size(columns: u16, rows: u16) -> PtySize {
+    PtySize {
+        rows,
+        cols: columns,
+        pixel_width: 0,
+        pixel_height: 0,
+    }
+}
+
+impl Terminal {
+    fn open(store: &std::path::Path) -> Terminal {
+        let pair = native_pty_system().openpty(size(80, 24)).unwrap();
+        let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_twoline"));
+        command.args(["--store", store.to_str().unwrap(), "demo"]);
+        command.env("TERM", "xterm-256color");
+        let child = pair.slave.spawn_command(command).unwrap();
+        drop(pair.slave);
+        let screen = Arc::new(Mutex::new(vt100::Parser::new(cells(24), cells(80), 0)));
+        let mut reader = pair.master.try_clone_reader().unwrap();
+        let parser = Arc::clone(&screen);
+        std::thread::spawn(move || {
+            let mut bytes = [0; 8192];
+            while let Ok(n) = reader.read(&mut bytes) {
+                if n == 0 {
+                    break;
+                }
+                parser.lock().unwrap().process(&bytes[..n]);
+            }
+        });
+        Terminal {
+            writer: pair.master.take_writer().unwrap(),
+            master: pair.master,
+            child,
+            screen,
+        }
+    }
+
+    fn contents(&self) -> String {
+        self.screen.lock().unwrap().screen().contents()
+    }
+
+    #[track_caller]
+    fn wait_for(&self, text: &str) {
+        let until = Instant::now() + Duration::from_secs(60);
+        while Instant::now() < until {
+            if self.contents().contains(text) {
+                return;
+            }
+            std::thread::sleep(Duration::from_millis(20));
+        }
+        panic!("not on the screen: {text}\n{}", self.contents());
+    }
+
+    fn send(&mut self, text: &str) {
+        self.writer.write_all(text.as_bytes()).unwrap();
+        self.writer.flush().unwrap();
+        std::thread::sleep(Duration::from_millis(120));
+    }
+}
+
+#[test]
+fn a_day_in_a_real_terminal_survives_resize_and_signal() {
+    let folder = tempfile::tempdir().unwrap();
+    let store = folder.path().join("demo");
+    let mut t = Terminal::open(&store);
+    t.wait_for("To come");
+    t.send("20");
+    t.send("\r");
+    t.send("20/2");
+    t.wait_for("20/2");
+    t.screen
+        .lock()
+        .unwrap()
+        .screen_mut()
+        .set_size(cells(10), cells(60));
+    t.master.resize(size(60, 10)).unwrap();
+    t.wait_for("Twoline needs 80");
+    t.screen
+        .lock()
+        .unwrap()
+        .screen_mut()
+        .set_size(cells(36), cells(120));
+    t.master.resize(size(120, 36)).unwrap();
+    t.wait_for("F6 swap eyes");
+    let pid = t.child.process_id().unwrap();
+    let killed = std::process::Command::new("kill")
+        .args(["-TERM", &pid.to_string()])
+        .status()
+        .unwrap();
+    assert!(killed.success());
+    assert!(
+        t.child.wait().unwrap().success(),
+        "a signal is an orderly end"
+    );
+    let screen = t.screen.lock().unwrap();
+    assert!(
+        !screen.screen().alternate_screen(),
+        "the terminal is given back"
+    );
+    drop(screen);
+
+    let mut again = Terminal::open(&store);
+    again.wait_for("who is recording?");
+    again.send("1");
+    again.wait_for("draft");
+    again.send("\x11");
+    assert!(again.child.wait().unwrap().success());
+}
