@@ -23,7 +23,7 @@ mod theme;
 mod update;
 pub mod view;
 
-pub use desk::{Clerk, session};
+pub use desk::{Clerk, Keeper, session};
 pub use judging::Draft;
 pub use run::{Error, Options, run};
 pub use theme::Theme;

@@ -2,7 +2,7 @@
 
 use std::fmt::Write as _;
 
-use crate::actions::{DayChild, Signed};
+use crate::actions::{DayChild, QueueState, Signed};
 use crate::domain::outcome::Urgency;
 use crate::tui::app::{Answer, App, Effect, Notice, Refused, Request, Tone};
 use crate::tui::day::Day;
@@ -125,7 +125,11 @@ impl App {
     fn signed(&mut self, signed: Signed, verb: &str) -> Vec<Effect> {
         let outcome = &signed.outcome;
         let who = name(&signed.child.family_name, &signed.child.given_name);
-        let mut words = format!("{verb} {who}: {}", outcome.kind.title());
+        let mut words = match signed.child.state {
+            QueueState::Signed(kind) => format!("{verb} {who}: {}", kind.title()),
+            // One of the states that are not a result comes first; the outcome stands behind it.
+            state => format!("{verb} {who}: {}, {}", state.title(), outcome.kind.title()),
+        };
         if !outcome.qualifiers.is_empty() {
             let _ = write!(words, " ({})", outcome.qualifiers.join("; "));
         }

@@ -166,7 +166,7 @@ pub enum Effect {
     /// Writes all drafts now.
     FlushDrafts,
     /// Deletes the draft of a day and a child.
-    DropDraft(Uuid, String),
+    DropDraft(Arc<DayInfo>, String),
     /// Draws the whole screen anew.
     Redraw,
     /// Gives the terminal back until the program is woken.
@@ -227,7 +227,7 @@ pub enum Answer {
     /// The list of days.
     Days(Vec<DayInfo>),
     /// A day with its children and drafts.
-    Day(DayInfo, Vec<DayChild>, Vec<Draft>),
+    Day(Arc<DayInfo>, Vec<DayChild>, Vec<Draft>),
     /// A visit was signed.
     Signed(Box<Signed>),
     /// A visit was not signed; its draft stays.

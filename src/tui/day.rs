@@ -86,13 +86,13 @@ impl Day {
     /// Takes a day with its children and drafts; the first child to come is on the bench.
     pub fn new(
         session: &Session,
-        info: DayInfo,
+        info: Arc<DayInfo>,
         children: Vec<DayChild>,
         drafts: Vec<Draft>,
     ) -> (Day, Vec<Effect>) {
         let draft_ids = drafts.iter().map(|d| d.child_id.clone()).collect();
         let mut day = Day {
-            info: Arc::new(info),
+            info,
             queue: Queue::new(children),
             bench: None,
             last_signed: None,
@@ -179,7 +179,7 @@ impl Day {
     fn forget_draft(&mut self, id: &str) -> Vec<Effect> {
         self.draft_ids.remove(id);
         self.drafts.remove(id);
-        vec![Effect::DropDraft(self.info.id, id.to_owned())]
+        vec![Effect::DropDraft(Arc::clone(&self.info), id.to_owned())]
     }
 
     // --- keys --------------------------------------------------------------------------------

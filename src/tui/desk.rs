@@ -1,8 +1,6 @@
 //! The thread that owns the store: one request is one action.
 
-use std::collections::HashMap;
-
-use uuid::Uuid;
+use std::sync::Arc;
 
 use crate::actions::{self, ActionError, DayInfo, Desk, DraftDay, Drafts, SearchIndex};
 use crate::tui::app::{Answer, App, Refused, Request, Session};
@@ -16,8 +14,66 @@ const FOUND: usize = 200;
 pub struct Clerk {
     desk: Desk,
     index: Option<SearchIndex>,
-    drafts: Option<Drafts>,
-    days: HashMap<Uuid, DayInfo>,
+    keeper: Keeper,
+}
+
+/// Keeps drafts; saving and dropping never wait, whatever the store is busy with.
+#[derive(Debug, Clone, Default)]
+pub struct Keeper(Option<Arc<Drafts>>);
+
+impl Keeper {
+    /// Keeps a draft, soon.
+    pub fn save(&self, draft: Draft, now_ms: i64) {
+        if let Some(drafts) = &self.0 {
+            // A failure shows at the next flush, which is waited for.
+            let _ = drafts.save(actions::Draft {
+                day: draft_day(&draft.day),
+                child_id: draft.child_id,
+                visit_id: draft.visit,
+                attempt: draft.attempt,
+                fields: draft.fields,
+                cursor: draft.cursor,
+                updated_at_ms: now_ms,
+            });
+        }
+    }
+
+    /// Forgets a draft.
+    pub fn drop_draft(&self, day: &DayInfo, child_id: &str) {
+        if let Some(drafts) = &self.0 {
+            let _ = drafts.delete(&draft_day(day), child_id);
+        }
+    }
+
+    /// Writes every draft, and says what went wrong if one could not be written.
+    pub fn flush(&self) -> Result<(), Refused> {
+        match &self.0 {
+            Some(drafts) => drafts.flush().map_err(|e| Refused {
+                message: format!("drafts could not be written: {e}"),
+                hint: String::new(),
+            }),
+            None => Ok(()),
+        }
+    }
+
+    fn load(&self, day: &Arc<DayInfo>) -> Vec<Draft> {
+        let drafts = self
+            .0
+            .as_ref()
+            .and_then(|d| d.load_all(&draft_day(day)).ok());
+        drafts
+            .unwrap_or_default()
+            .into_iter()
+            .map(|d| Draft {
+                day: Arc::clone(day),
+                child_id: d.child_id,
+                visit: d.visit_id,
+                attempt: d.attempt,
+                fields: d.fields,
+                cursor: d.cursor,
+            })
+            .collect()
+    }
 }
 
 /// Makes what the screens begin with: session, days, what is urgent.
@@ -57,52 +113,21 @@ pub fn session(
 impl Clerk {
     /// Sits down at a desk.
     pub fn new(desk: Desk) -> Clerk {
-        let drafts = desk.drafts().ok();
         Clerk {
+            keeper: Keeper(desk.drafts().ok().map(Arc::new)),
             desk,
             index: None,
-            drafts,
-            days: HashMap::new(),
         }
     }
 
-    /// Gives the desk back, with every draft written.
+    /// Returns the handle on the drafts.
+    pub fn keeper(&self) -> Keeper {
+        self.keeper.clone()
+    }
+
+    /// Gives the desk back; every draft is written.
     pub fn into_desk(self) -> Desk {
         self.desk
-    }
-
-    /// Keeps a draft, soon.
-    pub fn save_draft(&self, draft: Draft, now_ms: i64) {
-        if let (Some(drafts), Some(day)) = (&self.drafts, self.days.get(&draft.day)) {
-            // A failure shows at the next flush, which is waited for.
-            let _ = drafts.save(actions::Draft {
-                day: draft_day(day),
-                child_id: draft.child_id,
-                visit_id: draft.visit,
-                attempt: draft.attempt,
-                fields: draft.fields,
-                cursor: draft.cursor,
-                updated_at_ms: now_ms,
-            });
-        }
-    }
-
-    /// Forgets a draft.
-    pub fn drop_draft(&self, day: Uuid, child_id: &str) {
-        if let (Some(drafts), Some(day)) = (&self.drafts, self.days.get(&day)) {
-            let _ = drafts.delete(&draft_day(day), child_id);
-        }
-    }
-
-    /// Writes every draft, and says what went wrong if one could not be written.
-    pub fn flush(&self) -> Result<(), Refused> {
-        match &self.drafts {
-            Some(drafts) => drafts.flush().map_err(|e| Refused {
-                message: format!("drafts could not be written: {e}"),
-                hint: String::new(),
-            }),
-            None => Ok(()),
-        }
     }
 
     /// Answers a request.
@@ -179,24 +204,10 @@ impl Clerk {
         })
     }
 
-    fn load_day(&mut self, day: DayInfo) -> Result<Answer, ActionError> {
+    fn load_day(&self, day: DayInfo) -> Result<Answer, ActionError> {
         let children = self.desk.day_children(&day)?;
-        self.days.insert(day.id, day.clone());
-        let drafts = self
-            .drafts
-            .as_ref()
-            .and_then(|d| d.load_all(&draft_day(&day)).ok())
-            .unwrap_or_default()
-            .into_iter()
-            .map(|d| Draft {
-                day: day.id,
-                child_id: d.child_id,
-                visit: d.visit_id,
-                attempt: d.attempt,
-                fields: d.fields,
-                cursor: d.cursor,
-            })
-            .collect();
+        let day = Arc::new(day);
+        let drafts = self.keeper.load(&day);
         Ok(Answer::Day(day, children, drafts))
     }
 }

@@ -1,6 +1,8 @@
 //! What the screens ask of the rules, all of it pure and asked on every key press, and the draft
 //! as the screens keep it.
 
+use std::sync::Arc;
+
 use chrono::NaiveDate;
 use uuid::Uuid;
 
@@ -14,8 +16,8 @@ use crate::domain::readings::Readings;
 /// What was typed for one child and not signed yet.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Draft {
-    /// Row id of the day.
-    pub day: Uuid,
+    /// The day.
+    pub day: Arc<DayInfo>,
     /// The child.
     pub child_id: String,
     /// The visit's id, given when the child came to the bench.

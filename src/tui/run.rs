@@ -23,8 +23,7 @@ use crate::actions::Desk;
 use crate::clock;
 use crate::keys::Key;
 use crate::tui::app::{Answer, App, Effect, Message, Request};
-use crate::tui::desk::{Clerk, session};
-use crate::tui::judging::Draft;
+use crate::tui::desk::{Clerk, Keeper, session};
 
 /// How the screens are shown.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
@@ -67,9 +66,11 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     let mut app = session(&desk, options.color, now.utc_ms, now.offset_minutes)?;
     let (to_store, jobs) = channel();
     let (answers, from_store) = channel();
-    let clerk = thread::Builder::new()
+    let clerk = Clerk::new(desk);
+    let keeper = clerk.keeper();
+    let store = thread::Builder::new()
         .name("store".into())
-        .spawn(move || serve(Clerk::new(desk), &jobs, &answers))?;
+        .spawn(move || serve(clerk, &jobs, &answers))?;
     let leave = Arc::new(AtomicBool::new(false));
     let mut handlers = Vec::new();
     for signal in [
@@ -83,6 +84,7 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
         let mut wires = Wires {
             to_store: to_store.clone(),
             from_store,
+            keeper,
             waiting: 0,
         };
         let result = event_loop(&mut app, &mut screen, &mut wires, &leave);
@@ -98,15 +100,13 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     }
     drop(to_store);
     // Every job already given is done and every draft written before the program ends.
-    clerk.join().map_err(|_| Error::Gone)?;
+    store.join().map_err(|_| Error::Gone)?;
     result
 }
 
 /// Something for the store's thread.
 enum Job {
     Ask(Box<Request>),
-    SaveDraft(Draft),
-    DropDraft(uuid::Uuid, String),
     Flush,
 }
 
@@ -114,42 +114,31 @@ fn serve(mut clerk: Clerk, jobs: &Receiver<Job>, answers: &Sender<Answer>) {
     while let Ok(job) = jobs.recv() {
         let answer = match job {
             Job::Ask(request) => clerk.answer(*request),
-            Job::SaveDraft(draft) => {
-                clerk.save_draft(draft, clock::now().utc_ms);
-                continue;
-            }
-            Job::DropDraft(day, child) => {
-                clerk.drop_draft(day, &child);
-                continue;
-            }
-            Job::Flush => match clerk.flush() {
+            Job::Flush => match clerk.keeper().flush() {
                 Ok(()) => continue,
                 Err(refused) => Answer::Refused(refused),
             },
         };
         if answers.send(answer).is_err() {
-            // The screens are gone; drafts are still written when the clerk is dropped.
             break;
         }
     }
-    // The screens may leave while jobs wait: drafts among them are not lost.
+    // The screens may leave while a signature waits: it is still written, and so is every draft.
     while let Ok(job) = jobs.try_recv() {
-        match job {
-            Job::SaveDraft(draft) => clerk.save_draft(draft, clock::now().utc_ms),
-            Job::DropDraft(day, child) => clerk.drop_draft(day, &child),
-            Job::Ask(request) if matches!(*request, Request::Sign(_)) => {
-                drop(clerk.answer(*request));
-            }
-            Job::Ask(_) | Job::Flush => {}
+        if let Job::Ask(request) = job
+            && matches!(*request, Request::Sign(_))
+        {
+            drop(clerk.answer(*request));
         }
     }
-    let _ = clerk.flush();
+    let _ = clerk.keeper().flush();
 }
 
 /// The channels to the store's thread.
 struct Wires {
     to_store: Sender<Job>,
     from_store: Receiver<Answer>,
+    keeper: Keeper,
     waiting: usize,
 }
 
@@ -163,9 +152,15 @@ impl Wires {
                     self.waiting += 1;
                     Job::Ask(request)
                 }
-                Effect::SaveDraft(draft) => Job::SaveDraft(draft),
+                Effect::SaveDraft(draft) => {
+                    self.keeper.save(draft, clock::now().utc_ms);
+                    continue;
+                }
+                Effect::DropDraft(day, child) => {
+                    self.keeper.drop_draft(&day, &child);
+                    continue;
+                }
                 Effect::FlushDrafts => Job::Flush,
-                Effect::DropDraft(day, child) => Job::DropDraft(day, child),
                 Effect::Redraw => {
                     next = Next::Redraw;
                     continue;

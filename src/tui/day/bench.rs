@@ -229,7 +229,7 @@ impl Bench {
     /// Returns the draft to keep.
     pub fn draft(&self) -> Draft {
         Draft {
-            day: self.given.day.id,
+            day: Arc::clone(&self.given.day),
             child_id: self.child.child_id.clone(),
             visit: self.visit,
             attempt: self.child.attempt,

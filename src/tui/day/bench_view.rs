@@ -468,7 +468,10 @@ fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Lin
             LABEL,
         );
     }
-    let mut words = format!("Enter signs: {}", bench.outcome.kind.title());
+    let mut words = match bench.status() {
+        Some(status) => format!("Enter signs: {}", status.title()),
+        None => format!("Enter signs: {}", bench.outcome.kind.title()),
+    };
     if bench.will_state_no_signs() {
         words.push_str(", no signs seen");
     }

@@ -143,7 +143,7 @@ fn an_eye_that_is_not_testable_has_a_reason() {
     // The instrument is offered instead.
     h.sees("instrument").sees("sphere");
     h.press(Key::ctrl('s'))
-        .sees("saved Okafor, Ada: rescreen")
+        .sees("saved Okafor, Ada: not testable, rescreen")
         .sees("not test");
 }
 
@@ -166,7 +166,8 @@ fn every_way_of_not_being_tested_is_a_state_of_its_own() {
         .typed("h")
         .sees("glasses left at home")
         .enter();
-    h.sees("saved Okafor, Ada: incomplete").sees("glasses");
+    h.sees("saved Okafor, Ada: glasses at home, incomplete")
+        .sees("glasses");
 }
 
 #[test]

@@ -119,7 +119,7 @@ impl Hands {
             keys: 0,
             held: None,
             left: false,
-            folder: folder,
+            folder,
         };
         hands.carry_out(start);
         hands
@@ -128,7 +128,7 @@ impl Hands {
     /// Gets up and sits down again at the same store.
     pub fn again(self) -> Hands {
         let Hands { clerk, folder, .. } = self;
-        clerk.flush().unwrap();
+        clerk.keeper().flush().unwrap();
         Hands::with(clerk.into_desk(), folder)
     }
 
@@ -140,9 +140,11 @@ impl Hands {
                     let answer = self.clerk.answer(*request);
                     self.answer(answer);
                 }
-                Effect::SaveDraft(draft) => self.clerk.save_draft(draft, self.app.session.now_ms),
-                Effect::DropDraft(day, child) => self.clerk.drop_draft(day, &child),
-                Effect::FlushDrafts => self.clerk.flush().unwrap(),
+                Effect::SaveDraft(draft) => {
+                    self.clerk.keeper().save(draft, self.app.session.now_ms)
+                }
+                Effect::DropDraft(day, child) => self.clerk.keeper().drop_draft(&day, &child),
+                Effect::FlushDrafts => self.clerk.keeper().flush().unwrap(),
                 Effect::Quit => self.left = true,
                 Effect::Suspend | Effect::Redraw => {}
             }

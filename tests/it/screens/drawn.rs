@@ -1,6 +1,12 @@
 //! What the screens look like; each snapshot was read before it was accepted.
 
+use std::fmt::Write as _;
+
 use crossterm::event::KeyCode;
+use ratatui::Terminal;
+use ratatui::backend::TestBackend;
+use ratatui::buffer::Cell;
+use ratatui::style::Color;
 use twoline::domain::codes::AcuityMethod;
 use twoline::keys::Key;
 
@@ -61,6 +67,26 @@ fn without_color_every_state_is_still_a_word() {
     let colored = h.screen();
     h.without_color();
     assert_eq!(colored, h.screen(), "color is never the only carrier");
+    let mut terminal = Terminal::new(TestBackend::new(80, 24)).unwrap();
+    terminal.draw(|frame| h.app.draw(frame)).unwrap();
+    let plain = |cell: &Cell| cell.fg == Color::Reset && cell.bg == Color::Reset;
+    assert!(terminal.backend().buffer().content.iter().all(plain));
+}
+
+#[test]
+fn the_terminals_own_cursor_stands_in_the_focused_field() {
+    let mut h = Hands::sit();
+    h.typed("20").enter().typed("32");
+    let mut terminal = Terminal::new(TestBackend::new(80, 24)).unwrap();
+    terminal.draw(|frame| h.app.draw(frame)).unwrap();
+    let at = terminal.get_cursor_position().unwrap();
+    let buffer = terminal.backend().buffer();
+    assert_eq!(buffer[(at.x - 2, at.y)].symbol(), "3");
+    assert_eq!(buffer[(at.x - 1, at.y)].symbol(), "2");
+    h.press(Key::f(7)).typed("pe");
+    terminal.draw(|frame| h.app.draw(frame)).unwrap();
+    let at = terminal.get_cursor_position().unwrap();
+    assert_eq!(terminal.backend().buffer()[(at.x - 1, at.y)].symbol(), "e");
 }
 
 #[test]
@@ -149,7 +175,7 @@ fn no_size_crashes_anything() {
     for (i, h) in screens.iter().enumerate() {
         for columns in (1..=250).step_by(7).chain([79, 80, 81]) {
             for rows in (1..=70).step_by(5).chain([23, 24, 25]) {
-                if (columns + rows + i as u16) % 3 == 0 {
+                if (columns + rows + i as u16).is_multiple_of(3) {
                     let _ = h.screen_at(columns, rows);
                 }
             }
@@ -180,10 +206,11 @@ fn names_of_every_script_keep_the_rule_in_its_column() {
 fn a_very_long_roster_opens_and_scrolls() {
     let mut roster = String::from("child_id,family_name,given_name,dob,grade,class,site\n");
     for i in 0..5_000 {
-        roster.push_str(&format!(
-            "R-{i:05},Family{i:05},Given,2019-01-01,1,C{},QE\n",
+        let _ = writeln!(
+            roster,
+            "R-{i:05},Family{i:05},Given,2019-01-01,1,C{},QE",
             i / 25
-        ));
+        );
     }
     let mut h = Hands::sit_at(&roster, AcuityMethod::Threshold);
     h.sees("To come 5000 of 5000")

@@ -99,7 +99,7 @@ fn the_five_children_come_out_as_written() {
     h.typed("h").typed("80").enter().typed("63").enter();
     h.sees("INCOMPLETE").sees("28 Oct 2026");
     h.enter()
-        .sees("saved Quiroga, Inés: incomplete")
+        .sees("saved Quiroga, Inés: glasses at home, incomplete")
         .sees("glasses");
     // Fifth: not consented, a white pupil in the left eye.
     h.scan("Q-10490").sees("no consent");

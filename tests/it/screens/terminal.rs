@@ -60,7 +60,7 @@ impl Terminal {
 
     #[track_caller]
     fn wait_for(&self, text: &str) {
-        let until = Instant::now() + Duration::from_secs(60);
+        let until = Instant::now() + Duration::from_mins(1);
         while Instant::now() < until {
             if self.contents().contains(text) {
                 return;
