@@ -135,7 +135,7 @@ fn refer_sentence(reason: &Reason, out: &mut String) {
 fn pass_words(reason: &Reason, out: &mut String) {
     let finding = criterion_words(&reason.criterion);
     if is_sign(reason) {
-        let _ = write!(out, "{}: none seen", reason.rule_set.replace('-', " "));
+        let _ = write!(out, "{}: none seen", words::set_words(&reason.rule_set));
     } else if finding.starts_with("line") {
         out.push_str("both lines pass");
     } else if finding.starts_with("near") {
@@ -188,7 +188,7 @@ pub fn short(outcome: &Outcome) -> String {
                 let _ = write!(
                     out,
                     ". {} ({}).",
-                    capital(&reason.rule_set.replace('-', " ")),
+                    capital(&words::set_words(&reason.rule_set)),
                     reason.source.basis.title()
                 );
                 if !outcome.risks.is_empty() {
@@ -317,7 +317,7 @@ pub fn table(outcome: &Outcome) -> Vec<ReasonLine> {
         }
         rows.push(ReasonLine {
             criterion: if collapsed {
-                reason.rule_set.replace('-', " ")
+                words::set_words(&reason.rule_set)
             } else {
                 criterion_words(&reason.criterion)
             },

@@ -95,3 +95,25 @@ pub(in crate::rules) fn act_words(days: u32) -> String {
         days => format!("act within {days} days"),
     }
 }
+
+/// Returns a rule set's id as words: `iapb-school-6-9` is "IAPB school 6/9".
+pub(super) fn set_words(id: &str) -> String {
+    let mut out = String::new();
+    let mut before = "";
+    for word in id.split('-') {
+        let number = |w: &str| w.len() <= 2 && w.bytes().all(|b| b.is_ascii_digit());
+        if !out.is_empty() {
+            out.push(if number(before) && number(word) {
+                '/'
+            } else {
+                ' '
+            });
+        }
+        match word {
+            "us" | "uk" | "iapb" | "nsw" => out.push_str(&word.to_uppercase()),
+            _ => out.push_str(word),
+        }
+        before = word;
+    }
+    out
+}
