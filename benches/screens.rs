@@ -16,14 +16,12 @@ use twoline::domain::acuity::Notation;
 use twoline::domain::codes::AcuityMethod;
 use twoline::keys::Key;
 use twoline::tui::app::{App, Effect, Message};
-use twoline::tui::view::draw;
-use twoline::tui::{Clerk, Theme, session};
+use twoline::tui::{Clerk, session};
 
 struct Hands {
     app: App,
     clerk: Clerk,
     terminal: Terminal<TestBackend>,
-    theme: Theme,
     frames: Vec<Duration>,
 }
 
@@ -32,7 +30,7 @@ impl Hands {
         self.app.session.now_ms += 150;
         let start = Instant::now();
         let effects = self.app.update(Message::Key(key));
-        self.terminal.draw(|frame| draw(&self.app, &self.theme, frame)).expect("drawn");
+        self.terminal.draw(|frame| self.app.draw(frame)).expect("drawn");
         self.frames.push(start.elapsed());
         self.carry_out(effects);
     }
@@ -77,7 +75,6 @@ fn main() {
         app,
         clerk: Clerk::new(desk),
         terminal: Terminal::new(TestBackend::new(120, 36)).expect("a terminal"),
-        theme: Theme::new(true),
         frames: Vec::new(),
     };
     hands.carry_out(first);
@@ -85,7 +82,7 @@ fn main() {
 
     for _ in 0..500 {
         let start = Instant::now();
-        hands.terminal.draw(|frame| draw(&hands.app, &hands.theme, frame)).expect("drawn");
+        hands.terminal.draw(|frame| hands.app.draw(frame)).expect("drawn");
         hands.frames.push(start.elapsed());
     }
     hands.report("the same screen drawn again");
