@@ -139,6 +139,36 @@ fn a_folder_without_a_store_says_so() {
 }
 
 #[test]
+fn an_interrupted_init_is_told_apart_from_a_store() {
+    let temp = TempDir::new().unwrap();
+    std::fs::write(temp.path().join("store.db"), "left over").unwrap();
+    let error = Store::create(temp.path(), new(Secret::None)).unwrap_err();
+    assert_eq!(error.kind(), ErrorKind::Exists);
+    assert!(
+        error
+            .to_string()
+            .ends_with("holds a store.db without its key file")
+    );
+    assert_eq!(
+        std::fs::read(temp.path().join("store.db")).unwrap(),
+        b"left over"
+    );
+}
+
+#[test]
+fn a_failed_init_leaves_nothing() {
+    let temp = TempDir::new().unwrap();
+    // A folder stands where the log of the database would be.
+    std::fs::create_dir(temp.path().join("store.db-wal")).unwrap();
+    Store::create(temp.path(), new(Secret::None)).unwrap_err();
+    let left: Vec<_> = std::fs::read_dir(temp.path())
+        .unwrap()
+        .map(|e| e.unwrap().file_name())
+        .collect();
+    assert_eq!(left, ["store.db-wal"], "only what was there before");
+}
+
+#[test]
 fn a_database_and_a_key_of_two_stores_do_not_fit() {
     let (_a, one) = fresh();
     let (_b, two) = fresh();
