@@ -1,5 +1,7 @@
 //! Golden vectors of the ledger, and a second, short implementation of it.
 
+use std::fmt::Write;
+
 use rusqlite::types::ValueRef;
 use sha2::{Digest, Sha256};
 use twoline::store::ledger::{self, Head, TxHeader, TxRows};
@@ -175,7 +177,7 @@ fn field_order_is_frozen() {
     let mut text = String::new();
     for t in TABLES {
         let fields = t.columns.join(" ");
-        text.push_str(&format!("{} {}: {fields}\n", t.name, t.versions.len()));
+        writeln!(text, "{} {}: {fields}", t.name, t.versions.len()).unwrap();
     }
     assert_eq!(
         ledger::hex(&ledger::hash(text.as_bytes())),

@@ -185,6 +185,29 @@ fn a_database_and_a_key_of_two_stores_do_not_fit() {
     );
 }
 
+/// A kill leaves the files as they are: what was saved is in the log and is found there.
+#[test]
+fn what_was_saved_is_there_after_a_kill() {
+    let (temp, mut store) = fresh();
+    for i in 0..20 {
+        store
+            .append(&author(), |tx| {
+                tx.add(&child(&format!("Q-{i}"), "Okafor", "Ada"))
+            })
+            .unwrap();
+        let left = temp.path().join(format!("left-{i}"));
+        std::fs::create_dir(&left).unwrap();
+        for entry in std::fs::read_dir(store.dir()).unwrap() {
+            let entry = entry.unwrap();
+            std::fs::copy(entry.path(), left.join(entry.file_name())).unwrap();
+        }
+        let after = open(&left);
+        assert_eq!(after.head().unwrap(), store.head().unwrap());
+        assert!(after.read().child(&format!("Q-{i}")).unwrap().is_some());
+        after.verify(None, |_, _| {}).unwrap();
+    }
+}
+
 #[test]
 fn a_backup_reopens_with_the_same_head_and_never_overwrites() {
     let temp = TempDir::new().unwrap();
