@@ -303,10 +303,10 @@ impl App {
             (
                 '\0',
                 format!(
-                    "{:<16} {}   {}",
-                    b.command.name(),
-                    b.help,
-                    if keys == "palette" { "" } else { &keys }
+                    "{} {} {}",
+                    crate::tui::text::fit(b.command.name(), 14),
+                    crate::tui::text::fit(if keys == "palette" { "" } else { &keys }, 10),
+                    b.help
                 ),
                 b.command.name(),
             )

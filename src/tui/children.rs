@@ -200,7 +200,13 @@ fn history_lines(history: &ChildHistory, columns: usize, session: &Session) -> V
     let facts = history
         .facts
         .iter()
-        .map(|(what, value)| format!("{} {}", safe(what), safe(value)))
+        .map(|(what, value)| {
+            if value.starts_with(what.as_str()) {
+                safe(value)
+            } else {
+                format!("{} {}", safe(what), safe(value))
+            }
+        })
         .collect::<Vec<_>>()
         .join(" · ");
     out.extend(
@@ -248,11 +254,11 @@ fn visit_lines(visit: &VisitView, columns: usize, theme: Theme, out: &mut Vec<Li
         Span::raw(format!(
             " {} {} R {} L {} ",
             fit(&spoken(visit.date), 12),
-            fit(visit.attempt.title(), 12),
-            fit(&eye(distance.right), 10),
-            fit(&eye(distance.left), 10)
+            fit(visit.attempt.word(), 8),
+            fit(&eye(distance.right), 8),
+            fit(&eye(distance.left), 8)
         )),
-        Span::styled(fit(&word, 26), style),
+        Span::styled(fit(&word, 23), style),
         Span::raw(cut(
             &format!(
                 "{}, {}{}",
@@ -260,7 +266,7 @@ fn visit_lines(visit: &VisitView, columns: usize, theme: Theme, out: &mut Vec<Li
                 safe(&visit.station),
                 if visit.late { ", entered late" } else { "" }
             ),
-            columns.saturating_sub(78),
+            columns.saturating_sub(61),
         )),
     ]));
     let other: Vec<String> = visit

@@ -527,7 +527,7 @@ impl Day {
     /// Draws list and bench; returns where the cursor belongs.
     pub fn draw(&self, frame: &mut Frame<'_>, area: Rect, session: &Session) -> Position {
         let theme = session.theme;
-        let list_width = (area.width * 3 / 10).clamp(24.min(area.width), 44);
+        let list_width = (area.width * 3 / 10).clamp(26.min(area.width), 44);
         let list = Rect {
             width: list_width,
             ..area

@@ -103,9 +103,9 @@ impl Days {
                 let text = format!(
                     "{} {} {} {} {today}",
                     fit(&spoken(day.date), 13),
-                    fit(&safe(&day.site_name), 26),
-                    fit(&safe(&day.protocol), 16),
-                    fit(day.method.title(), 20),
+                    fit(&safe(&day.site_name), 22),
+                    fit(&safe(&day.protocol), 14),
+                    fit(day.method.title(), 18),
                 );
                 let style = if i == self.at {
                     theme.selected()
@@ -114,7 +114,7 @@ impl Days {
                 };
                 lines.push(Line::from(vec![
                     Span::raw(if i == self.at { "▸ " } else { "  " }),
-                    Span::styled(cut(&text, columns.saturating_sub(3)), style),
+                    Span::styled(cut(text.trim_end(), columns.saturating_sub(3)), style),
                 ]));
             }
         }
@@ -127,7 +127,7 @@ fn header() -> String {
     format!(
         "{} {} {} chart",
         fit("date", 13),
-        fit("site", 26),
-        fit("protocol", 16)
+        fit("site", 22),
+        fit("protocol", 14)
     )
 }

@@ -40,7 +40,7 @@ pub fn session(
         today: desk.today(),
         library: desk.library(),
         theme: Theme::new(color),
-        new_id: Uuid::now_v7,
+        new_id: actions::new_visit_id,
         now_ms,
         offset_minutes,
     };

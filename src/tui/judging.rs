@@ -4,7 +4,7 @@
 use chrono::NaiveDate;
 use uuid::Uuid;
 
-pub use crate::actions::{CAUTIONS, Library, PassLine, bench_fields, explain, pass_line_for};
+pub use crate::actions::{CAUTIONS, Library, PassLine, bench_fields, explain, pass_line_for, show};
 
 use crate::actions::{self, DayChild, DayInfo};
 use crate::domain::codes::Attempt;
@@ -56,16 +56,27 @@ fn without_protocol(day: &DayInfo) -> Outcome {
     }
 }
 
-/// Returns every rule set and protocol as (id, lines).
-pub fn rule_pages(library: &Library) -> Vec<(String, Vec<String>)> {
-    let sets = library.rule_sets().map(|set| set.id.to_string());
-    let protocols = library.protocols().map(|protocol| protocol.id.to_string());
-    sets.chain(protocols)
-        .filter_map(|id| {
-            let lines = actions::rulebook::show(library, &id).ok()?;
-            Some((id, lines))
-        })
-        .collect()
+/// A page of the Rules place.
+#[derive(Debug)]
+pub enum RulePage {
+    /// A rule set as a table.
+    Sheet(Box<show::RuleSheet>),
+    /// A protocol in lines.
+    Lines(Vec<String>),
+}
+
+/// Returns every rule set and protocol with its id.
+pub fn rule_pages(library: &Library) -> Vec<(String, RulePage)> {
+    let sets = library.rule_sets().map(|set| {
+        (
+            set.id.to_string(),
+            RulePage::Sheet(Box::new(show::sheet(set))),
+        )
+    });
+    let protocols = library
+        .protocols()
+        .map(|p| (p.id.to_string(), RulePage::Lines(show::protocol_lines(p))));
+    sets.chain(protocols).collect()
 }
 
 /// Returns the ids of the protocols.

@@ -8,7 +8,7 @@ use ratatui::widgets::Paragraph;
 
 use crate::domain::codes::SignKind;
 use crate::tui::prompt::{Ask, Body, Prompt};
-use crate::tui::text::{cut, fit, safe, width, wrap};
+use crate::tui::text::{cut, fit, safe, width, wrap_under};
 use crate::tui::theme::Theme;
 
 /// Returns how many rows a question takes with its heading.
@@ -21,7 +21,7 @@ pub fn height(prompt: &Prompt, columns: u16) -> u16 {
         Body::Page(p) => p
             .lines
             .iter()
-            .map(|l| wrap(l, usize::from(columns).saturating_sub(2)).len())
+            .map(|l| wrap_under(l, usize::from(columns).saturating_sub(2)).len())
             .sum(),
     };
     (rows + 1).min(200) as u16
@@ -209,7 +209,7 @@ pub fn draw(frame: &mut Frame<'_>, area: Rect, prompt: &Prompt, theme: Theme) ->
             let all: Vec<String> = page
                 .lines
                 .iter()
-                .flat_map(|l| wrap(l, columns.saturating_sub(2)))
+                .flat_map(|l| wrap_under(l, columns.saturating_sub(2)))
                 .collect();
             let top = page.top.min(all.len().saturating_sub(room));
             let more = all.len() > top + room;

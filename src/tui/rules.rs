@@ -2,18 +2,18 @@
 
 use ratatui::Frame;
 use ratatui::layout::{Position, Rect};
+use ratatui::style::Style;
 use ratatui::text::Line;
 use ratatui::widgets::Paragraph;
 
 use crate::tui::app::Session;
-use crate::tui::judging::{Library, rule_pages};
-use crate::tui::text::{cut, safe, wrap};
+use crate::tui::judging::{Library, RulePage, rule_pages, show::RuleSheet};
+use crate::tui::text::{cut, fit, safe, wrap, wrap_under};
 
 /// The list of rule sets with their sheets.
 #[derive(Debug)]
 pub struct Rules {
-    /// (id, lines of the sheet).
-    pages: Vec<(String, Vec<String>)>,
+    pages: Vec<(String, RulePage)>,
     at: usize,
     top: usize,
 }
@@ -39,11 +39,7 @@ impl Rules {
 
     /// Scrolls the sheet.
     pub fn scroll(&mut self, by: isize) {
-        let last = self
-            .pages
-            .get(self.at)
-            .map_or(0, |p| p.1.len().saturating_sub(1));
-        self.top = self.top.saturating_add_signed(by).min(last);
+        self.top = self.top.saturating_add_signed(by).min(200);
     }
 
     /// Draws list and sheet.
@@ -71,7 +67,7 @@ impl Rules {
                     if i == self.at {
                         theme.focus()
                     } else {
-                        ratatui::style::Style::new()
+                        Style::new()
                     },
                 )
             })
@@ -97,29 +93,24 @@ impl Rules {
             width: area.width - list_width - rule.width,
             ..area
         };
-        if let Some((_, lines)) = self.pages.get(self.at) {
+        if let Some((_, page)) = self.pages.get(self.at) {
             let columns = usize::from(sheet.width).saturating_sub(2);
+            let lines = match page {
+                RulePage::Sheet(sheet) => sheet_lines(sheet, columns),
+                RulePage::Lines(lines) => lines
+                    .iter()
+                    .flat_map(|l| wrap_under(&safe(l), columns))
+                    .collect(),
+            };
+            let top = self.top.min(lines.len().saturating_sub(rows));
             let text: Vec<Line<'_>> = lines
                 .iter()
-                .flat_map(|l| {
-                    if l.starts_with("  ") {
-                        vec![cut(&safe(l), columns)]
-                    } else {
-                        wrap(&safe(l), columns)
-                    }
-                })
-                .skip(self.top)
-                .take(rows)
                 .enumerate()
+                .skip(top)
+                .take(rows)
                 .map(|(i, l)| {
-                    Line::styled(
-                        format!(" {l}"),
-                        if i + self.top == 0 {
-                            theme.strong()
-                        } else {
-                            ratatui::style::Style::new()
-                        },
-                    )
+                    let style = if i == 0 { theme.strong() } else { Style::new() };
+                    Line::styled(format!(" {l}"), style)
                 })
                 .collect();
             frame.render_widget(Paragraph::new(text), sheet);
@@ -129,4 +120,54 @@ impl Rules {
             area.y + (self.at - top).min(rows.saturating_sub(1)) as u16,
         )
     }
+}
+
+/// Sets a rule set as a table: one column a band, one row a finding.
+fn sheet_lines(sheet: &RuleSheet, columns: usize) -> Vec<String> {
+    let mut out = vec![safe(&sheet.title)];
+    out.push(format!("{}  {}", safe(&sheet.id), safe(&sheet.edition)));
+    if !sheet.approval.is_empty() {
+        out.push(safe(&sheet.approval));
+    }
+    out.push(String::new());
+    let bands = sheet.columns.len().max(1);
+    let label = (columns / 3).clamp(18.min(columns), 40);
+    let band = (columns.saturating_sub(label) / bands)
+        .saturating_sub(1)
+        .max(6);
+    let mut row = |what: &str, cells: &[String]| {
+        let mut parts = vec![wrap(&safe(what), label.saturating_sub(1))];
+        parts.extend(cells.iter().map(|c| wrap(&safe(c), band.saturating_sub(1))));
+        let height = parts.iter().map(Vec::len).max().unwrap_or(0);
+        for i in 0..height {
+            let mut line = String::new();
+            for (at, part) in parts.iter().enumerate() {
+                let wide = if at == 0 { label } else { band + 1 };
+                line.push_str(&fit(part.get(i).map_or("", String::as_str), wide));
+            }
+            out.push(line.trim_end().to_owned());
+        }
+    };
+    row("refer when", &sheet.columns);
+    for (finding, cells) in &sheet.rows {
+        row(finding, cells);
+    }
+    out.push(String::new());
+    if !sheet.line_credit.is_empty() {
+        out.extend(wrap(
+            &format!("Line credit: {}", safe(&sheet.line_credit)),
+            columns,
+        ));
+    }
+    for (heading, lines) in [("Sources", &sheet.sources), ("Notes", &sheet.notes)] {
+        if lines.is_empty() {
+            continue;
+        }
+        out.push(String::new());
+        out.push(heading.to_owned());
+        for line in lines {
+            out.extend(wrap_under(&format!("- {}", safe(line)), columns));
+        }
+    }
+    out
 }

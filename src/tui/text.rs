@@ -57,18 +57,14 @@ pub fn wrap(text: &str, columns: usize) -> Vec<String> {
     let mut lines = Vec::new();
     for paragraph in text.split('\n') {
         let mut line = String::new();
+        let mut begun = false;
         for word in paragraph.split(' ') {
-            let room = columns.saturating_sub(line.width() + usize::from(!line.is_empty()));
-            if word.width() > room && !line.is_empty() {
+            if begun && line.width() + 1 + word.width() > columns {
                 lines.push(std::mem::take(&mut line));
-            }
-            if !line.is_empty() {
+            } else if begun {
                 line.push(' ');
             }
-            if word.width() <= columns {
-                line.push_str(word);
-                continue;
-            }
+            begun = true;
             for grapheme in word.graphemes(true) {
                 if line.width() + grapheme.width() > columns {
                     lines.push(std::mem::take(&mut line));
@@ -79,6 +75,37 @@ pub fn wrap(text: &str, columns: usize) -> Vec<String> {
         lines.push(line);
     }
     lines
+}
+
+/// Returns the text in lines, those after the first set in under what follows its label: after the
+/// first gap of two blanks, or after `- `.
+pub fn wrap_under(text: &str, columns: usize) -> Vec<String> {
+    let lead = text.len() - text.trim_start().len();
+    let body = &text[lead..];
+    let label = match body.find("  ") {
+        Some(gap) if !body.is_empty() => {
+            let after = body[gap..].len() - body[gap..].trim_start().len();
+            width(&body[..gap]) + after
+        }
+        _ if body.starts_with("- ") => 2,
+        _ => 0,
+    };
+    let indent = (lead + label).min(columns / 2);
+    let first = wrap(text, columns);
+    if first.len() <= 1 || indent == 0 {
+        return first;
+    }
+    let Some(head) = first.first().cloned() else {
+        return first;
+    };
+    let rest = text[head.len().min(text.len())..].trim_start();
+    let mut out = vec![head];
+    out.extend(
+        wrap(rest, columns - indent)
+            .into_iter()
+            .map(|line| format!("{}{line}", " ".repeat(indent))),
+    );
+    out
 }
 
 /// Returns `Family, Given`, safe to print.
@@ -140,6 +167,15 @@ mod tests {
     fn lines_break_at_spaces_and_inside_long_words() {
         assert_eq!(wrap("two steps apart", 9), ["two steps", "apart"]);
         assert_eq!(wrap("abcdefgh", 3), ["abc", "def", "gh"]);
+    }
+
+    #[test]
+    fn a_line_goes_on_under_what_follows_its_label() {
+        assert_eq!(
+            wrap_under("  Enter   takes the value", 16),
+            ["  Enter   takes", "          the", "          value"]
+        );
+        assert_eq!(wrap_under("- one two", 6), ["- one", "  two"]);
     }
 
     #[test]

@@ -49,6 +49,7 @@ impl App {
             && let Ok(day) = &mut self.day
             && let Some(done) = day.scanned(&self.session)
         {
+            self.notice = None;
             return self.done(done);
         }
         if let Ok(day) = &mut self.day {

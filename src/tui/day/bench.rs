@@ -1,17 +1,19 @@
 //! The bench: one child, the fields that the protocol asks for, and what they come to.
 
+mod edit;
+
 use std::sync::Arc;
 
 use uuid::Uuid;
 
 use crate::actions::{DayChild, DayInfo, SignRequest, VisitView};
-use crate::domain::acuity::{Line, Notation, Step};
-use crate::domain::codes::{AcuityMethod, Correction, Status};
+use crate::domain::acuity::Notation;
+use crate::domain::codes::{Correction, Status};
 use crate::domain::field::Field;
 use crate::domain::outcome::{Outcome, Urgency};
 use crate::domain::readings::{ReadingContext, Readings};
 use crate::tui::app::Session;
-use crate::tui::day::kind::{self, AcuityOf, Kind};
+use crate::tui::day::kind::{self, Kind};
 use crate::tui::judging::{self, Draft, Library, PassLine};
 
 /// What a field holds.
@@ -61,7 +63,8 @@ const INSTRUMENT: [Field; 8] = [
     Field::AxisLeft,
 ];
 
-type Raws = Vec<(Field, String)>;
+/// Fields with what was typed into them.
+pub(super) type Raws = Vec<(Field, String)>;
 
 /// One child on the bench.
 #[derive(Debug)]
@@ -250,306 +253,6 @@ impl Bench {
         self.remember();
         self.raws = raws;
         self.judge();
-    }
-
-    // --- editing -----------------------------------------------------------------------------
-
-    fn remember(&mut self) {
-        self.undo.push((self.raws.clone(), self.at));
-        if self.undo.len() > 200 {
-            self.undo.remove(0);
-        }
-    }
-
-    /// Undoes the last edit; false when there is none.
-    pub fn undo(&mut self) -> bool {
-        let Some((raws, at)) = self.undo.pop() else {
-            return false;
-        };
-        self.raws = raws;
-        self.at = at;
-        self.judge();
-        true
-    }
-
-    /// Returns what the bench holds now.
-    pub fn checkpoint(&self) -> Checkpoint {
-        Checkpoint {
-            child_id: self.child.child_id.clone(),
-            raws: self.raws.clone(),
-            at: self.at,
-            undo: self.undo.len(),
-        }
-    }
-
-    /// Goes back to what the bench held then.
-    pub fn restore(&mut self, checkpoint: Checkpoint) {
-        if checkpoint.child_id == self.child.child_id && !self.is_signed() {
-            self.raws = checkpoint.raws;
-            self.at = checkpoint.at;
-            self.undo.truncate(checkpoint.undo);
-            self.judge();
-        }
-    }
-
-    /// Puts a text into a field as one edit.
-    pub fn put(&mut self, field: Field, text: &str) {
-        self.remember();
-        self.write(field, text);
-        self.judge();
-    }
-
-    fn write(&mut self, field: Field, text: &str) {
-        match self.raws.iter_mut().find(|(f, _)| *f == field) {
-            Some((_, raw)) => text.clone_into(raw),
-            None => self.raws.push((field, text.to_owned())),
-        }
-    }
-
-    /// Types a character; says whether it changed anything.
-    pub fn type_char(&mut self, c: char) -> bool {
-        let Some(field) = self.field() else {
-            return self.type_on_sign_line(c);
-        };
-        match kind::kind(field) {
-            Kind::Choice(choices) => {
-                let Some(choice) = choices
-                    .iter()
-                    .find(|(k, _, _)| *k == c.to_ascii_lowercase())
-                else {
-                    return false;
-                };
-                self.put(field, choice.1);
-                self.advance();
-                true
-            }
-            Kind::List if c.eq_ignore_ascii_case(&'n') => {
-                self.put(field, "none");
-                self.advance();
-                true
-            }
-            Kind::List => false,
-            Kind::Acuity | Kind::Text => {
-                if self.raw(field).is_empty() && self.critical_key(field, c) {
-                    return true;
-                }
-                self.insert(&c.to_string());
-                true
-            }
-        }
-    }
-
-    /// Inserts a text at the end of the field, as one edit.
-    pub fn insert(&mut self, text: &str) {
-        let Some(field) = self.field() else {
-            return;
-        };
-        if matches!(kind::kind(field), Kind::Acuity | Kind::Text) {
-            let clean: String = text
-                .chars()
-                .filter(|c| !crate::domain::text::is_unsafe(*c))
-                .take(64)
-                .collect();
-            let joined = format!("{}{clean}", self.raw(field));
-            self.put(field, &joined.chars().take(64).collect::<String>());
-        }
-    }
-
-    /// On a critical-line day `+` and `-` in an empty field say passed and not passed.
-    fn critical_key(&mut self, field: Field, c: char) -> bool {
-        let distance = matches!(field, Field::DistanceRight | Field::DistanceLeft);
-        let (true, AcuityMethod::CriticalLine, Some(pass)) =
-            (distance, self.given.day.method, &self.pass_line)
-        else {
-            return false;
-        };
-        let text = match c {
-            '+' => format!(">={}", pass.line),
-            '-' => format!("<{}", pass.line),
-            _ => return false,
-        };
-        self.put(field, &text);
-        true
-    }
-
-    /// On the line that signs, the offered choices have their keys.
-    fn type_on_sign_line(&mut self, c: char) -> bool {
-        let c = c.to_ascii_lowercase();
-        if c == 'n' && self.path.contains(&Field::Signs) && self.raw(Field::Signs).is_empty() {
-            self.put(Field::Signs, "none");
-            return true;
-        }
-        if self.path.contains(&Field::PlusLens)
-            && let Kind::Choice(choices) = kind::kind(Field::PlusLens)
-            && let Some(choice) = choices.iter().find(|(k, _, _)| *k == c)
-        {
-            self.put(Field::PlusLens, choice.1);
-            return true;
-        }
-        false
-    }
-
-    /// Erases the last character, or a chosen value; on the line that signs, the status.
-    pub fn erase(&mut self) {
-        let Some(field) = self.field() else {
-            if !self.raw(Field::Status).is_empty() {
-                self.put(Field::Status, "");
-            }
-            return;
-        };
-        if self.raw(field).is_empty() {
-            return;
-        }
-        let text = match kind::kind(field) {
-            Kind::Acuity | Kind::Text if !self.raw(field).starts_with("NT:") => {
-                let mut raw = self.raw(field).to_owned();
-                raw.pop();
-                raw
-            }
-            _ => String::new(),
-        };
-        self.put(field, &text);
-    }
-
-    /// Empties the field.
-    pub fn clear_field(&mut self) {
-        if let Some(field) = self.field()
-            && !self.raw(field).is_empty()
-        {
-            self.put(field, "");
-        }
-    }
-
-    /// Moves along the ladder or the choices: `better` is up.
-    pub fn step(&mut self, better: bool) {
-        let Some(field) = self.field() else {
-            if better {
-                self.back();
-            }
-            return;
-        };
-        match kind::kind(field) {
-            Kind::Acuity => {
-                let step = self.ladder_step(field, better);
-                let line = Line::at(step, self.given.bare);
-                self.put(field, &line.to_string());
-            }
-            Kind::Choice(choices) => {
-                let at = choices
-                    .iter()
-                    .position(|(_, word, _)| *word == self.raw(field));
-                let next = match (at, better) {
-                    (None, true) => choices.len() - 1,
-                    (None, false) => 0,
-                    (Some(i), true) => i.saturating_sub(1),
-                    (Some(i), false) => (i + 1).min(choices.len() - 1),
-                };
-                self.put(field, choices[next].1);
-            }
-            Kind::List | Kind::Text => {
-                if better {
-                    self.back();
-                } else {
-                    self.forward();
-                }
-            }
-        }
-    }
-
-    /// The first arrow starts from the pass line: down stands on it, up on the line above it.
-    fn ladder_step(&self, field: Field, better: bool) -> Step {
-        let here = match self.state(field) {
-            State::Valid { .. } => self
-                .readings
-                .acuity_of(field)
-                .and_then(|r| r.acuity()?.line()),
-            _ => None,
-        };
-        let step = if let Some(line) = here {
-            line.step().0 + if better { -1 } else { 1 }
-        } else {
-            let pass = self.pass_line.as_ref().map_or(0, |p| p.line.step().0);
-            if better { pass - 1 } else { pass }
-        };
-        Step(step.clamp(Step::FINEST.0, 10))
-    }
-
-    /// Swaps right and left acuity.
-    pub fn swap(&mut self) {
-        self.remember();
-        for (right, left) in [
-            (Field::DistanceRight, Field::DistanceLeft),
-            (Field::NearRight, Field::NearLeft),
-        ] {
-            let (r, l) = (self.raw(right).to_owned(), self.raw(left).to_owned());
-            if !(r.is_empty() && l.is_empty()) {
-                self.write(right, &l);
-                self.write(left, &r);
-            }
-        }
-        self.judge();
-    }
-
-    // --- moving ------------------------------------------------------------------------------
-
-    /// Goes where Enter leads after the field that has the focus.
-    pub fn advance(&mut self) {
-        self.canonical();
-        self.at = match self.at {
-            Spot::Sign => Spot::Sign,
-            Spot::Field(i) if i == 0 || self.is_main(i) => (i + 1..self.path.len())
-                .find(|j| self.is_main(*j))
-                .map_or(Spot::Sign, Spot::Field),
-            Spot::Field(i) if i + 1 < self.path.len() => Spot::Field(i + 1),
-            Spot::Field(_) => Spot::Sign,
-        };
-    }
-
-    /// Goes to the next field of the path.
-    pub fn forward(&mut self) {
-        self.canonical();
-        self.at = match self.at {
-            Spot::Field(i) if i + 1 < self.path.len() => Spot::Field(i + 1),
-            Spot::Field(_) => Spot::Sign,
-            Spot::Sign => Spot::Field(0),
-        };
-    }
-
-    /// Goes to the field before.
-    pub fn back(&mut self) {
-        self.canonical();
-        self.at = match self.at {
-            Spot::Field(0) => Spot::Sign,
-            Spot::Field(i) => Spot::Field(i - 1),
-            Spot::Sign => Spot::Field(self.path.len().saturating_sub(1)),
-        };
-    }
-
-    /// Goes to the field of the other eye: the right eye is on the left-hand side.
-    pub fn across(&mut self, to_left_eye: bool) {
-        let Some((right, left)) = self.field().and_then(kind::pair) else {
-            return;
-        };
-        self.canonical();
-        self.go_to(if to_left_eye { left } else { right });
-    }
-
-    /// Puts the focus into a field of the path.
-    pub fn go_to(&mut self, field: Field) {
-        if let Some(i) = self.path.iter().position(|f| *f == field) {
-            self.at = Spot::Field(i);
-        }
-    }
-
-    /// Writes a valid field as it was understood.
-    fn canonical(&mut self) {
-        if let Some(field) = self.field()
-            && matches!(self.state(field), State::Valid { .. })
-            && let Some(text) = self.readings.get(field)
-        {
-            self.write(field, &text);
-            self.judge();
-        }
     }
 
     // --- judging -----------------------------------------------------------------------------

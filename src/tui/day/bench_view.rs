@@ -379,11 +379,9 @@ fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, ratat
         State::Invalid { .. } => (format!("{} ?", safe(raw)), theme.error()),
         State::Empty => match field {
             Field::CorrectionWorn => match (bench.roster_correction(), bench.child.wears_glasses) {
-                (Some(Correction::None), _) => {
-                    ("owns no glasses, says the roster".into(), focus(plain))
-                }
+                (Some(Correction::None), _) => ("owns no glasses (roster)".into(), focus(plain)),
                 (_, Some(true)) => (
-                    "owns glasses, says the roster: worn today?".into(),
+                    "owns glasses (roster): worn today?".into(),
                     focus(theme.attention()),
                 ),
                 _ => ("not known: ask".into(), focus(theme.attention())),

@@ -235,14 +235,14 @@ impl Hands {
 
     /// Asserts that the screen shows a text.
     #[track_caller]
-    pub fn sees(&self, text: &str) -> &Hands {
+    pub fn sees(&mut self, text: &str) -> &mut Hands {
         let screen = self.screen_at(120, 36);
         assert!(screen.contains(text), "not on the screen: {text}\n{screen}");
         self
     }
 
     #[track_caller]
-    pub fn misses(&self, text: &str) -> &Hands {
+    pub fn misses(&mut self, text: &str) -> &mut Hands {
         let screen = self.screen_at(120, 36);
         assert!(!screen.contains(text), "on the screen: {text}\n{screen}");
         self
