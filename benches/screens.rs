@@ -30,7 +30,9 @@ impl Hands {
         self.app.session.now_ms += 150;
         let start = Instant::now();
         let effects = self.app.update(Message::Key(key));
-        self.terminal.draw(|frame| self.app.draw(frame)).expect("drawn");
+        self.terminal
+            .draw(|frame| self.app.draw(frame))
+            .expect("drawn");
         self.frames.push(start.elapsed());
         self.carry_out(effects);
     }
@@ -65,7 +67,10 @@ impl Hands {
 }
 
 fn main() {
-    let n: usize = std::env::args().skip(1).find_map(|a| a.parse().ok()).unwrap_or(100_000);
+    let n: usize = std::env::args()
+        .skip(1)
+        .find_map(|a| a.parse().ok())
+        .unwrap_or(100_000);
     let folder = tempfile::TempDir::new_in(".").expect("a folder on this disk");
     let desk = desk(&folder.path().join("store"), n);
     let start = Instant::now();
@@ -78,11 +83,17 @@ fn main() {
         frames: Vec::new(),
     };
     hands.carry_out(first);
-    println!("{n} children; start to the day's queue {:.2?}", start.elapsed());
+    println!(
+        "{n} children; start to the day's queue {:.2?}",
+        start.elapsed()
+    );
 
     for _ in 0..500 {
         let start = Instant::now();
-        hands.terminal.draw(|frame| hands.app.draw(frame)).expect("drawn");
+        hands
+            .terminal
+            .draw(|frame| hands.app.draw(frame))
+            .expect("drawn");
         hands.frames.push(start.elapsed());
     }
     hands.report("the same screen drawn again");
@@ -117,7 +128,10 @@ fn main() {
 
 fn desk(dir: &std::path::Path, n: usize) -> Desk {
     let date = |text: &str| -> NaiveDate { text.parse().expect("a date") };
-    let options = DeskOptions { today: Some(date("2026-10-14")), ..DeskOptions::default() };
+    let options = DeskOptions {
+        today: Some(date("2026-10-14")),
+        ..DeskOptions::default()
+    };
     let new = NewStore {
         programme: "Quillmere".into(),
         station: "east".into(),
@@ -128,10 +142,18 @@ fn desk(dir: &std::path::Path, n: usize) -> Desk {
     let (mut desk, _) = init(dir, new, &options).expect("a store");
     desk.add_screener("JI", "J. Imani").expect("a screener");
     desk.add_site("QE", "Quillmere East").expect("a site");
-    desk.add_term("2026-autumn", "Autumn 2026", date("2026-08-01"), date("2026-12-31"))
-        .expect("a term");
-    let mut csv = String::from("child_id,family_name,given_name,dob,grade,site,class,wears_glasses\n");
-    let families = ["Okafor", "Nguyễn", "Oyelaran", "Petit", "Quiroga", "Rahmani", "Sands", "Tran"];
+    desk.add_term(
+        "2026-autumn",
+        "Autumn 2026",
+        date("2026-08-01"),
+        date("2026-12-31"),
+    )
+    .expect("a term");
+    let mut csv =
+        String::from("child_id,family_name,given_name,dob,grade,site,class,wears_glasses\n");
+    let families = [
+        "Okafor", "Nguyễn", "Oyelaran", "Petit", "Quiroga", "Rahmani", "Sands", "Tran",
+    ];
     for i in 0..n {
         let _ = writeln!(
             csv,
@@ -145,7 +167,9 @@ fn desk(dir: &std::path::Path, n: usize) -> Desk {
             i / 300
         );
     }
-    let plan = desk.plan_roster("roster.csv", csv.as_bytes(), None, None).expect("a plan");
+    let plan = desk
+        .plan_roster("roster.csv", csv.as_bytes(), None, None)
+        .expect("a plan");
     desk.add_roster(&plan).expect("written");
     desk.open_day(NewDay {
         site: "QE".into(),
