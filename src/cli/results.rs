@@ -51,7 +51,7 @@ impl Results {
         let mut desk = if *dry_run {
             open::to_read(global)?
         } else {
-            open::to_write(global)?
+            open::to_sign(global)?
         };
         let day = day.of(&desk)?;
         let plan = desk.plan_results(&name, &bytes, &day)?;
