@@ -1,6 +1,6 @@
 //! `twoline demo`: the program on invented data.
 
-use std::path::PathBuf;
+use std::path::Path;
 
 use clap::Args;
 
@@ -57,7 +57,7 @@ impl Demo {
 }
 
 /// Opens a demo that was made before, at its own latest day.
-fn again(global: &Global, dir: &PathBuf) -> Result<Desk, Failure> {
+fn again(global: &Global, dir: &Path) -> Result<Desk, Failure> {
     let mut desk = Desk::open(dir, &Secret::None, &open::options(global))?;
     let latest = desk.days()?.into_iter().map(|day| day.date).max();
     if let (None, Some(latest)) = (global.today, latest) {

@@ -40,6 +40,15 @@ pub(super) fn say(line: &str) {
     let _ = writeln!(io::stderr().lock(), "{line}");
 }
 
+/// Shows that work goes on, on standard error and only where that is a terminal, until it is done.
+pub(super) fn busy<T>(doing: &'static str, work: impl FnOnce() -> T) -> T {
+    let bar = indicatif::ProgressBar::new_spinner().with_message(doing);
+    bar.enable_steady_tick(std::time::Duration::from_millis(120));
+    let done = work();
+    bar.finish_and_clear();
+    done
+}
+
 /// Asks whether to go on.
 ///
 /// # Errors

@@ -168,6 +168,7 @@ fn results_twice_are_unchanged_and_others_need_a_reason() {
 }
 
 #[test]
+#[allow(clippy::too_many_lines)]
 fn what_is_refused_leaves_the_head_as_it_was() {
     let bench = Bench::on_a_day("us-school", "threshold");
     let head = bench.head();

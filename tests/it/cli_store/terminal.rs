@@ -61,17 +61,17 @@ impl Terminal {
 
     /// Waits until a text that was not waited for yet is on the screen.
     fn until(&mut self, text: &str) {
-        let give_up = Instant::now() + Duration::from_secs(60);
+        let give_up = Instant::now() + Duration::from_mins(1);
         loop {
             if let Some(found) = self.seen[self.at..].find(text) {
                 self.at += found + text.len();
                 return;
             }
             let left = give_up.saturating_duration_since(Instant::now());
-            match self.screen.recv_timeout(left) {
-                Ok(bytes) => self.seen.push_str(&String::from_utf8_lossy(&bytes)),
-                Err(_) => panic!("{text:?} never came; seen: {}", self.seen),
-            }
+            let Ok(bytes) = self.screen.recv_timeout(left) else {
+                panic!("{text:?} never came; seen: {}", self.seen);
+            };
+            self.seen.push_str(&String::from_utf8_lossy(&bytes));
         }
     }
 
