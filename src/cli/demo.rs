@@ -28,6 +28,9 @@ pub(super) struct Demo {
 
 impl Demo {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        if !self.no_screens {
+            screens::needs_terminal()?;
+        }
         let dir = match &global.store {
             Some(dir) => dir.clone(),
             None => open::data_folder()?.join("demo"),

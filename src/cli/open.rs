@@ -65,6 +65,17 @@ pub(super) fn to_read(global: &Global) -> Result<Desk, Failure> {
     Ok(desk)
 }
 
+/// Opens the store for writing, or only for reading while another process writes it.
+pub(super) fn to_write_or_read(global: &Global) -> Result<Desk, Failure> {
+    let (dir, secret) = found(global)?;
+    let options = options(global);
+    Ok(if actions::writer(&dir)?.is_some() {
+        Desk::open_to_read(&dir, &secret, &options)?
+    } else {
+        Desk::open(&dir, &secret, &options)?
+    })
+}
+
 /// Returns what every opening takes from the arguments.
 pub(super) fn options(global: &Global) -> DeskOptions {
     DeskOptions {

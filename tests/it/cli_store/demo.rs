@@ -46,6 +46,9 @@ fn made_opened_again_and_made_anew() {
         "a demo that is there keeps its seed"
     );
 
+    let without = bench.refused(&["demo", "--fresh"]);
+    assert!(without.contains("need a terminal"), "{without}");
+    assert_eq!(bench.head(), head, "no terminal, nothing made anew");
     bench.write("store/mine.txt", "stays");
     let ran = demo(&["--fresh", "--seed", "7", "--today", "2026-11-02"]);
     assert_eq!(ran.code, 0, "{}", ran.err);

@@ -470,6 +470,13 @@ fn a_head_that_is_not_the_stores_fails() {
 }
 
 #[test]
+fn the_key_table_is_the_one_of_the_screens() {
+    let out = Bench::empty().ok(&["keys"]);
+    assert_eq!(out.lines().count(), 1 + twoline::keys::rows().len());
+    assert!(out.starts_with("where "), "{out}");
+}
+
+#[test]
 fn a_reader_that_reads_no_more_is_no_error() {
     let bench = Bench::on_a_day("us-school", "threshold");
     let mut running = bench

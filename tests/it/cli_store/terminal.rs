@@ -75,6 +75,20 @@ impl Terminal {
         }
     }
 
+    /// Waits until a text can be read on the screen, wherever its parts were drawn.
+    fn until_shown(&mut self, text: &str) {
+        let mut screen = vt100::Parser::new(24, 80, 0);
+        screen.process(self.seen.as_bytes());
+        let give_up = Instant::now() + Duration::from_mins(1);
+        while !screen.screen().contents().contains(text) {
+            let left = give_up.saturating_duration_since(Instant::now());
+            let Ok(bytes) = self.screen.recv_timeout(left) else {
+                panic!("{text:?} never came; shown: {}", screen.screen().contents());
+            };
+            screen.process(&bytes);
+        }
+    }
+
     fn type_in(&mut self, text: &str) {
         self.keys.write_all(text.as_bytes()).expect("typed");
         self.keys.flush().expect("typed");
@@ -141,6 +155,22 @@ fn a_store_is_made_and_opened_by_typing() {
     terminal.type_in("nine green\u{3}");
     let (code, seen) = terminal.end();
     assert_eq!(code, 130, "Ctrl-C: {seen}");
+}
+
+#[test]
+fn the_screens_say_who_writes_the_store() {
+    let bench = Bench::on_a_day("us-school", "threshold");
+    let options = twoline::actions::DeskOptions::default();
+    let secret = twoline::actions::Secret::None;
+    let writer =
+        twoline::actions::Desk::open(&bench.path("store"), &secret, &options).expect("the store");
+    let mut terminal = Terminal::run(&bench, &[]);
+    // The screens ask the terminal where its cursor stands.
+    terminal.until("\u{1b}[6n");
+    terminal.type_in("\u{1b}[1;1R");
+    terminal.until_shown(&format!("process {}", std::process::id()));
+    terminal.child.kill().expect("ended");
+    drop(writer);
 }
 
 #[test]
