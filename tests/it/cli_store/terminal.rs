@@ -1,6 +1,7 @@
 //! What is asked on a terminal: passphrase, recovery key, the question before writing, Ctrl-C.
 
 use std::io::{Read, Write};
+use std::num::NonZero;
 use std::sync::mpsc::{Receiver, channel};
 use std::time::{Duration, Instant};
 
@@ -9,6 +10,9 @@ use portable_pty::{Child, CommandBuilder, PtySize, native_pty_system};
 use super::{Bench, ROSTER};
 
 const PASSPHRASE: &str = "nine green kettles sing";
+
+const ROWS: NonZero<u16> = NonZero::new(36).expect("rows");
+const COLUMNS: NonZero<u16> = NonZero::new(120).expect("columns");
 
 /// The program on a terminal of its own.
 struct Terminal {
@@ -24,8 +28,8 @@ struct Terminal {
 impl Terminal {
     fn run(bench: &Bench, args: &[&str]) -> Terminal {
         let size = PtySize {
-            rows: 24,
-            cols: 80,
+            rows: ROWS.get(),
+            cols: COLUMNS.get(),
             pixel_width: 0,
             pixel_height: 0,
         };
@@ -77,7 +81,7 @@ impl Terminal {
 
     /// Waits until a text can be read on the screen, wherever its parts were drawn.
     fn until_shown(&mut self, text: &str) {
-        let mut screen = vt100::Parser::new(24, 80, 0);
+        let mut screen = vt100::Parser::new(ROWS, COLUMNS, 0);
         screen.process(self.seen.as_bytes());
         let give_up = Instant::now() + Duration::from_mins(1);
         while !screen.screen().contents().contains(text) {
