@@ -73,7 +73,7 @@ impl Results {
         if !*yes && !confirmed("Write this?")? {
             return print_lines(&["nothing was written".to_owned()]);
         }
-        busy("writing", || desk.add_results(plan, correct.as_deref()))?;
+        busy("writing", || desk.add_results(&plan, correct.as_deref()))?;
         let head = desk.head()?;
         print_lines(&[format!(
             "saved; store head {} ({} entries)",
