@@ -29,9 +29,12 @@ mod verify;
 
 use std::ffi::OsString;
 use std::path::PathBuf;
+use std::sync::Arc;
+use std::sync::atomic::AtomicBool;
 
 use chrono::NaiveDate;
 use clap::{Args, Parser, Subcommand};
+use signal_hook::consts::SIGINT;
 
 pub use failure::Failure;
 
@@ -120,6 +123,14 @@ pub fn run(args: impl IntoIterator<Item = OsString>) -> Result<(), Failure> {
         Err(text) => return output::print(&text.render().to_string()),
     };
     let global = &cli.global;
+    if !matches!(
+        cli.command,
+        None | Some(Command::Demo(_) | Command::Judge(_))
+    ) {
+        // The screens and judge catch the signal themselves. Nothing is half written whenever it comes.
+        let always = Arc::new(AtomicBool::new(true));
+        signal_hook::flag::register_conditional_shutdown(SIGINT, 130, always)?;
+    }
     match &cli.command {
         None => screens::run(global),
         Some(Command::Demo(args)) => args.run(global),

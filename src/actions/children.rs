@@ -23,7 +23,7 @@ use crate::store::row::{Child, Correction, Enrolment, Reading};
 
 impl Desk {
     /// Adds a child who is not on the roster, under a provisional id that a person matches later.
-    pub fn add_child(&mut self, new: NewChild, day: &DayInfo) -> Result<DayChild> {
+    pub fn add_child(&mut self, new: &NewChild, day: &DayInfo) -> Result<DayChild> {
         for (what, text) in [
             ("family name", &new.family_name),
             ("given name", &new.given_name),
@@ -97,7 +97,7 @@ impl Desk {
             .visits_now(child_id)?
             .into_iter()
             .rfind(|v| v.day() == key);
-        now.map(|now| self.visit_view(self.read().visit_record(now)?))
+        now.map(|now| self.visit_view(&self.read().visit_record(now)?))
             .transpose()
     }
 
@@ -138,7 +138,7 @@ impl Desk {
         }
         let mut visits = Vec::new();
         for visit in history.visits {
-            visits.push(self.visit_view(visit)?);
+            visits.push(self.visit_view(&visit)?);
         }
         visits.sort_by_key(|v| std::cmp::Reverse((v.date, v.attempt, v.entered.utc_ms)));
         let now = history.now;
@@ -155,7 +155,7 @@ impl Desk {
         }))
     }
 
-    fn visit_view(&self, record: VisitRecord) -> Result<VisitView> {
+    fn visit_view(&self, record: &VisitRecord) -> Result<VisitView> {
         let screeners = self.screener_names()?;
         let named = |id: Option<Uuid>| {
             id.and_then(|id| screeners.get(&id).cloned())

@@ -58,14 +58,10 @@ impl Desk {
             today: options.today.unwrap_or_else(clock::today),
             screener: None,
         };
-        match &options.screener {
-            Some(name) => desk.set_screener(name)?,
-            None => {
-                let all = desk.read().screeners()?;
-                if let [only] = &all[..] {
-                    desk.screener = Some(only.clone());
-                }
-            }
+        if let Some(name) = &options.screener {
+            desk.set_screener(name)?;
+        } else if let [only] = &desk.read().screeners()?[..] {
+            desk.screener = Some(only.clone());
         }
         Ok(desk)
     }

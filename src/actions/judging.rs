@@ -21,13 +21,10 @@ pub fn preview(
     readings: &Readings,
 ) -> Option<Outcome> {
     let protocol = library.protocol(&day.protocol)?;
-    let with_history;
-    let readings = if readings.history.is_none() && !child.history.is_empty() {
-        with_history = Readings {
-            history: Some(child.history.clone()),
-            ..readings.clone()
-        };
-        &with_history
+    let completed;
+    let readings = if lacks_what_the_roster_knows(child, readings) {
+        completed = with_roster(child, readings);
+        &completed
     } else {
         readings
     };
@@ -36,6 +33,25 @@ pub fn preview(
         protocol,
         &case(day, child, readings),
     ))
+}
+
+/// Says whether the roster answers something that nobody recorded on the day.
+fn lacks_what_the_roster_knows(child: &DayChild, readings: &Readings) -> bool {
+    (readings.history.is_none() && !child.history.is_empty())
+        || (readings.correction.is_none() && correction_from_roster(child).is_some())
+}
+
+/// Returns the readings with history and glasses as the roster knows them, where the day says
+/// nothing of them.
+fn with_roster(child: &DayChild, readings: &Readings) -> Readings {
+    let mut readings = readings.clone();
+    if readings.history.is_none() && !child.history.is_empty() {
+        readings.history = Some(child.history.clone());
+    }
+    readings.correction = readings
+        .correction
+        .or_else(|| correction_from_roster(child));
+    readings
 }
 
 fn case<'a>(day: &DayInfo, child: &DayChild, readings: &'a Readings) -> Case<'a> {

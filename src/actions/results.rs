@@ -151,7 +151,7 @@ impl Desk {
 
     /// Writes a planned results file, whole or not at all; signed values that differ are corrected
     /// only with a reason.
-    pub fn add_results(&mut self, plan: ResultsPlan, correct: Option<&str>) -> Result<()> {
+    pub fn add_results(&mut self, plan: &ResultsPlan, correct: Option<&str>) -> Result<()> {
         if correct.is_none() && !plan.different.is_empty() {
             return Err(ActionError::bad(format!(
                 "{} visits are signed with other values",

@@ -15,7 +15,7 @@ use crate::store::read::VisitNow;
 impl Desk {
     /// Signs a visit: readings, outcome and, for an emergency, the running line, in one transaction.
     ///
-    /// The same visit with the same readings again is a retry and writes nothing. Another try of a
+    /// The same visit id with the same readings again is a retry and writes nothing. Another try of a
     /// child whose chart was not testable is kept as a second try of the same visit.
     pub fn sign(&mut self, request: SignRequest) -> Result<Signed> {
         let day = self.day_info(request.day)?;
@@ -36,7 +36,7 @@ impl Desk {
             return self.signed(&day, &request.child_id, request.visit);
         };
         let mut tries = self.tries(visit.visit_id)?;
-        if tries.last() == Some(&readings) {
+        if visit.visit_id == request.visit && tries.last() == Some(&readings) {
             return self.signed(&day, &request.child_id, visit.visit_id);
         }
         if !tries.last().is_some_and(Readings::any_eye_not_testable) {

@@ -35,7 +35,7 @@ impl Desk {
     }
 
     /// Enters who was told of an emergency, when and by whom; the running line ends.
-    pub fn urgent_answer(&mut self, answer: UrgentAnswer) -> Result<()> {
+    pub fn urgent_answer(&mut self, answer: &UrgentAnswer) -> Result<()> {
         for (what, text) in [
             ("who was told", &answer.told),
             ("when", &answer.told_at),

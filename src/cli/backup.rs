@@ -4,7 +4,7 @@ use std::path::PathBuf;
 
 use clap::Args;
 
-use super::output::{clean, print_lines};
+use super::output::{busy, clean, print_lines};
 use super::{Failure, Global, open};
 
 /// Copy the store to a new folder and verify the copy
@@ -16,7 +16,8 @@ pub(super) struct Backup {
 
 impl Backup {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
-        let head = open::to_read(global)?.backup(&self.to)?;
+        let desk = open::to_read(global)?;
+        let head = busy("copying and verifying", || desk.backup(&self.to))?;
         print_lines(&[
             format!(
                 "copied to {} and verified",

@@ -6,7 +6,7 @@ use super::output::{clean, print_lines};
 use super::{Failure, Global, open};
 use crate::actions::NewChart;
 use crate::domain::field::Field;
-use crate::domain::readings::{ReadingContext, Readings};
+use crate::domain::readings::{Distance, ReadingContext, Readings};
 
 /// Add charts
 #[derive(Debug, Args)]
@@ -79,6 +79,6 @@ fn millimetres(field: Field, text: &str) -> Result<u32, Failure> {
         .map_err(|e| Failure::bad_input(e.to_string()))?;
     readings
         .chart_distance
-        .map(|distance| distance.millimetres())
+        .map(Distance::millimetres)
         .ok_or_else(|| Failure::bad_input("a chart is made for some distance"))
 }

@@ -28,7 +28,7 @@ pub(super) struct Correct {
 impl Correct {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
         let changes = fields(&self.values)?;
-        let mut desk = open::to_write(global)?;
+        let mut desk = open::to_sign(global)?;
         let visit = visit_of(&desk, &self.entry)?;
         let before = desk.head()?;
         let signed = desk.correct(visit, &changes, &self.reason)?;

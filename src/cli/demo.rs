@@ -1,6 +1,6 @@
 //! `twoline demo`: the program on invented data.
 
-use std::path::PathBuf;
+use std::path::Path;
 
 use clap::Args;
 
@@ -28,6 +28,9 @@ pub(super) struct Demo {
 
 impl Demo {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        if !self.no_screens {
+            screens::needs_terminal()?;
+        }
         let dir = match &global.store {
             Some(dir) => dir.clone(),
             None => open::data_folder()?.join("demo"),
@@ -57,7 +60,7 @@ impl Demo {
 }
 
 /// Opens a demo that was made before, at its own latest day.
-fn again(global: &Global, dir: &PathBuf) -> Result<Desk, Failure> {
+fn again(global: &Global, dir: &Path) -> Result<Desk, Failure> {
     let mut desk = Desk::open(dir, &Secret::None, &open::options(global))?;
     let latest = desk.days()?.into_iter().map(|day| day.date).max();
     if let (None, Some(latest)) = (global.today, latest) {

@@ -70,17 +70,16 @@ impl Init {
 
 /// Returns the chosen passphrase: from the file, or typed twice.
 fn chosen(global: &Global) -> Result<Secret, Failure> {
-    let text = match from_file(global)? {
-        Some(text) => text,
-        None => {
-            let first = ask_hidden("Passphrase, 15 characters or more: ")?;
-            if ask_hidden("The same again: ")? != first {
-                return Err(Failure::bad_input(
-                    "the two are not the same; nothing was made",
-                ));
-            }
-            first
+    let text = if let Some(text) = from_file(global)? {
+        text
+    } else {
+        let first = ask_hidden("Passphrase, 15 characters or more: ")?;
+        if ask_hidden("The same again: ")? != first {
+            return Err(Failure::bad_input(
+                "the two are not the same; nothing was made",
+            ));
         }
+        first
     };
     match Secret::from_file(&text) {
         Secret::Recovery(text) => Ok(Secret::Passphrase(text)),

@@ -35,6 +35,25 @@ pub(super) fn to_write(global: &Global) -> Result<Desk, Failure> {
     Ok(desk)
 }
 
+/// Opens the store for writing what somebody answers for with their name.
+///
+/// # Errors
+/// Exit code 2 when it is not known who records.
+pub(super) fn to_sign(global: &Global) -> Result<Desk, Failure> {
+    let desk = to_write(global)?;
+    if desk.screener().is_some() {
+        return Ok(desk);
+    }
+    let known: Vec<String> = desk.screeners()?.iter().map(|name| clean(name)).collect();
+    Err(
+        Failure::bad_input("it is not known who records").hint(if known.is_empty() {
+            "add yourself: twoline screener add --name NAME --initials XX".to_owned()
+        } else {
+            format!("--screener NAME; known: {}", known.join(", "))
+        }),
+    )
+}
+
 /// Opens the store for reading; when another process writes it, says who.
 pub(super) fn to_read(global: &Global) -> Result<Desk, Failure> {
     let (dir, secret) = found(global)?;
@@ -44,6 +63,17 @@ pub(super) fn to_read(global: &Global) -> Result<Desk, Failure> {
         say(&format!("note: read as it was saved last; {}", clean(&who)));
     }
     Ok(desk)
+}
+
+/// Opens the store for writing, or only for reading while another process writes it.
+pub(super) fn to_write_or_read(global: &Global) -> Result<Desk, Failure> {
+    let (dir, secret) = found(global)?;
+    let options = options(global);
+    Ok(if actions::writer(&dir)?.is_some() {
+        Desk::open_to_read(&dir, &secret, &options)?
+    } else {
+        Desk::open(&dir, &secret, &options)?
+    })
 }
 
 /// Returns what every opening takes from the arguments.

@@ -2,6 +2,8 @@
 
 use std::io::{self, BufRead, ErrorKind, IsTerminal, Write};
 
+use unicode_width::UnicodeWidthStr;
+
 use super::Failure;
 use crate::domain::text::shown;
 
@@ -38,6 +40,15 @@ pub(super) fn say(line: &str) {
     let _ = writeln!(io::stderr().lock(), "{line}");
 }
 
+/// Shows that work goes on, on standard error and only where that is a terminal, until it is done.
+pub(super) fn busy<T>(doing: &'static str, work: impl FnOnce() -> T) -> T {
+    let bar = indicatif::ProgressBar::new_spinner().with_message(doing);
+    bar.enable_steady_tick(std::time::Duration::from_millis(120));
+    let done = work();
+    bar.finish_and_clear();
+    done
+}
+
 /// Asks whether to go on.
 ///
 /// # Errors
@@ -66,9 +77,33 @@ pub(super) fn unless_closed(result: io::Result<()>) -> Result<(), Failure> {
     }
 }
 
+/// Returns a paragraph as lines that fit a narrow terminal; in one line where there is no terminal, so
+/// that what reads it need not put it together again.
+pub(super) fn wrapped(text: &str, indent: &str) -> Vec<String> {
+    let width = if io::stdout().is_terminal() {
+        78
+    } else {
+        usize::MAX
+    };
+    folded(text, indent, width)
+}
+
+fn folded(text: &str, indent: &str, width: usize) -> Vec<String> {
+    let mut lines: Vec<String> = Vec::new();
+    for word in text.split_whitespace() {
+        match lines.last_mut() {
+            Some(line) if line.width() + 1 + word.width() <= width => {
+                line.push(' ');
+                line.push_str(word);
+            }
+            _ => lines.push(format!("{indent}{word}")),
+        }
+    }
+    lines
+}
+
 /// Returns rows of cells as lines with aligned columns.
 pub(super) fn aligned(rows: &[Vec<String>]) -> Vec<String> {
-    use unicode_width::UnicodeWidthStr;
     let columns = rows.iter().map(Vec::len).max().unwrap_or(0);
     let widths: Vec<usize> = (0..columns)
         .map(|at| {
@@ -89,4 +124,30 @@ pub(super) fn aligned(rows: &[Vec<String>]) -> Vec<String> {
             line.trim_end().to_owned()
         })
         .collect()
+}
+
+#[cfg(test)]
+mod tests {
+    use super::{aligned, folded};
+
+    #[test]
+    fn paragraphs_fit_and_lose_no_word() {
+        let text = "right eye 20/50; refers when worse than 20/32; 3 lines short";
+        let lines = folded(text, "  ", 24);
+        assert!(
+            lines.iter().all(|l| l.len() <= 24 && l.starts_with("  ")),
+            "{lines:?}"
+        );
+        let words: Vec<&str> = lines.iter().flat_map(|l| l.split_whitespace()).collect();
+        assert_eq!(words.join(" "), text);
+        assert_eq!(folded(text, "  ", usize::MAX), [format!("  {text}")]);
+        assert!(folded("", "  ", 24).is_empty());
+    }
+
+    #[test]
+    fn columns_stand_below_each_other_in_any_script() {
+        let row = |a: &str, b: &str| vec![a.to_owned(), b.to_owned()];
+        let lines = aligned(&[row("王", "x"), row("abc", "y"), row("", "z")]);
+        assert_eq!(lines, ["王   x", "abc  y", "     z"]);
+    }
 }

@@ -36,7 +36,11 @@ pub(super) struct Record {
 impl Record {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
         let values = fields(&self.values)?;
-        let mut desk = open::to_write(global)?;
+        let mut desk = if self.sign {
+            open::to_sign(global)?
+        } else {
+            open::to_write(global)?
+        };
         let day = self.day.of(&desk)?;
         let child = desk.day_child(&day, &self.child)?;
         let drafts = desk.drafts()?;
@@ -209,13 +213,10 @@ pub(super) fn outcome_lines(outcome: &crate::actions::StoredOutcome) -> Vec<Stri
     lines
 }
 
-/// Returns each sentence of the reasons on a line of its own.
+/// Returns the reasons as a paragraph: a citation holds full stops of its own, so that they cannot be
+/// told apart here.
 fn reason_lines(reasons: &str) -> Vec<String> {
-    reasons
-        .split(". ")
-        .filter(|r| !r.is_empty())
-        .map(|r| format!("  - {r}"))
-        .collect()
+    super::output::wrapped(reasons, "  ")
 }
 
 /// Returns the readings, a line each.

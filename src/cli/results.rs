@@ -4,7 +4,7 @@ use std::path::PathBuf;
 
 use clap::{Args, Subcommand};
 
-use super::output::{confirmed, print_clean, print_lines};
+use super::output::{busy, confirmed, print_clean, print_lines};
 use super::roster::{listed, read};
 use super::values::{WhichDay, title};
 use super::{Failure, Global, open};
@@ -51,7 +51,7 @@ impl Results {
         let mut desk = if *dry_run {
             open::to_read(global)?
         } else {
-            open::to_write(global)?
+            open::to_sign(global)?
         };
         let day = day.of(&desk)?;
         let plan = desk.plan_results(&name, &bytes, &day)?;
@@ -73,7 +73,7 @@ impl Results {
         if !*yes && !confirmed("Write this?")? {
             return print_lines(&["nothing was written".to_owned()]);
         }
-        desk.add_results(plan, correct.as_deref())?;
+        busy("writing", || desk.add_results(&plan, correct.as_deref()))?;
         let head = desk.head()?;
         print_lines(&[format!(
             "saved; store head {} ({} entries)",

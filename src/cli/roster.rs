@@ -4,7 +4,7 @@ use std::path::{Path, PathBuf};
 
 use clap::{Args, Subcommand};
 
-use super::output::{clean, confirmed, print_clean, print_lines};
+use super::output::{busy, clean, confirmed, print_clean, print_lines};
 use super::{Failure, Global, open};
 use crate::actions::RosterPlan;
 use crate::domain::roster::RosterChild;
@@ -65,7 +65,7 @@ impl Roster {
         if !*yes && !confirmed("Write this?")? {
             return print_lines(&["nothing was written".to_owned()]);
         }
-        desk.add_roster(&plan)?;
+        busy("writing", || desk.add_roster(&plan))?;
         let head = desk.head()?;
         print_lines(&[format!(
             "saved; store head {} ({} entries)",

@@ -8,6 +8,7 @@ use crate::domain::age::spoken;
 use crate::domain::outcome::{Answer, DecidedBy, Outcome, OutcomeKind, Reason, RiskKind, Urgency};
 use crate::rules::CAUTIONS;
 
+pub(in crate::rules) use words::act_words;
 pub use words::{basis_words, criterion_words, margin_words, source_words};
 
 /// One row of the whole-reason view.
@@ -73,7 +74,7 @@ pub fn reasons_text(outcome: &Outcome, out: &mut String) {
     let mut signs_said: Vec<&str> = Vec::new();
     for reason in outcome.reasons.iter().filter(|r| r.answer == Answer::Pass) {
         if is_sign(reason) {
-            if signs_said.contains(&&*reason.rule_set) {
+            if signs_said.contains(&&*reason.rule_set) || sign_seen(outcome, &reason.rule_set) {
                 continue;
             }
             signs_said.push(&reason.rule_set);
@@ -87,14 +88,30 @@ pub fn reasons_text(outcome: &Outcome, out: &mut String) {
     }
 }
 
+/// Returns what refers, the sooner first, and what decided before the rest.
 fn referring(outcome: &Outcome) -> impl Iterator<Item = &Reason> {
     let mut list: Vec<&Reason> = outcome
         .reasons
         .iter()
         .filter(|r| r.answer == Answer::Refer)
         .collect();
-    list.sort_by_key(|r| r.urgency);
+    list.sort_by_key(|r| {
+        let decided = match outcome.decided_by {
+            DecidedBy::DirectReferral => is_sign(r),
+            DecidedBy::ReferAtOnce => r.rule_set == outcome.rule_set,
+            _ => false,
+        };
+        (r.urgency, !decided)
+    });
     list.into_iter()
+}
+
+/// Says whether a sign of this set was seen, so that "none seen" would be wrong.
+fn sign_seen(outcome: &Outcome, rule_set: &str) -> bool {
+    outcome
+        .reasons
+        .iter()
+        .any(|r| is_sign(r) && r.answer == Answer::Refer && &*r.rule_set == rule_set)
 }
 
 fn refer_sentence(reason: &Reason, out: &mut String) {
@@ -102,7 +119,7 @@ fn refer_sentence(reason: &Reason, out: &mut String) {
     if is_sign(reason) {
         let _ = write!(out, "; {}", reason.urgency.title());
         if let Some(days) = reason.act_within_days {
-            let _ = write!(out, ", act within {days} days");
+            let _ = write!(out, ", {}", act_words(days));
         }
     } else {
         let _ = write!(out, "; refers when {}", reason.threshold);
@@ -118,7 +135,7 @@ fn refer_sentence(reason: &Reason, out: &mut String) {
 fn pass_words(reason: &Reason, out: &mut String) {
     let finding = criterion_words(&reason.criterion);
     if is_sign(reason) {
-        let _ = write!(out, "{}: none seen", reason.rule_set.replace('-', " "));
+        let _ = write!(out, "{}: none seen", words::set_words(&reason.rule_set));
     } else if finding.starts_with("line") {
         out.push_str("both lines pass");
     } else if finding.starts_with("near") {
@@ -168,15 +185,22 @@ pub fn short(outcome: &Outcome) -> String {
                 if !is_sign(reason) {
                     let _ = write!(out, "; refers when {}", reason.threshold);
                 }
-                let _ = write!(out, ". {}.", source_words(&reason.source));
+                let _ = write!(
+                    out,
+                    ". {} ({}).",
+                    capital(&words::set_words(&reason.rule_set)),
+                    reason.source.basis.title()
+                );
                 if !outcome.risks.is_empty() {
                     let _ = write!(out, " Amblyopia risk: {}.", risk_words(&outcome.risks));
                 }
-                if !reason.would_change.is_empty() {
+                // With several rules broken no one of these changes would be enough.
+                if referring(outcome).count() == 1 && !reason.would_change.is_empty() {
                     let _ = write!(out, " {}.", capital(&reason.would_change));
                 }
             } else if outcome.kind == OutcomeKind::Incomplete {
-                let missing: Vec<String> = missing_words(outcome);
+                let mut missing = outcome.qualifiers.clone();
+                missing.extend(missing_words(outcome));
                 let _ = write!(out, "Not known: {}.", missing.join("; "));
             } else {
                 let mut passes: Vec<String> = Vec::new();
@@ -239,7 +263,7 @@ pub fn headline(outcome: &Outcome) -> String {
             if let Some(by) = outcome.act_by {
                 let _ = write!(out, ", act by {}", spoken(by));
             } else if let Some(days) = outcome.act_within_days {
-                let _ = write!(out, ", act within {days} days");
+                let _ = write!(out, ", {}", act_words(days));
             }
         }
         OutcomeKind::Rescreen => {
@@ -279,7 +303,7 @@ pub fn table(outcome: &Outcome) -> Vec<ReasonLine> {
     for reason in reasons {
         let collapsed = is_sign(reason) && reason.answer == Answer::Pass;
         if collapsed {
-            if signs_said.contains(&&*reason.rule_set) {
+            if signs_said.contains(&&*reason.rule_set) || sign_seen(outcome, &reason.rule_set) {
                 continue;
             }
             signs_said.push(&reason.rule_set);
@@ -293,7 +317,7 @@ pub fn table(outcome: &Outcome) -> Vec<ReasonLine> {
         }
         rows.push(ReasonLine {
             criterion: if collapsed {
-                reason.rule_set.replace('-', " ")
+                words::set_words(&reason.rule_set)
             } else {
                 criterion_words(&reason.criterion)
             },
@@ -351,8 +375,10 @@ pub fn whole(outcome: &Outcome) -> Vec<String> {
             out.push("Amblyopia can come from anisometropia without any strabismus.".to_owned());
         }
     }
+    let several = referring(outcome).count() > 1;
     for reason in referring(outcome).filter(|r| !r.would_change.is_empty()) {
-        out.push(format!("Would change it  {}", reason.would_change));
+        let alone = if several { "All of" } else { "Would change it" };
+        out.push(format!("{alone:<15}  {}", reason.would_change));
     }
     for note in &outcome.protocol_notes {
         out.push(format!("Protocol    {note}"));

@@ -3,7 +3,7 @@
 use std::fmt::Write;
 
 use crate::domain::outcome::{Basis, Source};
-use crate::rules::explain::{basis_words, criterion_words};
+use crate::rules::explain::{act_words, basis_words, criterion_words};
 use crate::rules::{Applies, Kind, Measure, Protocol, RuleSet, threshold};
 
 /// A rule set as a table: bands across, findings down.
@@ -88,7 +88,7 @@ pub fn sheet(set: &RuleSet) -> RuleSheet {
         if cell == "present" {
             criterion.urgency.title().clone_into(&mut cell);
             if let Some(days) = criterion.act_within_days {
-                let _ = write!(cell, ", act within {days} days");
+                let _ = write!(cell, ", {}", act_words(days));
             }
         }
         let row = rows

@@ -56,9 +56,10 @@ impl std::fmt::Debug for Secret {
 impl Secret {
     /// Makes a secret of what was typed: a recovery key when it is one, else a passphrase.
     pub fn typed(text: &str) -> Secret {
+        let typed = Zeroizing::new(text.to_owned());
         match recovery::normal(text) {
-            Some(key) => Secret::Recovery(key),
-            None => Secret::Passphrase(Zeroizing::new(text.to_owned())),
+            Some(_) => Secret::Recovery(typed),
+            None => Secret::Passphrase(typed),
         }
     }
 
@@ -325,31 +326,41 @@ impl KeyFile {
     }
 
     pub(super) fn unlock(&self, secret: &Secret) -> Result<RawKey> {
-        let (kind, text, words) = match secret {
-            Secret::Passphrase(text) => ("passphrase", normal_passphrase(text), "passphrase"),
-            Secret::Recovery(text) => (
-                "recovery",
-                recovery::normal(text).ok_or_else(|| Error::wrong_secret("recovery key"))?,
-                "recovery key",
-            ),
-            Secret::None => ("none", Zeroizing::new(String::new()), "empty passphrase"),
-        };
         // An unprotected store opens whatever is typed, so that a demo never asks.
         if let Some(open) = self.slot.iter().find(|slot| slot.kind == "none") {
             let key = Zeroizing::new(unhex(&open.key).ok_or_else(|| broken("a slot is not hex"))?);
             return raw(&key);
         }
-        for slot in self.slot.iter().filter(|slot| slot.kind == kind) {
-            if let Some(key) = self.unwrap_slot(slot, &text)? {
-                return Ok(key);
+        let (words, tries) = match secret {
+            Secret::None => {
+                return Err(
+                    Error::new(ErrorKind::WrongSecret, "this store needs its passphrase")
+                        .with_hint(
+                            "give it with --passphrase-file, or run the command in a terminal",
+                        ),
+                );
+            }
+            Secret::Passphrase(text) => {
+                ("passphrase", vec![("passphrase", normal_passphrase(text))])
+            }
+            // A passphrase may look like a recovery key by chance.
+            Secret::Recovery(text) => (
+                "recovery key",
+                recovery::normal(text)
+                    .map(|key| ("recovery", key))
+                    .into_iter()
+                    .chain([("passphrase", normal_passphrase(text))])
+                    .collect(),
+            ),
+        };
+        for (kind, text) in &tries {
+            for slot in self.slot.iter().filter(|slot| slot.kind == *kind) {
+                if let Some(key) = self.unwrap_slot(slot, text)? {
+                    return Ok(key);
+                }
             }
         }
-        Err(if kind == "none" {
-            Error::new(ErrorKind::WrongSecret, "this store needs its passphrase")
-                .with_hint("give it with --passphrase-file, or run the command in a terminal")
-        } else {
-            Error::wrong_secret(words)
-        })
+        Err(Error::wrong_secret(words))
     }
 }
 

@@ -176,10 +176,10 @@ impl Clerk {
             }
             Request::AddChild(child, day) => {
                 self.index = None;
-                Answer::Added(Box::new(self.desk.add_child(child, &day)?))
+                Answer::Added(Box::new(self.desk.add_child(&child, &day)?))
             }
             Request::Told(answer) => {
-                self.desk.urgent_answer(answer)?;
+                self.desk.urgent_answer(&answer)?;
                 Answer::Urgent(self.desk.urgent_open()?)
             }
             Request::Urgent => Answer::Urgent(self.desk.urgent_open()?),

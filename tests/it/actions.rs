@@ -338,14 +338,14 @@ fn an_emergency_needs_no_consent_and_stays_until_somebody_was_told() {
         told_by: "J. Imani".into(),
     };
     assert!(
-        desk.urgent_answer(answer(" ")).is_err(),
+        desk.urgent_answer(&answer(" ")).is_err(),
         "somebody must have been told"
     );
     assert_eq!(desk.urgent_open().expect("read").len(), 1);
-    desk.urgent_answer(answer("on-call eye doctor"))
+    desk.urgent_answer(&answer("on-call eye doctor"))
         .expect("answered");
     assert!(desk.urgent_open().expect("read").is_empty());
-    assert!(desk.urgent_answer(answer("again")).is_err());
+    assert!(desk.urgent_answer(&answer("again")).is_err());
 }
 
 #[test]
@@ -473,7 +473,7 @@ fn a_child_added_at_the_table_is_next() {
         site: "QE".into(),
         ..NewChild::default()
     };
-    let added = desk.add_child(new.clone(), &day).expect("added");
+    let added = desk.add_child(&new, &day).expect("added");
     assert!(added.child_id.starts_with("P-"));
     assert!(
         desk.day_children(&day)
@@ -485,7 +485,7 @@ fn a_child_added_at_the_table_is_next() {
         dob: Some(date("2026-10-15")),
         ..new
     };
-    assert!(desk.add_child(unborn, &day).is_err(), "born after the day");
+    assert!(desk.add_child(&unborn, &day).is_err(), "born after the day");
     let mut index = desk.search_index().expect("index");
     assert_eq!(index.find("vega", 5)[0].child_id, added.child_id);
 }
@@ -534,4 +534,40 @@ fn a_second_roster_is_an_update() {
         .plan_children(plan.roster.children, None)
         .expect("a plan");
     assert_eq!(count(&plan), (0, 0, 3, 0));
+}
+
+#[test]
+fn a_second_try_with_the_same_result_is_kept_as_a_second_try() {
+    let (_folder, mut desk) = desk_with_children();
+    let day = open(&mut desk, DAY, "us-preschool", AcuityMethod::Threshold);
+    let values = [
+        (Field::DistanceRight, "NT:shy"),
+        (Field::DistanceLeft, "NT:shy"),
+    ];
+    sign(&mut desk, &day, "Q-3", &values);
+    sign(&mut desk, &day, "Q-3", &values);
+    let visit = desk.visit(&day, "Q-3").expect("read").expect("a visit");
+    assert_eq!(visit.earlier_tries.len(), 1);
+    assert_eq!(
+        desk.day_child(&day, "Q-3").expect("a child").state,
+        QueueState::NotTestable
+    );
+}
+
+#[test]
+fn the_roster_answers_whether_a_child_owns_glasses() {
+    let (_folder, mut desk) = desk_with_children();
+    let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
+    let signed = sign(
+        &mut desk,
+        &day,
+        "Q-1",
+        &[
+            (Field::DistanceRight, "20/20"),
+            (Field::DistanceLeft, "20/20"),
+            (Field::PlusLens, "read"),
+            (Field::Signs, "none"),
+        ],
+    );
+    assert_eq!(signed.outcome.criteria, ["plus-lens-2.50/plus-lens"]);
 }

@@ -1,9 +1,12 @@
 //! Tests of the commands that work on a store, through the real binary.
 
+#![allow(clippy::panic)]
+
 mod children;
 mod demo;
 mod files;
 mod lock;
+mod terminal;
 mod whole_day;
 
 use std::path::PathBuf;

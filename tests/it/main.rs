@@ -7,6 +7,7 @@ mod cli_store;
 mod demo;
 mod domain;
 mod intake;
+mod kill;
 mod rules;
 mod screens;
 mod store;

@@ -1,5 +1,11 @@
 //! Tests of `rules`.
-#![allow(clippy::unwrap_used, clippy::panic, clippy::too_many_lines)]
+#![allow(
+    clippy::unwrap_used,
+    clippy::panic,
+    clippy::too_many_lines,
+    clippy::items_after_statements,
+    clippy::format_collect
+)]
 
 mod broken;
 mod children;

@@ -6,6 +6,7 @@ mod drafts;
 mod key;
 mod ledger;
 mod open;
+mod random;
 mod reads;
 mod support;
 mod tamper;

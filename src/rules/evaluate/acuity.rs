@@ -42,7 +42,7 @@ pub(super) fn each_eye(
     let mut out = Answered::new(answer, both_in_words(eyes));
     out.by_eye = Some(answers);
     out.eye = deciding_eye(answers);
-    out.margin = margin(ranges, limit, by_letter, letters);
+    out.margin = margin(ranges, answers, limit, by_letter, letters);
     for (eye, value) in Eye::BOTH.into_iter().zip(eyes.both()) {
         remarks(
             set.credit,
@@ -117,13 +117,29 @@ fn against(range: Option<StepRange>, limit: i32) -> Answer {
     }
 }
 
-/// Returns the smaller margin of the two eyes, where it can be measured.
-fn margin(ranges: [Option<StepRange>; 2], limit: i32, by_letter: bool, letters: u8) -> Margin {
-    let of = |range: Option<StepRange>| {
-        let range = range.filter(|r| r.is_on_the_chart())?;
-        range.worst.or(range.best).map(|at| limit - at)
-    };
-    let smallest = ranges.into_iter().filter_map(of).min();
+/// Returns the smaller margin of the eyes that decided, where it can be measured.
+fn margin(
+    ranges: [Option<StepRange>; 2],
+    answers: [Answer; 2],
+    limit: i32,
+    by_letter: bool,
+    letters: u8,
+) -> Margin {
+    let all = either_eye(answers);
+    let decided: Vec<StepRange> = ranges
+        .into_iter()
+        .zip(answers)
+        .filter(|(_, answer)| *answer == all)
+        .filter_map(|(range, _)| range)
+        .collect();
+    if all == Answer::Unknown || decided.iter().any(|r| !r.is_on_the_chart()) {
+        return Margin::None;
+    }
+
+    let smallest = decided
+        .into_iter()
+        .filter_map(|range| range.worst.or(range.best).map(|at| limit - at))
+        .min();
     match smallest {
         None => Margin::None,
         Some(units) if by_letter => Margin::LogMar(units / i32::from(letters.max(1))),

@@ -1,8 +1,8 @@
 //! A case as criteria ask it: readings with the day's circumstances worked in.
 
 use crate::domain::acuity::{Acuity, Line, Notation};
-use crate::domain::codes::{AcuityMethod, History, Status};
-use crate::domain::readings::{AcuityResult, Eyes, Readings};
+use crate::domain::codes::{AcuityMethod, History, Status, YesNo};
+use crate::domain::readings::{AcuityResult, Eyes, NotTestable, Readings};
 use crate::rules::Case;
 
 /// What criteria ask.
@@ -30,6 +30,13 @@ impl<'a> Facts<'a> {
         if let Some(line) = pass_line.filter(|_| critical_line) {
             distance.right = bounded(distance.right, line);
             distance.left = bounded(distance.left, line);
+        }
+        if readings.testable == Some(YesNo::No) {
+            let why = AcuityResult::NotTestable(
+                readings.not_testable_reason.unwrap_or(NotTestable::Other),
+            );
+            distance.right = distance.right.or(Some(why));
+            distance.left = distance.left.or(Some(why));
         }
         Facts {
             case,

@@ -1,5 +1,6 @@
 //! Small words: criteria, margins, sources.
 
+use crate::domain::codes::{History, SignKind};
 use crate::domain::outcome::{Answer, Basis, Margin, Reason, Source};
 use crate::domain::readings::Hundredths;
 use crate::domain::refraction::Diopters;
@@ -12,7 +13,10 @@ pub fn criterion_words(id: &str) -> String {
         "between-eyes" => "between the eyes".to_owned(),
         "near" => "near line".to_owned(),
         "media-opacity" => "media opacity".to_owned(),
-        other => other.replace(['_', '.'], " ").replace('-', " "),
+        other => SignKind::from_word(other)
+            .map(SignKind::title)
+            .or_else(|| History::from_word(other).map(History::title))
+            .map_or_else(|| other.replace(['_', '.', '-'], " "), str::to_owned),
     };
     match band {
         None => finding,
@@ -81,4 +85,35 @@ pub fn margin_words(reason: &Reason) -> String {
         (n, _) if n < 0 => format!("{unit} over"),
         _ => format!("{unit} to spare"),
     }
+}
+
+/// Returns how soon to act, in words.
+pub(in crate::rules) fn act_words(days: u32) -> String {
+    match days {
+        0 => "act the same day".to_owned(),
+        1 => "act within 1 day".to_owned(),
+        days => format!("act within {days} days"),
+    }
+}
+
+/// Returns a rule set's id as words: `iapb-school-6-9` is "IAPB school 6/9".
+pub(super) fn set_words(id: &str) -> String {
+    let mut out = String::new();
+    let mut before = "";
+    for word in id.split('-') {
+        let number = |w: &str| w.len() <= 2 && w.bytes().all(|b| b.is_ascii_digit());
+        if !out.is_empty() {
+            out.push(if number(before) && number(word) {
+                '/'
+            } else {
+                ' '
+            });
+        }
+        match word {
+            "us" | "uk" | "iapb" | "nsw" => out.push_str(&word.to_uppercase()),
+            _ => out.push_str(word),
+        }
+        before = word;
+    }
+    out
 }

@@ -46,10 +46,33 @@ fn made_opened_again_and_made_anew() {
         "a demo that is there keeps its seed"
     );
 
+    let without = bench.refused(&["demo", "--fresh"]);
+    assert!(without.contains("need a terminal"), "{without}");
+    assert_eq!(bench.head(), head, "no terminal, nothing made anew");
     bench.write("store/mine.txt", "stays");
     let ran = demo(&["--fresh", "--seed", "7", "--today", "2026-11-02"]);
     assert_eq!(ran.code, 0, "{}", ran.err);
     assert!(ran.out.contains("2026-11-02"), "{}", ran.out);
     assert_ne!(bench.head(), head);
     assert_eq!(bench.read("store/mine.txt"), "stays");
+}
+
+#[cfg(target_os = "linux")]
+#[test]
+fn without_a_folder_it_lies_in_the_data_folder() {
+    let bench = Bench::empty();
+    let ran = super::Ran::from(
+        bench
+            .command(&["demo", "--no-screens"])
+            .env_remove("TWOLINE_STORE")
+            .output()
+            .expect("it runs"),
+    );
+    assert_eq!(ran.code, 0, "{}", ran.err);
+    assert!(
+        bench.path("data/twoline/demo/store.key").exists(),
+        "{}",
+        ran.out
+    );
+    assert!(!bench.path("data/twoline/store.key").exists());
 }

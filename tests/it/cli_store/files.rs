@@ -168,6 +168,7 @@ fn results_twice_are_unchanged_and_others_need_a_reason() {
 }
 
 #[test]
+#[allow(clippy::too_many_lines)]
 fn what_is_refused_leaves_the_head_as_it_was() {
     let bench = Bench::on_a_day("us-school", "threshold");
     let head = bench.head();
@@ -364,13 +365,46 @@ fn what_is_refused_leaves_the_head_as_it_was() {
 }
 
 #[test]
+fn nothing_is_signed_without_a_name() {
+    let bench = Bench::on_a_day("us-school", "threshold");
+    bench.ok(&["screener", "add", "--name", "N. Dell", "--initials", "ND"]);
+    bench.write("results.csv", RESULTS);
+    let head = bench.head();
+    for args in [
+        vec!["record", "Q-1", "signs=none", "--sign"],
+        vec!["results", "add", "results.csv", "--yes"],
+        vec!["correct", "Q-1", "signs=none", "--reason", "x"],
+    ] {
+        let said = bench.refused(&args);
+        assert!(
+            said.contains("who records") && said.contains("J. Imani, N. Dell"),
+            "{said}"
+        );
+    }
+    assert_eq!(bench.head(), head);
+    bench.ok(&["results", "add", "results.csv", "--yes", "--screener", "ND"]);
+    let rows = bench.report(&[]);
+    let signed: Vec<&str> = rows
+        .iter()
+        .filter(|r| !r["outcome"].is_empty())
+        .map(|r| &*r["screener"])
+        .collect();
+    assert_eq!(signed, ["N. Dell", "N. Dell"]);
+}
+
+#[test]
 fn damage_and_a_cut_tail_are_found_and_named() {
     let bench = Bench::with_children();
     let head = bench.head();
     bench.ok(&["verify", "--head", &head]);
+    bench.ok(&["backup", "earlier"]);
     bench.ok(&["site", "add", "QW", "--name", "Quillmere West"]);
     let later = bench.head();
     assert_ne!(later, head);
+    // Whoever puts an earlier copy in the place of the store has cut its tail off.
+    bench.ok(&["verify", "--store", "earlier"]);
+    let ran = bench.run(&["verify", "--store", "earlier", "--head", &later]);
+    assert_eq!(ran.code, 1, "{}{}", ran.out, ran.err);
     let entry: Vec<u8>;
     {
         let key = twoline::store::key::unlock(&bench.path("store"), &twoline::store::Secret::None)
@@ -433,6 +467,13 @@ fn a_head_that_is_not_the_stores_fails() {
             .code,
         1
     );
+}
+
+#[test]
+fn the_key_table_is_the_one_of_the_screens() {
+    let out = Bench::empty().ok(&["keys"]);
+    assert_eq!(out.lines().count(), 1 + twoline::keys::rows().len());
+    assert!(out.starts_with("where "), "{out}");
 }
 
 #[test]

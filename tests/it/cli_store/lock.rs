@@ -15,7 +15,7 @@ fn hold(bench: &Bench) -> Desk {
 fn a_second_writer_gives_up_and_names_the_holder() {
     let bench = Bench::with_children();
     let head = bench.head();
-    let held = hold(&bench);
+    let writer = hold(&bench);
     let ran = bench.run(&["site", "add", "QW", "--name", "Quillmere West"]);
     assert_eq!(ran.code, 1, "{}{}", ran.out, ran.err);
     let holder = format!("process {}", std::process::id());
@@ -33,7 +33,7 @@ fn a_second_writer_gives_up_and_names_the_holder() {
         ran.out,
         ran.err
     );
-    drop(held);
+    drop(writer);
     assert_eq!(bench.head(), head);
     assert_eq!(
         bench.run(&["child", "find", "okafor"]).err,
@@ -45,7 +45,7 @@ fn a_second_writer_gives_up_and_names_the_holder() {
 #[test]
 fn a_second_writer_waits_for_the_first() {
     let bench = Bench::with_children();
-    let held = hold(&bench);
+    let writer = hold(&bench);
     let waiting = bench
         .command(&["site", "add", "QW", "--name", "Quillmere West"])
         .stdout(Stdio::piped())
@@ -53,7 +53,7 @@ fn a_second_writer_waits_for_the_first() {
         .spawn()
         .expect("it runs");
     std::thread::sleep(Duration::from_millis(600));
-    drop(held);
+    drop(writer);
     let ran = Ran::from(waiting.wait_with_output().expect("it ends"));
     assert_eq!(ran.code, 0, "{}", ran.err);
     assert!(ran.out.contains("added site QW"), "{}", ran.out);

@@ -11,6 +11,7 @@ fn mode(path: &std::path::Path) -> u32 {
 }
 
 #[test]
+#[allow(clippy::too_many_lines)]
 fn from_an_empty_folder_to_a_backup() {
     let bench = Bench::empty();
     let with = |file: &str, args: &[&str]| {

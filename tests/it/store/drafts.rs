@@ -37,7 +37,7 @@ fn drafts_survive_reopening() {
     let drafts = store.drafts().unwrap();
     assert_eq!(drafts.load_all(&day()).unwrap(), [ada.clone(), bao]);
     drafts.delete(&day(), "Q-2").unwrap();
-    assert_eq!(drafts.load_all(&day()).unwrap(), [ada.clone()]);
+    assert_eq!(drafts.load_all(&day()).unwrap(), std::slice::from_ref(&ada));
     let mut other = day();
     other.protocol = "us-preschool".to_owned();
     assert!(drafts.load_all(&other).unwrap().is_empty());

@@ -101,6 +101,17 @@ fn a_recovery_key_of_another_store_does_not_open_it() {
 }
 
 #[test]
+fn a_passphrase_that_looks_like_a_recovery_key_still_opens() {
+    let (one, two) = (TempDir::new().unwrap(), TempDir::new().unwrap());
+    let (_store, recovery) = Store::create(one.path(), new(secret())).unwrap();
+    let text = recovery.unwrap().grouped();
+    drop(Store::create(two.path(), new(passphrase(&text))).unwrap());
+    let typed = Secret::typed(&text);
+    assert!(matches!(typed, Secret::Recovery(_)));
+    Store::open(two.path(), &typed, WRITE).unwrap();
+}
+
+#[test]
 fn a_weak_passphrase_makes_nothing() {
     let temp = TempDir::new().unwrap();
     let dir = temp.path().join("store");

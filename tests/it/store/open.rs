@@ -139,6 +139,36 @@ fn a_folder_without_a_store_says_so() {
 }
 
 #[test]
+fn an_interrupted_init_is_told_apart_from_a_store() {
+    let temp = TempDir::new().unwrap();
+    std::fs::write(temp.path().join("store.db"), "left over").unwrap();
+    let error = Store::create(temp.path(), new(Secret::None)).unwrap_err();
+    assert_eq!(error.kind(), ErrorKind::Exists);
+    assert!(
+        error
+            .to_string()
+            .ends_with("holds a store.db without its key file")
+    );
+    assert_eq!(
+        std::fs::read(temp.path().join("store.db")).unwrap(),
+        b"left over"
+    );
+}
+
+#[test]
+fn a_failed_init_leaves_nothing() {
+    let temp = TempDir::new().unwrap();
+    // A folder stands where the log of the database would be.
+    std::fs::create_dir(temp.path().join("store.db-wal")).unwrap();
+    Store::create(temp.path(), new(Secret::None)).unwrap_err();
+    let left: Vec<_> = std::fs::read_dir(temp.path())
+        .unwrap()
+        .map(|e| e.unwrap().file_name())
+        .collect();
+    assert_eq!(left, ["store.db-wal"], "only what was there before");
+}
+
+#[test]
 fn a_database_and_a_key_of_two_stores_do_not_fit() {
     let (_a, one) = fresh();
     let (_b, two) = fresh();
@@ -153,6 +183,29 @@ fn a_database_and_a_key_of_two_stores_do_not_fit() {
             .to_string()
             .ends_with("store.db does not fit its key file")
     );
+}
+
+/// A kill leaves the files as they are: what was saved is in the log and is found there.
+#[test]
+fn what_was_saved_is_there_after_a_kill() {
+    let (temp, mut store) = fresh();
+    for i in 0..20 {
+        store
+            .append(&author(), |tx| {
+                tx.add(&child(&format!("Q-{i}"), "Okafor", "Ada"))
+            })
+            .unwrap();
+        let left = temp.path().join(format!("left-{i}"));
+        std::fs::create_dir(&left).unwrap();
+        for entry in std::fs::read_dir(store.dir()).unwrap() {
+            let entry = entry.unwrap();
+            std::fs::copy(entry.path(), left.join(entry.file_name())).unwrap();
+        }
+        let after = open(&left);
+        assert_eq!(after.head().unwrap(), store.head().unwrap());
+        assert!(after.read().child(&format!("Q-{i}")).unwrap().is_some());
+        after.verify(None, |_, _| {}).unwrap();
+    }
 }
 
 #[test]

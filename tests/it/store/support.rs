@@ -172,8 +172,20 @@ pub fn outcome(visit_id: Uuid, kind: OutcomeKind) -> row::Outcome {
 
 /// Puts at least one entry into every table, in several transactions. Returns the visit's id.
 pub fn fill(store: &mut Store) -> Uuid {
-    let screener = new_id();
-    let chart = new_id();
+    let (screener, chart) = (new_id(), new_id());
+    programme(store, screener, chart);
+    let by = Author {
+        screener: Some(screener),
+        ..author()
+    };
+    roster(store, &by, chart);
+    let visit_id = screened(store, &by);
+    corrected(store, &by, visit_id);
+    visit_id
+}
+
+/// Who and what there is before the roster.
+fn programme(store: &mut Store, screener: Uuid, chart: Uuid) {
     store
         .append(&author(), |tx| {
             tx.add(&row::Screener {
@@ -206,12 +218,12 @@ pub fn fill(store: &mut Store) -> Uuid {
             })
         })
         .unwrap();
-    let by = Author {
-        screener: Some(screener),
-        ..author()
-    };
+}
+
+/// Two children on the roster, and a day.
+fn roster(store: &mut Store, by: &Author, chart: Uuid) {
     store
-        .append(&by, |tx| {
+        .append(by, |tx| {
             tx.add(&row::Import {
                 id: new_id(),
                 import_id: new_id(),
@@ -279,10 +291,14 @@ pub fn fill(store: &mut Store) -> Uuid {
             })
         })
         .unwrap();
+}
+
+/// One child screened, one emergency.
+fn screened(store: &mut Store, by: &Author) -> Uuid {
     let visit = visit("Q-1");
     let visit_id = visit.visit_id;
     store
-        .append(&by, |tx| {
+        .append(by, |tx| {
             tx.add(&visit)?;
             tx.add(&reading(visit_id, Field::Status, "present"))?;
             tx.add(&reading(visit_id, Field::DistanceRight, "20/20"))?;
@@ -298,7 +314,7 @@ pub fn fill(store: &mut Store) -> Uuid {
         })
         .unwrap();
     store
-        .append(&by, |tx| {
+        .append(by, |tx| {
             tx.add(&row::UrgentAction {
                 id: new_id(),
                 urgent_id: new_id(),
@@ -309,11 +325,16 @@ pub fn fill(store: &mut Store) -> Uuid {
                 told: String::new(),
                 at_ms: author().at.utc_ms,
                 at_offset_minutes: -300,
-                screener_id: Some(screener),
+                screener_id: by.screener,
                 note: String::new(),
             })
         })
         .unwrap();
+    visit_id
+}
+
+/// One reading put right.
+fn corrected(store: &mut Store, by: &Author, visit_id: Uuid) {
     let old = store
         .read()
         .readings(visit_id)
@@ -322,7 +343,7 @@ pub fn fill(store: &mut Store) -> Uuid {
         .find(|r| r.field == Field::DistanceLeft)
         .unwrap();
     store
-        .append(&by, |tx| {
+        .append(by, |tx| {
             tx.supersede(
                 &[old.id],
                 Some(reading(visit_id, Field::DistanceLeft, "20/32")),
@@ -330,5 +351,4 @@ pub fn fill(store: &mut Store) -> Uuid {
             )
         })
         .unwrap();
-    visit_id
 }

@@ -110,6 +110,16 @@ fn risk_kinds() {
     );
     assert_eq!(of("instrument-2003", "cover=constant"), [Strabismic]);
     assert_eq!(of("cover-test", "cover=intermittent"), [Strabismic]);
+    assert_eq!(of("urgent-signs", "signs=lost_red_reflex"), [Deprivation]);
+    assert_eq!(of("urgent-signs", "signs=white_pupil"), [Deprivation]);
+    assert_eq!(of("urgent-signs", "signs=new_squint"), [Strabismic]);
+    assert_eq!(
+        of(
+            "urgent-signs",
+            "signs=none red_reflex_right=dark_spot red_reflex_left=normal"
+        ),
+        []
+    );
     assert_eq!(
         of(
             "red-reflex",

@@ -311,3 +311,30 @@ fn a_reason_carries_everything() {
         assert!(whole.contains(part), "{part}\n{whole}");
     }
 }
+
+#[test]
+fn what_decided_comes_first_and_margins_are_those_of_the_eye_that_refers() {
+    let outcome = child(
+        50,
+        "distance_right=20/20 distance_left=20/50 history=family_amblyopia signs=none",
+    )
+    .by_protocol("us-school");
+    assert!(
+        explain::short(&outcome).starts_with("Parent or sibling with amblyopia"),
+        "{}",
+        explain::short(&outcome)
+    );
+    let mut cell = String::new();
+    explain::reasons_text(&outcome, &mut cell);
+    assert!(!cell.contains("direct referral: none seen"), "{cell}");
+    // One eye off the chart has no margin in lines; the passing eye's is not shown instead.
+    let off = child(80, "distance_right=20/20 distance_left=CF").by_protocol("us-school");
+    let line = off.reasons.iter().find(|r| &*r.criterion == "line.60+");
+    assert_eq!(line.map(explain::margin_words).as_deref(), Some(""));
+    let none = child(50, "testable=no").by_protocol("us-school");
+    assert!(
+        none.reasons[0].reading.contains("not testable"),
+        "{:?}",
+        none.reasons[0]
+    );
+}

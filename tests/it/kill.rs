@@ -1,0 +1,273 @@
+//! The real program in a terminal, killed with SIGKILL while somebody types: no signed child is
+//! lost, and no draft older than a second.
+//!
+//! `TWOLINE_KILLS=200 cargo test --release --locked kill -- --nocapture` is the long form; without it
+//! a few kills. The seed is printed and taken from `TWOLINE_SEED`.
+
+use std::fmt::Write as _;
+use std::io::{Read, Write};
+use std::path::Path;
+use std::sync::mpsc::{Receiver, channel};
+use std::time::{Duration, Instant, SystemTime};
+
+use portable_pty::{CommandBuilder, PtySize, native_pty_system};
+use twoline::actions::{Desk, DeskOptions, QueueState, Secret};
+use twoline::domain::codes::AcuityMethod;
+
+use crate::actions::{date, empty_desk, open};
+
+const TODAY: &str = "2026-10-14";
+
+/// A small seeded generator: this test needs moments, not good randomness.
+struct Moments(u64);
+
+impl Moments {
+    fn between(&mut self, low: u64, high: u64) -> u64 {
+        self.0 ^= self.0 << 13;
+        self.0 ^= self.0 >> 7;
+        self.0 ^= self.0 << 17;
+        low + self.0 % (high - low)
+    }
+}
+
+fn rows(n: u16) -> std::num::NonZero<u16> {
+    std::num::NonZero::new(n).expect("a size")
+}
+
+fn setting(name: &str, otherwise: u64) -> u64 {
+    std::env::var(name)
+        .ok()
+        .and_then(|v| v.parse().ok())
+        .unwrap_or(otherwise)
+}
+
+#[test]
+fn no_signed_child_and_no_draft_older_than_a_second_is_lost() {
+    let kills = setting("TWOLINE_KILLS", 6);
+    let now = SystemTime::now()
+        .duration_since(SystemTime::UNIX_EPOCH)
+        .map_or(1, |d| d.as_nanos());
+    let seed = setting("TWOLINE_SEED", now as u64) | 1;
+    println!("seed: TWOLINE_SEED={seed}, {kills} kills");
+    let mut moments = Moments(seed);
+
+    let (folder, mut desk) = empty_desk();
+    let mut csv =
+        String::from("child_id,family_name,given_name,dob,grade,site,class,wears_glasses\n");
+    for i in 0..kills * 60 + 60 {
+        let _ = writeln!(csv, "K-{i:06},Okafor {i:06},Ada,2020-03-02,1,QE,1B,no");
+    }
+    let plan = desk
+        .plan_roster("roster.csv", csv.as_bytes(), None, None)
+        .expect("a plan");
+    desk.add_roster(&plan).expect("written");
+    open(&mut desk, TODAY, "us-school", AcuityMethod::Threshold);
+    drop(desk);
+
+    let dir = folder.path().join("store");
+    let (mut saved, mut drafts) = (0, 0);
+    for round in 0..kills {
+        let (s, d) = one_kill(&dir, &mut moments, round);
+        saved += s;
+        drafts += d;
+    }
+    println!(
+        "{kills} kills: {saved} children shown as saved, all there; {drafts} drafts older than a second, all there"
+    );
+    assert!(
+        saved > 0 || kills < 3,
+        "the script signed nobody: it tests nothing"
+    );
+    let desk = reopen(&dir);
+    let entries = desk.head().expect("a head").entries;
+    desk.verify(None, |_, _| {})
+        .expect("a store without damage");
+    assert!(entries > 0);
+}
+
+fn reopen(dir: &Path) -> Desk {
+    let options = DeskOptions {
+        today: Some(date(TODAY)),
+        ..DeskOptions::default()
+    };
+    Desk::open(dir, &Secret::None, &options).expect("the store opens after a kill")
+}
+
+/// What somebody typed for a child, and when.
+struct Typed {
+    at: Instant,
+    child: usize,
+    right: String,
+    left: String,
+}
+
+/// Types, kills, reopens and compares; returns how many children were shown as saved and how many
+/// drafts were old enough to be asked for.
+fn one_kill(dir: &Path, moments: &mut Moments, round: u64) -> (usize, usize) {
+    let queue: Vec<String> = {
+        let desk = reopen(dir);
+        let day = desk.days().expect("days").remove(0);
+        // Each round starts without a draft, so that every key is known to go to the right eye first.
+        let drafts = desk.drafts().expect("drafts");
+        for draft in drafts.load_every().expect("read") {
+            drafts.delete(&draft.day, &draft.child_id).expect("deleted");
+        }
+        drafts.flush().expect("flushed");
+        desk.day_children(&day)
+            .expect("children")
+            .into_iter()
+            .filter(|c| c.state == QueueState::ToCome)
+            .map(|c| c.child_id)
+            .collect()
+    };
+    let pty = native_pty_system()
+        .openpty(PtySize {
+            rows: 36,
+            cols: 120,
+            pixel_width: 0,
+            pixel_height: 0,
+        })
+        .expect("a terminal");
+    let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_twoline"));
+    command.args(["--store", &dir.to_string_lossy(), "--today", TODAY]);
+    command.env("RUST_BACKTRACE", "0");
+    command.env("TERM", "xterm-256color");
+    let mut program = pty.slave.spawn_command(command).expect("the program");
+    drop(pty.slave);
+    let screen = watch(pty.master.try_clone_reader().expect("a reader"));
+    let mut keys = pty.master.take_writer().expect("a writer");
+
+    let mut terminal = vt100::Parser::new(rows(36), rows(120), 0);
+    let patience = Instant::now();
+    // A terminal answers when it is asked where its cursor is.
+    keys.write_all(b"\x1b[1;1R")
+        .and_then(|()| keys.flush())
+        .expect("answered");
+    while !terminal.screen().contents().contains("RIGHT EYE") {
+        assert!(
+            patience.elapsed() < Duration::from_secs(30),
+            "{}",
+            terminal.screen().contents()
+        );
+        take(&screen, &mut terminal, Duration::from_millis(50));
+    }
+    let mut log: Vec<Typed> = Vec::new();
+    let mut shown: Vec<String> = Vec::new();
+    let end = Instant::now() + Duration::from_millis(moments.between(30, 2_600));
+    let mut child = 0;
+    'typing: loop {
+        let (mut right, mut left) = (String::new(), String::new());
+        for key in ["2", "0", "\r", "2", "5", "\r", "\x13"] {
+            // Now and then the child takes its time: long enough for a draft to grow old.
+            let pause = if moments.between(0, 24) == 0 {
+                1_300
+            } else {
+                moments.between(4, 16)
+            };
+            let until = (Instant::now() + Duration::from_millis(pause)).min(end);
+            while Instant::now() < until {
+                take(&screen, &mut terminal, Duration::from_millis(2));
+                note_saved(&terminal, &mut shown);
+            }
+            if Instant::now() >= end {
+                break 'typing;
+            }
+            keys.write_all(key.as_bytes())
+                .and_then(|()| keys.flush())
+                .expect("typed");
+            match key {
+                "2" | "0" | "5" if right.len() < 2 => right.push_str(key),
+                "2" | "5" => left.push_str(key),
+                _ => {}
+            }
+            log.push(Typed {
+                at: Instant::now(),
+                child,
+                right: right.clone(),
+                left: left.clone(),
+            });
+        }
+        child += 1;
+    }
+    program.clone_killer().kill().expect("killed");
+    let killed = Instant::now();
+    let _ = program.wait();
+    take(&screen, &mut terminal, Duration::from_millis(20));
+    note_saved(&terminal, &mut shown);
+
+    let desk = reopen(dir);
+    let day = desk.days().expect("days").remove(0);
+    for name in &shown {
+        let id = name.replace("Okafor ", "K-");
+        let child = desk.day_child(&day, &id).expect("a child");
+        assert_ne!(
+            child.state,
+            QueueState::ToCome,
+            "round {round}: {name} was shown as saved"
+        );
+    }
+    let old = log
+        .iter()
+        .rev()
+        .find(|t| killed - t.at > Duration::from_secs(1));
+    let mut asked = 0;
+    if let Some(typed) = old.filter(|t| !t.right.is_empty()) {
+        let id = &queue[typed.child];
+        let signed = desk.day_child(&day, id).expect("a child").state != QueueState::ToCome;
+        if !signed {
+            asked = 1;
+            let drafts = desk.drafts().expect("drafts").load_every().expect("read");
+            let draft = drafts.iter().find(|d| d.child_id == *id);
+            let text = |field: &str| {
+                draft
+                    .and_then(|d| d.fields.iter().find(|(f, _)| f == field))
+                    .map_or_else(String::new, |(_, text)| text.clone())
+            };
+            for (field, typed) in [
+                ("distance_right", &typed.right),
+                ("distance_left", &typed.left),
+            ] {
+                let kept = text(field);
+                assert!(
+                    kept.contains(typed.as_str()),
+                    "round {round}: {id} {field} was {typed:?} more than a second ago, the draft has {kept:?}"
+                );
+            }
+        }
+    }
+    (shown.len(), asked)
+}
+
+/// Reads what the program draws, on a thread of its own.
+fn watch(mut from: Box<dyn Read + Send>) -> Receiver<Vec<u8>> {
+    let (to, screen) = channel();
+    std::thread::spawn(move || {
+        let mut buffer = [0; 65_536];
+        while let Ok(n) = from.read(&mut buffer) {
+            if n == 0 || to.send(buffer[..n].to_vec()).is_err() {
+                break;
+            }
+        }
+    });
+    screen
+}
+
+fn take(screen: &Receiver<Vec<u8>>, terminal: &mut vt100::Parser, wait: Duration) {
+    if let Ok(bytes) = screen.recv_timeout(wait) {
+        terminal.process(&bytes);
+    }
+    while let Ok(bytes) = screen.try_recv() {
+        terminal.process(&bytes);
+    }
+}
+
+/// Notes the child of whom the screen says "saved".
+fn note_saved(terminal: &vt100::Parser, shown: &mut Vec<String>) {
+    let contents = terminal.screen().contents();
+    if let Some(at) = contents.find("saved Okafor ") {
+        let name: String = contents[at + 6..].chars().take(13).collect();
+        if shown.last() != Some(&name) && name.len() == 13 {
+            shown.push(name);
+        }
+    }
+}
