@@ -139,32 +139,24 @@ impl Desk {
 
     /// Returns who was referred or is due to come back, soonest first, as a table with its header.
     pub fn referrals(&self) -> Result<Vec<Vec<String>>> {
-        let mut table = vec![row([
-            "due", "child", "born", "class", "outcome", "urgency", "screened",
-        ])];
+        let mut table = vec![row(["due", "child", "born", "class", "outcome"])];
         let read = self.read();
         for (child, visit) in read.referred()?.into_iter().chain(read.due()?) {
             let due = visit.act_by.or(visit.due_on);
+            let words = [
+                visit.kind.map(|k| k.title()),
+                visit.urgency.map(|u| u.title()),
+            ];
             table.push(vec![
-                due.map_or_else(
-                    || "no date printed".to_owned(),
-                    |d| {
-                        if d < self.today {
-                            format!("{d}, overdue")
-                        } else {
-                            d.to_string()
-                        }
-                    },
-                ),
+                match due {
+                    Some(date) if date < self.today => format!("{date} late"),
+                    Some(date) => date.to_string(),
+                    None => "no date".to_owned(),
+                },
                 format!("{}, {}", child.family_name, child.given_name),
                 child.dob.map(|d| d.to_string()).unwrap_or_default(),
                 child.class.unwrap_or_default(),
-                visit.kind.map(|k| k.title().to_owned()).unwrap_or_default(),
-                visit
-                    .urgency
-                    .map(|u| u.title().to_owned())
-                    .unwrap_or_default(),
-                visit.screened_on.to_string(),
+                words.into_iter().flatten().collect::<Vec<_>>().join(", "),
             ]);
         }
         Ok(table)
