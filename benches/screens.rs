@@ -45,8 +45,10 @@ impl Hands {
                     let more = self.app.update(Message::Answer(answer));
                     self.carry_out(more);
                 }
-                Effect::SaveDraft(draft) => self.clerk.save_draft(draft, self.app.session.now_ms),
-                Effect::DropDraft(day, child) => self.clerk.drop_draft(day, &child),
+                Effect::SaveDraft(draft) => {
+                    self.clerk.keeper().save(draft, self.app.session.now_ms);
+                }
+                Effect::DropDraft(day, child) => self.clerk.keeper().drop_draft(&day, &child),
                 _ => {}
             }
         }

@@ -393,7 +393,7 @@ impl Day {
     pub fn sign(&mut self, session: &Session) -> Done {
         if let Some(holder) = &session.read_only {
             return Done::refused(format!(
-                "this store is open for reading only: {holder} holds it"
+                "nothing can be signed: this store is open for reading only ({holder})"
             ));
         }
         let Some(bench) = &mut self.bench else {

@@ -202,13 +202,16 @@ fn event_loop(
 ) -> Result<(), Error> {
     wires.carry_out(app.start())?;
     let mut place = app.at;
+    let mut stale = true;
     loop {
         // Terminals do not agree on the width of some scripts; a new place starts on a clean screen.
         if place != app.at {
             place = app.at;
             screen.redraw()?;
         }
-        screen.terminal.draw(|frame| app.draw(frame))?;
+        if stale {
+            screen.terminal.draw(|frame| app.draw(frame))?;
+        }
         let mut messages = Vec::new();
         let pause = if wires.waiting > 0 { BRIEF } else { PAUSE };
         if poll(pause)? {
@@ -222,6 +225,9 @@ fn event_loop(
             messages.push(Message::Leave);
         }
         let now = clock::now();
+        // The running line of an emergency counts seconds, the clock at the foot minutes.
+        let tick = if app.urgent.is_empty() { 60_000 } else { 1_000 };
+        stale = !messages.is_empty() || now.utc_ms / tick != app.session.now_ms / tick;
         app.session.now_ms = now.utc_ms;
         app.session.offset_minutes = now.offset_minutes;
         for message in messages {

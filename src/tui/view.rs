@@ -208,7 +208,8 @@ impl App {
         let columns = usize::from(area.width);
         let mark = match (lower, &self.session.read_only) {
             (true, _) => String::new(),
-            (_, Some(holder)) => format!(" READ ONLY, held by {} ", safe(holder)),
+            (_, Some(holder)) if holder == "read only" => " READ ONLY ".into(),
+            (_, Some(holder)) => format!(" READ ONLY: {} ", safe(holder)),
             _ if self.session.demo => " DEMO: everybody here is invented ".into(),
             _ => String::new(),
         };

@@ -5,11 +5,11 @@ use std::fmt::Write as _;
 use ratatui::text::{Line, Span};
 
 use crate::domain::age::spoken;
-use crate::domain::outcome::{Answer, Outcome, OutcomeKind};
+use crate::domain::outcome::OutcomeKind;
 use crate::tui::day::bench::{Bench, Spot, State};
 use crate::tui::day::kind::{AcuityOf, eye};
 use crate::tui::judging::explain;
-use crate::tui::text::{safe, width, wrap};
+use crate::tui::text::{safe, wrap};
 use crate::tui::theme::Theme;
 
 /// Returns the lines under the bench, at most so many.
@@ -46,40 +46,10 @@ pub fn lines(bench: &Bench, columns: usize, rows: usize, theme: Theme) -> Vec<Li
         (
             safe(&explain::headline(&bench.outcome)),
             theme.outcome(bench.outcome.kind, bench.outcome.urgency),
-            in_room(&bench.outcome, columns, rows),
+            safe(&explain::short(&bench.outcome)),
         )
     };
     flow(&headline, style, &rest, columns, rows, theme)
-}
-
-/// Returns the reason in one sentence; where the whole citation does not fit, the rule set stands
-/// for it (the whole reason has it).
-fn in_room(outcome: &Outcome, columns: usize, rows: usize) -> String {
-    let whole = safe(&explain::short(outcome));
-    let head = width(&explain::headline(outcome)) + 3;
-    if head + width(&whole) + 8 <= columns.saturating_sub(4) * rows {
-        return whole;
-    }
-    let referring = outcome.reasons.iter().find(|r| r.answer == Answer::Refer);
-    let Some(reason) = referring.filter(|r| whole.contains(&*r.source.citation)) else {
-        return whole;
-    };
-    let start = whole.find(&*reason.source.citation).unwrap_or(0);
-    let tail = ["Amblyopia risk: ", reason.would_change.as_str()]
-        .iter()
-        .filter(|t| !t.is_empty())
-        .filter_map(|t| {
-            let shown = whole[start..].to_lowercase();
-            shown.find(&t.to_lowercase()).map(|i| start + i)
-        })
-        .min();
-    format!(
-        "{}{}, {}. {}",
-        &whole[..start],
-        reason.rule_set,
-        reason.source.basis.title(),
-        tail.and_then(|i| whole.get(i..)).unwrap_or("")
-    )
 }
 
 fn signed_lines(

@@ -169,9 +169,6 @@ fn the_screens_say_who_writes_the_store() {
     let writer =
         twoline::actions::Desk::open(&bench.path("store"), &secret, &options).expect("the store");
     let mut terminal = Terminal::run(&bench, &[]);
-    // The screens ask the terminal where its cursor stands.
-    terminal.until("\u{1b}[6n");
-    terminal.type_in("\u{1b}[1;1R");
     terminal.until_shown(&format!("process {}", std::process::id()));
     terminal.child.kill().expect("ended");
     drop(writer);

@@ -191,7 +191,7 @@ fn a_signed_value_is_corrected_with_a_reason_and_the_old_one_stays() {
         .unwrap()
         .trim()
         .chars()
-        .find(|c| c.is_ascii_alphanumeric())
+        .find(char::is_ascii_alphanumeric)
         .unwrap();
     h.typed(&key.to_string())
         .typed("hello")

@@ -141,7 +141,7 @@ impl Hands {
                     self.answer(answer);
                 }
                 Effect::SaveDraft(draft) => {
-                    self.clerk.keeper().save(draft, self.app.session.now_ms)
+                    self.clerk.keeper().save(draft, self.app.session.now_ms);
                 }
                 Effect::DropDraft(day, child) => self.clerk.keeper().drop_draft(&day, &child),
                 Effect::FlushDrafts => self.clerk.keeper().flush().unwrap(),
