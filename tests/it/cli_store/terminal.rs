@@ -22,7 +22,7 @@ struct Terminal {
     seen: String,
     /// How much of `seen` was waited for already.
     at: usize,
-    _pair: Box<dyn portable_pty::MasterPty + Send>,
+    pair: Box<dyn portable_pty::MasterPty + Send>,
 }
 
 impl Terminal {
@@ -59,7 +59,7 @@ impl Terminal {
             screen,
             seen: String::new(),
             at: 0,
-            _pair: pair.master,
+            pair: pair.master,
         }
     }
 
@@ -93,6 +93,31 @@ impl Terminal {
         }
     }
 
+    /// Waits until the terminal shows no more what is typed: the prompt stands a moment before that,
+    /// and nobody types as fast as a test.
+    fn until_hidden(&self) {
+        let name = self.pair.tty_name().expect("a terminal with a name");
+        let tty = std::fs::File::open(name).expect("the terminal");
+        let give_up = Instant::now() + Duration::from_mins(1);
+        while rustix::termios::tcgetattr(&tty)
+            .expect("its settings")
+            .local_modes
+            .contains(rustix::termios::LocalModes::ECHO)
+        {
+            assert!(
+                Instant::now() < give_up,
+                "what is typed is shown: {}",
+                self.seen
+            );
+            std::thread::sleep(Duration::from_millis(5));
+        }
+    }
+
+    fn type_secret(&mut self, text: &str) {
+        self.until_hidden();
+        self.type_in(text);
+    }
+
     fn type_in(&mut self, text: &str) {
         self.keys.write_all(text.as_bytes()).expect("typed");
         self.keys.flush().expect("typed");
@@ -114,9 +139,9 @@ fn a_store_is_made_and_opened_by_typing() {
 
     let mut terminal = Terminal::run(&bench, &make);
     terminal.until("15 characters or more:");
-    terminal.type_in(&format!("{PASSPHRASE}\r"));
+    terminal.type_secret(&format!("{PASSPHRASE}\r"));
     terminal.until("again:");
-    terminal.type_in("something else, longer\r");
+    terminal.type_secret("something else, longer\r");
     let (code, seen) = terminal.end();
     assert_eq!(code, 2, "{seen}");
     assert!(
@@ -126,9 +151,9 @@ fn a_store_is_made_and_opened_by_typing() {
 
     let mut terminal = Terminal::run(&bench, &make);
     terminal.until("15 characters or more:");
-    terminal.type_in(&format!("{PASSPHRASE}\r"));
+    terminal.type_secret(&format!("{PASSPHRASE}\r"));
     terminal.until("again:");
-    terminal.type_in(&format!("{PASSPHRASE}\r"));
+    terminal.type_secret(&format!("{PASSPHRASE}\r"));
     terminal.until("last four characters");
     let key = terminal
         .seen
@@ -150,13 +175,13 @@ fn a_store_is_made_and_opened_by_typing() {
     // The recovery key opens it as the passphrase does.
     let mut terminal = Terminal::run(&bench, &["verify"]);
     terminal.until("Passphrase of Quillmere:");
-    terminal.type_in(&format!("{key}\r"));
+    terminal.type_secret(&format!("{key}\r"));
     let (code, seen) = terminal.end();
     assert!(code == 0 && seen.contains("verified: "), "{seen}");
 
     let mut terminal = Terminal::run(&bench, &["verify"]);
     terminal.until("Passphrase of Quillmere:");
-    terminal.type_in("nine green\u{3}");
+    terminal.type_secret("nine green\u{3}");
     let (code, seen) = terminal.end();
     assert_eq!(code, 130, "Ctrl-C: {seen}");
 }
