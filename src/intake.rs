@@ -1,6 +1,6 @@
 //! Bytes in, typed rows or located errors out.
 //!
-//! A file goes through four steps: its bytes are [`file`]d in, recognised as UTF-8 text, checked
+//! A file goes through four steps: its bytes are [read in](mod@file), recognised as UTF-8 text, checked
 //! against RFC 4180 ([`quoting`]) and read by the columns of its header ([`sheet`]). Then
 //! [`roster`] and [`results`] give each cell its type. Whatever is wrong is a [`Problem`] that
 //! names file, row, column, what was found and what was expected.

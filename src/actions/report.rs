@@ -9,6 +9,7 @@ use super::views::DayInfo;
 use super::visit_rows::{judged, stored_outcome, tries_of};
 use crate::clock::Moment;
 use crate::domain::age::{AgeMonths, spoken};
+use crate::domain::outcome::{OutcomeKind, Urgency};
 use crate::reports::csv::Form;
 use crate::reports::day::{self, About, DayReportRow, RuleSetUsed, StoreState};
 use crate::rules::CAUTIONS;
@@ -144,8 +145,8 @@ impl Desk {
         for (child, visit) in read.referred()?.into_iter().chain(read.due()?) {
             let due = visit.act_by.or(visit.due_on);
             let words = [
-                visit.kind.map(|k| k.title()),
-                visit.urgency.map(|u| u.title()),
+                visit.kind.map(OutcomeKind::title),
+                visit.urgency.map(Urgency::title),
             ];
             table.push(vec![
                 match due {

@@ -1,6 +1,6 @@
 //! What was recorded of one child on one visit, typed.
 //!
-//! A value is set from text by its [`Field`] and read back as canonical text, so that the results
+//! A value is set from text by its [`Field`](crate::domain::field::Field) and read back as canonical text, so that the results
 //! file, the store, the command line and the screens share one understanding of each field.
 
 mod contradictions;

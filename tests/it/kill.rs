@@ -4,13 +4,15 @@
 //! `TWOLINE_KILLS=200 cargo test --release --locked kill -- --nocapture` is the long form; without it
 //! a few kills. The seed is printed and taken from `TWOLINE_SEED`.
 
+#![allow(clippy::print_stdout)]
+
 use std::fmt::Write as _;
 use std::io::{Read, Write};
 use std::path::Path;
 use std::sync::mpsc::{Receiver, channel};
 use std::time::{Duration, Instant, SystemTime};
 
-use portable_pty::{CommandBuilder, PtySize, native_pty_system};
+use portable_pty::{Child, CommandBuilder, MasterPty, PtySize, native_pty_system};
 use twoline::actions::{Desk, DeskOptions, QueueState, Secret};
 use twoline::domain::codes::AcuityMethod;
 
@@ -104,100 +106,14 @@ struct Typed {
 /// Types, kills, reopens and compares; returns how many children were shown as saved and how many
 /// drafts were old enough to be asked for.
 fn one_kill(dir: &Path, moments: &mut Moments, round: u64) -> (usize, usize) {
-    let queue: Vec<String> = {
-        let desk = reopen(dir);
-        let day = desk.days().expect("days").remove(0);
-        // Each round starts without a draft, so that every key is known to go to the right eye first.
-        let drafts = desk.drafts().expect("drafts");
-        for draft in drafts.load_every().expect("read") {
-            drafts.delete(&draft.day, &draft.child_id).expect("deleted");
-        }
-        drafts.flush().expect("flushed");
-        desk.day_children(&day)
-            .expect("children")
-            .into_iter()
-            .filter(|c| c.state == QueueState::ToCome)
-            .map(|c| c.child_id)
-            .collect()
-    };
-    let pty = native_pty_system()
-        .openpty(PtySize {
-            rows: 36,
-            cols: 120,
-            pixel_width: 0,
-            pixel_height: 0,
-        })
-        .expect("a terminal");
-    let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_twoline"));
-    command.args(["--store", &dir.to_string_lossy(), "--today", TODAY]);
-    command.env("RUST_BACKTRACE", "0");
-    command.env("TERM", "xterm-256color");
-    let mut program = pty.slave.spawn_command(command).expect("the program");
-    drop(pty.slave);
-    let screen = watch(pty.master.try_clone_reader().expect("a reader"));
-    let mut keys = pty.master.take_writer().expect("a writer");
-
-    let mut terminal = vt100::Parser::new(rows(36), rows(120), 0);
-    let patience = Instant::now();
-    // A terminal answers when it is asked where its cursor is.
-    keys.write_all(b"\x1b[1;1R")
-        .and_then(|()| keys.flush())
-        .expect("answered");
-    while !terminal.screen().contents().contains("RIGHT EYE") {
-        assert!(
-            patience.elapsed() < Duration::from_secs(30),
-            "{}",
-            terminal.screen().contents()
-        );
-        take(&screen, &mut terminal, Duration::from_millis(50));
-    }
-    let mut log: Vec<Typed> = Vec::new();
-    let mut shown: Vec<String> = Vec::new();
-    let end = Instant::now() + Duration::from_millis(moments.between(30, 2_600));
-    let mut child = 0;
-    'typing: loop {
-        let (mut right, mut left) = (String::new(), String::new());
-        for key in ["2", "0", "\r", "2", "5", "\r", "\x13"] {
-            // Now and then the child takes its time: long enough for a draft to grow old.
-            let pause = if moments.between(0, 24) == 0 {
-                1_300
-            } else {
-                moments.between(4, 16)
-            };
-            let until = (Instant::now() + Duration::from_millis(pause)).min(end);
-            while Instant::now() < until {
-                take(&screen, &mut terminal, Duration::from_millis(2));
-                note_saved(&terminal, &mut shown);
-            }
-            if Instant::now() >= end {
-                break 'typing;
-            }
-            keys.write_all(key.as_bytes())
-                .and_then(|()| keys.flush())
-                .expect("typed");
-            match key {
-                "2" | "0" | "5" if right.len() < 2 => right.push_str(key),
-                "2" | "5" => left.push_str(key),
-                _ => {}
-            }
-            log.push(Typed {
-                at: Instant::now(),
-                child,
-                right: right.clone(),
-                left: left.clone(),
-            });
-        }
-        child += 1;
-    }
-    program.clone_killer().kill().expect("killed");
-    let killed = Instant::now();
-    let _ = program.wait();
-    take(&screen, &mut terminal, Duration::from_millis(20));
-    note_saved(&terminal, &mut shown);
-
+    let queue = to_come(dir);
+    let mut program = Program::start(dir);
+    let length = Duration::from_millis(moments.between(30, 2_600));
+    let log = program.type_for(length, moments);
+    let killed = program.kill();
     let desk = reopen(dir);
     let day = desk.days().expect("days").remove(0);
-    for name in &shown {
+    for name in &program.shown {
         let id = name.replace("Okafor ", "K-");
         let child = desk.day_child(&day, &id).expect("a child");
         assert_ne!(
@@ -209,40 +125,174 @@ fn one_kill(dir: &Path, moments: &mut Moments, round: u64) -> (usize, usize) {
     let old = log
         .iter()
         .rev()
-        .find(|t| killed - t.at > Duration::from_secs(1));
-    let mut asked = 0;
-    if let Some(typed) = old.filter(|t| !t.right.is_empty()) {
-        let id = &queue[typed.child];
-        let signed = desk.day_child(&day, id).expect("a child").state != QueueState::ToCome;
-        if !signed {
-            asked = 1;
-            let drafts = desk.drafts().expect("drafts").load_every().expect("read");
-            let draft = drafts.iter().find(|d| d.child_id == *id);
-            let text = |field: &str| {
-                draft
-                    .and_then(|d| d.fields.iter().find(|(f, _)| f == field))
-                    .map_or_else(String::new, |(_, text)| text.clone())
-            };
-            for (field, typed) in [
-                ("distance_right", &typed.right),
-                ("distance_left", &typed.left),
-            ] {
-                let kept = text(field);
-                assert!(
-                    kept.contains(typed.as_str()),
-                    "round {round}: {id} {field} was {typed:?} more than a second ago, the draft has {kept:?}"
-                );
+        .find(|t| killed - t.at > Duration::from_secs(1))
+        .filter(|t| !t.right.is_empty());
+    let Some(typed) = old else {
+        return (program.shown.len(), 0);
+    };
+    let id = &queue[typed.child];
+    if desk.day_child(&day, id).expect("a child").state != QueueState::ToCome {
+        return (program.shown.len(), 0);
+    }
+    let drafts = desk.drafts().expect("drafts").load_every().expect("read");
+    let draft = drafts.iter().find(|d| d.child_id == *id);
+    for (field, typed) in [
+        ("distance_right", &typed.right),
+        ("distance_left", &typed.left),
+    ] {
+        let kept = draft
+            .and_then(|d| d.fields.iter().find(|(f, _)| f == field))
+            .map_or("", |(_, text)| text);
+        assert!(
+            kept.contains(typed.as_str()),
+            "round {round}: {id} {field} was {typed:?} more than a second ago, the draft has {kept:?}"
+        );
+    }
+    (program.shown.len(), 1)
+}
+
+/// Returns the children to come in the order of the queue, without drafts, so that every key is
+/// known to go to the right eye first.
+fn to_come(dir: &Path) -> Vec<String> {
+    let desk = reopen(dir);
+    let day = desk.days().expect("days").remove(0);
+    let drafts = desk.drafts().expect("drafts");
+    for draft in drafts.load_every().expect("read") {
+        drafts.delete(&draft.day, &draft.child_id).expect("deleted");
+    }
+    drafts.flush().expect("flushed");
+    desk.day_children(&day)
+        .expect("children")
+        .into_iter()
+        .filter(|c| c.state == QueueState::ToCome)
+        .map(|c| c.child_id)
+        .collect()
+}
+
+/// The program in a terminal.
+struct Program {
+    child: Box<dyn Child + Send + Sync>,
+    keys: Box<dyn Write + Send>,
+    screen: Receiver<Vec<u8>>,
+    terminal: vt100::Parser,
+    /// The children of whom it said "saved".
+    shown: Vec<String>,
+    _pty: Box<dyn MasterPty + Send>,
+}
+
+impl Program {
+    /// Starts it and waits until a child is on the bench.
+    fn start(dir: &Path) -> Program {
+        let pty = native_pty_system()
+            .openpty(PtySize {
+                rows: 36,
+                cols: 120,
+                pixel_width: 0,
+                pixel_height: 0,
+            })
+            .expect("a terminal");
+        let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_twoline"));
+        command.args(["--store", &dir.to_string_lossy(), "--today", TODAY]);
+        command.env("RUST_BACKTRACE", "0");
+        command.env("TERM", "xterm-256color");
+        let child = pty.slave.spawn_command(command).expect("the program");
+        drop(pty.slave);
+        let mut program = Program {
+            child,
+            keys: pty.master.take_writer().expect("a writer"),
+            screen: watch(pty.master.try_clone_reader().expect("a reader")),
+            terminal: vt100::Parser::new(rows(36), rows(120), 0),
+            shown: Vec::new(),
+            _pty: pty.master,
+        };
+        // A terminal answers when it is asked where its cursor is.
+        program.press("\x1b[1;1R");
+        let patience = Instant::now();
+        while !program.terminal.screen().contents().contains("RIGHT EYE") {
+            assert!(
+                patience.elapsed() < Duration::from_mins(1),
+                "{}",
+                program.terminal.screen().contents()
+            );
+            program.look(Duration::from_millis(50));
+        }
+        program
+    }
+
+    fn press(&mut self, keys: &str) {
+        self.keys
+            .write_all(keys.as_bytes())
+            .and_then(|()| self.keys.flush())
+            .expect("typed");
+    }
+
+    /// Looks at the screen, and notes the child of whom it says "saved".
+    fn look(&mut self, wait: Duration) {
+        if let Ok(bytes) = self.screen.recv_timeout(wait) {
+            self.terminal.process(&bytes);
+        }
+        while let Ok(bytes) = self.screen.try_recv() {
+            self.terminal.process(&bytes);
+        }
+        let contents = self.terminal.screen().contents();
+        if let Some(at) = contents.find("saved Okafor ") {
+            let name: String = contents[at + 6..].chars().take(13).collect();
+            if self.shown.last() != Some(&name) && name.len() == 13 {
+                self.shown.push(name);
             }
         }
     }
-    (shown.len(), asked)
+
+    /// Types child after child until the time is over.
+    fn type_for(&mut self, length: Duration, moments: &mut Moments) -> Vec<Typed> {
+        let end = Instant::now() + length;
+        let mut log: Vec<Typed> = Vec::new();
+        for child in 0.. {
+            let (mut right, mut left) = (String::new(), String::new());
+            for key in ["2", "0", "\r", "2", "5", "\r", "\x13"] {
+                // Now and then a child takes its time: long enough for a draft to grow old.
+                let slow = moments.between(0, 24) == 0;
+                let pause = if slow { 1_300 } else { moments.between(4, 16) };
+                let until = (Instant::now() + Duration::from_millis(pause)).min(end);
+                while Instant::now() < until {
+                    self.look(Duration::from_millis(2));
+                }
+                if Instant::now() >= end {
+                    return log;
+                }
+                self.press(key);
+                match key {
+                    "2" | "0" | "5" if right.len() < 2 => right.push_str(key),
+                    "2" | "5" => left.push_str(key),
+                    _ => {}
+                }
+                log.push(Typed {
+                    at: Instant::now(),
+                    child,
+                    right: right.clone(),
+                    left: left.clone(),
+                });
+            }
+        }
+        log
+    }
+
+    /// Kills it and returns when.
+    fn kill(&mut self) -> Instant {
+        self.child.clone_killer().kill().expect("killed");
+        let killed = Instant::now();
+        // It is gone: how it ended is known.
+        let _ = self.child.wait();
+        self.look(Duration::from_millis(20));
+        killed
+    }
 }
 
 /// Reads what the program draws, on a thread of its own.
 fn watch(mut from: Box<dyn Read + Send>) -> Receiver<Vec<u8>> {
     let (to, screen) = channel();
     std::thread::spawn(move || {
-        let mut buffer = [0; 65_536];
+        let mut buffer = vec![0; 65_536];
         while let Ok(n) = from.read(&mut buffer) {
             if n == 0 || to.send(buffer[..n].to_vec()).is_err() {
                 break;
@@ -250,24 +300,4 @@ fn watch(mut from: Box<dyn Read + Send>) -> Receiver<Vec<u8>> {
         }
     });
     screen
-}
-
-fn take(screen: &Receiver<Vec<u8>>, terminal: &mut vt100::Parser, wait: Duration) {
-    if let Ok(bytes) = screen.recv_timeout(wait) {
-        terminal.process(&bytes);
-    }
-    while let Ok(bytes) = screen.try_recv() {
-        terminal.process(&bytes);
-    }
-}
-
-/// Notes the child of whom the screen says "saved".
-fn note_saved(terminal: &vt100::Parser, shown: &mut Vec<String>) {
-    let contents = terminal.screen().contents();
-    if let Some(at) = contents.find("saved Okafor ") {
-        let name: String = contents[at + 6..].chars().take(13).collect();
-        if shown.last() != Some(&name) && name.len() == 13 {
-            shown.push(name);
-        }
-    }
 }
