@@ -3,6 +3,7 @@
 use std::fmt::Write as _;
 
 use crate::actions::{DayChild, QueueState, Signed};
+use crate::domain::age::spoken;
 use crate::domain::outcome::Urgency;
 use crate::tui::app::{Answer, App, Effect, Notice, Refused, Request, Tone};
 use crate::tui::day::Day;
@@ -130,6 +131,9 @@ impl App {
             // One of the states that are not a result comes first; the outcome stands behind it.
             state => format!("{verb} {who}: {}, {}", state.title(), outcome.kind.title()),
         };
+        if let Some(on) = outcome.act_by.or(outcome.due_on) {
+            let _ = write!(words, " by {}", spoken(on));
+        }
         if !outcome.qualifiers.is_empty() {
             let _ = write!(words, " ({})", outcome.qualifiers.join("; "));
         }

@@ -158,7 +158,14 @@ impl Sheet {
             let scroll = field.input.visual_scroll(space.max(1));
             let visible: String = value.chars().skip(scroll).collect();
             let text = if value.is_empty() {
-                Span::styled(cut(&safe(&field.example), space), theme.muted())
+                // In brackets behind the blank, so that without color nobody takes it for a value.
+                let example = safe(&field.example);
+                let blank = if example.is_empty() {
+                    "____".to_owned()
+                } else {
+                    format!("____ ({example})")
+                };
+                Span::styled(cut(&blank, space), theme.muted())
             } else {
                 Span::styled(
                     cut(&safe(&visible), space),
