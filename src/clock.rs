@@ -11,6 +11,14 @@ pub struct Moment {
     pub offset_minutes: i32,
 }
 
+impl Moment {
+    /// Returns the civil date that the clock on the wall showed.
+    pub fn date(self) -> Option<NaiveDate> {
+        let local = self.utc_ms + i64::from(self.offset_minutes) * 60_000;
+        chrono::DateTime::from_timestamp_millis(local).map(|at| at.date_naive())
+    }
+}
+
 /// Returns the present moment.
 pub fn now() -> Moment {
     let now = Local::now();

@@ -10,8 +10,9 @@ use uuid::Uuid;
 
 use super::error::{ActionError, Result};
 use super::rulebook::library_with;
-use crate::clock;
+use crate::clock::{self, Moment};
 use crate::domain::acuity::Notation;
+use crate::domain::age::spoken;
 use crate::rules::Library;
 use crate::store::row::{Screener, Station};
 use crate::store::{Access, Author, Drafts, Reads, Secret, Store};
@@ -174,17 +175,12 @@ impl Desk {
         Ok(self.read().head()?)
     }
 
-    /// Says what is odd about the clock: behind the newest entry, or more than a day ahead of it
-    /// while a day is being worked.
+    /// Says what is odd about the clock: behind the newest entry, or a day or more ahead of it.
     pub fn clock_warning(&self) -> Result<Option<String>> {
-        const HOUR_MS: i64 = 3_600_000;
-        let now = clock::now().utc_ms;
-        Ok(self.read().newest_entry_ms()?.filter(|newest| now < *newest).map(|newest| {
-            format!(
-                "this computer's clock is {} h behind the newest entry; check it before you go on",
-                (newest - now) / HOUR_MS + 1
-            )
-        }))
+        Ok(self
+            .read()
+            .newest_entry_ms()?
+            .and_then(|newest| oddity(clock::now(), newest)))
     }
 
     pub(super) fn read(&self) -> Reads<'_> {
@@ -217,6 +213,26 @@ impl Desk {
     }
 }
 
+fn oddity(now: Moment, newest_ms: i64) -> Option<String> {
+    const HOUR_MS: i64 = 3_600_000;
+    const DAY_MS: i64 = 24 * HOUR_MS;
+    let ahead = now.utc_ms - newest_ms;
+    if ahead < 0 {
+        let hours = -ahead / HOUR_MS + 1;
+        return Some(format!(
+            "this computer's clock is {hours} h behind the newest entry; check it before you go on"
+        ));
+    }
+    let days = ahead / DAY_MS;
+    let plural = if days == 1 { "" } else { "s" };
+    (days > 0).then(|| {
+        format!(
+            "the newest entry is {days} day{plural} old and this computer's clock says {}; is that right?",
+            now.date().map(spoken).unwrap_or_default()
+        )
+    })
+}
+
 /// Returns the shipped rules with the `*.toml` files of the store's `rules` folder beside them.
 fn library_of(dir: &Path) -> Result<Library> {
     let folder = dir.join("rules");
@@ -234,4 +250,29 @@ fn library_of(dir: &Path) -> Result<Library> {
     library_with(&files).map_err(|e| {
         ActionError::bad(e.to_string()).hint("correct or remove the file, then start again")
     })
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    // Practice: the wall clock is shown and asked about, never compared to order entries.
+    #[test]
+    fn a_clock_behind_the_newest_entry_or_a_day_ahead_of_it_is_odd() {
+        const HOUR_MS: i64 = 3_600_000;
+        let newest = 1_791_972_000_000; // 14 October 2026, 10:00 UTC
+        let at = |hours: i64| {
+            let now = Moment {
+                utc_ms: newest + hours * HOUR_MS,
+                offset_minutes: 0,
+            };
+            oddity(now, newest)
+        };
+        assert_eq!(at(0), None);
+        assert_eq!(at(23), None);
+        assert!(at(-1).is_some_and(|w| w.contains("behind")));
+        let ahead = at(24).expect("a day ahead");
+        assert!(ahead.contains("1 day old"), "{ahead}");
+        assert!(ahead.contains("15 Oct 2026"), "{ahead}");
+    }
 }

@@ -6,7 +6,7 @@ use std::path::PathBuf;
 use directories::ProjectDirs;
 use zeroize::Zeroizing;
 
-use super::output::{clean, say};
+use super::output::{clean, confirmed, say};
 use super::{Failure, Global};
 use crate::actions::{self, Desk, DeskOptions, Secret};
 
@@ -31,6 +31,11 @@ pub(super) fn to_write(global: &Global) -> Result<Desk, Failure> {
     let desk = Desk::open(&dir, &secret, &options(global))?;
     if let Some(warning) = desk.clock_warning()? {
         say(&format!("note: {warning}"));
+        if stdin().is_terminal() && !confirmed("Go on with this clock?")? {
+            return Err(Failure::failed("nothing was written").hint(
+                "set this computer's clock; --today sets the screening day for late entries",
+            ));
+        }
     }
     Ok(desk)
 }
