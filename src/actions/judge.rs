@@ -11,6 +11,7 @@ use chrono::NaiveDate;
 use crate::actions::rulebook::UnknownRule;
 use crate::domain::acuity::Line;
 use crate::domain::age::{AgeMonths, Grade};
+use crate::domain::codes::Attempt;
 use crate::domain::outcome::{Outcome, OutcomeKind};
 use crate::domain::text::nearest;
 use crate::intake::results::{self, Options, ResultRow, ResultsReader};
@@ -282,7 +283,7 @@ fn case_of(row: &ResultRow) -> Case<'_> {
         age: row.age,
         grade: row.grade,
         on: row.screened_on,
-        attempt: row.attempt,
+        attempt: row.attempt.unwrap_or(Attempt::First),
         ..Case::new(&row.readings)
     }
 }

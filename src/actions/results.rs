@@ -5,6 +5,7 @@ use super::desk::Desk;
 use super::error::{ActionError, Result};
 use super::views::{DayChild, DayInfo};
 use super::visit_rows::{VisitRows, judged};
+use crate::domain::codes::Attempt;
 use crate::domain::field::Field;
 use crate::domain::readings::Readings;
 use crate::intake::results::{Options, ResultRow, read_results};
@@ -119,18 +120,24 @@ impl Desk {
                 format!("{born}, as the roster says"),
             );
         }
-        let child = DayChild {
-            attempt: row.attempt,
-            ..self.day_child(day, &row.child_id)?
-        };
+        let child = self.day_child(day, &row.child_id)?;
+        // A row that does not say which visit it is means the one that is due.
+        let attempt = row.attempt.unwrap_or(child.attempt);
+        let child = DayChild { attempt, ..child };
         let readings = match self.by_method(day, &child, row.readings) {
             Ok(readings) => readings,
             Err(e) => return wrong(e.field.word(), &e.found, e.expected),
         };
-        let Some(visit) = self
-            .read()
-            .visit_on(&row.child_id, &key_of(day), row.attempt)?
-        else {
+        let Some(visit) = self.read().visit_on(&row.child_id, &key_of(day), attempt)? else {
+            let planned =
+                |p: &PlannedVisit| p.child.attempt == attempt && p.child.child_id == row.child_id;
+            if attempt == Attempt::Rescreen && plan.new.iter().any(planned) {
+                return wrong(
+                    "child_id",
+                    &row.child_id,
+                    "each child, day and visit once".to_owned(),
+                );
+            }
             plan.new.push(PlannedVisit { child, readings });
             return Ok(Ok(()));
         };

@@ -71,8 +71,8 @@ pub struct ResultRow {
     pub grade: Option<Grade>,
     /// Screening day: the row's own, else that of the options.
     pub screened_on: Option<NaiveDate>,
-    /// First visit or rescreen; a blank cell is a first visit.
-    pub attempt: Attempt,
+    /// First visit or rescreen, where the row says which.
+    pub attempt: Option<Attempt>,
     /// The values of the visit.
     pub readings: Readings,
 }
@@ -86,7 +86,7 @@ impl Default for ResultRow {
             age: None,
             grade: None,
             screened_on: None,
-            attempt: Attempt::First,
+            attempt: None,
             readings: Readings::default(),
         }
     }
@@ -229,7 +229,8 @@ impl<'a> ResultsReader<'a> {
     }
 
     fn check_repeat(&mut self, row: &ResultRow, problems: &mut Vec<Problem>) {
-        let key = (row.child_id.clone(), row.screened_on, row.attempt);
+        let attempt = row.attempt.unwrap_or(Attempt::First);
+        let key = (row.child_id.clone(), row.screened_on, attempt);
         match self.seen.get(&key) {
             Some(first) => problems.push(
                 Problem::of_cell(
@@ -310,7 +311,7 @@ impl<'a> ResultsReader<'a> {
         };
         row.child_id.clear();
         (row.dob, row.grade, row.age) = (None, None, None);
-        (row.screened_on, row.attempt) = (self.options.day, Attempt::First);
+        (row.screened_on, row.attempt) = (self.options.day, None);
         let mut dates_read = true;
         for (i, column) in &self.row_order {
             let cell = self.record[*i].trim();
@@ -336,7 +337,7 @@ impl<'a> ResultsReader<'a> {
                     None => wrong(*column, cell, "a grade: PK, TK, KG or K, 1 to 12".into()),
                 },
                 RowColumn::Attempt => match Attempt::from_word(cell) {
-                    Some(attempt) => row.attempt = attempt,
+                    Some(attempt) => row.attempt = Some(attempt),
                     None => wrong(*column, cell, cells::one_of(&Attempt::words(), cell)),
                 },
             }

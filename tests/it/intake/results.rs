@@ -240,7 +240,7 @@ fn what_must_hold_between_columns() {
     );
     bad("grade,signs\nYear 4,none\n", "grade", "Year 4", "a grade");
     let rows = read("grade,attempt,testable\nK,rescreen,no\n").expect("good");
-    assert_eq!(rows[0].attempt, Attempt::Rescreen);
+    assert_eq!(rows[0].attempt, Some(Attempt::Rescreen));
     assert_eq!(rows[0].readings.testable, Some(YesNo::No));
 }
 
