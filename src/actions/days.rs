@@ -170,13 +170,16 @@ fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
         earlier,
     } = stored;
     let decided = |visit: &VisitNow, by: DecidedBy| visit.decided_by.as_deref() == Some(by.word());
-    // The last earlier visit that judged the child says whether this day is a rescreen; a visit that
-    // only lacked the glasses did not use up the first attempt.
-    let last = earlier.iter().rev().find(|v| v.kind.is_some());
-    let rescreen = last.is_some_and(|v| {
-        v.kind == Some(OutcomeKind::Rescreen)
-            || (v.attempt == Attempt::Rescreen && v.kind == Some(OutcomeKind::Incomplete))
-    });
+    // The last visit that judged the child says whether this day is a rescreen. One that came to
+    // nothing (absent, no glasses, stopped half-way) neither uses up an attempt nor clears a date.
+    let judged = earlier
+        .iter()
+        .rposition(|v| v.kind.is_some_and(|kind| kind != OutcomeKind::Incomplete));
+    let rescreen = judged.is_some_and(|at| earlier[at].kind == Some(OutcomeKind::Rescreen));
+    let due_on = earlier[judged.unwrap_or(0)..]
+        .iter()
+        .rev()
+        .find_map(|v| v.due_on);
     let here = visits.last();
     DayChild {
         age: child.dob.and_then(|born| AgeMonths::between(born, on)),
@@ -193,14 +196,7 @@ fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
             .filter(|v| decided(v, DecidedBy::GlassesNotWorn))
             .count() as u32,
         not_testable_before: earlier.iter().any(|v| decided(v, DecidedBy::NotTestable)),
-        due_on: last
-            .filter(|v| {
-                matches!(
-                    v.kind,
-                    Some(OutcomeKind::Rescreen | OutcomeKind::Incomplete)
-                )
-            })
-            .and_then(|v| v.due_on),
+        due_on,
         state: here.map_or(QueueState::ToCome, |visit| state_of(visit, child.consent)),
         wears_glasses: child.wears_glasses.map(|v| v == YesNo::Yes),
         consent: child.consent,

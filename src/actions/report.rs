@@ -66,6 +66,12 @@ impl Desk {
                 row.reasons = outcome.reasons;
                 row.rule_set = outcome.rule_set;
                 row.edition = outcome.edition;
+                // Age and grade as they were judged: the roster may say otherwise by now.
+                row.age = signed
+                    .age_months
+                    .and_then(|months| u32::try_from(months).ok())
+                    .map(AgeMonths)
+                    .or(row.age);
                 row.grade = signed.grade.or(row.grade);
                 row.tested_on = Some(signed.tested_on);
                 row.screener = signed
@@ -77,12 +83,7 @@ impl Desk {
                     .and_then(|id| stations.get(&id).map(|s| s.name.clone()))
                     .unwrap_or_default();
             }
-            if let Some(visit) = &stored.visit {
-                row.entered_at = instant(Moment {
-                    utc_ms: visit.recorded_at_ms,
-                    offset_minutes: 0,
-                });
-            }
+            row.entered_at = stored.entered.map(instant).unwrap_or_default();
             rows.push(row);
         }
         let head = self.head()?;

@@ -10,7 +10,7 @@ use crate::clock;
 use crate::domain::codes::AcuityMethod;
 use crate::domain::field::{Field, FieldError};
 use crate::domain::outcome::{Outcome, RiskKind, Urgency};
-use crate::domain::readings::{AcuityResult, ReadingContext, Readings};
+use crate::domain::readings::{AcuityResult, Eyes, ReadingContext, Readings};
 use crate::rules::explain;
 use crate::store::read::ReadingNow;
 use crate::store::row::{self, Reading, RuleSetUsed, UrgentAction, Visit};
@@ -256,7 +256,8 @@ impl Desk {
         })
     }
 
-    /// Returns the running line that an emergency raises, unless this visit has one.
+    /// Returns the running line that an emergency raises, unless this visit has one that still runs
+    /// or that was answered for the same signs.
     fn emergency(
         &self,
         visit: Uuid,
@@ -264,9 +265,13 @@ impl Desk {
         readings: &Readings,
         outcome: &Outcome,
     ) -> Result<Option<UrgentAction>> {
-        if outcome.urgency != Some(Urgency::Emergency)
-            || self
-                .read()
+        if outcome.urgency != Some(Urgency::Emergency) {
+            return Ok(None);
+        }
+        let signs = emergency_words(readings, outcome);
+        let read = self.read();
+        if read.urgent_of(visit)?.iter().any(|u| u.signs == signs)
+            || read
                 .urgent_open()?
                 .iter()
                 .any(|u| u.raised.visit_id == Some(visit))
@@ -280,7 +285,7 @@ impl Desk {
             step: "raised".to_owned(),
             child_id: child.child_id.clone(),
             visit_id: Some(visit),
-            signs: emergency_words(readings, outcome),
+            signs,
             told: String::new(),
             at_ms: at.utc_ms,
             at_offset_minutes: i64::from(at.offset_minutes),
@@ -328,7 +333,7 @@ impl Desk {
             station_id: Some(self.store.station_id()),
             tested_on: day.date,
             entered_on,
-            late: entered_on > day.date,
+            late: entered_on > day.date || entered_on != self.today,
         }
     }
 
@@ -446,8 +451,8 @@ pub(super) fn tries_of(readings: &[ReadingNow]) -> Result<Vec<Readings>> {
     Ok(tries)
 }
 
-/// Returns what is judged of several tries: the distance acuity of the latest complete try (else of
-/// the last one), and the latest of everything else.
+/// Returns what is judged of several tries: the distance acuity of the latest complete try, else the
+/// latest that each eye read, and the latest of everything else.
 pub(super) fn judged(tries: &[Readings]) -> Readings {
     let Some(last) = tries.last() else {
         return Readings::default();
@@ -465,14 +470,35 @@ pub(super) fn judged(tries: &[Readings]) -> Readings {
             .iter()
             .all(|eye| matches!(eye, Some(AcuityResult::Read(_))))
     };
-    let chart = tries.iter().rev().find(complete).unwrap_or(last);
+    let whole = tries.iter().rev().find(complete);
+    let chart = whole.unwrap_or(last);
     Readings {
-        distance: chart.distance,
+        // A try of one eye does not undo what the other eye read before it.
+        distance: whole.map_or_else(
+            || Eyes {
+                right: latest_read(tries, |eyes| eyes.right),
+                left: latest_read(tries, |eyes| eyes.left),
+            },
+            |whole| whole.distance,
+        ),
         distance_both: chart.distance_both,
         testable: chart.testable,
         not_testable_reason: chart.not_testable_reason,
         ..out
     }
+}
+
+/// Returns the latest acuity that an eye read, else the latest word about it.
+fn latest_read(
+    tries: &[Readings],
+    eye: impl Fn(Eyes<Option<AcuityResult>>) -> Option<AcuityResult>,
+) -> Option<AcuityResult> {
+    let results: Vec<AcuityResult> = tries.iter().rev().filter_map(|r| eye(r.distance)).collect();
+    results
+        .iter()
+        .find(|result| matches!(result, AcuityResult::Read(_)))
+        .or(results.first())
+        .copied()
 }
 
 fn emergency_words(readings: &Readings, outcome: &Outcome) -> String {

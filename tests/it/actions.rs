@@ -1,5 +1,7 @@
 //! Tests of `actions`: a desk on a store of its own, as a nurse would use it.
 
+mod later_visits;
+
 use chrono::NaiveDate;
 use twoline::actions::{
     Desk, DeskOptions, Kdf, NewChild, NewDay, NewStore, QueueState, Secret, SignRequest, Signed,

@@ -8,9 +8,10 @@ use uuid::Uuid;
 
 use super::visit::VISIT_NOW;
 use super::{ChildNow, Columns, ReadingNow, Reads, VisitNow};
+use crate::clock::Moment;
 use crate::store::cell::Value;
 use crate::store::error::Result;
-use crate::store::row::{DayKey, Outcome, UrgentAction};
+use crate::store::row::{DayKey, Outcome, UrgentAction, Visit};
 
 /// A row of the day report.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -19,6 +20,8 @@ pub struct ReportRow {
     pub child: ChildNow,
     /// The visit; none for a child not seen.
     pub visit: Option<VisitNow>,
+    /// When the visit was first entered.
+    pub entered: Option<Moment>,
     /// Its present readings.
     pub readings: Vec<ReadingNow>,
     /// Its present outcome, as signed.
@@ -67,6 +70,7 @@ impl Reads<'_> {
                 out.push(ReportRow {
                     child: child.child,
                     visit: None,
+                    entered: None,
                     readings: Vec::new(),
                     outcome: None,
                 });
@@ -77,6 +81,10 @@ impl Reads<'_> {
                     child: child.child.clone(),
                     readings: self.readings(visit.visit_id)?,
                     outcome: outcomes.remove(&visit.visit_id),
+                    entered: self
+                        .recorded::<Visit>("x.visit_id = ?1", &[visit.visit_id.cell()])?
+                        .first()
+                        .map(|entry| entry.at),
                     visit: Some(visit),
                 });
             }
@@ -106,6 +114,18 @@ impl Reads<'_> {
         .collect()
     }
 
+    /// Returns what raised the emergencies of a visit, answered or not.
+    pub fn urgent_of(&self, visit: Uuid) -> Result<Vec<UrgentAction>> {
+        self.rows::<UrgentAction>(
+            &format!(
+                "x.visit_id = ?1 AND x.step = 'raised' AND {}",
+                super::generic::LIVE
+            ),
+            "x.tx, x.ord",
+            &[visit.cell()],
+        )
+    }
+
     /// Returns the visits whose present outcome is refer, by the date to act by, then day.
     pub fn referred(&self) -> Result<Vec<(ChildNow, VisitNow)>> {
         self.with_children(&format!(
@@ -114,14 +134,15 @@ impl Reads<'_> {
         ))
     }
 
-    /// Returns the visits whose present outcome waits for another visit (rescreen, or incomplete
-    /// with a date), and none came since, by due date.
+    /// Returns the visits whose present outcome waits for another visit (a rescreen, or anything
+    /// with a date), and none came since that settles it, by due date. A child who was only absent
+    /// still waits.
     pub fn due(&self) -> Result<Vec<(ChildNow, VisitNow)>> {
         self.with_children(&format!(
             "SELECT {VISIT_NOW} FROM visit_current v \
-             WHERE (v.kind = 'rescreen' OR (v.kind = 'incomplete' AND v.due_on IS NOT NULL)) \
+             WHERE (v.kind = 'rescreen' OR v.due_on IS NOT NULL) \
              AND NOT EXISTS (SELECT 1 FROM visit_current w WHERE w.child_id = v.child_id \
-                 AND w.kind IS NOT NULL AND (w.screened_on > v.screened_on \
+                 AND (w.kind <> 'incomplete' OR w.due_on IS NOT NULL) AND (w.screened_on > v.screened_on \
                  OR (w.screened_on = v.screened_on AND w.attempt > v.attempt))) \
              ORDER BY v.due_on IS NULL, v.due_on, v.visit_id"
         ))
