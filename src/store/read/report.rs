@@ -140,7 +140,7 @@ impl Reads<'_> {
     pub fn due(&self) -> Result<Vec<(ChildNow, VisitNow)>> {
         self.with_children(&format!(
             "SELECT {VISIT_NOW} FROM visit_current v \
-             WHERE (v.kind = 'rescreen' OR v.due_on IS NOT NULL) \
+             WHERE (v.kind = 'rescreen' OR (v.kind <> 'refer' AND v.due_on IS NOT NULL)) \
              AND NOT EXISTS (SELECT 1 FROM visit_current w WHERE w.child_id = v.child_id \
                  AND (w.kind <> 'incomplete' OR w.due_on IS NOT NULL) AND (w.screened_on > v.screened_on \
                  OR (w.screened_on = v.screened_on AND w.attempt > v.attempt))) \
