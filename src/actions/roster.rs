@@ -79,13 +79,14 @@ impl Desk {
                 without_dob: Vec::new(),
                 without_grade: Vec::new(),
                 alike: Vec::new(),
+                absent: Vec::new(),
                 children,
             },
             term,
         )
     }
 
-    fn compare_roster(&self, roster: Roster, term: Option<&str>) -> Result<RosterPlan> {
+    fn compare_roster(&self, mut roster: Roster, term: Option<&str>) -> Result<RosterPlan> {
         let term = match term {
             Some(code) => self.term(code)?,
             None => self.term_on(self.today)?,
@@ -98,6 +99,7 @@ impl Desk {
             .map(|c| c.child_id.as_str())
             .collect();
         known.retain(|k| spoken_of.contains(&*k.site) || in_file.contains(&*k.child_id));
+        roster.keep_known(&known);
         let update = RosterUpdate::compare(&known, &roster.children);
         Ok(RosterPlan {
             term: term.code,

@@ -80,6 +80,69 @@ pub struct Roster {
     pub without_grade: Vec<usize>,
     /// Pairs to look at: probable duplicates, twins, children of the same name.
     pub alike: Vec<Alike>,
+    /// Optional columns that the file does not have: it says nothing of them.
+    pub absent: Vec<Column>,
+}
+
+impl Roster {
+    /// Takes from what is known whatever the file does not speak of: columns it does not have, and a
+    /// blank consent, which never takes a consent or a refusal back.
+    pub fn keep_known(&mut self, known: &[RosterChild]) {
+        let known: HashMap<&str, &RosterChild> = known
+            .iter()
+            .map(|child| (&*child.child_id, child))
+            .collect();
+        for child in &mut self.children {
+            let Some(before) = known.get(&*child.child_id) else {
+                continue;
+            };
+            let (details, before) = (&mut child.details, &before.details);
+            for column in &self.absent {
+                keep(details, before, *column);
+            }
+            details.consent = details.consent.or(before.consent);
+        }
+    }
+}
+
+fn keep(details: &mut RosterDetails, known: &RosterDetails, column: Column) {
+    macro_rules! same {
+        ($field:ident) => {
+            details.$field.clone_from(&known.$field)
+        };
+    }
+    match column {
+        Column::ChildId
+        | Column::FamilyName
+        | Column::GivenName
+        | Column::Dob
+        | Column::Grade
+        | Column::Site => {}
+        Column::Class => same!(class),
+        Column::Teacher => same!(teacher),
+        Column::Sex => same!(sex),
+        Column::Language => same!(language),
+        Column::Ethnicity => same!(ethnicity),
+        Column::Insurance => same!(insurance),
+        Column::SpecialEducation => same!(special_education),
+        Column::StateId => same!(state_id),
+        Column::GuardianName => same!(guardian_name),
+        Column::GuardianPhone => same!(guardian_phone),
+        Column::GuardianEmail => same!(guardian_email),
+        Column::GuardianAddress => same!(guardian_address),
+        Column::Guardian2Name => same!(guardian2_name),
+        Column::Guardian2Phone => same!(guardian2_phone),
+        Column::Guardian2Email => same!(guardian2_email),
+        Column::Consent => same!(consent),
+        Column::WearsGlasses => same!(wears_glasses),
+        Column::LastExamOn => same!(last_exam_on),
+        Column::UnderCare => same!(under_care),
+        Column::KnownCondition => same!(known_condition),
+        Column::DoctorName => same!(doctor_name),
+        Column::DoctorPhone => same!(doctor_phone),
+        Column::History => same!(history),
+        Column::Notes => same!(notes),
+    }
 }
 
 /// Reads a roster; `today` bounds birth and examination dates.
@@ -103,6 +166,11 @@ pub fn read_roster(file: &str, bytes: &[u8], today: NaiveDate) -> Result<Roster,
         without_dob: Vec::new(),
         without_grade: Vec::new(),
         alike: Vec::new(),
+        absent: Column::ALL
+            .iter()
+            .copied()
+            .filter(|column| !columns.contains(column))
+            .collect(),
     };
     let mut seen: HashMap<String, Place> = HashMap::new();
     let mut record = StringRecord::new();

@@ -172,8 +172,8 @@ mod tests {
     #[test]
     fn a_line_goes_on_under_what_follows_its_label() {
         assert_eq!(
-            wrap_under("  Enter   takes the value", 16),
-            ["  Enter   takes", "          the", "          value"]
+            wrap_under("  Enter   takes the value", 20),
+            ["  Enter   takes the", "          value"]
         );
         assert_eq!(wrap_under("- one two", 6), ["- one", "  two"]);
     }

@@ -573,3 +573,44 @@ fn the_roster_answers_whether_a_child_owns_glasses() {
     );
     assert_eq!(signed.outcome.criteria, ["plus-lens-2.50/plus-lens"]);
 }
+
+#[test]
+fn a_roster_without_a_column_leaves_it_as_it_is_known() {
+    let (_folder, mut desk) = empty_desk();
+    let plan = |text: &str, desk: &Desk| {
+        desk.plan_roster("r.csv", text.as_bytes(), None, None)
+            .expect("a plan")
+    };
+    let first = plan(
+        "child_id,family_name,given_name,dob,grade,site,consent,wears_glasses\n\
+         Q-9,Sands,Oliver,2020-03-02,1,QE,no,yes\n",
+        &desk,
+    );
+    desk.add_roster(&first).expect("written");
+    let without = plan(
+        "child_id,family_name,given_name,dob,grade,site\nQ-9,Sands,Oliver,2020-03-02,1,QE\n",
+        &desk,
+    );
+    let counts =
+        |p: &twoline::actions::RosterPlan| (p.update.changed.len(), p.update.unchanged.len());
+    assert_eq!(counts(&without), (0, 1));
+    let blank = plan(
+        "child_id,family_name,given_name,dob,grade,site,consent,wears_glasses\n\
+         Q-9,Sands,Oliver,2020-03-02,1,QE,,\n",
+        &desk,
+    );
+    assert_eq!(
+        counts(&blank),
+        (1, 0),
+        "a blank cell of a column that is there says something"
+    );
+    desk.add_roster(&blank).expect("written");
+    let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
+    let child = desk.day_child(&day, "Q-9").expect("a child");
+    assert_eq!(child.wears_glasses, None);
+    assert_eq!(
+        child.consent,
+        Some(Consent::No),
+        "a blank takes no refusal back"
+    );
+}
