@@ -1,5 +1,7 @@
 //! Reports and tables: typed rows out of the store.
 
+use std::collections::BTreeSet;
+
 use chrono::{DateTime, FixedOffset};
 
 use super::days::key_of;
@@ -33,6 +35,7 @@ impl Desk {
         let screeners = self.screener_names()?;
         let stations = self.stations()?;
         let mut rows = Vec::new();
+        let mut signed_with = BTreeSet::new();
         for stored in self.read().day_report(&key_of(day))? {
             let child = stored.child;
             let mut row = DayReportRow {
@@ -55,6 +58,11 @@ impl Desk {
             }
             if let Some(signed) = &stored.outcome {
                 let outcome = stored_outcome(signed);
+                signed_with.insert((
+                    signed.rule_set.clone(),
+                    signed.edition.clone(),
+                    signed.content_hash.clone(),
+                ));
                 row.outcome = Some(outcome.kind);
                 row.qualifiers = outcome.qualifiers;
                 row.urgency = outcome.urgency;
@@ -95,7 +103,7 @@ impl Desk {
         let bytes = day::write(Vec::new(), Form::exact(exact), rows, &state)
             .map_err(|e| ActionError::failed(e.to_string()))?;
         let title = format!("Day report, {}, {}", day.site_name, spoken(day.date));
-        let used = self.rule_sets_of(day);
+        let used = self.rule_sets_of(day, signed_with);
         let about = day::about(&About {
             title: &title,
             state: Some(&state),
@@ -110,33 +118,52 @@ impl Desk {
         })
     }
 
-    fn rule_sets_of(&self, day: &DayInfo) -> Vec<RuleSetUsed> {
-        let Some(protocol) = self.library.protocol(&day.protocol) else {
-            return Vec::new();
-        };
-        let sets = protocol
-            .rule_sets
-            .iter()
-            .chain(&protocol.when_done)
-            .chain(&protocol.instrument);
-        std::iter::once(RuleSetUsed {
-            id: protocol.id.to_string(),
-            title: protocol.title.clone(),
-            edition: protocol.edition.to_string(),
-            content_hash: protocol.content_hash.to_string(),
-            sources: protocol.sources.iter().map(|s| (**s).clone()).collect(),
-        })
-        .chain(
-            sets.filter_map(|id| self.library.rule_set(id))
-                .map(|set| RuleSetUsed {
-                    id: set.id.to_string(),
-                    title: set.title.clone(),
-                    edition: set.edition.to_string(),
-                    content_hash: set.content_hash.to_string(),
-                    sources: set.sources.iter().map(|s| (**s).clone()).collect(),
-                }),
-        )
-        .collect()
+    /// Returns the protocol of a day with its rule sets, and what else outcomes of the day were
+    /// signed with: an edition that has been replaced since.
+    fn rule_sets_of(
+        &self,
+        day: &DayInfo,
+        signed_with: BTreeSet<(String, String, String)>,
+    ) -> Vec<RuleSetUsed> {
+        let mut out = Vec::new();
+        if let Some(protocol) = self.library.protocol(&day.protocol) {
+            out.push(RuleSetUsed {
+                id: protocol.id.to_string(),
+                title: protocol.title.clone(),
+                edition: protocol.edition.to_string(),
+                content_hash: protocol.content_hash.to_string(),
+                sources: protocol.sources.iter().map(|s| (**s).clone()).collect(),
+            });
+            let sets = protocol
+                .rule_sets
+                .iter()
+                .chain(&protocol.when_done)
+                .chain(&protocol.instrument);
+            for set in sets.filter_map(|id| self.library.rule_set(id)) {
+                if out.iter().all(|known| known.id != *set.id) {
+                    out.push(RuleSetUsed {
+                        id: set.id.to_string(),
+                        title: set.title.clone(),
+                        edition: set.edition.to_string(),
+                        content_hash: set.content_hash.to_string(),
+                        sources: set.sources.iter().map(|s| (**s).clone()).collect(),
+                    });
+                }
+            }
+        }
+        for (id, edition, content_hash) in signed_with {
+            if out.iter().all(|known| known.content_hash != content_hash) {
+                out.push(RuleSetUsed {
+                    title: "outcomes signed before the rules changed; the text is in the store"
+                        .to_owned(),
+                    id,
+                    edition,
+                    content_hash,
+                    sources: Vec::new(),
+                });
+            }
+        }
+        out
     }
 
     /// Returns who was referred or is due to come back, soonest first, as a table with its header.
