@@ -7,6 +7,7 @@
 //! - [`rules`]: rule files in, three-valued answers and their reasons out
 //! - [`intake`]: bytes in, typed rows or located errors out
 //! - [`reports`]: typed rows in, bytes out
+//! - [`stats`]: intervals; knows nothing of the rest
 //! - [`store`]: the encrypted, append-only store; the only place with SQL
 //! - [`actions`]: one function = one user intention = one transaction
 //! - [`keys`]: the one declaration of commands and keys
@@ -24,5 +25,6 @@ pub mod intake;
 pub mod keys;
 pub mod reports;
 pub mod rules;
+pub mod stats;
 pub mod store;
 pub mod tui;

@@ -4,6 +4,8 @@
 //! threshold stands in code: [`load`](Library::with_local) types what the files say, [`judge_rule_set`]
 //! and [`judge_protocol`] answer from it, [`explain`] and [`show`] put both into words.
 
+pub mod check;
+pub mod compare;
 mod error;
 mod evaluate;
 pub mod explain;

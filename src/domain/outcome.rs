@@ -73,6 +73,8 @@ pub struct Source {
     pub basis: Basis,
     /// Where it was quoted, for a secondary basis.
     pub quoted_in: String,
+    /// "local, approved by … on …" where a local rule file speaks; empty for what is shipped.
+    pub approval: String,
 }
 
 /// How far a reading lies from the threshold, in the criterion's own unit.

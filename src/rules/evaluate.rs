@@ -14,11 +14,12 @@ use crate::domain::readings::Eye;
 use crate::rules::{Case, RuleSet};
 
 pub(super) use facts::Facts;
-pub(super) use set::{Spoken, pass_line, scope, speak};
+pub(super) use refraction::{largest_passing, meridional};
+pub(super) use set::{Spoken, answer, is_for, pass_line, scope, speak};
 
 /// What one criterion answered, before it is put beside its source.
 #[derive(Debug, Clone, PartialEq, Eq)]
-pub(super) struct Answered {
+pub(in crate::rules) struct Answered {
     pub answer: Answer,
     pub eye: Option<Eye>,
     pub reading: String,

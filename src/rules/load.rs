@@ -1,5 +1,6 @@
 //! TOML text to typed rule sets and protocols; every fault is found before anything is refused.
 
+mod based_on;
 mod criterion;
 mod protocol;
 mod reader;
@@ -37,6 +38,8 @@ const SET_KEYS: &[&str] = &[
     "line_credit_source",
     "approved_by",
     "approved_on",
+    "based_on",
+    "remove",
     "source",
     "criterion",
 ];
@@ -74,7 +77,10 @@ pub(super) fn load(
         table: table.get_ref(),
         span: 0..text.lines().next().map_or(0, str::len),
     };
-    let kind = reader.string(&root, "kind");
+    let kind = match base_kind(&root, library) {
+        Some(kind) => Some((kind, 0..0)),
+        None => reader.string(&root, "kind"),
+    };
     let is_protocol = kind.as_ref().is_some_and(|(k, _)| k == "protocol");
     let loaded = if is_protocol {
         protocol::load(&mut reader, &root, local, library).map(|p| Loaded::Protocol(Box::new(p)))
@@ -88,7 +94,7 @@ pub(super) fn load(
                 Kind::from_word,
             )
         });
-        rule_set(&mut reader, &root, kind, local).map(|s| Loaded::Set(Box::new(s)))
+        rule_set(&mut reader, &root, kind, local, library).map(|s| Loaded::Set(Box::new(s)))
     };
     match loaded {
         Some(loaded) if reader.errors.is_empty() => Ok(loaded),
@@ -99,13 +105,23 @@ pub(super) fn load(
     }
 }
 
+/// Returns the kind of the rule set that a local file is based on, where the file names none.
+fn base_kind(root: &Section<'_, '_>, library: &Library) -> Option<String> {
+    let base = root.table.get("based_on")?.get_ref().as_str()?;
+    let unsaid = !root.table.contains_key("kind");
+    let set = library.rule_set(base).filter(|_| unsaid)?;
+    Some(set.kind.word().to_owned())
+}
+
 fn rule_set(
     reader: &mut Reader<'_>,
     root: &Section<'_, '_>,
     kind: Option<Kind>,
     local: bool,
+    library: &Library,
 ) -> Option<RuleSet> {
     reader.only(root, SET_KEYS);
+    let base = based_on::read(reader, root, local, library);
     let head = head(reader, root, local);
     let sources = sources(reader, root);
     let (credit, credit_text, credit_source) = line_credit(reader, root, &sources);
@@ -121,8 +137,11 @@ fn rule_set(
         }
         ages
     });
-    let criteria = criterion::load_all(reader, root, "criterion", &sources);
-    if criteria.is_empty() && reader.errors.is_empty() {
+    let criteria = criterion::load_all(reader, root, "criterion", &sources, base.as_ref());
+    let kept = base
+        .as_ref()
+        .is_some_and(|b| b.kept(|id| criteria.iter().any(|c| *c.id == *id)).next().is_some());
+    if criteria.is_empty() && !kept && reader.errors.is_empty() {
         reader.fault(
             root.span.clone(),
             "a rule set without a criterion",
@@ -135,7 +154,7 @@ fn rule_set(
     let by_grade = criteria
         .iter()
         .any(|c| matches!(c.applies, Applies::Grades(_)));
-    Some(RuleSet {
+    let set = RuleSet {
         id: head.id.into(),
         title: head.title,
         edition: head.edition.into(),
@@ -162,7 +181,12 @@ fn rule_set(
         content_hash: hash([reader.text]),
         span,
         by_grade,
-    })
+        based_on: None,
+    };
+    Some(based_on::approved(match base {
+        Some(base) => base.completed(set),
+        None => set,
+    }))
 }
 
 /// Returns the ages that all bands of a set cover together.
@@ -220,7 +244,11 @@ fn head(reader: &mut Reader<'_>, root: &Section<'_, '_>, local: bool) -> Option<
     });
     let title = reader.string(root, "title");
     let edition = reader.string(root, "edition");
-    let by = reader.optional(root, "approved_by");
+    let by = if root.table.contains_key("approved_by") {
+        reader.string(root, "approved_by")
+    } else {
+        None
+    };
     let on = reader.date(root, "approved_on");
     let approval = by.zip(on).map(|((by, _), on)| Approval { by, on });
     if local {
@@ -290,6 +318,7 @@ fn sources(reader: &mut Reader<'_>, root: &Section<'_, '_>) -> Vec<Arc<Source>> 
             locator,
             basis,
             quoted_in,
+            approval: String::new(),
         }));
     }
     out
@@ -302,6 +331,7 @@ fn practice() -> Arc<Source> {
         locator: String::new(),
         basis: Basis::Practice,
         quoted_in: String::new(),
+        approval: String::new(),
     })
 }
 

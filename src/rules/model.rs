@@ -257,6 +257,21 @@ pub struct RuleSet {
     pub span: Option<(u32, Option<u32>)>,
     /// Whether it goes by grade.
     pub by_grade: bool,
+    /// The rule set whose criteria it takes over, for a local set that overrides single ones.
+    pub based_on: Option<Arc<str>>,
+}
+
+impl RuleSet {
+    /// Returns "local, approved by … on …" for a local set, with what it is based on.
+    pub fn approval_words(&self) -> Option<String> {
+        let approval = self.local.as_ref()?;
+        let mut words = format!("local, approved by {} on {}", approval.by, approval.on);
+        if let Some(base) = &self.based_on {
+            words.push_str(", based on ");
+            words.push_str(base);
+        }
+        Some(words)
+    }
 }
 
 /// When a child who could not be tested comes back.

@@ -43,10 +43,7 @@ fn basis_note(sources: &[std::sync::Arc<Source>]) -> &'static str {
 
 /// Returns the line of a rule set in the list: id, title, basis.
 pub fn list_line(set: &RuleSet) -> String {
-    let place = match &set.local {
-        Some(approval) => format!("local, approved by {} on {}", approval.by, approval.on),
-        None => set.region.clone(),
-    };
+    let place = set.approval_words().unwrap_or_else(|| set.region.clone());
     format!(
         "{:<22} {}; {}; {}; {}",
         set.id,
@@ -136,9 +133,7 @@ pub fn sheet(set: &RuleSet) -> RuleSheet {
         },
         sources: set.sources.iter().map(|s| cited(s)).collect(),
         notes,
-        approval: set.local.as_ref().map_or_else(String::new, |a| {
-            format!("local, approved by {} on {}", a.by, a.on)
-        }),
+        approval: set.approval_words().unwrap_or_default(),
     }
 }
 

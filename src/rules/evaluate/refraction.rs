@@ -4,7 +4,7 @@ use std::fmt::Write;
 
 use crate::domain::codes::YesNo;
 use crate::domain::outcome::{Answer, Margin};
-use crate::domain::readings::{Eye, InstrumentEye};
+use crate::domain::readings::{Eye, InstrumentEye, Readings};
 use crate::domain::refraction::{Axis, Diopters, Power, Range, Refraction};
 use crate::rules::{Criterion, Measure, Metric, Test};
 
@@ -18,6 +18,11 @@ fn limit(criterion: &Criterion, scale: i32) -> Option<i32> {
         Test::DioptersOrMore(limit) => Some(limit.saturating_mul(scale) - 1),
         _ => None,
     }
+}
+
+/// Returns the largest difference that a criterion in dioptres still passes, in thousandths.
+pub(in crate::rules) fn largest_passing(criterion: &Criterion) -> Option<i32> {
+    limit(criterion, 1)
 }
 
 fn against(range: Range, limit: i32) -> Answer {
@@ -179,8 +184,7 @@ pub(super) fn anisometropia(criterion: &Criterion, facts: &Facts<'_>) -> Answere
         .magnitude()
         .plus(cylinder(&left).magnitude().negated())
         .magnitude();
-    let both = refraction(&right).zip(refraction(&left));
-    let along = both.map(|(r, l)| r.meridional_difference(l).0);
+    let along = meridional(facts.readings);
     let metric = criterion.metric.unwrap_or(Metric::SphericalEquivalent);
     let by_equivalent = against(equivalents, twice);
     let by_cylinder = against(cylinders, once);
@@ -218,6 +222,13 @@ pub(super) fn anisometropia(criterion: &Criterion, facts: &Facts<'_>) -> Answere
         );
     }
     out
+}
+
+/// Returns the largest difference in power between the eyes along any meridian, in thousandths.
+pub(in crate::rules) fn meridional(readings: &Readings) -> Option<i32> {
+    let [right, left] = readings.instrument.both();
+    let both = refraction(&right).zip(refraction(&left));
+    both.map(|(r, l)| r.meridional_difference(l).0)
 }
 
 fn reading(

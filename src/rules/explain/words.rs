@@ -33,18 +33,27 @@ pub fn criterion_words(id: &str) -> String {
     }
 }
 
-/// Returns how well a number is known, in words.
+/// Returns how well a number is known, in words, and who approved it where it is local.
 pub fn basis_words(source: &Source) -> String {
-    match source.basis {
+    let words = match source.basis {
         Basis::Secondary => format!("as quoted in {}", source.quoted_in),
         basis => basis.title().to_owned(),
+    };
+    if source.approval.is_empty() {
+        words
+    } else {
+        format!("{words}; {}", source.approval)
     }
 }
 
 /// Returns a source with its basis: citation, how it was read.
 pub fn source_words(source: &Source) -> String {
     if source.basis == Basis::Practice {
-        return source.citation.clone();
+        return if source.approval.is_empty() {
+            source.citation.clone()
+        } else {
+            format!("{} ({})", source.citation, source.approval)
+        };
     }
     let locator = if source.locator.is_empty() {
         String::new()

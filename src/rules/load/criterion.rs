@@ -8,6 +8,7 @@ use crate::domain::codes::{History, Reflex, SignKind};
 use crate::domain::outcome::{RiskKind, Source, Urgency};
 use crate::rules::{Applies, Compare, Criterion, Finding, Measure, Metric, RiskRule, threshold};
 
+use super::based_on::Base;
 use super::reader::{Reader, Section};
 
 const KEYS: &[&str] = &[
@@ -44,11 +45,19 @@ pub(super) fn load_all(
     root: &Section<'_, '_>,
     key: &str,
     sources: &[Arc<Source>],
+    base: Option<&Base>,
 ) -> Vec<Criterion> {
     let mut out: Vec<Criterion> = Vec::new();
     let mut bands: Vec<Band> = Vec::new();
     for section in reader.sections(root, key) {
         out.extend(load(reader, &section, sources, &mut bands));
+    }
+    if let Some(base) = base {
+        bands.extend(base.kept(|id| bands.iter().any(|b| b.id == id)).map(|kept| Band {
+            id: kept.id.to_string(),
+            applies: kept.applies.clone(),
+            span: base.span.clone(),
+        }).collect::<Vec<_>>());
     }
     check_bands(reader, &bands);
     out

@@ -109,7 +109,7 @@ pub(super) fn load(
         .cloned()
         .collect();
     let refer_at_once = at_once_ids(reader, root, &used, library);
-    let at_once = criterion::load_all(reader, root, "at_once", &sources);
+    let at_once = criterion::load_all(reader, root, "at_once", &sources, None);
     let not_testable = not_testable(reader, root, &sources);
     let rescreen_days = reader.number(root, "rescreen_days");
     let instrument_below_months = reader.number(root, "instrument_below_months");
@@ -166,6 +166,7 @@ pub(super) fn load(
             content_hash: content_hash.clone(),
             span: None,
             by_grade: false,
+            based_on: None,
         },
         not_testable,
         sources,
