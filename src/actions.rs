@@ -4,6 +4,7 @@
 //! screens and the command line ask it and tell it things; neither sees a table.
 
 mod children;
+pub mod compare;
 mod days;
 mod desk;
 mod error;
@@ -21,7 +22,7 @@ mod urgent;
 mod views;
 mod visit_rows;
 
-pub use crate::rules::{CAUTIONS, Library, PassLine, explain, show};
+pub use crate::rules::{CAUTIONS, Library, PassLine, RuleSet, explain, show};
 pub use crate::store::new_id as new_visit_id;
 pub use crate::store::{
     Damage, Draft, DraftDay, Drafts, ExpectedHead, Head, Info, Kdf, Put, RecoveryKey, Secret,

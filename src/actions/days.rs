@@ -163,7 +163,7 @@ fn info(day: ScreeningDay, names: &[(String, String)]) -> DayInfo {
     }
 }
 
-fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
+pub(super) fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
     let StoredChild {
         child,
         visits,

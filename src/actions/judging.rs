@@ -35,6 +35,15 @@ pub fn preview(
     ))
 }
 
+/// Returns the readings with what the roster knows, where the day says nothing of it.
+pub(super) fn completed(child: &DayChild, readings: Readings) -> Readings {
+    if lacks_what_the_roster_knows(child, &readings) {
+        with_roster(child, &readings)
+    } else {
+        readings
+    }
+}
+
 /// Says whether the roster answers something that nobody recorded on the day.
 fn lacks_what_the_roster_knows(child: &DayChild, readings: &Readings) -> bool {
     (readings.history.is_none() && !child.history.is_empty())

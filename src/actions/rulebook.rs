@@ -1,5 +1,7 @@
 //! The rule sets and protocols that can be named, as plain text.
 
+mod print;
+
 use std::path::{Path, PathBuf};
 
 use crate::domain::text::{nearest, shown};
@@ -75,17 +77,88 @@ pub enum RuleFileError {
 
 /// Returns the shipped library with local files beside it.
 pub fn library_with(files: &[PathBuf]) -> Result<Library, RuleFileError> {
+    Library::shipped()
+        .with_local(texts_of(files)?)
+        .map_err(RuleFileError::Wrong)
+}
+
+fn texts_of(files: &[PathBuf]) -> Result<Vec<(String, String)>, RuleFileError> {
     let mut texts = Vec::new();
     for path in files {
-        let text = std::fs::read_to_string(path).map_err(|error| RuleFileError::Unreadable {
-            path: shown(&path.to_string_lossy(), 200),
-            error,
-        })?;
+        let text = std::fs::read_to_string(path).map_err(|error| unreadable(path, error))?;
         texts.push((file_name(path), text));
     }
-    Library::shipped()
-        .with_local(texts)
-        .map_err(RuleFileError::Wrong)
+    Ok(texts)
+}
+
+fn unreadable(path: &Path, error: std::io::Error) -> RuleFileError {
+    RuleFileError::Unreadable {
+        path: shown(&path.to_string_lossy(), 200),
+        error,
+    }
+}
+
+/// Checks a local rule file, or every `*.toml` file of a folder; returns a line for each.
+///
+/// # Errors
+/// Everything that is wrong, each with its place.
+pub fn check(path: &Path) -> Result<Vec<String>, RuleFileError> {
+    let mut files = vec![path.to_owned()];
+    if path.is_dir() {
+        let entries = std::fs::read_dir(path).map_err(|error| unreadable(path, error))?;
+        files = entries
+            .flatten()
+            .map(|entry| entry.path())
+            .filter(|file| file.extension().is_some_and(|e| e == "toml"))
+            .collect();
+        files.sort();
+    }
+    let checked = crate::rules::check::check(Library::shipped(), &texts_of(&files)?);
+    let lines = checked.map_err(RuleFileError::Wrong)?.lines;
+    Ok(if lines.is_empty() {
+        vec!["no rule file is there".to_owned()]
+    } else {
+        safe(&lines)
+    })
+}
+
+/// The set that a start without a base is a copy of.
+const COPIED: &str = "joint-policy-2016";
+
+/// Returns the commented start of a local rule set: one that overrides criteria of `base`, or one
+/// on its own.
+pub fn start(library: &Library, base: Option<&str>, id: &str) -> Result<String, UnknownRule> {
+    let name = base.unwrap_or(COPIED);
+    let set = library
+        .rule_set(name)
+        .ok_or_else(|| UnknownRule::rule_set(library, name))?;
+    Ok(crate::rules::check::start(set, id, base.is_some()))
+}
+
+/// How a rule set or protocol is shown.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum ShowAs {
+    /// Lines for a terminal.
+    Text,
+    /// A page of its own that prints.
+    Html,
+    /// A table for a spreadsheet: one row for each threshold.
+    Csv,
+}
+
+/// Returns a rule set or protocol in full, in the form asked for.
+pub fn show_as(library: &Library, id: &str, form: ShowAs) -> Result<String, UnknownRule> {
+    let mut lines = show(library, id)?;
+    Ok(match (form, library.rule_set(id)) {
+        (ShowAs::Text, _) => {
+            lines.push(String::new());
+            lines.join("\n")
+        }
+        (ShowAs::Html, Some(set)) => print::html(&show::sheet(set)),
+        (ShowAs::Html, None) => print::lines_html(id, &lines),
+        (ShowAs::Csv, Some(set)) => print::csv(set),
+        (ShowAs::Csv, None) => print::lines_csv(&lines),
+    })
 }
 
 fn file_name(path: &Path) -> String {

@@ -1,5 +1,10 @@
 //! `twoline rules`: what the shipped and local rule files say.
 
+mod check;
+mod compare;
+mod new;
+mod show;
+
 use std::path::PathBuf;
 
 use clap::{Args, Subcommand};
@@ -8,7 +13,7 @@ use super::output::print_lines;
 use super::{Failure, Global};
 use crate::actions::rulebook;
 
-/// Show rule sets and protocols with their thresholds, sources and basis
+/// Show, check, begin and compare rule sets
 #[derive(Debug, Args)]
 pub(super) struct Rules {
     #[command(subcommand)]
@@ -22,19 +27,24 @@ pub(super) struct Rules {
 enum Command {
     /// List every rule set and protocol
     List,
-    /// Show one of them in full
-    Show {
-        /// Id of a rule set or protocol
-        id: String,
-    },
+    Show(show::Show),
+    Check(check::Check),
+    New(new::New),
+    Compare(compare::Compare),
 }
 
 impl Rules {
-    pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
+    pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        if let Command::Check(args) = &self.command {
+            return args.run();
+        }
         let library = rulebook::library_with(&self.rule_file)?;
         match &self.command {
             Command::List => print_lines(&rulebook::list(&library)),
-            Command::Show { id } => print_lines(&rulebook::show(&library, id)?),
+            Command::Show(args) => args.run(&library),
+            Command::New(args) => args.run(&library),
+            Command::Compare(args) => args.run(global, &library, !self.rule_file.is_empty()),
+            Command::Check(args) => args.run(),
         }
     }
 }

@@ -54,11 +54,7 @@ pub fn check(library: &Library, files: &[(String, String)]) -> Result<Checked, R
 }
 
 /// Loads all files beside each other, and says what is wrong with any of them.
-fn together(
-    library: &Library,
-    files: &[(String, String)],
-    errors: &mut Vec<RuleError>,
-) -> Library {
+fn together(library: &Library, files: &[(String, String)], errors: &mut Vec<RuleError>) -> Library {
     match library.with_local(files.to_vec()) {
         Ok(with) => with,
         Err(RuleErrors(found)) => {
@@ -182,7 +178,8 @@ fn never_speaking(library: &Library, file: &str, text: &str) -> Vec<RuleError> {
             );
             continue;
         }
-        if let Some((other, most)) = between_within(me, own.iter().map(|p| &p.criterion), &inherited)
+        if let Some((other, most)) =
+            between_within(me, own.iter().map(|p| &p.criterion), &inherited)
         {
             let what = format!(
                 "`{}` can never speak: two eyes that pass `{other}` differ by {most} lines at most",
@@ -231,7 +228,10 @@ fn placed((table, span): (&DeTable<'_>, Range<usize>)) -> Option<Placed> {
         let (from, to) = threshold::ages(ages)?;
         (Applies::Ages { from, to }, place("ages"))
     } else if table.contains_key("grades") {
-        let grades = list("grades").iter().filter_map(|g| Grade::parse(g)).collect();
+        let grades = list("grades")
+            .iter()
+            .filter_map(|g| Grade::parse(g))
+            .collect();
         (Applies::Grades(grades), place("grades"))
     } else {
         (Applies::Everyone, span.clone())
@@ -385,9 +385,7 @@ fn covers(wide: &Applies, narrow: &Applies) -> bool {
         (Applies::Ages { from, to }, Applies::Ages { from: f, to: t }) => {
             from <= f && to.is_none_or(|to| t.is_some_and(|t| t <= to))
         }
-        (Applies::Grades(wide), Applies::Grades(narrow)) => {
-            narrow.iter().all(|g| wide.contains(g))
-        }
+        (Applies::Grades(wide), Applies::Grades(narrow)) => narrow.iter().all(|g| wide.contains(g)),
         _ => false,
     }
 }

@@ -16,8 +16,8 @@ use crate::domain::codes::{AcuityMethod, Attempt, Consent};
 use crate::domain::readings::Readings;
 use crate::rules::{Applies, Case, Earlier, RuleSet};
 
-pub use column::Movable;
 use column::Judged;
+pub use column::Movable;
 
 /// A child as it is compared: who, where, and all that is known beside the readings.
 #[derive(Debug, Clone, PartialEq)]

@@ -138,9 +138,11 @@ fn rule_set(
         ages
     });
     let criteria = criterion::load_all(reader, root, "criterion", &sources, base.as_ref());
-    let kept = base
-        .as_ref()
-        .is_some_and(|b| b.kept(|id| criteria.iter().any(|c| *c.id == *id)).next().is_some());
+    let kept = base.as_ref().is_some_and(|b| {
+        b.kept(|id| criteria.iter().any(|c| *c.id == *id))
+            .next()
+            .is_some()
+    });
     if criteria.is_empty() && !kept && reader.errors.is_empty() {
         reader.fault(
             root.span.clone(),

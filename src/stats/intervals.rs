@@ -32,8 +32,16 @@ pub fn wilson(k: u64, n: u64, confidence: f64) -> Option<Interval> {
     let middle = (p + z2 / (2.0 * n)) / (1.0 + z2 / n);
     let half = z / (1.0 + z2 / n) * (p * (1.0 - p) / n + z2 / (4.0 * n * n)).sqrt();
     Some(Interval {
-        low: if k == 0.0 { 0.0 } else { (middle - half).max(0.0) },
-        high: if k >= n { 1.0 } else { (middle + half).min(1.0) },
+        low: if k == 0.0 {
+            0.0
+        } else {
+            (middle - half).max(0.0)
+        },
+        high: if k >= n {
+            1.0
+        } else {
+            (middle + half).min(1.0)
+        },
     })
 }
 

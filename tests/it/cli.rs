@@ -9,12 +9,12 @@ use std::path::{Path, PathBuf};
 use std::process::{Command, Output};
 
 /// A folder with files, and the program run in it.
-struct Bench {
+pub struct Bench {
     folder: tempfile::TempDir,
 }
 
 impl Bench {
-    fn new() -> Bench {
+    pub fn new() -> Bench {
         Bench {
             folder: tempfile::tempdir().expect("a folder"),
         }
@@ -24,16 +24,16 @@ impl Bench {
         self.folder.path().join(name)
     }
 
-    fn write(&self, name: &str, bytes: impl AsRef<[u8]>) {
+    pub fn write(&self, name: &str, bytes: impl AsRef<[u8]>) {
         std::fs::write(self.path(name), bytes).expect("written");
     }
 
-    fn read(&self, name: &str) -> String {
+    pub fn read(&self, name: &str) -> String {
         std::fs::read_to_string(self.path(name)).expect("there")
     }
 
     /// The names in the folder, in order.
-    fn names(&self) -> Vec<String> {
+    pub fn names(&self) -> Vec<String> {
         let mut names: Vec<String> = std::fs::read_dir(self.folder.path())
             .expect("a folder")
             .map(|e| {
@@ -53,7 +53,7 @@ impl Bench {
         command
     }
 
-    fn run(&self, args: &[&str]) -> Ran {
+    pub fn run(&self, args: &[&str]) -> Ran {
         Ran::from(self.command(args).output().expect("the program runs"))
     }
 }
@@ -67,10 +67,10 @@ fn twoline() -> Command {
 }
 
 /// What a run left behind.
-struct Ran {
-    code: i32,
-    out: String,
-    err: String,
+pub struct Ran {
+    pub code: i32,
+    pub out: String,
+    pub err: String,
 }
 
 impl From<Output> for Ran {
@@ -84,7 +84,7 @@ impl From<Output> for Ran {
 }
 
 /// Reads CSV text into rows of cells by header.
-fn rows(text: &str) -> Vec<std::collections::HashMap<String, String>> {
+pub fn rows(text: &str) -> Vec<std::collections::HashMap<String, String>> {
     csv::Reader::from_reader(text.as_bytes())
         .deserialize()
         .map(|row| row.expect("CSV"))

@@ -19,7 +19,10 @@ pub fn start(base: &RuleSet, id: &str, overrides: bool) -> String {
 
 fn head(out: &mut String, base: &RuleSet, id: &str, overrides: bool) {
     let what = if overrides {
-        format!("A local rule set that overrides single criteria of {}.", base.id)
+        format!(
+            "A local rule set that overrides single criteria of {}.",
+            base.id
+        )
     } else {
         format!(
             "A local rule set. It begins as a copy of {}: put your own guidance in its place.",
@@ -44,7 +47,11 @@ edition = \"1\"
     if overrides {
         let _ = writeln!(out, "based_on = {}", quoted(&base.id));
     } else {
-        let _ = writeln!(out, "# acuity, refraction or signs.\nkind = {}", quoted(base.kind.word()));
+        let _ = writeln!(
+            out,
+            "# acuity, refraction or signs.\nkind = {}",
+            quoted(base.kind.word())
+        );
     }
     out.push_str(
         "
@@ -96,7 +103,9 @@ ages = \"{from}..{to}\"
     if base.kind == crate::rules::Kind::Acuity {
         let credit = match base.credit {
             crate::domain::acuity::LineCredit::Majority => "majority".to_owned(),
-            crate::domain::acuity::LineCredit::Ratio { correct, of } => format!("{correct} of {of}"),
+            crate::domain::acuity::LineCredit::Ratio { correct, of } => {
+                format!("{correct} of {of}")
+            }
         };
         let known = base.sources.contains(&base.credit_source);
         if known {

@@ -63,7 +63,11 @@ pub(in crate::rules) fn scope(
 }
 
 /// Says whether a criterion is for a child of this age and grade.
-pub(in crate::rules) fn is_for(criterion: &Criterion, age: Option<AgeMonths>, grade: Option<Grade>) -> bool {
+pub(in crate::rules) fn is_for(
+    criterion: &Criterion,
+    age: Option<AgeMonths>,
+    grade: Option<Grade>,
+) -> bool {
     match &criterion.applies {
         Applies::Everyone => true,
         Applies::Ages { .. } => age.is_some_and(|age| criterion.applies.holds_age(age)),
@@ -130,7 +134,11 @@ pub(in crate::rules) fn speak<'s>(set: &'s RuleSet, facts: &Facts<'_>) -> Vec<Sp
 }
 
 /// Asks one criterion.
-pub(in crate::rules) fn answer(set: &RuleSet, criterion: &Criterion, facts: &Facts<'_>) -> Answered {
+pub(in crate::rules) fn answer(
+    set: &RuleSet,
+    criterion: &Criterion,
+    facts: &Facts<'_>,
+) -> Answered {
     match criterion.measure {
         Measure::DistanceEachEye => acuity::each_eye(set, criterion, facts, facts.distance),
         Measure::NearEachEye => acuity::each_eye(set, criterion, facts, facts.readings.near),

@@ -53,11 +53,15 @@ pub(super) fn load_all(
         out.extend(load(reader, &section, sources, &mut bands));
     }
     if let Some(base) = base {
-        bands.extend(base.kept(|id| bands.iter().any(|b| b.id == id)).map(|kept| Band {
-            id: kept.id.to_string(),
-            applies: kept.applies.clone(),
-            span: base.span.clone(),
-        }).collect::<Vec<_>>());
+        bands.extend(
+            base.kept(|id| bands.iter().any(|b| b.id == id))
+                .map(|kept| Band {
+                    id: kept.id.to_string(),
+                    applies: kept.applies.clone(),
+                    span: base.span.clone(),
+                })
+                .collect::<Vec<_>>(),
+        );
     }
     check_bands(reader, &bands);
     out

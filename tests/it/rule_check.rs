@@ -1,0 +1,440 @@
+//! `rules check`, `rules new` and sets that are based on others.
+
+use super::cli::Bench;
+use twoline::domain::age::AgeMonths;
+use twoline::domain::field::Field;
+use twoline::domain::outcome::{Outcome, OutcomeKind};
+use twoline::domain::readings::{ReadingContext, Readings};
+use twoline::rules::{Case, Library, RuleErrors, RuleSet, check, explain, judge_rule_set, show};
+
+const APPROVED: &str = "approved_by = \"Dr. R. Quill\"\napproved_on = 2026-08-01\n";
+const BOARD: &str =
+    "[[source]]\nkey = \"board\"\ncitation = \"Quillmere school board\"\nbasis = \"practice\"\n";
+
+fn file(head: &str, criteria: &str) -> String {
+    format!(
+        "id = \"local\"\ntitle = \"Quillmere\"\nedition = \"1\"\n{head}{APPROVED}{BOARD}{criteria}"
+    )
+}
+
+fn line(id: &str, ages: &str, refer: &str) -> String {
+    format!(
+        "[[criterion]]\nid = \"{id}\"\n{ages}measure = \"distance acuity, each eye\"\nrefer = \"{refer}\"\nsource = \"board\"\n"
+    )
+}
+
+fn errors(text: &str) -> Vec<String> {
+    let files = [("local.toml".to_owned(), text.to_owned())];
+    match check::check(Library::shipped(), &files) {
+        Ok(_) => Vec::new(),
+        Err(RuleErrors(list)) => list.into_iter().map(|e| e.what).collect(),
+    }
+}
+
+fn loaded(text: &str) -> Library {
+    Library::shipped()
+        .with_local([("local.toml".to_owned(), text.to_owned())])
+        .unwrap_or_else(|e| panic!("\n{e}"))
+}
+
+fn judged(set: &RuleSet, age: u32, right: &str, left: &str) -> Outcome {
+    let mut readings = Readings::default();
+    for (field, text) in [(Field::DistanceRight, right), (Field::DistanceLeft, left)] {
+        readings
+            .set(field, text, ReadingContext::default())
+            .expect("a value");
+    }
+    let mut case = Case::new(&readings);
+    case.age = Some(AgeMonths(age));
+    judge_rule_set(set, &case)
+}
+
+/// Everything wrong with one file at once, in the order of its lines, each with caret and cure.
+#[test]
+fn a_broken_file_shows_all_its_errors_in_order() {
+    let bench = Bench::new();
+    bench.write(
+        "bad.toml",
+        "id = \"local\"\ntitle = \"Quillmere\"\nedition = \"1\"\nkind = \"acuity\"\n\
+         [[source]]\nkey = \"board\"\ncitation = \"Quillmere school board\"\n\
+         [[criterion]]\nid = \"line.36-47\"\nages = \"36..48\"\nmeasure = \"distance acuity, each ey\"\nrefer = \"worse than 20/50\"\nsource = \"board\"\n\
+         [[criterion]]\nid = \"line.60+\"\nages = \"60..\"\nmeasure = \"distance acuity, each eye\"\nrefer = \"more than 4.00 D\"\nsource = \"bord\"\n\
+         [[criterion]]\nid = \"line.b.300+\"\nages = \"300..\"\nmeasure = \"distance acuity, each eye\"\nrefer = \"worse than 20/40\"\n",
+    );
+    let ran = bench.run(&["rules", "check", "bad.toml"]);
+    assert_eq!((ran.code, ran.out.as_str()), (2, ""));
+    let mut at = 0;
+    for part in [
+        "`approved_by` is missing",
+        "`approved_on` is missing",
+        "`basis` is missing",
+        "unknown measure `distance acuity, each ey`",
+        "did you mean \"distance acuity, each eye\"?",
+        "a hole in the age bands of line: nothing for 48 to 59 months",
+        "`more than 4.00 D` is not a threshold for distance acuity, each eye",
+        "no source `bord` in this file",
+        "`source` is missing",
+        "`line.b.300+` can never speak: no child is 300 months old",
+    ] {
+        let found = ran.err[at..].find(part);
+        assert!(found.is_some(), "{part} after byte {at} of\n{}", ran.err);
+        at += found.unwrap_or(0);
+    }
+    let places: Vec<usize> = ran
+        .err
+        .lines()
+        .filter_map(|l| l.trim_start().strip_prefix("--> bad.toml:"))
+        .filter_map(|l| l.split(':').next()?.parse().ok())
+        .collect();
+    assert!(places.len() >= 9, "{}", ran.err);
+    assert!(places.is_sorted(), "{places:?}");
+    assert_eq!(ran.err.matches("^ expected").count(), places.len());
+}
+
+/// A threshold stricter in the same band leaves nothing to the other; an earlier urgency, another
+/// band or another axis does.
+#[test]
+fn shadowed_thresholds_can_never_speak() {
+    let acuity = "kind = \"acuity\"\n";
+    let two = |b: &str| {
+        file(
+            acuity,
+            &(line("line.36+", "ages = \"36..\"\n", "worse than 20/40") + b),
+        )
+    };
+    let what = errors(&two(&line(
+        "far.36+",
+        "ages = \"36..\"\n",
+        "worse than 20/50",
+    )));
+    assert_eq!(
+        what,
+        ["`far.36+` can never speak: `line.36+` refers every child it would"]
+    );
+    let what = errors(&two(&line(
+        "far.48-59",
+        "ages = \"48..60\"\n",
+        "20/50 or worse",
+    )));
+    // 20/50 or worse is worse than 20/40 on a chart by lines.
+    assert_eq!(what.len(), 1, "{what:?}");
+    assert_eq!(
+        errors(&two(&line(
+            "far.48-59",
+            "ages = \"48..60\"\n",
+            "20/40 or worse"
+        ))),
+        [""; 0]
+    );
+    let sooner =
+        line("far.36+", "ages = \"36..\"\n", "worse than 20/80") + "urgency = \"prompt\"\n";
+    assert_eq!(errors(&two(&sooner)), [""; 0]);
+    let wider = line("far.24+", "ages = \"24..\"\n", "worse than 20/80");
+    assert_eq!(errors(&two(&wider)), [""; 0]);
+    let equal = line("same.36+", "ages = \"36..\"\n", "worse than 20/40");
+    assert_eq!(
+        errors(&two(&equal)),
+        ["`same.36+` can never speak: `line.36+` refers every child it would"]
+    );
+}
+
+#[test]
+fn a_difference_that_passing_eyes_cannot_have_never_speaks() {
+    let between = |n: u32| {
+        format!(
+            "[[criterion]]\nid = \"between-eyes\"\nmeasure = \"distance acuity, between the eyes\"\nrefer = \"{n} lines or more\"\nsource = \"board\"\n"
+        )
+    };
+    let with = |pass: &str, n: u32| {
+        file(
+            "kind = \"acuity\"\n",
+            &(line("line", "", &format!("worse than {pass}")) + &between(n)),
+        )
+    };
+    // The finest line that can be recorded is 20/10, three steps better than 20/20.
+    assert_eq!(errors(&with("20/20", 3)), [""; 0]);
+    assert_eq!(
+        errors(&with("20/20", 4)),
+        ["`between-eyes` can never speak: two eyes that pass `line` differ by 3 lines at most"]
+    );
+    let three = between(3).replace("\"between-eyes\"", "\"between-eyes.more\"");
+    let what = errors(&file(
+        "kind = \"acuity\"\n",
+        &(line("line", "", "worse than 20/40") + &between(2) + &three),
+    ));
+    assert_eq!(
+        what,
+        ["`between-eyes.more` can never speak: `between-eyes` refers every child it would"]
+    );
+}
+
+#[test]
+fn impossible_bands_axes_and_findings_never_speak() {
+    let astigmatism = |refer: &str, more: &str| {
+        format!(
+            "[[criterion]]\nid = \"astigmatism\"\nmeasure = \"astigmatism\"\nmetric = \"cylinder magnitude\"\nrefer = \"{refer}\"\nsource = \"board\"\n{more}"
+        )
+    };
+    let refraction = |c: &str| errors(&file("kind = \"refraction\"\n", c));
+    assert_eq!(refraction(&astigmatism("more than 1.50 D", "")), [""; 0]);
+    assert_eq!(
+        refraction(&astigmatism("more than 15.00 D", "")),
+        ["`astigmatism` can never speak: no instrument gives astigmatism of more than 15 D"]
+    );
+    assert_eq!(refraction(&astigmatism("15.00 D or more", "")), [""; 0]);
+    assert_eq!(
+        refraction(&astigmatism("more than 1.00 D", "axis_beyond = 44\n")),
+        [""; 0]
+    );
+    assert_eq!(
+        refraction(&astigmatism("more than 1.00 D", "axis_beyond = 45\n")).len(),
+        1
+    );
+    let ages = errors(&file(
+        "kind = \"acuity\"\nages = \"36..72\"\n",
+        &(line("line.36-71", "ages = \"36..72\"\n", "worse than 20/40")
+            + &line("line.72+", "ages = \"72..\"\n", "worse than 20/32")),
+    ));
+    assert_eq!(
+        ages,
+        ["`line.72+` can never speak: the set speaks of 36–71 months only"]
+    );
+    let grades = errors(&file(
+        "kind = \"acuity\"\n",
+        &line("line", "grades = []\n", "worse than 20/40"),
+    ));
+    assert!(
+        grades.iter().any(|e| e.contains("no grade is named")),
+        "{grades:?}"
+    );
+    let sign = "[[criterion]]\nid = \"nystagmus\"\nmeasure = \"signs\"\nseen = [\"nystagmus\"]\nwithout = [\"nystagmus\"]\nrefer = \"present\"\nsource = \"board\"\n";
+    let what = errors(&file("kind = \"signs\"\n", sign));
+    assert_eq!(
+        what,
+        ["`nystagmus` can never speak: what must be seen also sets it aside"]
+    );
+}
+
+/// Nothing shipped holds a threshold that can never speak, so that the check has no false alarm
+/// where guidance is known to be sound. Each is read as if it were local and approved.
+#[test]
+fn no_shipped_threshold_is_called_dead() {
+    for set in Library::shipped().rule_sets() {
+        let text = format!("{APPROVED}{}", set.text);
+        let what = errors(&text);
+        let dead: Vec<&String> = what
+            .iter()
+            .filter(|w| w.contains("can never speak"))
+            .collect();
+        assert!(dead.is_empty(), "{}: {dead:?}", set.id);
+    }
+}
+
+/// The same id replaces, a new id adds, `remove` leaves out, and both sources stay.
+#[test]
+fn a_set_overrides_single_criteria_of_another() {
+    let text = file(
+        "based_on = \"joint-policy-2016\"\nremove = [\"between-eyes\"]\n",
+        &line("line.60+", "ages = \"60..\"\n", "worse than 20/25"),
+    );
+    assert_eq!(errors(&text), [""; 0]);
+    let library = loaded(&text);
+    let (set, base) = (
+        library.rule_set("local").expect("loaded"),
+        library.rule_set("joint-policy-2016").expect("shipped"),
+    );
+    assert_eq!(set.kind, base.kind);
+    assert_eq!(set.credit, base.credit);
+    assert_eq!(set.span, base.span);
+    assert_eq!(set.criteria.len(), base.criteria.len() - 1);
+    // Under 60 months the base speaks, from 60 the override, and two lines no longer refer.
+    assert_eq!(judged(set, 50, "20/40", "20/40").kind, OutcomeKind::Pass);
+    assert_eq!(judged(set, 50, "20/50", "20/40").kind, OutcomeKind::Refer);
+    assert_eq!(judged(base, 70, "20/32", "20/32").kind, OutcomeKind::Pass);
+    assert_eq!(judged(set, 70, "20/32", "20/32").kind, OutcomeKind::Refer);
+    assert_eq!(judged(base, 70, "20/25", "20/16").kind, OutcomeKind::Refer);
+    assert_eq!(judged(set, 70, "20/25", "20/16").kind, OutcomeKind::Pass);
+    // Both sources, the hash of both texts, and the approval wherever it speaks.
+    let keys: Vec<&str> = set.sources.iter().map(|s| s.citation.as_str()).collect();
+    assert!(keys.contains(&"Quillmere school board"));
+    assert!(base.sources.iter().all(|s| keys.contains(&&*s.citation)));
+    assert!(set.text.contains(&*base.text) && set.text.starts_with(&text));
+    assert_ne!(set.content_hash, base.content_hash);
+    let words = "local, approved by Dr. R. Quill on 2026-08-01, based on joint-policy-2016";
+    assert_eq!(show::sheet(set).approval, words);
+    assert!(show::list_line(set).contains(words));
+    for outcome in [
+        judged(set, 70, "20/32", "20/32"),
+        judged(set, 50, "20/50", "20/50"),
+    ] {
+        let mut text = String::new();
+        explain::reasons_text(&outcome, &mut text);
+        assert!(text.contains(words), "{text}");
+    }
+    // The shipped set itself says nothing of the kind.
+    let mut shipped = String::new();
+    explain::reasons_text(&judged(base, 70, "20/50", "20/50"), &mut shipped);
+    assert!(!shipped.contains("local"), "{shipped}");
+}
+
+/// A child whose band was taken out is unknown to the set, not passed by what is left.
+#[test]
+fn a_band_that_was_taken_out_never_passes() {
+    let base = Library::shipped()
+        .rule_set("joint-policy-2016")
+        .expect("shipped");
+    let youngest = base
+        .criteria
+        .iter()
+        .find(|c| c.id.starts_with("line.") && c.applies.holds_age(AgeMonths(36)))
+        .expect("the youngest band");
+    let text = file(
+        &format!(
+            "based_on = \"joint-policy-2016\"\nremove = [\"{}\"]\n",
+            youngest.id
+        ),
+        "",
+    );
+    let library = loaded(&text);
+    let outcome = judged(
+        library.rule_set("local").expect("loaded"),
+        40,
+        "20/20",
+        "20/20",
+    );
+    assert_eq!(outcome.kind, OutcomeKind::Incomplete);
+    assert_eq!(outcome.unknown, ["age"]);
+}
+
+#[test]
+fn a_base_or_a_criterion_that_is_not_there_is_an_error() {
+    let what = errors(&file(
+        "based_on = \"joint-policy-2061\"\n",
+        &line("line", "", "worse than 20/40"),
+    ));
+    assert!(
+        what.iter().any(|w| w == "no rule set `joint-policy-2061`"),
+        "{what:?}"
+    );
+    let what = errors(&file(
+        "based_on = \"joint-policy-2016\"\nremove = [\"line.60\"]\n",
+        "",
+    ));
+    assert_eq!(what, ["joint-policy-2016 has no criterion `line.60`"]);
+    let what = errors(&file(
+        "kind = \"acuity\"\nremove = [\"line\"]\n",
+        &line("line", "", "worse than 20/40"),
+    ));
+    assert_eq!(what, ["`remove` without `based_on`"]);
+    let overlap = file(
+        "based_on = \"joint-policy-2016\"\n",
+        &line("line.66+", "ages = \"66..\"\n", "worse than 20/25"),
+    );
+    assert!(
+        errors(&overlap).iter().any(|w| w.contains("overlap")),
+        "{:?}",
+        errors(&overlap)
+    );
+    let all: Vec<String> = Library::shipped()
+        .rule_set("joint-policy-2016")
+        .expect("shipped")
+        .criteria
+        .iter()
+        .map(|c| format!("\"{}\"", c.id))
+        .collect();
+    let none = file(
+        &format!(
+            "based_on = \"joint-policy-2016\"\nremove = [{}]\n",
+            all.join(", ")
+        ),
+        "",
+    );
+    assert_eq!(errors(&none), ["a rule set without a criterion"]);
+}
+
+/// A start of every shipped set, copied and overridden, is sound but for the approval; once that is
+/// filled in a copy judges like its original.
+#[test]
+fn a_start_is_sound_but_for_the_approval() {
+    for base in Library::shipped().rule_sets() {
+        for overrides in [false, true] {
+            let text = check::start(base, "quillmere", overrides);
+            let what = errors(&text);
+            assert_eq!(
+                what,
+                [
+                    "`approved_by` is empty",
+                    "`approved_on` is not a date that can be"
+                ],
+                "{} {overrides}\n{text}",
+                base.id
+            );
+            let text = text
+                .replace("approved_by = \"\"", "approved_by = \"Dr. R. Quill\"")
+                .replace("approved_on = \"\"", "approved_on = \"2026-08-01\"");
+            assert_eq!(errors(&text), [""; 0], "{} {overrides}\n{text}", base.id);
+            let library = loaded(&text);
+            let set = library.rule_set("quillmere").expect("loaded");
+            assert_eq!(
+                (set.span, set.credit),
+                (base.span, base.credit),
+                "{}",
+                base.id
+            );
+            for (own, theirs) in set.criteria.iter().zip(&base.criteria) {
+                let mut plain = own.clone();
+                plain.source = theirs.source.clone();
+                assert_eq!(plain, *theirs, "{}", base.id);
+                assert_eq!(own.source.citation, theirs.source.citation);
+            }
+            assert_eq!(set.criteria.len(), base.criteria.len());
+        }
+    }
+}
+
+#[test]
+fn new_writes_a_file_once_and_check_takes_it_once_approved() {
+    let bench = Bench::new();
+    let ran = bench.run(&[
+        "rules",
+        "new",
+        "--based-on",
+        "joint-policy-2016",
+        "--id",
+        "quillmere",
+    ]);
+    assert_eq!(ran.code, 0, "{}", ran.err);
+    let again = bench.run(&["rules", "new", "--id", "quillmere"]);
+    assert_eq!(again.code, 2);
+    assert!(again.err.contains("is there already"), "{}", again.err);
+    let ran = bench.run(&["rules", "check", "quillmere.toml"]);
+    assert_eq!(
+        (ran.code, ran.err.matches("error: `approved").count()),
+        (2, 2),
+        "{}",
+        ran.err
+    );
+    let text = bench.read("quillmere.toml");
+    bench.write(
+        "quillmere.toml",
+        text.replace("approved_by = \"\"", "approved_by = \"Dr. R. Quill\"")
+            .replace("approved_on = \"\"", "approved_on = \"2026-08-01\""),
+    );
+    for path in ["quillmere.toml", "."] {
+        let ran = bench.run(&["rules", "check", path]);
+        assert_eq!((ran.code, ran.err.as_str()), (0, ""));
+        assert!(
+            ran.out.contains(
+                "local, approved by Dr. R. Quill on 2026-08-01, based on joint-policy-2016"
+            ),
+            "{}",
+            ran.out
+        );
+    }
+    for (id, expected) in [("../x", "not an id"), ("joint-policy-2016", "is taken")] {
+        let ran = bench.run(&["rules", "new", "--id", id]);
+        assert_eq!(ran.code, 2);
+        assert!(ran.err.contains(expected), "{}", ran.err);
+    }
+    assert_eq!(bench.names(), ["quillmere.toml"]);
+}
