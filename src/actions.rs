@@ -22,7 +22,7 @@ mod urgent;
 mod views;
 mod visit_rows;
 
-pub use crate::rules::{CAUTIONS, Library, PassLine, RuleSet, explain, show};
+pub use crate::rules::{CAUTIONS, Library, PassLine, RuleSet, explain, pass_line_of_set, show};
 pub use crate::store::new_id as new_visit_id;
 pub use crate::store::{
     Damage, Draft, DraftDay, Drafts, ExpectedHead, Head, Info, Kdf, Put, RecoveryKey, Secret,

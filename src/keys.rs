@@ -158,6 +158,8 @@ contexts! {
     Tables = "Referrals and Term", [Places, Everywhere];
     /// In the Rules place.
     Rules = "Rules", [Places, Everywhere];
+    /// Where two rule sets are compared.
+    Compare = "comparing rule sets", [Places, Everywhere];
     /// In every place while no question is open.
     Places = "in every place", [Everywhere];
     /// In a question with choices.
@@ -206,7 +208,9 @@ commands! {
     Redraw = "redraw"; Quit = "quit"; Choose = "choose"; Cancel = "cancel"; ChoiceUp = "choice-up";
     ChoiceDown = "choice-down"; Scope = "scope"; Toggle = "toggle"; SideRight = "side-right";
     SideLeft = "side-left"; SideBoth = "side-both"; NoneSeen = "none-seen"; Submit = "submit";
-    FormNext = "form-next"; FormPrevious = "form-previous";
+    FormNext = "form-next"; FormPrevious = "form-previous"; CompareSets = "compare";
+    OneKind = "one-kind"; Stricter = "stricter"; Milder = "milder"; OtherSet = "other-set";
+    PutBack = "put-back";
 }
 
 /// One line of the table: what a command is called, where and by which keys.

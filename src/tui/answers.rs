@@ -78,6 +78,7 @@ impl App {
                 }
                 self.urgent = urgent;
             }
+            Answer::Compared(compared) => self.rules.compared(*compared),
             Answer::Found(text, found) => self.children.found(&text, found),
             Answer::History(history) => self.children.show(history.map(|h| *h)),
             Answer::Referrals(rows) => self.tables[0].fill(rows),

@@ -208,6 +208,8 @@ pub enum Request {
     Referrals,
     /// The term as a table.
     Term,
+    /// Two rule sets on the children of this term.
+    Compare(String, String),
     /// Changes who is recording.
     Screener(String),
 }
@@ -252,6 +254,8 @@ pub enum Answer {
     Referrals(Vec<Vec<String>>),
     /// The term.
     Term(Vec<Vec<String>>),
+    /// Two rule sets on the children of a term.
+    Compared(Box<crate::tui::rules::Compared>),
     /// Who is recording now.
     Screener(String),
     /// Something could not be done.
@@ -309,7 +313,7 @@ impl App {
             (PlaceName::Day, Ok(_)) => Context::Bench,
             (PlaceName::Children, _) => Context::Children,
             (PlaceName::Referrals | PlaceName::Term, _) => Context::Tables,
-            (PlaceName::Rules, _) => Context::Rules,
+            (PlaceName::Rules, _) => self.rules.context(),
         }
     }
 

@@ -2,9 +2,11 @@
 
 use std::sync::Arc;
 
+use crate::actions::compare::Comparison;
 use crate::actions::{self, ActionError, DayInfo, Desk, DraftDay, Drafts, SearchIndex};
 use crate::tui::app::{Answer, App, Refused, Request, Session};
 use crate::tui::judging::Draft;
+use crate::tui::rules::Compared;
 use crate::tui::theme::Theme;
 
 /// How many children a find shows.
@@ -197,6 +199,17 @@ impl Clerk {
             Request::History(child) => Answer::History(self.desk.history(&child)?.map(Box::new)),
             Request::Referrals => Answer::Referrals(self.desk.referrals()?),
             Request::Term => Answer::Term(self.desk.term_table()?),
+            Request::Compare(a, b) => {
+                let (term, subjects) = self.desk.subjects_of_term(None)?;
+                let library = self.desk.library();
+                let found = |id: &str| {
+                    library
+                        .rule_set(id)
+                        .ok_or_else(|| ActionError::bad(format!("no rule set {id}")))
+                };
+                let comparison = Comparison::new(found(&a)?, found(&b)?, &subjects);
+                Answer::Compared(Box::new(Compared::new(term, comparison, &subjects)))
+            }
             Request::Screener(name) => {
                 self.desk.set_screener(&name)?;
                 Answer::Screener(name)

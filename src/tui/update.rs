@@ -277,8 +277,10 @@ impl App {
             },
             PlaceName::Referrals => self.tables[0].scroll(by),
             PlaceName::Term => self.tables[1].scroll(by),
-            PlaceName::Rules if paging => self.rules.scroll(by),
-            PlaceName::Rules => self.rules.step(by),
+            PlaceName::Rules => {
+                let done = self.rules.command(command, by, paging);
+                return self.done(done);
+            }
             PlaceName::Day => {}
         }
         Vec::new()

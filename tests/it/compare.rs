@@ -165,10 +165,11 @@ fn quantity_sets() -> impl Iterator<Item = &'static RuleSet> {
     Library::shipped().rule_sets()
 }
 
-/// The columns answer what the evaluator answers: 100,000 random children for each shipped set.
+/// The columns answer what the evaluator answers, for each shipped set. The same is asked of 100,000
+/// random children in `benches/compare.rs`, where the program is built to be fast.
 #[test]
 fn columns_answer_what_the_evaluator_answers() {
-    let subjects = subjects(100_000, true);
+    let subjects = subjects(3_000, true);
     let sets: Vec<&RuleSet> = quantity_sets().collect();
     assert!(sets.len() >= 20);
     for pair in sets.chunks(2) {
@@ -186,7 +187,7 @@ fn columns_answer_what_the_evaluator_answers() {
 /// does not move.
 #[test]
 fn a_moved_threshold_answers_like_a_set_that_has_it() {
-    let subjects = subjects(300, false);
+    let subjects = subjects(60, false);
     let mut steps = 0;
     for set in quantity_sets() {
         let mut comparison = Comparison::new(set, set, &subjects);
@@ -211,7 +212,7 @@ fn a_moved_threshold_answers_like_a_set_that_has_it() {
 /// What one set refers alone is what the other does not, whichever comes first.
 #[test]
 fn a_comparison_is_the_same_from_either_side() {
-    let subjects = subjects(2_000, true);
+    let subjects = subjects(400, true);
     let sets: Vec<&RuleSet> = quantity_sets().collect();
     let mut parted = 0;
     for a in &sets {
@@ -239,11 +240,11 @@ fn a_comparison_is_the_same_from_either_side() {
             // Every child is in one age band and at one site.
             for groups in [&x.by_age, &x.by_site] {
                 let n: u64 = groups.iter().map(|(_, c)| c.children()).sum();
-                assert_eq!(n, 2_000);
+                assert_eq!(n, 400);
             }
         }
     }
-    assert!(parted > 10_000, "{parted}");
+    assert!(parted > 2_000, "{parted}");
 }
 
 fn plain(age: u32, text: &str) -> Subject {

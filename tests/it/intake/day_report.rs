@@ -117,6 +117,7 @@ fn the_text_beside_it_names_rule_sets_sources_and_cautions() {
             locator: "10.1000/1".into(),
             basis: Basis::Secondary,
             quoted_in: "another paper".into(),
+            approval: String::new(),
         }],
     }];
     let text = about(&About {
