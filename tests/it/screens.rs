@@ -7,5 +7,6 @@ mod desk;
 mod drawn;
 mod keystrokes;
 mod people;
+mod rules_place;
 mod terminal;
 mod urgent;
