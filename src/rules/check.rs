@@ -361,7 +361,9 @@ fn impossible(criterion: &Loose) -> Option<String> {
 
 /// Says whether every child whom `weak` refers is referred by `strong`, no later and no differently.
 fn shadows(strong: &Loose, weak: &Loose) -> bool {
-    strong.measure == weak.measure
+    // Two sources may name one sign; both are shown, and the sooner is acted on.
+    weak.test != Test::Present
+        && strong.measure == weak.measure
         && strong.compare == weak.compare
         && strong.metric == weak.metric
         && (strong.axis_beyond.is_none() || strong.axis_beyond == weak.axis_beyond)

@@ -90,7 +90,10 @@ fn override_part(out: &mut String, base: &RuleSet) {
 }
 
 fn copy_part(out: &mut String, base: &RuleSet) {
-    if let Some((from, to)) = base.span.filter(|_| !base.by_grade) {
+    let ages = base
+        .span
+        .filter(|ages| !base.by_grade && *ages != (0, None));
+    if let Some((from, to)) = ages {
         let to = to.map_or_else(String::new, |to| to.to_string());
         let _ = write!(
             out,

@@ -204,7 +204,14 @@ impl<'t> Reader<'t> {
     ) -> Option<T> {
         let value = read(word);
         if value.is_none() {
-            let cure = nearest(word, words.split(", "))
+            // A word may hold a comma itself, as the measures do.
+            let parts: Vec<&str> = words.split(", ").collect();
+            let pairs: Vec<String> = parts.windows(2).map(|w| w.join(", ")).collect();
+            let known = parts
+                .into_iter()
+                .chain(pairs.iter().map(String::as_str))
+                .filter(|candidate| read(candidate).is_some());
+            let cure = nearest(word, known)
                 .map(|near| format!("did you mean \"{near}\"?"))
                 .unwrap_or_default();
             self.fault(

@@ -55,7 +55,9 @@ impl Compared {
             Command::Stricter => self.comparison.step(self.side, self.at, -1),
             Command::Milder => self.comparison.step(self.side, self.at, 1),
             Command::PutBack => {
-                Side::BOTH.map(|side| self.comparison.reset(side));
+                for side in Side::BOTH {
+                    self.comparison.reset(side);
+                }
                 true
             }
             Command::OtherSet => {

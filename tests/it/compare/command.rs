@@ -58,7 +58,7 @@ fn a_column_nobody_knows_and_a_set_nobody_knows_are_refused() {
     ]);
     assert_eq!((ran.code, ran.out.as_str()), (2, ""));
     assert!(ran.err.contains("distance_rihgt"), "{}", ran.err);
-    bench.write("r.csv", "child_id,age_months\nA1,73\n");
+    bench.write("r.csv", "child_id,age_months,distance_right\nA1,73,20/20\n");
     let ran = bench.run(&[
         "rules",
         "compare",
