@@ -148,13 +148,14 @@ fn subject(random: &mut ChaCha8Rng) -> Subject {
         child_id: String::new(),
         name: String::new(),
         site: format!("Site {}", random.next_u32() % 12),
-        age: (random.next_u32() % 20 > 0).then(|| AgeMonths(20 + random.next_u32() % 200)),
+        age: (!random.next_u32().is_multiple_of(20))
+            .then(|| AgeMonths(20 + random.next_u32() % 200)),
         grade: Grade::parse(["PK", "KG", "01", "05", "12"][random.next_u32() as usize % 5]),
         on: chrono::NaiveDate::from_ymd_opt(2026, 10, 14),
         attempt: Attempt::First,
         method: None,
         consent: None,
-        under_care: random.next_u32() % 12 == 0,
+        under_care: random.next_u32().is_multiple_of(12),
         readings,
     }
 }

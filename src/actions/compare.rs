@@ -63,7 +63,9 @@ pub fn subjects_of_file(input: &InputFile) -> std::result::Result<Vec<Subject>, 
     let mut row = ResultRow::default();
     while let Some(wrong) = reader.next(&mut row)? {
         if !wrong.is_empty() {
-            wrong.into_iter().for_each(|problem| problems.push(problem));
+            for problem in wrong {
+                problems.push(problem);
+            }
             continue;
         }
         let site = site.and_then(|i| reader.record().get(i)).unwrap_or("");
@@ -94,17 +96,14 @@ fn keep(subjects: &mut Vec<Subject>, latest: &mut HashMap<String, usize>, subjec
         subjects.push(subject);
         return;
     }
-    match latest.get(&subject.child_id) {
-        Some(&at) => {
-            let key = |s: &Subject| (s.on, s.attempt);
-            if key(&subjects[at]) <= key(&subject) {
-                subjects[at] = subject;
-            }
-        }
-        None => {
-            latest.insert(subject.child_id.clone(), subjects.len());
-            subjects.push(subject);
-        }
+    let Some(&at) = latest.get(&subject.child_id) else {
+        latest.insert(subject.child_id.clone(), subjects.len());
+        subjects.push(subject);
+        return;
+    };
+    let key = |s: &Subject| (s.on, s.attempt);
+    if key(&subjects[at]) <= key(&subject) {
+        subjects[at] = subject;
     }
 }
 

@@ -35,7 +35,7 @@ struct Page {
     id: String,
     kind: &'static str,
     superseded: bool,
-    page: RulePage,
+    body: RulePage,
     picture: Vec<String>,
 }
 
@@ -47,14 +47,14 @@ impl Rules {
     pub fn new(library: &Library) -> Rules {
         let pages = rule_pages(library)
             .into_iter()
-            .map(|(id, page)| {
+            .map(|(id, body)| {
                 let set = library.rule_set(&id);
                 Page {
                     kind: set.map_or(PROTOCOLS, |s| s.kind.title()),
                     superseded: set.is_some_and(|s| !s.status.is_empty() && s.status != "current"),
                     picture: set.map(picture::lines).unwrap_or_default(),
                     id,
-                    page,
+                    body,
                 }
             })
             .collect();
@@ -229,7 +229,7 @@ impl Rules {
         };
         if let Some(page) = listed.get(self.at) {
             let columns = usize::from(sheet.width).saturating_sub(2);
-            let lines: Vec<String> = match &page.page {
+            let lines: Vec<String> = match &page.body {
                 RulePage::Sheet(sheet) => sheet_lines(sheet, &page.picture, columns),
                 RulePage::Lines(lines) => lines
                     .iter()

@@ -1,5 +1,7 @@
 //! Comparing rule sets: symmetric, the same answers as the evaluator, moved thresholds included.
 
+#![allow(clippy::panic)]
+
 mod command;
 mod intervals;
 

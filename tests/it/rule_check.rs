@@ -1,5 +1,7 @@
 //! `rules check`, `rules new` and sets that are based on others.
 
+#![allow(clippy::panic)]
+
 use super::cli::Bench;
 use twoline::domain::age::AgeMonths;
 use twoline::domain::field::Field;

@@ -1,5 +1,7 @@
 //! A comparison in words and tables.
 
+use std::fmt::Write;
+
 use super::{Comparison, Counts, Side, Subject, Tally, Verdict};
 use crate::stats::intervals::wilson;
 
@@ -116,9 +118,10 @@ fn only(counts: &Counts, side: Side, id: &str) -> String {
     );
     let open = counts.only_unanswered(side);
     if open > 0 {
-        line.push_str(&format!(
+        let _ = write!(
+            line,
             "; for {open} of them the other cannot say, which is no pass"
-        ));
+        );
     }
     line
 }

@@ -189,7 +189,10 @@ fn criterion_lines(criterion: &Criterion, source: &str) -> Vec<String> {
         ("without", &criterion.without),
     ] {
         if !findings.is_empty() {
-            out.push(format!("{key} = {}", list_of(findings.iter().map(finding))));
+            out.push(format!(
+                "{key} = {}",
+                list_of(findings.iter().copied().map(finding))
+            ));
         }
     }
     out.push(format!("source = {}", quoted(source)));
@@ -216,7 +219,7 @@ fn criterion_lines(criterion: &Criterion, source: &str) -> Vec<String> {
     out
 }
 
-fn finding(finding: &crate::rules::Finding) -> String {
+fn finding(finding: crate::rules::Finding) -> String {
     use crate::rules::Finding;
     match finding {
         Finding::Sign(kind) => kind.word().to_owned(),

@@ -1,6 +1,8 @@
 //! Two rule sets on the children of this term; thresholds move under the arrows and the counts
 //! follow.
 
+use std::fmt::Write;
+
 use ratatui::Frame;
 use ratatui::layout::{Position, Rect};
 use ratatui::style::Style;
@@ -162,7 +164,7 @@ impl Compared {
                 threshold.threshold
             );
             if threshold.threshold != threshold.original {
-                text.push_str(&format!("  (in the file: {})", threshold.original));
+                let _ = write!(text, "  (in the file: {})", threshold.original);
             }
             let style = if i == self.at {
                 theme.focus()

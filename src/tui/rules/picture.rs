@@ -1,5 +1,7 @@
 //! The pass line per age as a small picture: lines of the chart down, ages across.
 
+use std::fmt::Write;
+
 use crate::actions::{RuleSet, pass_line_of_set};
 use crate::domain::acuity::{Line, Step};
 use crate::domain::age::AgeMonths;
@@ -41,11 +43,10 @@ pub(super) fn lines(set: &RuleSet) -> Vec<String> {
     }
     let mut ages = " ".repeat(9);
     for (year, pass) in YEARS.zip(&passes) {
-        ages.push_str(&if pass.is_some() {
-            format!("{year:>3}")
-        } else {
-            "  ·".to_owned()
-        });
+        match pass {
+            Some(_) => _ = write!(ages, "{year:>3}"),
+            None => ages.push_str("  ·"),
+        }
     }
     out.push(ages);
     out
