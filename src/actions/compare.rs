@@ -10,6 +10,7 @@ use super::desk::Desk;
 use super::error::Result;
 use super::judging::completed;
 use super::visit_rows::{judged, tries_of};
+use crate::domain::codes::Attempt;
 use crate::intake::results::{Options, ResultRow, ResultsReader};
 use crate::intake::{InputFile, Place, Problem, Problems};
 use crate::reports::csv::{Form, Kind, Table};
@@ -82,7 +83,7 @@ fn subject_of(row: &ResultRow, site: &str) -> Subject {
         age: row.age,
         grade: row.grade,
         on: row.screened_on,
-        attempt: row.attempt,
+        attempt: row.attempt.unwrap_or(Attempt::First),
         method: None,
         consent: None,
         under_care: false,

@@ -21,7 +21,7 @@ fuzz_target!(|bytes: &[u8]| {
                     age: row.age,
                     grade: row.grade,
                     on: row.screened_on,
-                    attempt: row.attempt,
+                    attempt: row.attempt.unwrap_or(twoline::domain::codes::Attempt::First),
                     ..Case::new(&row.readings)
                 };
                 for set in library.rule_sets() {
