@@ -97,9 +97,9 @@ impl Drafts {
                  cursor TEXT NOT NULL,
                  updated_at_ms INTEGER NOT NULL,
                  PRIMARY KEY (site, screened_on, protocol, child_id)
-             ) STRICT, WITHOUT ROWID;
-             SELECT count(*) FROM draft;",
+             ) STRICT, WITHOUT ROWID;",
         )?;
+        conn.query_row("SELECT count(*) FROM draft", [], |_| Ok(()))?;
         Ok(conn)
     }
 

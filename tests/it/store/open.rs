@@ -233,10 +233,11 @@ fn a_held_lock_stays_when_an_init_meets_it() {
 #[test]
 fn a_broken_database_says_so_to_readers_and_writers() {
     let whole = |dir: &Path| std::fs::read(dir.join("store.db")).unwrap();
-    for (name, wreck) in [
-        ("empty", (|_| Vec::new()) as fn(Vec<u8>) -> Vec<u8>),
+    let wrecks: [(&str, fn(Vec<u8>) -> Vec<u8>); 2] = [
+        ("empty", |_| Vec::new()),
         ("noise", |bytes| bytes.iter().map(|b| b ^ 0x5A).collect()),
-    ] {
+    ];
+    for (name, wreck) in wrecks {
         let (_temp, store) = fresh();
         let dir = store.dir().to_owned();
         drop(store);
