@@ -27,6 +27,7 @@ pub(super) enum Loaded {
 const SET_KEYS: &[&str] = &[
     "id",
     "title",
+    "short_title",
     "edition",
     "kind",
     "region",
@@ -137,6 +138,7 @@ fn rule_set(
         .any(|c| matches!(c.applies, Applies::Grades(_)));
     Some(RuleSet {
         id: head.id.into(),
+        short_title: said_by(head.short_title, head.approval.as_ref()),
         title: head.title,
         edition: head.edition.into(),
         kind,
@@ -163,6 +165,14 @@ fn rule_set(
         span,
         by_grade,
     })
+}
+
+/// Returns how a set names itself in one sentence; a local one says that it is.
+fn said_by(short_title: String, approval: Option<&Approval>) -> Arc<str> {
+    match approval {
+        Some(_) => format!("{short_title}, local").into(),
+        None => short_title.into(),
+    }
 }
 
 /// Returns the ages that all bands of a set cover together.
@@ -197,6 +207,7 @@ pub(super) fn hash<'a>(texts: impl IntoIterator<Item = &'a str>) -> Arc<str> {
 struct Head {
     id: String,
     title: String,
+    short_title: String,
     edition: String,
     approval: Option<Approval>,
 }
@@ -219,6 +230,7 @@ fn head(reader: &mut Reader<'_>, root: &Section<'_, '_>, local: bool) -> Option<
         good
     });
     let title = reader.string(root, "title");
+    let short_title = reader.optional(root, "short_title").map(|v| v.0);
     let edition = reader.string(root, "edition");
     let by = reader.optional(root, "approved_by");
     let on = reader.date(root, "approved_on");
@@ -235,9 +247,11 @@ fn head(reader: &mut Reader<'_>, root: &Section<'_, '_>, local: bool) -> Option<
             }
         }
     }
+    let title = title?.0;
     Some(Head {
         id: id?.0,
-        title: title?.0,
+        short_title: short_title.unwrap_or_else(|| title.clone()),
+        title,
         edition: edition?.0,
         approval,
     })

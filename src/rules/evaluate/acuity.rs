@@ -1,7 +1,7 @@
 //! Acuity criteria: each eye against a line, and the difference between the eyes.
 
 use crate::domain::acuity::{Acuity, Line, LineCredit, LogMar, Notation, Step, StepRange};
-use crate::domain::outcome::{Answer, Margin};
+use crate::domain::outcome::{Answer, ChartChange, Margin};
 use crate::domain::readings::{AcuityResult, Eye, Eyes};
 use crate::rules::{Compare, Criterion, RuleSet, Test};
 
@@ -18,14 +18,19 @@ pub(super) fn each_eye(
     let (line, stricter) = match criterion.test {
         Test::WorseThanLine(line) => (line, 0),
         Test::LineOrWorse(line) => (line, 1),
+        Test::LettersOrWorse { line, .. } => (line, 1),
         _ => return Answered::new(Answer::Unknown, "not an acuity threshold"),
+    };
+    let missed = match criterion.test {
+        Test::LettersOrWorse { missed, .. } => i32::from(missed),
+        _ => 0,
     };
     let near = criterion.measure == crate::rules::Measure::NearEachEye;
     let shift = if near { 0 } else { facts.shift };
     let letters = facts.letters;
     let by_letter = criterion.compare == Compare::Letter;
     let limit = if by_letter {
-        line.logmar().0 * i32::from(letters) - stricter
+        line.logmar().0 * i32::from(letters) + missed * 100 - stricter
     } else {
         line.step().0 - stricter
     };
@@ -54,9 +59,26 @@ pub(super) fn each_eye(
             &mut out.remarks,
         );
     }
+    let worst_pass = if by_letter {
+        limit.div_euclid(i32::from(letters) * 100)
+    } else {
+        limit
+    };
+    if shift == 0 {
+        out.chart_change = chart_change(ranges, answers, worst_pass, limit, by_letter, letters)
+            .map(|(right, left, steps)| {
+                let at = |step: Option<i32>| step.map(|s| needed_at(line, Step(s), facts.notation));
+                ChartChange {
+                    near,
+                    right: at(right),
+                    left: at(left),
+                    steps,
+                }
+            });
+    }
     if answer == Answer::Refer {
         // By letter a line's name stands for its letter score as well.
-        let best = if stricter == 0 {
+        let best = if stricter == 0 || missed > 0 {
             line
         } else {
             Line::at(Step(limit_step(line)), line.notation())
@@ -77,6 +99,47 @@ pub(super) fn each_eye(
         );
     }
     out
+}
+
+/// Returns the step each eye would have to be read at to turn the answer, and how far that is: all
+/// failing eyes to the worst step that passes, or the nearer eye to the best that does not.
+fn chart_change(
+    ranges: [Option<StepRange>; 2],
+    answers: [Answer; 2],
+    worst_pass: i32,
+    limit: i32,
+    by_letter: bool,
+    letters: u8,
+) -> Option<(Option<i32>, Option<i32>, i32)> {
+    let unit = if by_letter { i32::from(letters) * 100 } else { 1 };
+    match either_eye(answers) {
+        Answer::Refer => {
+            let step = |answer| (answer == Answer::Refer).then_some(worst_pass);
+            Some((step(answers[0]), step(answers[1]), 0))
+        }
+        Answer::Pass => {
+            let away = |range: Option<StepRange>| {
+                let worst = range?.worst?;
+                Some((limit - worst).div_euclid(unit) + 1)
+            };
+            let (right, left) = (away(ranges[0])?, away(ranges[1])?);
+            Some(if right < left {
+                (Some(worst_pass + 1), None, right)
+            } else {
+                (None, Some(worst_pass + 1), left)
+            })
+        }
+        Answer::Unknown => None,
+    }
+}
+
+/// Names a step to be read: the threshold's own name where it is the threshold's own line.
+fn needed_at(line: Line, step: Step, notation: Notation) -> Line {
+    if line.step() == step && line.notation() == notation {
+        line
+    } else {
+        Line::at(step, notation)
+    }
 }
 
 fn limit_step(line: Line) -> i32 {
@@ -158,11 +221,8 @@ fn remarks(
 ) {
     let acuity = match value {
         Some(AcuityResult::Read(acuity)) => acuity,
-        Some(AcuityResult::NotTestable(why)) => {
-            out.push(format!("{}: not testable ({})", eye.title(), why.title()));
-            return;
-        }
-        None => return,
+        // Why an eye is not testable stands in the reading itself.
+        Some(AcuityResult::NotTestable(_)) | None => return,
     };
     if let Acuity::AsWritten(text) = acuity {
         out.push(format!("{}: {text} has no agreed equivalent", eye.title()));
@@ -261,8 +321,30 @@ pub(super) fn between_eyes(set: &RuleSet, criterion: &Criterion, facts: &Facts<'
             facts.notation,
         );
         out.would_change = format!("{} {line} would pass", eye.title());
+        if facts.shift == 0 {
+            out.chart_change = Some(one_eye(eye, line, 0));
+        }
+    }
+    // The eyes read alike or nearly so: how far the worse one is from the limit.
+    if answer == Answer::Pass
+        && exact
+        && facts.shift == 0
+        && let Some(best) = better_step(right, left)
+    {
+        let eye = worse_eye(right, left).unwrap_or(Eye::Left);
+        let line = Line::at(Step(best + limit), facts.notation);
+        out.chart_change = Some(one_eye(eye, line, limit - least));
     }
     out
+}
+
+fn one_eye(eye: Eye, line: Line, steps: i32) -> ChartChange {
+    ChartChange {
+        near: false,
+        right: (eye == Eye::Right).then_some(line),
+        left: (eye == Eye::Left).then_some(line),
+        steps,
+    }
 }
 
 fn worse_eye(right: StepRange, left: StepRange) -> Option<Eye> {
