@@ -7,6 +7,7 @@
 mod error;
 mod evaluate;
 pub mod explain;
+pub mod grading;
 mod library;
 mod load;
 mod model;

@@ -164,10 +164,7 @@ pub(super) fn screened_again<'r>(
         .map(|r| r.then)
         .min()?;
     Some(match then {
-        Then::Recheck(months) => (
-            Some(then.in_words()),
-            on.map(|on| months_after(on, months)),
-        ),
+        Then::Recheck(months) => (Some(then.in_words()), on.map(|on| months_after(on, months))),
         _ => (None, None),
     })
 }

@@ -1,6 +1,7 @@
 //! TOML text to typed rule sets and protocols; every fault is found before anything is refused.
 
 mod criterion;
+mod grading;
 mod protocol;
 mod reader;
 
@@ -13,6 +14,7 @@ use crate::domain::acuity::LineCredit;
 use crate::domain::number;
 use crate::domain::outcome::{Basis, Source};
 use crate::rules::error::RuleError;
+use crate::rules::grading::{Grading, GradingKind};
 use crate::rules::{Applies, Approval, Criterion, Kind, Library, Protocol, RuleSet, threshold};
 use reader::{Reader, Section};
 
@@ -22,6 +24,8 @@ pub(super) enum Loaded {
     Set(Box<RuleSet>),
     /// A protocol, still to be checked against the library.
     Protocol(Box<Protocol>),
+    /// A table of condition groups or clinic bands.
+    Grading(Box<Grading>),
 }
 
 const SET_KEYS: &[&str] = &[
@@ -79,13 +83,19 @@ pub(super) fn load(
     let is_protocol = kind.as_ref().is_some_and(|(k, _)| k == "protocol");
     let loaded = if is_protocol {
         protocol::load(&mut reader, &root, local, library).map(|p| Loaded::Protocol(Box::new(p)))
+    } else if let Some(kind) = kind.as_ref().and_then(|(k, _)| match k.as_str() {
+        "severity" => Some(GradingKind::Severity),
+        "triage" => Some(GradingKind::Triage),
+        _ => None,
+    }) {
+        grading::load(&mut reader, &root, kind, local).map(|g| Loaded::Grading(Box::new(g)))
     } else {
         let kind = kind.and_then(|(word, span)| {
             reader.word(
                 &word,
                 span,
                 "kind",
-                "acuity, refraction, signs or protocol",
+                "acuity, refraction, signs, severity, triage or protocol",
                 Kind::from_word,
             )
         });

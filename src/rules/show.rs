@@ -4,6 +4,7 @@ use std::fmt::Write;
 
 use crate::domain::outcome::{Basis, Source};
 use crate::rules::explain::{act_words, basis_words, criterion_words, source_words};
+use crate::rules::grading::{Grading, Level};
 use crate::rules::{Applies, FirstFail, Kind, Measure, Protocol, RuleSet, threshold};
 
 /// A rule set as a table: bands across, findings down.
@@ -171,6 +172,83 @@ fn cited(source: &Source) -> String {
         source.citation,
         basis_words(source)
     )
+}
+
+/// Returns the line of a severity or triage table in the list.
+pub fn grading_line(grading: &Grading) -> String {
+    let place = match &grading.local {
+        Some(approval) => format!("local, approved by {} on {}", approval.by, approval.on),
+        None => grading.region.clone(),
+    };
+    format!(
+        "{:<22} {}; {place}; {}; {}",
+        grading.id,
+        grading.title,
+        grading.status,
+        basis_note(&grading.sources)
+    )
+}
+
+/// Returns a severity or triage table: groups or bands across, findings down.
+pub fn grading_sheet(grading: &Grading) -> RuleSheet {
+    let mut levels: Vec<Level> = grading.entries.iter().map(|e| e.level).collect();
+    levels.sort_unstable();
+    levels.dedup();
+    let title = |level: &Level| {
+        let named = grading.titles.iter().find(|(l, _)| l == level);
+        named.map_or_else(|| level.in_words(), |(_, title)| title.to_string())
+    };
+    let mut rows: Vec<(String, Vec<String>)> = Vec::new();
+    let mut notes = vec![grading.note.clone()];
+    for entry in &grading.entries {
+        let row = rows
+            .iter()
+            .position(|(name, _)| *name == *entry.finding)
+            .unwrap_or_else(|| {
+                rows.push((entry.finding.to_string(), vec![String::new(); levels.len()]));
+                rows.len() - 1
+            });
+        let Some(column) = levels.iter().position(|l| *l == entry.level) else {
+            continue;
+        };
+        let cell = &mut rows[row].1[column];
+        if !cell.is_empty() {
+            cell.push_str("; or ");
+        }
+        if entry.applies != Applies::Everyone {
+            let _ = write!(cell, "{}: ", entry.applies);
+        }
+        cell.push_str(&entry.conditions());
+        if !entry.note.is_empty() {
+            notes.push(format!("{}: {}", entry.finding, entry.note));
+        }
+    }
+    for window in &grading.windows {
+        notes.push(format!(
+            "order inside a band: {} ({})",
+            window.words,
+            source_words(&window.source)
+        ));
+    }
+    notes.retain(|note| !note.is_empty());
+    notes.dedup();
+    RuleSheet {
+        id: grading.id.to_string(),
+        title: grading.title.clone(),
+        edition: [&*grading.edition, &grading.region, &grading.status]
+            .into_iter()
+            .filter(|s| !s.is_empty())
+            .collect::<Vec<_>>()
+            .join(" · "),
+        columns: levels.iter().map(title).collect(),
+        rows,
+        line_credit: String::new(),
+        sources: grading.sources.iter().map(|s| cited(s)).collect(),
+        notes,
+        approval: grading.local.as_ref().map_or_else(String::new, |a| {
+            format!("local, approved by {} on {}", a.by, a.on)
+        }),
+    }
 }
 
 /// Returns a protocol as plain lines.

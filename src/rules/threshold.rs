@@ -84,7 +84,9 @@ fn acuity(text: &str) -> Option<Test> {
 /// Reads `6/9-2`: a line with letters missed, for sets that score by letter.
 fn letters(text: &str) -> Option<Test> {
     match parse_acuity(text, &AcuityContext::default()).ok()?.value {
-        AcuityResult::Read(Acuity::Read { line, letters }) if letters < 0 && line.is_on_a_chart() => {
+        AcuityResult::Read(Acuity::Read { line, letters })
+            if letters < 0 && line.is_on_a_chart() =>
+        {
             Some(Test::LettersOrWorse {
                 line,
                 missed: letters.unsigned_abs(),

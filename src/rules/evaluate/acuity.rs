@@ -111,7 +111,11 @@ fn chart_change(
     by_letter: bool,
     letters: u8,
 ) -> Option<(Option<i32>, Option<i32>, i32)> {
-    let unit = if by_letter { i32::from(letters) * 100 } else { 1 };
+    let unit = if by_letter {
+        i32::from(letters) * 100
+    } else {
+        1
+    };
     match either_eye(answers) {
         Answer::Refer => {
             let step = |answer| (answer == Answer::Refer).then_some(worst_pass);

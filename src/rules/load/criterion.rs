@@ -156,7 +156,9 @@ fn load(
     let high_priority = reader
         .optional(section, "priority")
         .and_then(|(word, span)| {
-            reader.word(&word, span, "priority", "high", |w| (w == "high").then_some(()))
+            reader.word(&word, span, "priority", "high", |w| {
+                (w == "high").then_some(())
+            })
         })
         .is_some();
     if let (Some(Test::LettersOrWorse { .. }), Some((_, span))) = (&test, &refer)
@@ -230,7 +232,13 @@ fn then(reader: &mut Reader<'_>, section: &Section<'_, '_>, informs: bool) -> Th
             Then::Refer
         }
         _ => {
-            reader.word(&word, span, "then", "refer, rescreen, recheck", |_| None::<()>);
+            reader.word(
+                &word,
+                span,
+                "then",
+                "refer, rescreen, recheck",
+                |_| None::<()>,
+            );
             Then::Refer
         }
     }

@@ -89,11 +89,17 @@ pub(super) fn load(
     let broken_glasses_refer = reader
         .optional(root, "broken_glasses")
         .and_then(|(word, span)| {
-            reader.word(&word, span, "broken_glasses", "refer, return", |w| match w {
-                "refer" => Some(true),
-                "return" => Some(false),
-                _ => None,
-            })
+            reader.word(
+                &word,
+                span,
+                "broken_glasses",
+                "refer, return",
+                |w| match w {
+                    "refer" => Some(true),
+                    "return" => Some(false),
+                    _ => None,
+                },
+            )
         })
         .unwrap_or(true);
     let consent_opt_in = match reader.optional(root, "consent") {

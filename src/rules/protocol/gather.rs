@@ -83,7 +83,9 @@ impl<'l> Gathered<'l> {
                 .criteria
                 .iter()
                 .any(|c| protocol.requires(c.measure, case.age));
-            if (required || was_done(set, case.readings)) && scope(set, case.age, case.grade).speaks() {
+            if (required || was_done(set, case.readings))
+                && scope(set, case.age, case.grade).speaks()
+            {
                 gathered.ask(set, &facts, protocol);
             }
         }

@@ -124,7 +124,8 @@ fn refer_at_once(protocol: &Protocol, gathered: &Gathered<'_>) -> Option<Decisio
         .referring()
         .any(|s| {
             refers(&s.reason)
-                && (s.reason.rule_set == protocol.id || protocol.refer_at_once.contains(&s.reason.full_id()))
+                && (s.reason.rule_set == protocol.id
+                    || protocol.refer_at_once.contains(&s.reason.full_id()))
         })
         .then(|| Decision::new(OutcomeKind::Refer, DecidedBy::ReferAtOnce))
 }
@@ -185,8 +186,10 @@ fn criterion(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'_>) -> O
                 ))
         }
         (Attempt::First, FirstFail::WithinSchoolDays(days)) => working_days(case, days),
-        (Attempt::First, FirstFail::Refer) => Decision::new(OutcomeKind::Refer, DecidedBy::Criterion)
-            .note("a fail is referred at once"),
+        (Attempt::First, FirstFail::Refer) => {
+            Decision::new(OutcomeKind::Refer, DecidedBy::Criterion)
+                .note("a fail is referred at once")
+        }
         (Attempt::Rescreen, _) => Decision::new(OutcomeKind::Refer, DecidedBy::Criterion)
             .note("a rescreen that fails is referred"),
     })
