@@ -67,7 +67,18 @@ pub(super) fn each_eye(
     if shift == 0 {
         out.chart_change = chart_change(ranges, answers, worst_pass, limit, by_letter, letters)
             .map(|(right, left, steps)| {
-                let at = |step: Option<i32>| step.map(|s| needed_at(line, Step(s), facts.notation));
+                // By letter the threshold's own line passes even where its step would not.
+                let own = by_letter && stricter == 0 && answer == Answer::Refer;
+                let own = own && line.notation() == facts.notation;
+                let at = |step: Option<i32>| {
+                    step.map(|s| {
+                        if own {
+                            line
+                        } else {
+                            needed_at(line, Step(s), facts.notation)
+                        }
+                    })
+                };
                 ChartChange {
                     near,
                     right: at(right),

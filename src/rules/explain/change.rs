@@ -34,10 +34,11 @@ fn of_a_fail(outcome: &Outcome) -> String {
     if reasons.is_empty() || reasons.iter().any(|r| r.would_change.is_empty()) {
         return String::new();
     }
-    let passes = !outcome
-        .reasons
-        .iter()
-        .any(|r| r.required && r.answer == Answer::Unknown);
+    // Below what refers there may still be what is screened again.
+    let passes = !outcome.reasons.iter().any(|r| {
+        (r.required && r.answer == Answer::Unknown)
+            || (r.then.is_again() && outcome.kind == OutcomeKind::Refer)
+    });
     let (then, better) = (
         if passes {
             "would pass"

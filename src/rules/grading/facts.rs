@@ -1,6 +1,6 @@
 //! What is known of a child when a table of groups or bands is asked.
 
-use crate::domain::acuity::{Distances, Notation, StepRange};
+use crate::domain::acuity::{Distances, StepRange};
 use crate::domain::age::AgeMonths;
 use crate::domain::codes::{Cover, DeviatingEye, SignKind, YesNo};
 use crate::domain::readings::{AcuityResult, Eye, InstrumentEye, Readings};
@@ -135,10 +135,6 @@ impl<'a> Clinical<'a> {
             None if self.readings.has_sign(SignKind::NewSquint) => Some((0, Some(3))),
             None => None,
         }
-    }
-
-    pub(super) fn notation(&self) -> Notation {
-        self.readings.notation()
     }
 
     pub(super) fn acuity_words(&self) -> String {

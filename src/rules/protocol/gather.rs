@@ -100,7 +100,9 @@ impl<'l> Gathered<'l> {
             spoken.reason.required = protocol.requires(spoken.measure, facts.case.age)
                 && spoken.reason.then != Then::Inform
                 && (spoken.reason.required || !spoken.reason.high_priority);
-            if protocol.leave_out.contains(&spoken.reason.full_id()) {
+            if !protocol.leave_out.is_empty()
+                && protocol.leave_out.contains(&spoken.reason.full_id())
+            {
                 set_aside(&mut spoken);
             }
             self.spoken.push(spoken);

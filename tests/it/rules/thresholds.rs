@@ -19,6 +19,24 @@ type Line = (
 );
 const LINES: &[Line] = &[
     (
+        "nsw-preschool",
+        48,
+        Some(60),
+        "6/9",
+        "6/9-2",
+        "IOVS 2018 meeting abstract",
+        "primary",
+    ),
+    (
+        "new-zealand-4y",
+        48,
+        Some(60),
+        "6/6",
+        "6/12",
+        "New Zealand vision screening at 4 years",
+        "secondary",
+    ),
+    (
         "expert-panel-2015",
         36,
         Some(48),
