@@ -8,6 +8,7 @@
 )]
 
 mod again;
+mod alike;
 mod broken;
 mod children;
 mod grading;
