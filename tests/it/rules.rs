@@ -22,3 +22,4 @@ mod shipped;
 mod sources;
 mod support;
 mod thresholds;
+mod words;
