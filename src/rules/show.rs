@@ -252,6 +252,7 @@ pub fn grading_sheet(grading: &Grading) -> RuleSheet {
 }
 
 /// Returns a protocol as plain lines.
+#[allow(clippy::too_many_lines)] // one entry after the other
 pub fn protocol_lines(protocol: &Protocol) -> Vec<String> {
     let list =
         |ids: &[std::sync::Arc<str>]| ids.iter().map(|i| &**i).collect::<Vec<_>>().join(", ");

@@ -15,25 +15,13 @@ pub(super) fn each_eye(
     facts: &Facts<'_>,
     eyes: Eyes<Option<AcuityResult>>,
 ) -> Answered {
-    let (line, stricter) = match criterion.test {
-        Test::WorseThanLine(line) => (line, 0),
-        Test::LineOrWorse(line) => (line, 1),
-        Test::LettersOrWorse { line, .. } => (line, 1),
-        _ => return Answered::new(Answer::Unknown, "not an acuity threshold"),
-    };
-    let missed = match criterion.test {
-        Test::LettersOrWorse { missed, .. } => i32::from(missed),
-        _ => 0,
+    let letters = facts.letters;
+    let Some(limit) = Limit::of(criterion, letters) else {
+        return Answered::new(Answer::Unknown, "not an acuity threshold");
     };
     let near = criterion.measure == crate::rules::Measure::NearEachEye;
     let shift = if near { 0 } else { facts.shift };
-    let letters = facts.letters;
-    let by_letter = criterion.compare == Compare::Letter;
-    let limit = if by_letter {
-        line.logmar().0 * i32::from(letters) + missed * 100 - stricter
-    } else {
-        line.step().0 - stricter
-    };
+    let by_letter = limit.by_letter;
     let ranges = eyes.both().map(|value| {
         let acuity = value?.acuity()?;
         if by_letter {
@@ -42,12 +30,12 @@ pub(super) fn each_eye(
             acuity.steps(set.credit, letters, shift)
         }
     });
-    let answers = ranges.map(|range| against(range, limit));
+    let answers = ranges.map(|range| against(range, limit.value));
     let answer = either_eye(answers);
     let mut out = Answered::new(answer, both_in_words(eyes));
     out.by_eye = Some(answers);
     out.eye = deciding_eye(answers);
-    out.margin = margin(ranges, answers, limit, by_letter, letters);
+    out.margin = margin(ranges, answers, limit.value, by_letter, letters);
     for (eye, value) in Eye::BOTH.into_iter().zip(eyes.both()) {
         remarks(
             set.credit,
@@ -59,42 +47,12 @@ pub(super) fn each_eye(
             &mut out.remarks,
         );
     }
-    let worst_pass = if by_letter {
-        limit.div_euclid(i32::from(letters) * 100)
-    } else {
-        limit
-    };
     if shift == 0 {
-        out.chart_change = chart_change(ranges, answers, worst_pass, limit, by_letter, letters)
-            .map(|(right, left, steps)| {
-                // By letter the threshold's own line passes even where its step would not.
-                let own = by_letter && stricter == 0 && answer == Answer::Refer;
-                let own = own && line.notation() == facts.notation;
-                let at = |step: Option<i32>| {
-                    step.map(|s| {
-                        if own {
-                            line
-                        } else {
-                            needed_at(line, Step(s), facts.notation)
-                        }
-                    })
-                };
-                ChartChange {
-                    near,
-                    right: at(right),
-                    left: at(left),
-                    steps,
-                }
-            });
+        out.chart_change = limit.change(near, ranges, answers, facts.notation);
     }
     if answer == Answer::Refer {
         // By letter a line's name stands for its letter score as well.
-        let best = if stricter == 0 || missed > 0 {
-            line
-        } else {
-            Line::at(Step(limit_step(line)), line.notation())
-        };
-        let needed = needed_line(best, facts.notation, shift);
+        let needed = needed_line(limit.best_named(), facts.notation, shift);
         let failing: Vec<Eye> = failing(answers);
         out.would_change = match failing.as_slice() {
             [eye] if answers.contains(&Answer::Pass) => {
@@ -106,45 +64,107 @@ pub(super) fn each_eye(
     } else if answer == Answer::Unknown {
         out.would_change = format!(
             "each eye {} or better would pass",
-            needed_line(line, facts.notation, shift)
+            needed_line(limit.line, facts.notation, shift)
         );
     }
     out
 }
 
-/// Returns the step each eye would have to be read at to turn the answer, and how far that is: all
-/// failing eyes to the worst step that passes, or the nearer eye to the best that does not.
-fn chart_change(
-    ranges: [Option<StepRange>; 2],
-    answers: [Answer; 2],
-    worst_pass: i32,
-    limit: i32,
+/// The worst value that still passes an acuity threshold.
+struct Limit {
+    line: Line,
+    /// Whether the threshold's own line passes.
+    own_line_passes: bool,
+    /// Letters missed of the line, where the threshold speaks of them.
+    missed: i32,
     by_letter: bool,
-    letters: u8,
-) -> Option<(Option<i32>, Option<i32>, i32)> {
-    let unit = if by_letter {
-        i32::from(letters) * 100
-    } else {
-        1
-    };
-    match either_eye(answers) {
-        Answer::Refer => {
-            let step = |answer| (answer == Answer::Refer).then_some(worst_pass);
-            Some((step(answers[0]), step(answers[1]), 0))
-        }
-        Answer::Pass => {
-            let away = |range: Option<StepRange>| {
-                let worst = range?.worst?;
-                Some((limit - worst).div_euclid(unit) + 1)
-            };
-            let (right, left) = (away(ranges[0])?, away(ranges[1])?);
-            Some(if right < left {
-                (Some(worst_pass + 1), None, right)
+    /// In steps, or in thousandths of logMAR times the letters of a line.
+    value: i32,
+    /// One step in that unit.
+    step: i32,
+}
+
+impl Limit {
+    fn of(criterion: &Criterion, letters: u8) -> Option<Limit> {
+        let (line, missed, own_line_passes) = match criterion.test {
+            Test::WorseThanLine(line) => (line, 0, true),
+            Test::LineOrWorse(line) => (line, 0, false),
+            Test::LettersOrWorse { line, missed } => (line, i32::from(missed), false),
+            _ => return None,
+        };
+        let by_letter = criterion.compare == Compare::Letter;
+        let at = if by_letter {
+            line.logmar().0 * i32::from(letters) + missed * 100
+        } else {
+            line.step().0
+        };
+        Some(Limit {
+            line,
+            own_line_passes,
+            missed,
+            by_letter,
+            value: at - i32::from(!own_line_passes),
+            step: if by_letter {
+                i32::from(letters) * 100
             } else {
-                (None, Some(worst_pass + 1), left)
-            })
+                1
+            },
+        })
+    }
+
+    /// Returns the worst whole step that passes.
+    fn worst_pass(&self) -> i32 {
+        self.value.div_euclid(self.step)
+    }
+
+    /// Returns the line that is named as passing.
+    fn best_named(&self) -> Line {
+        if self.own_line_passes || self.missed > 0 {
+            self.line
+        } else {
+            Line::at(Step(limit_step(self.line)), self.line.notation())
         }
-        Answer::Unknown => None,
+    }
+
+    /// Returns what would have to be read to turn the answer: the worst line that passes in each
+    /// failing eye, or the best that does not in the eye that is nearer to it.
+    fn change(
+        &self,
+        near: bool,
+        ranges: [Option<StepRange>; 2],
+        answers: [Answer; 2],
+        notation: Notation,
+    ) -> Option<ChartChange> {
+        let mut change = ChartChange {
+            near,
+            ..ChartChange::default()
+        };
+        match either_eye(answers) {
+            Answer::Refer => {
+                // By letter the threshold's own line may pass where its nearest step would not.
+                let own =
+                    self.by_letter && self.own_line_passes && self.line.notation() == notation;
+                let line = if own {
+                    self.line
+                } else {
+                    needed_at(self.line, Step(self.worst_pass()), notation)
+                };
+                change.right = (answers[0] == Answer::Refer).then_some(line);
+                change.left = (answers[1] == Answer::Refer).then_some(line);
+            }
+            Answer::Pass => {
+                let away = |range: Option<StepRange>| {
+                    Some((self.value - range?.worst?).div_euclid(self.step) + 1)
+                };
+                let (right, left) = (away(ranges[0])?, away(ranges[1])?);
+                let line = needed_at(self.line, Step(self.worst_pass() + 1), notation);
+                change.steps = right.min(left);
+                change.right = (right < left).then_some(line);
+                change.left = (right >= left).then_some(line);
+            }
+            Answer::Unknown => return None,
+        }
+        Some(change)
     }
 }
 
