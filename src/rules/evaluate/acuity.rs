@@ -157,7 +157,12 @@ impl Limit {
                     Some((self.value - range?.worst?).div_euclid(self.step) + 1)
                 };
                 let (right, left) = (away(ranges[0])?, away(ranges[1])?);
-                let line = needed_at(self.line, Step(self.worst_pass() + 1), notation);
+                let step = Step(self.worst_pass() + 1);
+                let line = if self.own_line_passes {
+                    Line::at(step, notation)
+                } else {
+                    needed_at(self.line, step, notation)
+                };
                 change.steps = right.min(left);
                 change.right = (right < left).then_some(line);
                 change.left = (right >= left).then_some(line);
