@@ -105,3 +105,60 @@ fn new_zealand_at_each_bound() {
         assert_eq!(word(&it.by_set("new-zealand-4y")), kind, "{text}");
     }
 }
+
+/// 48..60 completed months: the day before each birthday, the birthday, and a leap day (29 February
+/// counts as 28 February in a common year).
+#[test]
+fn each_side_of_the_age_bounds() {
+    use twoline::domain::age::AgeMonths;
+    let refers = "distance_right=6/12 distance_left=6/12";
+    for set in ["nsw-preschool", "new-zealand-4y"] {
+        for (born, on, kind) in [
+            ("2022-10-14", "2026-10-13", "incomplete"),
+            ("2022-10-14", "2026-10-14", "refer"),
+            ("2021-10-14", "2026-10-13", "refer"),
+            ("2021-10-14", "2026-10-14", "incomplete"),
+            ("2020-02-29", "2024-02-28", "incomplete"),
+            ("2020-02-29", "2024-02-29", "refer"),
+            ("2020-02-29", "2025-02-27", "refer"),
+            ("2020-02-29", "2025-02-28", "incomplete"),
+        ] {
+            let age = AgeMonths::between(date(born), date(on)).unwrap().0;
+            let outcome = child(age, refers).by_set(set);
+            assert_eq!(word(&outcome), kind, "{set}: born {born}, on {on}");
+        }
+    }
+}
+
+/// The sources beside the tables above.
+#[test]
+fn where_the_bounds_come_from() {
+    use twoline::domain::outcome::Basis;
+    for (set, citation, basis) in [
+        (
+            "nsw-preschool",
+            "IOVS 2018 meeting abstract",
+            Basis::Primary,
+        ),
+        (
+            "new-zealand-4y",
+            "New Zealand vision screening at 4 years",
+            Basis::Secondary,
+        ),
+    ] {
+        let outcome = child(50, "distance_right=6/60 distance_left=6/60").by_set(set);
+        for reason in &outcome.reasons {
+            assert!(reason.source.citation.contains(citation), "{set}");
+            assert_eq!(reason.source.basis, basis, "{set}/{}", reason.criterion);
+        }
+    }
+}
+
+/// The wrong distance moves the line before it is judged: 6/6 read at 1.5 m of a 3 m chart is 6/12.
+#[test]
+fn the_wrong_distance_counts() {
+    let text = "chart_distance_m=3 used_distance_m=1.5 distance_right=6/6 distance_left=6/6";
+    for set in ["nsw-preschool", "new-zealand-4y"] {
+        assert_eq!(word(&child(50, text).by_set(set)), "refer", "{set}");
+    }
+}
