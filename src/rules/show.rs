@@ -307,7 +307,10 @@ pub fn protocol_lines(protocol: &Protocol) -> Vec<String> {
     for policy in &protocol.not_testable {
         let when = policy.rescreen_months.map_or_else(
             || "once more, when the service says".to_owned(),
-            |months| format!("again within {months} months"),
+            |months| match months {
+                1 => "again within 1 month".to_owned(),
+                months => format!("again within {months} months"),
+            },
         );
         out.push(format!(
             "Not testable     {}: {when}, then refer ({})",

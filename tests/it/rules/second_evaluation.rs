@@ -452,7 +452,7 @@ fn sql_over_the_same_tables_agrees() {
             .query_map([], |row| row.get::<_, String>(0))
             .unwrap()
             .map(Result::unwrap);
-        let mut seen: Vec<String> = Vec::new();
+        let mut kinds: Vec<String> = Vec::new();
         let mut count = 0;
         for (i, (row, expected)) in filled.iter().zip(words).enumerate() {
             let mut case = Case::new(&row.readings);
@@ -468,11 +468,11 @@ fn sql_over_the_same_tables_agrees() {
                 row.readings
             );
             count += 1;
-            if !seen.contains(&expected) {
-                seen.push(expected);
+            if !kinds.contains(&expected) {
+                kinds.push(expected);
             }
         }
         assert_eq!(count, filled.len(), "{id}");
-        assert!(seen.len() >= 3, "{id} was not put to the test: {seen:?}");
+        assert!(kinds.len() >= 3, "{id} was not put to the test: {kinds:?}");
     }
 }

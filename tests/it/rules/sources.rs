@@ -37,7 +37,10 @@ const CITED: &[(&str, &[&str])] = &[
         &["J AAPOS 2003;7:314–316", "J AAPOS 2003;7:314–316"],
     ),
     ("instrument-2021", &["J AAPOS 2022;26:1.e1–1.e6"]),
-    ("preschool-groups", &["Ophthalmology 2004;111:637–650"]),
+    (
+        "preschool-groups",
+        &["Ophthalmology 2004;111:637–650", "common practice"],
+    ),
 ];
 
 /// Rule sets with age bands: the ages that the source covers.
