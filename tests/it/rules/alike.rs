@@ -11,6 +11,7 @@ use twoline::rules::{Case, Library, explain, judge_protocol, judge_rule_set};
 
 use super::support::{child, word};
 
+#[allow(clippy::unnecessary_wraps)] // as the readings hold it
 fn read(step: i32, notation: Notation) -> Option<AcuityResult> {
     Some(AcuityResult::Read(Acuity::Read {
         line: Line::at(Step(step), notation),
