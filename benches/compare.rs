@@ -36,6 +36,7 @@ fn main() {
         for (fast, subject) in comparison.verdicts(Side::A).zip(&subjects) {
             let slow = match judge_rule_set(set, &subject.case()).kind {
                 OutcomeKind::Refer => Verdict::Refer,
+                OutcomeKind::Rescreen => Verdict::Rescreen,
                 OutcomeKind::Incomplete => Verdict::Incomplete,
                 _ => Verdict::Pass,
             };

@@ -10,4 +10,5 @@ pub mod outcome;
 pub mod readings;
 pub mod refraction;
 pub mod roster;
+pub mod school_calendar;
 pub mod text;

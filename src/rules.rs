@@ -9,6 +9,7 @@ pub mod compare;
 mod error;
 mod evaluate;
 pub mod explain;
+pub mod grading;
 mod library;
 mod load;
 mod model;
@@ -22,13 +23,14 @@ use crate::domain::acuity::Line;
 use crate::domain::age::{AgeMonths, Grade};
 use crate::domain::codes::{AcuityMethod, Attempt, Consent};
 use crate::domain::readings::Readings;
+use crate::domain::school_calendar::SchoolCalendar;
 
 pub use error::{RuleError, RuleErrors};
 pub use evaluate::judge_rule_set;
 pub use library::Library;
 pub use model::{
-    Applies, Approval, Compare, Criterion, Finding, Kind, Measure, Metric, NotTestablePolicy,
-    Protocol, RiskRule, RuleSet, Test,
+    Applies, Approval, Compare, Criterion, Exemption, Finding, FirstFail, Kind, Measure, Metric,
+    NotTestablePolicy, Protocol, RequiredTests, RiskRule, RuleSet, Test,
 };
 pub use protocol::{PassLine, judge_protocol, pass_line, pass_line_of_set};
 
@@ -72,6 +74,8 @@ pub struct Case<'a> {
     pub earlier: Earlier,
     /// Lines of the chart in use, where it is known: decides "neighbouring lines on this chart".
     pub chart: Option<&'a [Line]>,
+    /// Days on which school is held, where they are known: working days are counted on it.
+    pub calendar: Option<&'a SchoolCalendar>,
     /// The readings.
     pub readings: &'a Readings,
 }
@@ -90,6 +94,7 @@ impl<'a> Case<'a> {
             examined_recently: false,
             earlier: Earlier::default(),
             chart: None,
+            calendar: None,
             readings,
         }
     }

@@ -22,6 +22,7 @@ mod text;
 mod theme;
 mod update;
 pub mod view;
+mod watch;
 
 pub use desk::{Clerk, Keeper, session};
 pub use judging::Draft;

@@ -101,7 +101,7 @@ pub fn bench_fields(library: &Library, day: &DayInfo, child: &DayChild) -> Vec<F
         return Vec::new();
     };
     let asked = |measure: Measure| {
-        protocol.required.contains(&measure)
+        protocol.requires(measure, child.age)
             || always(library, protocol).any(|c| {
                 c.measure == measure && holds(&c.applies, child) && (c.required || c.informs)
             })

@@ -172,6 +172,7 @@ fn file_name(path: &Path) -> String {
 pub fn list(library: &Library) -> Vec<String> {
     let mut lines = vec!["Rule sets".to_owned()];
     lines.extend(library.rule_sets().map(show::list_line));
+    lines.extend(library.gradings().map(show::grading_line));
     lines.push(String::new());
     lines.push("Protocols".to_owned());
     let width = library
@@ -192,12 +193,16 @@ pub fn show(library: &Library, id: &str) -> Result<Vec<String>, UnknownRule> {
     if let Some(set) = library.rule_set(id) {
         return Ok(safe(&sheet_lines(&show::sheet(set))));
     }
+    if let Some(grading) = library.grading(id) {
+        return Ok(safe(&sheet_lines(&show::grading_sheet(grading))));
+    }
     if let Some(protocol) = library.protocol(id) {
         return Ok(safe(&show::protocol_lines(protocol)));
     }
     let ids = library
         .rule_sets()
         .map(|s| &*s.id)
+        .chain(library.gradings().map(|g| &*g.id))
         .chain(library.protocols().map(|p| &*p.id));
     Err(UnknownRule::new("rule set or protocol", id, ids))
 }

@@ -61,11 +61,16 @@ impl Record {
             visit: draft.visit_id,
             readings,
         })?;
-        // The store has it; now the draft may go.
-        drafts
+        // The store has it; now the draft may go. Where it cannot, the child is signed all the same.
+        if let Err(error) = drafts
             .delete(&key, &child.child_id)
-            .map_err(ActionError::from)?;
-        drafts.flush().map_err(ActionError::from)?;
+            .and_then(|()| drafts.flush())
+        {
+            say(&format!(
+                "note: it is saved, but its draft could not be removed: {}",
+                clean(&error.to_string())
+            ));
+        }
         print_clean(&signed_lines(&desk, &signed)?)
     }
 }

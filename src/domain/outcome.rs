@@ -5,6 +5,7 @@ use std::sync::Arc;
 
 use chrono::NaiveDate;
 
+use crate::domain::acuity::Line;
 use crate::domain::codes::code_list;
 use crate::domain::readings::Eye;
 
@@ -96,11 +97,57 @@ pub enum Margin {
     LogMar(i32),
 }
 
+/// What a criterion asks for once its threshold is crossed.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash, Default)]
+pub enum Then {
+    /// An examination.
+    #[default]
+    Refer,
+    /// A second screening, when the service says.
+    Rescreen,
+    /// A second screening after so many calendar months.
+    Recheck(u32),
+    /// Information for the family and the school.
+    Inform,
+}
+
+impl Then {
+    /// Says whether it asks for a second screening.
+    pub fn is_again(self) -> bool {
+        matches!(self, Then::Rescreen | Then::Recheck(_))
+    }
+
+    /// Returns what is asked for, in words.
+    pub fn in_words(self) -> String {
+        match self {
+            Then::Refer => "refer".to_owned(),
+            Then::Rescreen => "rescreen".to_owned(),
+            Then::Recheck(months) => format!("recheck at {months} months"),
+            Then::Inform => "inform the family and the school".to_owned(),
+        }
+    }
+}
+
+/// What the eyes would have to read on the chart to turn a criterion's answer.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub struct ChartChange {
+    /// Whether the near chart is meant.
+    pub near: bool,
+    /// The line of the right eye, where it would have to change.
+    pub right: Option<Line>,
+    /// The line of the left eye, where it would have to change.
+    pub left: Option<Line>,
+    /// How many steps of 0.1 logMAR away that is.
+    pub steps: i32,
+}
+
 /// One criterion that was asked, with what it answered and why.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Reason {
     /// The rule set's id.
     pub rule_set: Arc<str>,
+    /// The rule set's short title, for one sentence.
+    pub said_by: Arc<str>,
     /// The criterion's id inside it.
     pub criterion: Arc<str>,
     /// What it answered.
@@ -127,8 +174,16 @@ pub struct Reason {
     pub urgency: Urgency,
     /// Days, where a source prints a number.
     pub act_within_days: Option<u32>,
+    /// What it asks for when it speaks.
+    pub then: Then,
+    /// Whether it makes a referral one of high priority.
+    pub high_priority: bool,
+    /// Whether an answer could make the protocol refer at once.
+    pub may_be_at_once: bool,
     /// The smallest single change that would turn the answer, in words; empty when there is none.
     pub would_change: String,
+    /// The same for a chart, line by line; also for an answer that passes.
+    pub chart_change: Option<ChartChange>,
 }
 
 impl Reason {

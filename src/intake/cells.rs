@@ -7,8 +7,11 @@ use crate::domain::text::{is_unsafe, nearest};
 /// What a cell is allowed to hold.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Kind {
-    /// An id, a code, a number, a date: no invisible character at all.
+    /// A code, a number, a date: no invisible character at all.
     Code,
+    /// An id: no invisible character, since two that look alike are two children, and nothing that a
+    /// spreadsheet would run.
+    Id,
     /// A name: no control character, and nothing that a spreadsheet would run.
     Name,
     /// One line of text: no control character.
@@ -20,11 +23,11 @@ pub enum Kind {
 /// Says what must not be in a cell of this kind, as what was expected instead.
 pub fn forbidden(kind: Kind, text: &str) -> Option<String> {
     // Most cells are plain: one pass over bytes decides.
-    if kind != Kind::Name && text.bytes().all(|b| matches!(b, 0x20..=0x7E)) {
+    if !matches!(kind, Kind::Name | Kind::Id) && text.bytes().all(|b| matches!(b, 0x20..=0x7E)) {
         return None;
     }
     let bad = text.char_indices().find(|(i, c)| match kind {
-        Kind::Code => is_unsafe(*c),
+        Kind::Code | Kind::Id => is_unsafe(*c) || *c == '\u{AD}',
         Kind::Name | Kind::Line => c.is_control(),
         // A carriage return alone would let the end of a line overwrite its beginning.
         Kind::Note if *c == '\r' => !text[i + 1..].starts_with('\n'),
@@ -41,7 +44,7 @@ pub fn forbidden(kind: Kind, text: &str) -> Option<String> {
             c as u32
         ));
     }
-    (kind == Kind::Name && crate::domain::formula::would_run(text))
+    (matches!(kind, Kind::Name | Kind::Id) && crate::domain::formula::would_run(text))
         .then(|| "text that a spreadsheet does not run: it may not begin with = + - @".to_owned())
 }
 

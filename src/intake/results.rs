@@ -256,11 +256,11 @@ impl<'a> ResultsReader<'a> {
         };
         for (i, cell) in self.record.iter().enumerate() {
             let kind = match self.columns[i] {
-                Some(Column::Row(RowColumn::ChildId)) => Kind::Name,
+                Some(Column::Row(RowColumn::ChildId)) => Kind::Id,
                 Some(_) => Kind::Code,
                 None => Kind::Note,
             };
-            let cell = if kind == Kind::Name {
+            let cell = if kind == Kind::Id {
                 unguarded(cell.trim())
             } else {
                 cell

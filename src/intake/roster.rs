@@ -422,8 +422,8 @@ fn kind(column: Column) -> Option<Kind> {
         | Column::WearsGlasses
         | Column::UnderCare
         | Column::History => None,
-        Column::ChildId
-        | Column::FamilyName
+        Column::ChildId => Some(Kind::Id),
+        Column::FamilyName
         | Column::GivenName
         | Column::Site
         | Column::Class

@@ -9,7 +9,7 @@ use toml::de::DeTable;
 
 use crate::domain::acuity::Step;
 use crate::domain::age::Grade;
-use crate::domain::outcome::Urgency;
+use crate::domain::outcome::{Then, Urgency};
 use crate::rules::error::{RuleError, RuleErrors};
 use crate::rules::load::{Loaded, load};
 use crate::rules::{Applies, Compare, Criterion, Library, Measure, RuleSet, Test, threshold};
@@ -72,6 +72,15 @@ fn described(library: &Library, file: &str, text: &str) -> Option<String> {
             set.criteria.len(),
             set.approval_words().unwrap_or_default()
         )),
+        Loaded::Grading(grading) => Some(format!(
+            "{file}: table {}, {} entries{}",
+            grading.id,
+            grading.entries.len(),
+            grading.local.as_ref().map_or_else(String::new, |a| format!(
+                "; local, approved by {} on {}",
+                a.by, a.on
+            ))
+        )),
         Loaded::Protocol(protocol) => Some(format!(
             "{file}: protocol {}, rule sets {}",
             protocol.id,
@@ -107,7 +116,8 @@ struct Loose {
     without: Vec<String>,
     urgency: Urgency,
     act_within_days: Option<i64>,
-    informs: bool,
+    then: Then,
+    high_priority: bool,
 }
 
 /// Returns the thresholds of a file that no child can ever be referred by.
@@ -236,6 +246,10 @@ fn placed((table, span): (&DeTable<'_>, Range<usize>)) -> Option<Placed> {
     } else {
         (Applies::Everyone, span.clone())
     };
+    let informs = table
+        .get("informs")
+        .and_then(|v| v.get_ref().as_bool())
+        .unwrap_or(false);
     Some(Placed {
         criterion: Loose {
             id: text("id").unwrap_or_default().to_owned(),
@@ -254,10 +268,13 @@ fn placed((table, span): (&DeTable<'_>, Range<usize>)) -> Option<Placed> {
                 .and_then(Urgency::from_word)
                 .unwrap_or(Urgency::Routine),
             act_within_days: number("act_within_days"),
-            informs: table
-                .get("informs")
-                .and_then(|v| v.get_ref().as_bool())
-                .unwrap_or(false),
+            then: match (text("then"), number("after_months"), informs) {
+                (Some("rescreen"), ..) => Then::Rescreen,
+                (Some("recheck"), Some(months), _) => Then::Recheck(u32::try_from(months).ok()?),
+                (None, _, true) => Then::Inform,
+                _ => Then::Refer,
+            },
+            high_priority: text("priority") == Some("high"),
         },
         refer: place("refer"),
         band,
@@ -297,7 +314,8 @@ fn loose(criterion: &Criterion) -> Loose {
         without: Vec::new(),
         urgency: criterion.urgency,
         act_within_days: criterion.act_within_days.map(i64::from),
-        informs: criterion.informs,
+        then: criterion.then,
+        high_priority: criterion.high_priority,
     }
 }
 
@@ -370,7 +388,10 @@ fn shadows(strong: &Loose, weak: &Loose) -> bool {
         && strong.seen == weak.seen
         && strong.with == weak.with
         && strong.without == weak.without
-        && strong.informs == weak.informs
+        // A referral stands before a second screening; a notice to the family is another matter.
+        && (strong.then == Then::Inform) == (weak.then == Then::Inform)
+        && strong.then <= weak.then
+        && (strong.high_priority || !weak.high_priority)
         && strong.urgency <= weak.urgency
         && match (strong.act_within_days, weak.act_within_days) {
             (_, None) => true,
@@ -412,6 +433,14 @@ fn as_strict(strong: &Test, weak: &Test, compare: Compare) -> bool {
     }
     match (strong, weak) {
         (Test::LinesOrMore(a), Test::LinesOrMore(b)) => a <= b,
+        // Letters missed weigh differently by how many a line has: only what holds for every chart.
+        (Test::WorseThanLine(a) | Test::LineOrWorse(a), Test::LettersOrWorse { line, .. }) => {
+            a.logmar() <= line.logmar()
+        }
+        (
+            Test::LettersOrWorse { line: a, missed: m },
+            Test::LettersOrWorse { line: b, missed: n },
+        ) => a.logmar() <= b.logmar() && m <= n,
         (Test::MoreThanPrism(a), Test::MoreThanPrism(b)) => a <= b,
         (Test::AnyManifest, Test::MoreThanPrism(_) | Test::Constant) => true,
         (Test::MoreThanPrism(_), Test::Constant) => true,
@@ -437,6 +466,7 @@ fn between_within<'a>(
     own.chain(inherited)
         .filter(|other| other.measure == Measure::DistanceEachEye && other.compare == Compare::Line)
         .filter(|other| covers(&other.applies, &me.applies) && other.urgency <= me.urgency)
+        .filter(|other| other.then <= me.then && (other.high_priority || !me.high_priority))
         .find_map(|other| {
             let passes = match other.test {
                 Test::WorseThanLine(line) => line.step().0,

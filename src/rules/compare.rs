@@ -92,8 +92,10 @@ pub enum Verdict {
     Pass = 0,
     /// Nothing refers and something required is unknown.
     Incomplete = 1,
+    /// A criterion asks for a second screening, and nothing that is unknown could refer instead.
+    Rescreen = 2,
     /// A criterion refers.
-    Refer = 2,
+    Refer = 3,
 }
 
 impl Verdict {
@@ -102,6 +104,7 @@ impl Verdict {
         match self {
             Verdict::Pass => "pass",
             Verdict::Incomplete => "incomplete",
+            Verdict::Rescreen => "rescreen",
             Verdict::Refer => "refer",
         }
     }
@@ -111,8 +114,8 @@ impl Verdict {
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
 pub struct Counts {
     /// Children by what the first set (rows) and the second (columns) say, in the order pass,
-    /// incomplete, refer.
-    pub by: [[u64; 3]; 3],
+    /// incomplete, rescreen, refer.
+    pub by: [[u64; 4]; 4],
 }
 
 impl Counts {
@@ -155,8 +158,8 @@ impl Counts {
         self.of(Side::B, Verdict::Refer) as i64 - self.of(Side::A, Verdict::Refer) as i64
     }
 
-    fn add(&mut self, a: u8, b: u8) {
-        self.by[usize::from(a)][usize::from(b)] += 1;
+    fn add(&mut self, a: Verdict, b: Verdict) {
+        self.by[a as usize][b as usize] += 1;
     }
 }
 
@@ -253,21 +256,17 @@ impl Comparison {
 
     /// Returns what a set says of each child, in the order they were given.
     pub fn verdicts(&self, side: Side) -> impl Iterator<Item = Verdict> {
-        self.sides[side.index()].states().iter().map(|s| match s {
-            2 => Verdict::Refer,
-            1 => Verdict::Incomplete,
-            _ => Verdict::Pass,
-        })
+        self.sides[side.index()].verdicts()
     }
 
     /// Counts.
     pub fn tally(&self) -> Tally {
         let mut by_age = vec![Counts::default(); self.ages.len()];
         let mut by_site = vec![Counts::default(); self.sites.len()];
-        let (a, b) = (self.sides[0].states(), self.sides[1].states());
-        for (i, (a, b)) in a.iter().zip(b).enumerate() {
-            by_age[usize::from(self.age_of[i])].add(*a, *b);
-            by_site[usize::from(self.site_of[i])].add(*a, *b);
+        let both = self.verdicts(Side::A).zip(self.verdicts(Side::B));
+        for (i, (a, b)) in both.enumerate() {
+            by_age[usize::from(self.age_of[i])].add(a, b);
+            by_site[usize::from(self.site_of[i])].add(a, b);
         }
         let mut all = Counts::default();
         for counts in &by_age {

@@ -8,8 +8,12 @@ mod set;
 
 use std::sync::Arc;
 
-use crate::domain::age::days_after;
-use crate::domain::outcome::{Answer, DecidedBy, Margin, Outcome, OutcomeKind, RiskKind, Urgency};
+use chrono::NaiveDate;
+
+use crate::domain::age::{days_after, months_after};
+use crate::domain::outcome::{
+    Answer, ChartChange, DecidedBy, Margin, Outcome, OutcomeKind, Reason, RiskKind, Then, Urgency,
+};
 use crate::domain::readings::Eye;
 use crate::rules::{Case, RuleSet};
 
@@ -26,6 +30,7 @@ pub(in crate::rules) struct Answered {
     pub margin: Margin,
     pub remarks: Vec<String>,
     pub would_change: String,
+    pub chart_change: Option<ChartChange>,
     /// Answers of the right and the left eye, where each eye has one.
     pub by_eye: Option<[Answer; 2]>,
     /// Why the criterion is not for this child; it then neither passes nor is missing.
@@ -41,6 +46,7 @@ impl Answered {
             margin: Margin::None,
             remarks: Vec::new(),
             would_change: String::new(),
+            chart_change: None,
             by_eye: None,
             not_applicable: None,
         }
@@ -87,10 +93,13 @@ pub fn judge_rule_set(set: &RuleSet, case: &Case<'_>) -> Outcome {
         content_hash: Arc::clone(&set.content_hash),
     };
     let mut missing = false;
+    // A rescreen stands only where nothing that is unknown could refer instead.
+    let mut may_refer = false;
     let scope = scope(set, case.age, case.grade);
     if let Some(word) = scope.unknown_word() {
         outcome.unknown.push(word.to_owned());
         missing = true;
+        may_refer = true;
     }
     if scope.speaks() {
         for spoken in speak(set, &facts) {
@@ -101,9 +110,10 @@ pub fn judge_rule_set(set: &RuleSet, case: &Case<'_>) -> Outcome {
                 ));
             }
             match spoken.reason.answer {
-                Answer::Refer => outcome.criteria.push(spoken.reason.criterion.to_string()),
+                Answer::Refer => {}
                 Answer::Unknown => {
                     missing |= spoken.reason.required;
+                    may_refer |= spoken.reason.required && !spoken.reason.then.is_again();
                     outcome.unknown.push(spoken.reason.criterion.to_string());
                 }
                 Answer::Pass => {}
@@ -111,9 +121,15 @@ pub fn judge_rule_set(set: &RuleSet, case: &Case<'_>) -> Outcome {
             outcome.reasons.push(spoken.reason);
         }
     }
-    if !outcome.criteria.is_empty() {
+    let again = screened_again(outcome.reasons.iter(), case.on);
+    if outcome.reasons.iter().any(refers) {
         outcome.kind = OutcomeKind::Refer;
         outcome.decided_by = DecidedBy::Criterion;
+    } else if let Some((words, due_on)) = again.filter(|_| !may_refer) {
+        outcome.kind = OutcomeKind::Rescreen;
+        outcome.decided_by = DecidedBy::Criterion;
+        outcome.due_on = due_on;
+        outcome.qualifiers.extend(words);
     } else if missing {
         outcome.kind = OutcomeKind::Incomplete;
         outcome.decided_by = DecidedBy::Missing;
@@ -122,8 +138,36 @@ pub fn judge_rule_set(set: &RuleSet, case: &Case<'_>) -> Outcome {
             .qualifiers
             .push(critical_line_words(&outcome.unknown));
     }
+    let again = outcome.kind == OutcomeKind::Rescreen;
+    outcome.criteria = outcome
+        .reasons
+        .iter()
+        .filter(|r| r.answer == Answer::Refer && r.then.is_again() == again)
+        .map(|r| r.criterion.to_string())
+        .collect();
     settle(&mut outcome, case);
     outcome
+}
+
+/// Says whether a reason asks for an examination.
+pub(super) fn refers(reason: &Reason) -> bool {
+    reason.answer == Answer::Refer && !reason.then.is_again()
+}
+
+/// Returns what the criteria that ask for a second screening come to: its words and its date. The
+/// sooner goes first, and a rescreen without a date before a recheck.
+pub(super) fn screened_again<'r>(
+    reasons: impl Iterator<Item = &'r Reason>,
+    on: Option<NaiveDate>,
+) -> Option<(Option<String>, Option<NaiveDate>)> {
+    let then = reasons
+        .filter(|r| r.answer == Answer::Refer && r.then.is_again())
+        .map(|r| r.then)
+        .min()?;
+    Some(match then {
+        Then::Recheck(months) => (Some(then.in_words()), on.map(|on| months_after(on, months))),
+        _ => (None, None),
+    })
 }
 
 /// Says that a pass stands on the critical line, and what that leaves open.
@@ -142,7 +186,14 @@ pub(super) fn critical_line_words(unknown: &[String]) -> String {
 
 /// Fills urgency, days, date and risks from the criteria that refer.
 pub(super) fn settle(outcome: &mut Outcome, case: &Case<'_>) {
-    let referring = || outcome.reasons.iter().filter(|r| r.answer == Answer::Refer);
+    let again = outcome.kind == OutcomeKind::Rescreen && !outcome.reasons.iter().any(refers);
+    let referring = || {
+        outcome
+            .reasons
+            .iter()
+            .filter(|r| r.answer == Answer::Refer && r.then.is_again() == again)
+    };
+    let high_priority = referring().any(|r| r.high_priority);
     let mut risks: Vec<RiskKind> = referring().filter_map(|r| r.risk).collect();
     risks.sort_unstable();
     risks.dedup();
@@ -154,4 +205,7 @@ pub(super) fn settle(outcome: &mut Outcome, case: &Case<'_>) {
         outcome.act_by = case.on.zip(days).map(|(on, days)| days_after(on, days));
     }
     outcome.risks = risks;
+    if high_priority && outcome.kind == OutcomeKind::Refer {
+        outcome.qualifiers.push("high priority".to_owned());
+    }
 }

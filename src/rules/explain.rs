@@ -1,13 +1,18 @@
 //! An outcome in words: for the foot of a screen, a cell of a file, the whole-reason view.
 
+mod change;
 mod words;
 
 use std::fmt::Write;
 
 use crate::domain::age::spoken;
-use crate::domain::outcome::{Answer, DecidedBy, Outcome, OutcomeKind, Reason, RiskKind, Urgency};
+use crate::domain::outcome::{
+    Answer, Basis, DecidedBy, Outcome, OutcomeKind, Reason, RiskKind, Then, Urgency,
+};
 use crate::rules::CAUTIONS;
+use crate::rules::evaluate::refers;
 
+pub use change::words as would_change;
 pub(in crate::rules) use words::act_words;
 pub use words::{basis_words, criterion_words, margin_words, source_words};
 
@@ -56,9 +61,11 @@ pub fn reasons_text(outcome: &Outcome, out: &mut String) {
             reason.reading,
             in_brackets(&reason.remarks)
         );
-        if !could_change(outcome, reason) {
-            out.push_str(" (would not change the outcome)");
-        }
+        out.push_str(if could_change(outcome, reason) {
+            " (could change the outcome)"
+        } else {
+            " (would not change the outcome)"
+        });
     }
     for word in outcome
         .unknown
@@ -90,10 +97,12 @@ pub fn reasons_text(outcome: &Outcome, out: &mut String) {
 
 /// Returns what refers, the sooner first, and what decided before the rest.
 fn referring(outcome: &Outcome) -> impl Iterator<Item = &Reason> {
+    // Where something refers, what asks for a second screening only is no reason for it.
+    let examined = outcome.reasons.iter().any(refers);
     let mut list: Vec<&Reason> = outcome
         .reasons
         .iter()
-        .filter(|r| r.answer == Answer::Refer)
+        .filter(|r| r.answer == Answer::Refer && (!r.then.is_again() || !examined))
         .collect();
     list.sort_by_key(|r| {
         let decided = match outcome.decided_by {
@@ -122,7 +131,7 @@ fn refer_sentence(reason: &Reason, out: &mut String) {
             let _ = write!(out, ", {}", act_words(days));
         }
     } else {
-        let _ = write!(out, "; refers when {}", reason.threshold);
+        let _ = write!(out, "; {} when {}", asks(reason), reason.threshold);
         let margin = margin_words(reason);
         if !margin.is_empty() {
             let _ = write!(out, "; {margin}");
@@ -130,6 +139,30 @@ fn refer_sentence(reason: &Reason, out: &mut String) {
     }
     let _ = write!(out, "; {}", source_words(&reason.source));
     out.push_str(&in_brackets(&reason.remarks));
+}
+
+/// Says what a criterion asks for: refers, rescreens, rechecks.
+fn asks(reason: &Reason) -> &'static str {
+    match reason.then {
+        Then::Refer => "refers",
+        Then::Rescreen => "rescreens",
+        Then::Recheck(_) => "rechecks",
+        Then::Inform => "informs",
+    }
+}
+
+/// Names a source shortly: "Joint policy 2016, two-line rule (as quoted elsewhere)".
+fn brief_source(reason: &Reason) -> String {
+    let rule = match (&*reason.criterion, &*reason.threshold) {
+        (id, "2 lines or more") if id.starts_with("between-eyes") => ", two-line rule",
+        (id, "3 lines or more") if id.starts_with("between-eyes") => ", three-line rule",
+        _ => "",
+    };
+    let basis = match reason.source.basis {
+        Basis::Memory => "from memory",
+        basis => basis.title(),
+    };
+    format!("{}{rule} ({basis})", reason.said_by)
 }
 
 fn pass_words(reason: &Reason, out: &mut String) {
@@ -162,9 +195,19 @@ fn is_sign(reason: &Reason) -> bool {
 
 /// Says whether an answer to this unknown criterion could change the outcome.
 fn could_change(outcome: &Outcome, reason: &Reason) -> bool {
+    // What only informs, and what the outcome does not wait for, changes nothing.
+    if reason.then == Then::Inform {
+        return false;
+    }
     match outcome.kind {
         OutcomeKind::Pass | OutcomeKind::Incomplete | OutcomeKind::Exempt => true,
-        OutcomeKind::Rescreen => reason.urgency < Urgency::Routine,
+        // A recheck gives way to whatever refers; a first fail only to what never waits.
+        OutcomeKind::Rescreen => {
+            reason.urgency < Urgency::Routine
+                || reason.may_be_at_once
+                || reason.rule_set == outcome.rule_set
+                || !outcome.reasons.iter().any(refers)
+        }
         OutcomeKind::Refer => outcome.urgency.is_some_and(|u| reason.urgency < u),
     }
 }
@@ -183,20 +226,15 @@ pub fn short(outcome: &Outcome) -> String {
             if let Some(reason) = referring(outcome).next() {
                 out.push_str(&capital(&reason.reading));
                 if !is_sign(reason) {
-                    let _ = write!(out, "; refers when {}", reason.threshold);
+                    let _ = write!(out, "; {} when {}", asks(reason), reason.threshold);
                 }
-                let _ = write!(
-                    out,
-                    ". {} ({}).",
-                    capital(&words::set_words(&reason.rule_set)),
-                    reason.source.basis.title()
-                );
+                let _ = write!(out, ". {}.", brief_source(reason));
                 if !outcome.risks.is_empty() {
                     let _ = write!(out, " Amblyopia risk: {}.", risk_words(&outcome.risks));
                 }
-                // With several rules broken no one of these changes would be enough.
-                if referring(outcome).count() == 1 && !reason.would_change.is_empty() {
-                    let _ = write!(out, " {}.", capital(&reason.would_change));
+                let change = change::words(outcome);
+                if !change.is_empty() {
+                    let _ = write!(out, " {}.", capital(&change));
                 }
             } else if outcome.kind == OutcomeKind::Incomplete {
                 let mut missing = outcome.qualifiers.clone();
@@ -211,9 +249,15 @@ pub fn short(outcome: &Outcome) -> String {
                 {
                     let mut text = String::new();
                     pass_words(reason, &mut text);
-                    passes.push(text);
+                    if !passes.contains(&text) {
+                        passes.push(text);
+                    }
                 }
                 let _ = write!(out, "{}.", capital(&passes.join("; ")));
+                let change = change::words(outcome);
+                if !change.is_empty() && outcome.kind == OutcomeKind::Pass {
+                    let _ = write!(out, " {}.", capital(&change));
+                }
             }
         }
     }
@@ -312,8 +356,22 @@ pub fn table(outcome: &Outcome) -> Vec<ReasonLine> {
         if !reason.note.is_empty() && !collapsed {
             note.push(reason.note.to_string());
         }
-        if reason.answer == Answer::Unknown && !could_change(outcome, reason) {
-            note.push("would not change the outcome".to_owned());
+        if reason.answer == Answer::Unknown {
+            let could = could_change(outcome, reason);
+            note.push(
+                if could {
+                    "could change the outcome"
+                } else {
+                    "would not change the outcome"
+                }
+                .to_owned(),
+            );
+        }
+        if reason.answer == Answer::Refer && reason.then != Then::Refer {
+            note.push(reason.then.in_words());
+        }
+        if reason.high_priority && reason.answer == Answer::Refer {
+            note.push("high priority".to_owned());
         }
         rows.push(ReasonLine {
             criterion: if collapsed {
@@ -375,10 +433,9 @@ pub fn whole(outcome: &Outcome) -> Vec<String> {
             out.push("Amblyopia can come from anisometropia without any strabismus.".to_owned());
         }
     }
-    let several = referring(outcome).count() > 1;
-    for reason in referring(outcome).filter(|r| !r.would_change.is_empty()) {
-        let alone = if several { "All of" } else { "Would change it" };
-        out.push(format!("{alone:<15}  {}", reason.would_change));
+    let change = change::words(outcome);
+    if !change.is_empty() {
+        out.push(format!("{:<15}  {change}", "Would change it"));
     }
     for note in &outcome.protocol_notes {
         out.push(format!("Protocol    {note}"));

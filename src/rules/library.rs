@@ -5,6 +5,7 @@ use std::sync::OnceLock;
 use include_dir::{Dir, include_dir};
 
 use crate::rules::error::{RuleError, RuleErrors};
+use crate::rules::grading::Grading;
 use crate::rules::load::{Loaded, load};
 use crate::rules::{Protocol, RuleSet};
 
@@ -15,6 +16,7 @@ static SHIPPED_FILES: Dir<'_> = include_dir!("$CARGO_MANIFEST_DIR/referral_rules
 pub struct Library {
     sets: Vec<RuleSet>,
     protocols: Vec<Protocol>,
+    gradings: Vec<Grading>,
 }
 
 impl Library {
@@ -57,8 +59,9 @@ impl Library {
                     let id = match &loaded {
                         Loaded::Set(set) => set.id.clone(),
                         Loaded::Protocol(protocol) => protocol.id.clone(),
+                        Loaded::Grading(grading) => grading.id.clone(),
                     };
-                    if library.rule_set(&id).is_some() || library.protocol(&id).is_some() {
+                    if library.has(&id) {
                         let at = text.find(&format!("\"{id}\"")).unwrap_or(0);
                         faults.push(RuleError::at(
                             file,
@@ -73,6 +76,7 @@ impl Library {
                     match loaded {
                         Loaded::Set(set) => library.sets.push(*set),
                         Loaded::Protocol(protocol) => library.protocols.push(*protocol),
+                        Loaded::Grading(grading) => library.gradings.push(*grading),
                     }
                 }
             }
@@ -83,7 +87,24 @@ impl Library {
         library
             .protocols
             .sort_by(|a, b| (a.local.is_some(), &a.id).cmp(&(b.local.is_some(), &b.id)));
+        library.gradings.sort_by(|a, b| {
+            (a.local.is_some(), a.kind, &a.id).cmp(&(b.local.is_some(), b.kind, &b.id))
+        });
         (library, faults)
+    }
+
+    fn has(&self, id: &str) -> bool {
+        self.rule_set(id).is_some() || self.protocol(id).is_some() || self.grading(id).is_some()
+    }
+
+    /// Returns a table of condition groups or clinic bands by its id.
+    pub fn grading(&self, id: &str) -> Option<&Grading> {
+        self.gradings.iter().find(|g| &*g.id == id)
+    }
+
+    /// Returns every table of condition groups or clinic bands in list order.
+    pub fn gradings(&self) -> impl Iterator<Item = &Grading> {
+        self.gradings.iter()
     }
 
     /// Returns a rule set by its id.

@@ -2,6 +2,7 @@
 
 mod based_on;
 mod criterion;
+mod grading;
 mod protocol;
 mod reader;
 
@@ -14,6 +15,7 @@ use crate::domain::acuity::LineCredit;
 use crate::domain::number;
 use crate::domain::outcome::{Basis, Source};
 use crate::rules::error::RuleError;
+use crate::rules::grading::{Grading, GradingKind};
 use crate::rules::{Applies, Approval, Criterion, Kind, Library, Protocol, RuleSet, threshold};
 use reader::{Reader, Section};
 
@@ -23,11 +25,14 @@ pub(super) enum Loaded {
     Set(Box<RuleSet>),
     /// A protocol, still to be checked against the library.
     Protocol(Box<Protocol>),
+    /// A table of condition groups or clinic bands.
+    Grading(Box<Grading>),
 }
 
 const SET_KEYS: &[&str] = &[
     "id",
     "title",
+    "short_title",
     "edition",
     "kind",
     "region",
@@ -84,13 +89,19 @@ pub(super) fn load(
     let is_protocol = kind.as_ref().is_some_and(|(k, _)| k == "protocol");
     let loaded = if is_protocol {
         protocol::load(&mut reader, &root, local, library).map(|p| Loaded::Protocol(Box::new(p)))
+    } else if let Some(kind) = kind.as_ref().and_then(|(k, _)| match k.as_str() {
+        "severity" => Some(GradingKind::Severity),
+        "triage" => Some(GradingKind::Triage),
+        _ => None,
+    }) {
+        grading::load(&mut reader, &root, kind, local).map(|g| Loaded::Grading(Box::new(g)))
     } else {
         let kind = kind.and_then(|(word, span)| {
             reader.word(
                 &word,
                 span,
                 "kind",
-                "acuity, refraction, signs or protocol",
+                "acuity, refraction, signs, severity, triage or protocol",
                 Kind::from_word,
             )
         });
@@ -158,6 +169,7 @@ fn rule_set(
         .any(|c| matches!(c.applies, Applies::Grades(_)));
     let set = RuleSet {
         id: head.id.into(),
+        short_title: said_by(head.short_title, head.approval.as_ref()),
         title: head.title,
         edition: head.edition.into(),
         kind,
@@ -189,6 +201,14 @@ fn rule_set(
         Some(base) => base.completed(set),
         None => set,
     }))
+}
+
+/// Returns how a set names itself in one sentence; a local one says that it is.
+fn said_by(short_title: String, approval: Option<&Approval>) -> Arc<str> {
+    match approval {
+        Some(_) => format!("{short_title}, local").into(),
+        None => short_title.into(),
+    }
 }
 
 /// Returns the ages that all bands of a set cover together.
@@ -223,6 +243,7 @@ pub(super) fn hash<'a>(texts: impl IntoIterator<Item = &'a str>) -> Arc<str> {
 struct Head {
     id: String,
     title: String,
+    short_title: String,
     edition: String,
     approval: Option<Approval>,
 }
@@ -245,6 +266,7 @@ fn head(reader: &mut Reader<'_>, root: &Section<'_, '_>, local: bool) -> Option<
         good
     });
     let title = reader.string(root, "title");
+    let short_title = reader.optional(root, "short_title").map(|v| v.0);
     let edition = reader.string(root, "edition");
     let by = if root.table.contains_key("approved_by") {
         reader.string(root, "approved_by")
@@ -265,9 +287,11 @@ fn head(reader: &mut Reader<'_>, root: &Section<'_, '_>, local: bool) -> Option<
             }
         }
     }
+    let title = title?.0;
     Some(Head {
         id: id?.0,
-        title: title?.0,
+        short_title: short_title.unwrap_or_else(|| title.clone()),
+        title,
         edition: edition?.0,
         approval,
     })

@@ -8,7 +8,7 @@ use chrono::NaiveDate;
 use crate::domain::acuity::{Line, LineCredit};
 use crate::domain::age::{AgeMonths, Grade};
 use crate::domain::codes::{History, Reflex, SignKind, code_list};
-use crate::domain::outcome::{RiskKind, Source, Urgency};
+use crate::domain::outcome::{RiskKind, Source, Then, Urgency};
 
 code_list! {
     /// What a rule set is about.
@@ -113,6 +113,13 @@ pub enum Test {
     WorseThanLine(Line),
     /// `20/50 or worse`: the line itself refers.
     LineOrWorse(Line),
+    /// `6/9-2 or worse`: so many letters missed of the line, by letter score.
+    LettersOrWorse {
+        /// The line.
+        line: Line,
+        /// Letters missed of it.
+        missed: u8,
+    },
     /// `2 lines or more`: that many steps of 0.1 logMAR.
     LinesOrMore(i32),
     /// `more than 4.00 D`, in thousandths of a dioptre.
@@ -209,6 +216,10 @@ pub struct Criterion {
     pub required: bool,
     /// Whether it informs family and school instead of referring.
     pub informs: bool,
+    /// What it asks for when it speaks.
+    pub then: Then,
+    /// Whether it makes a referral one of high priority.
+    pub high_priority: bool,
 }
 
 /// Who approved a local file, and when.
@@ -227,6 +238,8 @@ pub struct RuleSet {
     pub id: Arc<str>,
     /// What it is, for people.
     pub title: String,
+    /// Its name in one sentence at the foot of a screen.
+    pub short_title: Arc<str>,
     /// Edition.
     pub edition: Arc<str>,
     /// What it is about.
@@ -279,10 +292,50 @@ impl RuleSet {
 pub struct NotTestablePolicy {
     /// Whom it is for.
     pub applies: Applies,
-    /// Calendar months to the next try.
-    pub rescreen_months: u32,
+    /// Calendar months to the next try; none where the service says when.
+    pub rescreen_months: Option<u32>,
     /// Where it comes from.
     pub source: Arc<Source>,
+}
+
+code_list! {
+    /// Why a child of whom nothing was tested is exempt.
+    Exemption {
+        OptedOut = "opted_out", "opted out";
+        NoConsent = "no_consent", "no consent";
+        UnderCare = "under_care", "under care";
+        ExaminedRecently = "examined_12_months", "examined in the last 12 months";
+    }
+}
+
+/// What a first fail means.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum FirstFail {
+    /// Refer at once.
+    Refer,
+    /// Rescreen within so many calendar days, then refer.
+    WithinDays(u32),
+    /// Rescreen within so many days on which school is held, then refer.
+    WithinSchoolDays(u32),
+}
+
+impl fmt::Display for FirstFail {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            FirstFail::Refer => f.write_str("refer at once"),
+            FirstFail::WithinDays(days) => write!(f, "rescreen within {days} calendar days"),
+            FirstFail::WithinSchoolDays(days) => write!(f, "rescreen within {days} working days"),
+        }
+    }
+}
+
+/// Measures that must be answered at some ages.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct RequiredTests {
+    /// Whom it is for.
+    pub applies: Applies,
+    /// The measures.
+    pub measures: Vec<Measure>,
 }
 
 /// What a programme does with the answers.
@@ -308,9 +361,19 @@ pub struct Protocol {
     /// Whether the instrument may stand in for a chart that is not testable.
     pub instrument_stands_in: bool,
     /// Measures that must be answered.
-    pub required: Vec<Measure>,
-    /// Days to the rescreen after a first fail; none refers at once.
-    pub rescreen_days: Option<u32>,
+    pub required: Vec<RequiredTests>,
+    /// What a first fail means.
+    pub first_fail: FirstFail,
+    /// Where the settings of the protocol come from that name no source of their own.
+    pub settings_source: Arc<Source>,
+    /// Where the first-fail policy comes from.
+    pub first_fail_source: Arc<Source>,
+    /// Why a child of whom nothing was tested is exempt, in the order asked.
+    pub exempt: Vec<Exemption>,
+    /// Whether glasses that are broken or lost refer (else they count as not worn).
+    pub broken_glasses_refer: bool,
+    /// Criteria of its rule sets that are shown and not acted on, as `rule-set/criterion`.
+    pub leave_out: Vec<String>,
     /// Days until a child comes back with glasses.
     pub glasses_return_days: u32,
     /// After this many visits without the glasses the child is referred.
@@ -333,4 +396,13 @@ pub struct Protocol {
     pub text: Arc<str>,
     /// SHA-256 of its text and of the texts of its rule sets, in hex.
     pub content_hash: Arc<str>,
+}
+
+impl Protocol {
+    /// Says whether a measure must be answered at this age; an unknown age may be any.
+    pub fn requires(&self, measure: Measure, age: Option<AgeMonths>) -> bool {
+        self.required.iter().any(|r| {
+            r.measures.contains(&measure) && age.is_none_or(|age| r.applies.holds_age(age))
+        })
+    }
 }

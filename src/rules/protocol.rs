@@ -65,6 +65,12 @@ fn outcome(
             DecidedBy::ReferAtOnce | DecidedBy::GlassesNeverAvailable
         );
     for mut spoken in gathered.spoken {
+        if let Some(words) = spoken.left_out.take() {
+            if !words.is_empty() {
+                outcome.protocol_notes.push(words);
+            }
+            continue;
+        }
         if let Some(why) = spoken.not_applicable {
             outcome.protocol_notes.push(format!(
                 "{}: not applicable, {why}",
@@ -90,6 +96,7 @@ fn outcome(
                     .push(format!("history: {} (under care)", spoken.reason.reading));
                 continue;
             }
+            Answer::Refer if spoken.reason.then.is_again() != decision.again => {}
             Answer::Refer => outcome.criteria.push(spoken.reason.full_id()),
             Answer::Unknown => outcome.unknown.push(spoken.reason.full_id()),
             Answer::Pass => {}

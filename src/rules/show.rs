@@ -3,8 +3,9 @@
 use std::fmt::Write;
 
 use crate::domain::outcome::{Basis, Source};
-use crate::rules::explain::{act_words, basis_words, criterion_words};
-use crate::rules::{Applies, Kind, Measure, Protocol, RuleSet, threshold};
+use crate::rules::explain::{act_words, basis_words, criterion_words, source_words};
+use crate::rules::grading::{Grading, Level};
+use crate::rules::{Applies, FirstFail, Kind, Measure, Protocol, RuleSet, threshold};
 
 /// A rule set as a table: bands across, findings down.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -74,13 +75,24 @@ pub fn sheet(set: &RuleSet) -> RuleSheet {
     for criterion in &set.criteria {
         let finding = match criterion.measure {
             Measure::DistanceEachEye | Measure::NearEachEye => {
-                format!("{}, refer if", criterion.measure.title())
+                let ask = match (criterion.then.is_again(), criterion.high_priority) {
+                    (true, _) => "screen again if",
+                    (false, true) => "high priority if",
+                    (false, false) => "refer if",
+                };
+                format!("{}, {ask}", criterion.measure.title())
             }
             _ => criterion_words(threshold::split_band(&criterion.id).0),
         };
         let mut cell = criterion.threshold.to_string();
         if let Some(beyond) = criterion.axis_beyond {
             let _ = write!(cell, ", axis more than {beyond}° from 90 and 180");
+        }
+        if criterion.then.is_again() {
+            let _ = write!(cell, ": {}", criterion.then.in_words());
+        }
+        if criterion.high_priority {
+            cell.push_str(": high priority");
         }
         if cell == "present" {
             criterion.urgency.title().clone_into(&mut cell);
@@ -157,7 +169,85 @@ fn cited(source: &Source) -> String {
     )
 }
 
+/// Returns the line of a severity or triage table in the list.
+pub fn grading_line(grading: &Grading) -> String {
+    let place = match &grading.local {
+        Some(approval) => format!("local, approved by {} on {}", approval.by, approval.on),
+        None => grading.region.clone(),
+    };
+    format!(
+        "{:<22} {}; {place}; {}; {}",
+        grading.id,
+        grading.title,
+        grading.status,
+        basis_note(&grading.sources)
+    )
+}
+
+/// Returns a severity or triage table: groups or bands across, findings down.
+pub fn grading_sheet(grading: &Grading) -> RuleSheet {
+    let mut levels: Vec<Level> = grading.entries.iter().map(|e| e.level).collect();
+    levels.sort_unstable();
+    levels.dedup();
+    let title = |level: &Level| {
+        let named = grading.titles.iter().find(|(l, _)| l == level);
+        named.map_or_else(|| level.in_words(), |(_, title)| title.to_string())
+    };
+    let mut rows: Vec<(String, Vec<String>)> = Vec::new();
+    let mut notes = vec![grading.note.clone()];
+    for entry in &grading.entries {
+        let row = rows
+            .iter()
+            .position(|(name, _)| *name == *entry.finding)
+            .unwrap_or_else(|| {
+                rows.push((entry.finding.to_string(), vec![String::new(); levels.len()]));
+                rows.len() - 1
+            });
+        let Some(column) = levels.iter().position(|l| *l == entry.level) else {
+            continue;
+        };
+        let cell = &mut rows[row].1[column];
+        if !cell.is_empty() {
+            cell.push_str("; or ");
+        }
+        if entry.applies != Applies::Everyone {
+            let _ = write!(cell, "{}: ", entry.applies);
+        }
+        cell.push_str(&entry.conditions());
+        if !entry.note.is_empty() {
+            notes.push(format!("{}: {}", entry.finding, entry.note));
+        }
+    }
+    for window in &grading.windows {
+        notes.push(format!(
+            "order inside a band: {} ({})",
+            window.words,
+            source_words(&window.source)
+        ));
+    }
+    notes.retain(|note| !note.is_empty());
+    notes.dedup();
+    RuleSheet {
+        id: grading.id.to_string(),
+        title: grading.title.clone(),
+        edition: [&*grading.edition, &grading.region, &grading.status]
+            .into_iter()
+            .filter(|s| !s.is_empty())
+            .collect::<Vec<_>>()
+            .join(" · "),
+        columns: levels.iter().map(title).collect(),
+        rows,
+        line_credit: String::new(),
+        sources: grading.sources.iter().map(|s| cited(s)).collect(),
+        notes,
+        approval: grading.local.as_ref().map_or_else(String::new, |a| {
+            format!("local, approved by {} on {}", a.by, a.on)
+        }),
+    }
+}
+
 /// Returns a protocol as plain lines.
+#[allow(clippy::too_many_lines)] // one entry after the other
 pub fn protocol_lines(protocol: &Protocol) -> Vec<String> {
     let list =
         |ids: &[std::sync::Arc<str>]| ids.iter().map(|i| &**i).collect::<Vec<_>>().join(", ");
@@ -181,12 +271,23 @@ pub fn protocol_lines(protocol: &Protocol) -> Vec<String> {
         }
         out.push(text);
     }
-    let required: Vec<&str> = protocol.required.iter().map(|m| m.title()).collect();
-    out.push(format!("Required         {}", required.join("; ")));
-    out.push(match protocol.rescreen_days {
-        Some(days) => format!("First fail       rescreen within {days} calendar days, then refer"),
-        None => "First fail       refer at once".to_owned(),
-    });
+    for tests in protocol.required.iter().filter(|r| !r.measures.is_empty()) {
+        let names: Vec<&str> = tests.measures.iter().map(|m| m.title()).collect();
+        let whom = match &tests.applies {
+            Applies::Everyone => String::new(),
+            applies => format!(" ({applies})"),
+        };
+        out.push(format!("Required         {}{whom}", names.join("; ")));
+    }
+    let then = match protocol.first_fail {
+        FirstFail::Refer => "",
+        _ => ", then refer",
+    };
+    out.push(format!(
+        "First fail       {}{then} ({})",
+        protocol.first_fail,
+        source_words(&protocol.first_fail_source)
+    ));
     for criterion in &protocol.at_once.criteria {
         out.push(format!(
             "Never waits      {}: {} ({})",
@@ -199,17 +300,37 @@ pub fn protocol_lines(protocol: &Protocol) -> Vec<String> {
         out.push(format!("Never waits      {id}"));
     }
     for policy in &protocol.not_testable {
+        let when = policy.rescreen_months.map_or_else(
+            || "once more, when the service says".to_owned(),
+            |months| match months {
+                1 => "again within 1 month".to_owned(),
+                months => format!("again within {months} months"),
+            },
+        );
         out.push(format!(
-            "Not testable     {}: again within {} months, then refer ({})",
+            "Not testable     {}: {when}, then refer ({})",
             policy.applies,
-            policy.rescreen_months,
             cited(&policy.source)
         ));
     }
     out.push(format!(
-        "Glasses          back within {} days; after {} such visits refer",
-        protocol.glasses_return_days, protocol.glasses_visits
+        "Glasses          back within {} days; after {} such visits refer; broken or lost: {}",
+        protocol.glasses_return_days,
+        protocol.glasses_visits,
+        if protocol.broken_glasses_refer {
+            "refer"
+        } else {
+            "as not worn"
+        }
     ));
+    let exempt: Vec<&str> = protocol.exempt.iter().map(|e| e.title()).collect();
+    out.push(format!(
+        "Exempt           {}, when nothing was tested",
+        exempt.join("; ")
+    ));
+    for id in &protocol.leave_out {
+        out.push(format!("Left out         {id}: shown, not acted on"));
+    }
     out.push(format!(
         "Consent          {}",
         if protocol.consent_opt_in {
@@ -217,6 +338,10 @@ pub fn protocol_lines(protocol: &Protocol) -> Vec<String> {
         } else {
             "opt-out"
         }
+    ));
+    out.push(format!(
+        "Settings         {}",
+        cited(&protocol.settings_source)
     ));
     if !protocol.note.is_empty() {
         out.push(format!("Note             {}", protocol.note));

@@ -76,7 +76,23 @@ fn acuity(text: &str) -> Option<Test> {
     if let Some(rest) = text.strip_prefix("worse than") {
         line(rest.trim()).map(Test::WorseThanLine)
     } else {
-        line(text.strip_suffix("or worse")?.trim()).map(Test::LineOrWorse)
+        let text = text.strip_suffix("or worse")?.trim();
+        line(text).map(Test::LineOrWorse).or_else(|| letters(text))
+    }
+}
+
+/// Reads `6/9-2`: a line with letters missed, for sets that score by letter.
+fn letters(text: &str) -> Option<Test> {
+    match parse_acuity(text, &AcuityContext::default()).ok()?.value {
+        AcuityResult::Read(Acuity::Read { line, letters })
+            if letters < 0 && line.is_on_a_chart() =>
+        {
+            Some(Test::LettersOrWorse {
+                line,
+                missed: letters.unsigned_abs(),
+            })
+        }
+        _ => None,
     }
 }
 

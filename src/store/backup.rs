@@ -42,8 +42,16 @@ impl Store {
         {
             let mut target = connect(&path, &self.raw_key, For::Entries)?;
             let backup = rusqlite::backup::Backup::new(&self.conn, &mut target)?;
-            backup.run_to_completion(1024, std::time::Duration::ZERO, None)?;
+            let copied = backup.run_to_completion(1024, std::time::Duration::ZERO, None);
             drop(backup);
+            if let Err(error) = copied {
+                let error = Error::from(error);
+                if error.kind() == ErrorKind::Engine {
+                    // A page that cannot be read has no code of its own here: the check names it.
+                    self.verify(None, |_, _| {})?;
+                }
+                return Err(error);
+            }
             // One file is easier to carry than three.
             target.query_row("PRAGMA wal_checkpoint(TRUNCATE)", [], |_| Ok(()))?;
         }

@@ -15,6 +15,7 @@ use uuid::Uuid;
 
 use super::cell::Value;
 use super::error::{Error, ErrorKind, Result};
+use super::files;
 use super::key::RawKey;
 use super::open::{For, connect};
 use super::row::DayKey;
@@ -62,7 +63,28 @@ pub struct Drafts {
 
 impl Drafts {
     pub(super) fn open(dir: &Path, key: &RawKey) -> Result<Drafts> {
-        let conn = connect(&dir.join(FILE), key, For::Drafts)?;
+        let path = dir.join(FILE);
+        let conn = match Drafts::prepared(&path, key) {
+            // Drafts that cannot be read must not keep anybody from working: they are kept aside.
+            Err(error) if error.kind() == ErrorKind::Damaged => {
+                files::set_aside(&path)?;
+                Drafts::prepared(&path, key)?
+            }
+            opened => opened?,
+        };
+        let (to, from) = channel();
+        let thread = std::thread::Builder::new()
+            .name("drafts".to_owned())
+            .spawn(move || Keeper::new(conn).run(&from))
+            .map_err(|e| Error::file(&path, "start the thread of", e))?;
+        Ok(Drafts {
+            to: Some(to),
+            thread: Some(thread),
+        })
+    }
+
+    fn prepared(path: &Path, key: &RawKey) -> Result<Connection> {
+        let conn = connect(path, key, For::Drafts)?;
         conn.execute_batch(
             "CREATE TABLE IF NOT EXISTS draft (
                  site TEXT NOT NULL,
@@ -77,15 +99,8 @@ impl Drafts {
                  PRIMARY KEY (site, screened_on, protocol, child_id)
              ) STRICT, WITHOUT ROWID;",
         )?;
-        let (to, from) = channel();
-        let thread = std::thread::Builder::new()
-            .name("drafts".to_owned())
-            .spawn(move || Keeper::new(conn).run(&from))
-            .map_err(|e| Error::file(&dir.join(FILE), "start the thread of", e))?;
-        Ok(Drafts {
-            to: Some(to),
-            thread: Some(thread),
-        })
+        conn.query_row("SELECT count(*) FROM draft", [], |_| Ok(()))?;
+        Ok(conn)
     }
 
     fn send(&self, message: Message) -> Result<()> {

@@ -5,6 +5,8 @@ use std::path::Path;
 
 use super::lock::Holder;
 
+const MAKE_ROOM: &str = "make room on the disk, then save again; everything saved before is safe";
+
 /// A result of the store.
 pub type Result<T> = std::result::Result<T, Error>;
 
@@ -94,7 +96,19 @@ impl Error {
         } else {
             ErrorKind::File
         };
-        Error::new(kind, format!("cannot {doing} {}: {source}", path.display())).caused_by(source)
+        let hint = match source.kind() {
+            std::io::ErrorKind::StorageFull => Some(MAKE_ROOM),
+            std::io::ErrorKind::PermissionDenied | std::io::ErrorKind::ReadOnlyFilesystem => {
+                Some("the folder and its files must belong to you and be writable")
+            }
+            _ => None,
+        };
+        Error {
+            kind,
+            message: format!("cannot {doing} {}: {source}", path.display()),
+            hint: hint.map(str::to_owned),
+            source: Some(Box::new(source)),
+        }
     }
 
     pub(super) fn read_only(dir: &Path) -> Error {
@@ -136,8 +150,7 @@ impl Error {
     }
 
     pub(super) fn not_saved_disk_full() -> Error {
-        Error::new(ErrorKind::DiskFull, "not saved: the disk is full")
-            .with_hint("make room on the disk, then save again; everything saved before is safe")
+        Error::new(ErrorKind::DiskFull, "not saved: the disk is full").with_hint(MAKE_ROOM)
     }
 
     pub(super) fn not_confirmed(source: rusqlite::Error) -> Error {
@@ -146,9 +159,7 @@ impl Error {
             format!("not confirmed: the entry was not found after saving failed ({source})"),
         )
         .caused_by(source)
-        .with_hint(
-            "the draft is kept; save again: an entry keeps its id, so it cannot be saved twice",
-        )
+        .with_hint("check the disk, then do the same again: a draft is kept until it is signed, and nothing is saved twice")
     }
 }
 
@@ -173,6 +184,18 @@ impl From<rusqlite::Error> for Error {
             }
             Some(rusqlite::ErrorCode::DatabaseCorrupt) => {
                 Error::damaged("file", None, &source.to_string())
+            }
+            Some(rusqlite::ErrorCode::NotADatabase) => {
+                Error::damaged("file", None, &source.to_string())
+            }
+            Some(
+                rusqlite::ErrorCode::SystemIoFailure
+                | rusqlite::ErrorCode::CannotOpen
+                | rusqlite::ErrorCode::ReadOnly,
+            ) => {
+                Error::new(ErrorKind::Engine, format!("the disk failed the store: {source}"))
+                    .caused_by(source)
+                    .with_hint("check that the disk is not full or failing and that the folder is yours, then try again; everything saved before is safe")
             }
             _ => Error::new(ErrorKind::Engine, format!("the store's engine: {source}"))
                 .caused_by(source),

@@ -72,6 +72,36 @@ pub(super) fn write_whole(path: &Path, bytes: &[u8]) -> Result<()> {
     sync_parent(path)
 }
 
+/// Takes a folder and its key file back from others who may read them; where somebody else owns them
+/// they stay as they are.
+pub(super) fn keep_to_owner(dir: &Path, key_file: &Path) {
+    let _ = set_mode(dir, 0o700);
+    let _ = set_mode(key_file, 0o600);
+}
+
+/// Renames a damaged database, with its log, to a name that is not in use.
+pub(super) fn set_aside(path: &Path) -> Result<()> {
+    let named = |suffix: &str, n: u32| {
+        let mut name = path.as_os_str().to_owned();
+        name.push(format!("{suffix}.damaged-{n}"));
+        std::path::PathBuf::from(name)
+    };
+    let free = (1..=u32::MAX)
+        .find(|n| !named("", *n).exists())
+        .unwrap_or(1);
+    for suffix in ["-wal", "-shm", ""] {
+        let mut from = path.as_os_str().to_owned();
+        from.push(suffix);
+        match fs::rename(&from, named(suffix, free)) {
+            Err(e) if e.kind() != std::io::ErrorKind::NotFound => {
+                return Err(Error::file(path, "set aside", e));
+            }
+            _ => {}
+        }
+    }
+    Ok(())
+}
+
 /// Syncs one file.
 pub(super) fn sync(path: &Path) -> Result<()> {
     File::open(path)

@@ -36,36 +36,39 @@ pub(super) fn connect(path: &Path, key: &RawKey, purpose: For) -> Result<Connect
             OpenFlags::SQLITE_OPEN_READ_WRITE
         };
     let conn = Connection::open_with_flags(path, flags)?;
+    keyed(&conn, key, purpose).map_err(|e| not_ours(path, e))?;
+    project::functions(&conn)?;
+    Ok(conn)
+}
+
+fn keyed(conn: &Connection, key: &RawKey, purpose: For) -> rusqlite::Result<()> {
     // First of all, else the engine writes about a wrong key to the terminal.
-    pragma(&conn, "cipher_log_level = NONE")?;
+    pragma(conn, "cipher_log_level = NONE")?;
     let raw = zeroize::Zeroizing::new(format!("key = \"x'{}'\"", hex(&key[..])));
-    pragma(&conn, &raw)?;
+    pragma(conn, &raw)?;
     for one in [
         "foreign_keys = ON",
         "recursive_triggers = ON",
         "trusted_schema = OFF",
     ] {
-        pragma(&conn, one)?;
+        pragma(conn, one)?;
     }
     if purpose != For::Reading {
-        pragma(&conn, "journal_mode = WAL").map_err(|e| not_ours(path, e))?;
+        pragma(conn, "journal_mode = WAL")?;
     }
     pragma(
-        &conn,
+        conn,
         match purpose {
             For::Drafts => "synchronous = NORMAL",
             For::Entries | For::Reading => "synchronous = FULL",
         },
     )?;
-    pragma(&conn, "cache_size = -65536")?;
+    pragma(conn, "cache_size = -65536")?;
     // A large import leaves no large log behind.
-    pragma(&conn, "journal_size_limit = 67108864")?;
+    pragma(conn, "journal_size_limit = 67108864")?;
     conn.busy_timeout(std::time::Duration::from_secs(5))?;
     conn.set_prepared_statement_cache_capacity(256);
     conn.query_row("SELECT count(*) FROM sqlite_schema", [], |_| Ok(()))
-        .map_err(|e| not_ours(path, e))?;
-    project::functions(&conn)?;
-    Ok(conn)
 }
 
 fn not_ours(path: &Path, error: rusqlite::Error) -> Error {
@@ -116,6 +119,30 @@ impl First {
         files::private_dir(dir)?;
         files::refuse_network(dir)?;
         let lock = lock::take(dir, std::time::Duration::ZERO)?;
+        // Asked again, since another process may have made one while the key was derived. From here
+        // on whatever is in the folder is ours to remove.
+        refuse_taken(dir)?;
+        let made = self.fill(dir, raw_key, file);
+        if made.is_err() {
+            for name in [FILE, "store.db-wal", "store.db-shm", "lock"] {
+                let _ = std::fs::remove_file(dir.join(name));
+            }
+        }
+        let (conn, chain) = made?;
+        Ok(Store {
+            conn,
+            dir: dir.to_owned(),
+            info: file.info()?,
+            raw_key: raw_key.clone(),
+            lock: Some(lock),
+            programme: self.programme.programme_id,
+            station: self.station.station_id,
+            chain,
+        })
+    }
+
+    /// Writes the database and then the key file, which makes it a store.
+    fn fill(&self, dir: &Path, raw_key: &RawKey, file: &KeyFile) -> Result<(Connection, Uuid)> {
         let mut conn = connect(&dir.join(FILE), raw_key, For::Entries)?;
         pragma(
             &conn,
@@ -147,16 +174,7 @@ impl First {
         })?;
         // The key file last: a folder without one is no store.
         file.write(dir)?;
-        Ok(Store {
-            conn,
-            dir: dir.to_owned(),
-            info: file.info()?,
-            raw_key: raw_key.clone(),
-            lock: Some(lock),
-            programme,
-            station,
-            chain,
-        })
+        Ok((conn, chain))
     }
 }
 
@@ -199,13 +217,9 @@ impl Store {
         };
         let stood = dir.exists();
         let made = first.make(dir, &raw_key, &file);
-        if made.is_err() {
-            for name in [FILE, "store.db-wal", "store.db-shm", "lock"] {
-                let _ = std::fs::remove_file(dir.join(name));
-            }
-            if !stood {
-                let _ = std::fs::remove_dir(dir);
-            }
+        if made.is_err() && !stood {
+            // Stays where another process has put something in it.
+            let _ = std::fs::remove_dir(dir);
         }
         made.map(|store| (store, recovery))
     }
@@ -221,6 +235,12 @@ impl Store {
         let file = KeyFile::read(dir)?;
         files::refuse_network(dir)?;
         let path = dir.join(FILE);
+        if std::fs::metadata(&path).is_ok_and(|found| found.len() == 0) {
+            return Err(
+                Error::new(ErrorKind::Damaged, format!("{} is empty", path.display()))
+                    .with_hint("copy store.db back from a backup of this store"),
+            );
+        }
         if !path.exists() {
             return Err(Error::new(
                 ErrorKind::NotAStore,
@@ -229,7 +249,11 @@ impl Store {
             .with_hint("copy store.db back from a backup of this store"));
         }
         let (lock, purpose) = match access {
-            Access::Write { wait } => (Some(lock::take(dir, wait)?), For::Entries),
+            Access::Write { wait } => {
+                let lock = lock::take(dir, wait)?;
+                files::keep_to_owner(dir, &dir.join(super::key::FILE));
+                (Some(lock), For::Entries)
+            }
             Access::ReadOnly => (None, For::Reading),
         };
         let mut conn = connect(&path, &raw_key, purpose)?;

@@ -432,7 +432,7 @@ mod tests {
         );
         assert_eq!(
             error.hint().unwrap(),
-            "the draft is kept; save again: an entry keeps its id, so it cannot be saved twice"
+            "check the disk, then do the same again: a draft is kept until it is signed, and nothing is saved twice"
         );
         store.conn.commit_hook(None::<fn() -> bool>).unwrap();
         assert_eq!(store.head().unwrap(), head);

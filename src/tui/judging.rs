@@ -78,7 +78,13 @@ pub fn rule_pages(library: &Library) -> Vec<(String, RulePage)> {
     let protocols = library
         .protocols()
         .map(|p| (p.id.to_string(), RulePage::Lines(show::protocol_lines(p))));
-    sets.chain(protocols).collect()
+    let gradings = library.gradings().map(|grading| {
+        (
+            grading.id.to_string(),
+            RulePage::Sheet(Box::new(show::grading_sheet(grading))),
+        )
+    });
+    sets.chain(gradings).chain(protocols).collect()
 }
 
 /// Returns the ids of the protocols.

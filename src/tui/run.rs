@@ -19,6 +19,7 @@ use crossterm::terminal::{
 use ratatui::Terminal;
 use ratatui::backend::{Backend, CrosstermBackend};
 
+use super::watch::Watch;
 use crate::actions::Desk;
 use crate::clock;
 use crate::keys::Key;
@@ -80,6 +81,7 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     ] {
         handlers.push(signal_hook::flag::register(signal, Arc::clone(&leave))?);
     }
+    let watch = Watch::begin(keeper.clone(), Arc::clone(&leave))?;
     let result = Screen::open().and_then(|mut screen| {
         let mut wires = Wires {
             to_store: to_store.clone(),
@@ -95,6 +97,7 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
         }
         result
     });
+    drop(watch);
     for handler in handlers {
         signal_hook::low_level::unregister(handler);
     }

@@ -144,6 +144,7 @@ pub fn subjects(count: usize, critical: bool) -> Vec<Subject> {
 fn verdict(kind: OutcomeKind) -> Option<Verdict> {
     match kind {
         OutcomeKind::Pass => Some(Verdict::Pass),
+        OutcomeKind::Rescreen => Some(Verdict::Rescreen),
         OutcomeKind::Incomplete => Some(Verdict::Incomplete),
         OutcomeKind::Refer => Some(Verdict::Refer),
         _ => None,
@@ -227,7 +228,12 @@ fn a_comparison_is_the_same_from_either_side() {
             for (mine, theirs) in [(Side::A, Side::B), (Side::B, Side::A)] {
                 assert_eq!(x.all.only(mine), y.all.only(theirs));
                 assert_eq!(x.all.only_unanswered(mine), y.all.only_unanswered(theirs));
-                for verdict in [Verdict::Pass, Verdict::Incomplete, Verdict::Refer] {
+                for verdict in [
+                    Verdict::Pass,
+                    Verdict::Incomplete,
+                    Verdict::Rescreen,
+                    Verdict::Refer,
+                ] {
                     assert_eq!(x.all.of(mine, verdict), y.all.of(theirs, verdict));
                 }
             }

@@ -87,6 +87,73 @@ fn no_signed_child_and_no_draft_older_than_a_second_is_lost() {
     assert!(entries > 0);
 }
 
+/// A closed window ends the program, and lets go of the store.
+#[test]
+fn a_terminal_that_goes_away_ends_the_program() {
+    let (folder, mut desk) = empty_desk();
+    let csv = "child_id,family_name,given_name,dob,grade,site,class,wears_glasses\n\
+               K-1,Okafor,Ada,2020-03-02,1,QE,1B,no\n";
+    let plan = desk
+        .plan_roster("roster.csv", csv.as_bytes(), None, None)
+        .expect("a plan");
+    desk.add_roster(&plan).expect("written");
+    open(&mut desk, TODAY, "us-school", AcuityMethod::Threshold);
+    drop(desk);
+    let dir = folder.path().join("store");
+
+    let (pty, mut child) = in_a_terminal(&dir);
+    let mut keys = pty.take_writer().expect("a writer");
+    let mut reader = pty.try_clone_reader().expect("a reader");
+    let mut terminal = vt100::Parser::new(rows(36), rows(120), 0);
+    let mut buffer = vec![0; 65_536];
+    while !terminal.screen().contents().contains("RIGHT EYE") {
+        let n = reader.read(&mut buffer).expect("a screen");
+        terminal.process(&buffer[..n]);
+    }
+    keys.write_all(b"20")
+        .and_then(|()| keys.flush())
+        .expect("typed");
+    while !terminal.screen().contents().contains("right eye 20/20") {
+        let n = reader.read(&mut buffer).expect("a screen");
+        terminal.process(&buffer[..n]);
+    }
+    drop((keys, reader, pty));
+
+    let patience = Instant::now();
+    while child.try_wait().expect("its state").is_none() {
+        assert!(
+            patience.elapsed() < Duration::from_mins(1),
+            "it goes on without a terminal"
+        );
+        std::thread::sleep(Duration::from_millis(50));
+    }
+    let desk = reopen(&dir);
+    let drafts = desk.drafts().expect("drafts").load_every().expect("read");
+    assert!(
+        drafts[0]
+            .fields
+            .contains(&("distance_right".to_owned(), "20".to_owned())),
+        "{drafts:?}"
+    );
+}
+
+fn in_a_terminal(dir: &Path) -> (Box<dyn MasterPty + Send>, Box<dyn Child + Send + Sync>) {
+    let pty = native_pty_system()
+        .openpty(PtySize {
+            rows: 36,
+            cols: 120,
+            pixel_width: 0,
+            pixel_height: 0,
+        })
+        .expect("a terminal");
+    let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_twoline"));
+    command.args(["--store", &dir.to_string_lossy(), "--today", TODAY]);
+    command.env("RUST_BACKTRACE", "0");
+    command.env("TERM", "xterm-256color");
+    let child = pty.slave.spawn_command(command).expect("the program");
+    (pty.master, child)
+}
+
 fn reopen(dir: &Path) -> Desk {
     let options = DeskOptions {
         today: Some(date(TODAY)),
@@ -183,30 +250,15 @@ struct Program {
 impl Program {
     /// Starts it and waits until a child is on the bench.
     fn start(dir: &Path) -> Program {
-        let pty = native_pty_system()
-            .openpty(PtySize {
-                rows: 36,
-                cols: 120,
-                pixel_width: 0,
-                pixel_height: 0,
-            })
-            .expect("a terminal");
-        let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_twoline"));
-        command.args(["--store", &dir.to_string_lossy(), "--today", TODAY]);
-        command.env("RUST_BACKTRACE", "0");
-        command.env("TERM", "xterm-256color");
-        let child = pty.slave.spawn_command(command).expect("the program");
-        drop(pty.slave);
+        let (pty, child) = in_a_terminal(dir);
         let mut program = Program {
             child,
-            keys: pty.master.take_writer().expect("a writer"),
-            screen: watch(pty.master.try_clone_reader().expect("a reader")),
+            keys: pty.take_writer().expect("a writer"),
+            screen: watch(pty.try_clone_reader().expect("a reader")),
             terminal: vt100::Parser::new(rows(36), rows(120), 0),
             shown: Vec::new(),
-            _pty: pty.master,
+            _pty: pty,
         };
-        // A terminal answers when it is asked where its cursor is.
-        program.press("\x1b[1;1R");
         let patience = Instant::now();
         while !program.terminal.screen().contents().contains("RIGHT EYE") {
             assert!(

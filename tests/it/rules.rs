@@ -7,12 +7,19 @@
     clippy::format_collect
 )]
 
+mod again;
+mod alike;
 mod broken;
 mod children;
+mod grading;
 mod local;
 mod nhanes;
 mod parts;
 mod properties;
+mod second_evaluation;
+mod settings;
 mod shipped;
+mod sources;
 mod support;
 mod thresholds;
+mod words;

@@ -89,6 +89,10 @@ fn whole(tally: &Tally, ids: [&str; 2]) -> Vec<String> {
     for (side, id) in Side::BOTH.into_iter().zip(ids) {
         let of = |verdict| share(tally.all.of(side, verdict), n);
         let mut line = format!("{id:width$}  refers {}", of(Verdict::Refer));
+        if tally.all.of(side, Verdict::Rescreen) > 0 {
+            line.push_str("; screens again ");
+            line.push_str(&of(Verdict::Rescreen));
+        }
         if tally.all.of(side, Verdict::Incomplete) > 0 {
             line.push_str("; cannot say ");
             line.push_str(&of(Verdict::Incomplete));

@@ -2,6 +2,7 @@
 
 use std::fmt::Write;
 
+use crate::domain::outcome::Then;
 use crate::rules::{Applies, Criterion, RuleSet};
 
 /// Writes the start of a local rule set: one that overrides single criteria of `base`, or one that
@@ -212,6 +213,17 @@ fn criterion_lines(criterion: &Criterion, source: &str) -> Vec<String> {
     out.push(format!("required = {}", criterion.required));
     if criterion.informs {
         out.push("informs = true".to_owned());
+    }
+    match criterion.then {
+        Then::Refer | Then::Inform => {}
+        Then::Rescreen => out.push("then = \"rescreen\"".to_owned()),
+        Then::Recheck(months) => {
+            out.push("then = \"recheck\"".to_owned());
+            out.push(format!("after_months = {months}"));
+        }
+    }
+    if criterion.high_priority {
+        out.push("priority = \"high\"".to_owned());
     }
     if !criterion.note.is_empty() {
         out.push(format!("note = {}", quoted(&criterion.note)));

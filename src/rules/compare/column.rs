@@ -2,7 +2,7 @@
 
 use std::sync::Arc;
 
-use crate::domain::outcome::Answer;
+use crate::domain::outcome::{Answer, Then};
 use crate::rules::evaluate::{Facts, answer, is_for, meridional, pass_line, scope, speak};
 use crate::rules::{Case, Criterion, Metric, RuleSet};
 
@@ -36,7 +36,9 @@ struct Column {
     rungs: Vec<Criterion>,
     at: u8,
     original: u8,
-    required: bool,
+    /// What a child is whose answer is unknown, and one who is past the threshold.
+    open: u8,
+    past: u8,
     turns: Vec<Turns>,
     /// Largest difference along a meridian, where the criterion compares spherical equivalents.
     along: Option<Vec<i32>>,
@@ -52,9 +54,32 @@ pub(super) struct Judged {
     states: Vec<u8>,
 }
 
-const PASS: u8 = Verdict::Pass as u8;
-const OPEN: u8 = Verdict::Incomplete as u8;
-const REFER: u8 = Verdict::Refer as u8;
+/// What a child is, so that the larger of two answers stands: a second screening counts for more
+/// than an unknown that could only ask for one, and for less than an unknown that could refer.
+const PASS: u8 = 0;
+const OPEN_AGAIN: u8 = 1;
+const AGAIN: u8 = 2;
+const OPEN: u8 = 3;
+const REFER: u8 = 4;
+
+/// What a criterion makes of a child past its threshold.
+fn past(then: Then) -> u8 {
+    if then.is_again() { AGAIN } else { REFER }
+}
+
+/// What a required criterion makes of a child it cannot answer for.
+fn open(then: Then) -> u8 {
+    if then.is_again() { OPEN_AGAIN } else { OPEN }
+}
+
+fn verdict(state: u8) -> Verdict {
+    match state {
+        PASS => Verdict::Pass,
+        AGAIN => Verdict::Rescreen,
+        OPEN_AGAIN | OPEN => Verdict::Incomplete,
+        _ => Verdict::Refer,
+    }
+}
 
 impl Judged {
     pub fn new(set: &RuleSet, subjects: &[Subject]) -> Judged {
@@ -68,7 +93,12 @@ impl Judged {
                 rungs,
                 at: at as u8,
                 original: at as u8,
-                required: criterion.required,
+                open: if criterion.required {
+                    open(criterion.then)
+                } else {
+                    PASS
+                },
+                past: past(criterion.then),
                 turns: Vec::with_capacity(subjects.len()),
                 along: (criterion.metric == Some(Metric::SphericalEquivalent))
                     .then(|| Vec::with_capacity(subjects.len())),
@@ -114,10 +144,10 @@ impl Judged {
         self.states.extend_from_slice(&self.fixed);
         for column in &self.columns {
             let at = column.at;
-            let open = if column.required { OPEN } else { PASS };
+            let (open, past) = (column.open, column.past);
             for (state, [refers, passes]) in self.states.iter_mut().zip(&column.turns) {
                 let says = if at < *refers {
-                    REFER
+                    past
                 } else if at < *passes {
                     open
                 } else {
@@ -132,8 +162,8 @@ impl Judged {
         &self.set
     }
 
-    pub fn states(&self) -> &[u8] {
-        &self.states
+    pub fn verdicts(&self) -> impl Iterator<Item = Verdict> {
+        self.states.iter().map(|state| verdict(*state))
     }
 
     pub fn movable(&self) -> Vec<Movable> {
@@ -210,8 +240,8 @@ fn unmoved(set: &RuleSet, case: &Case<'_>, facts: &Facts<'_>, columns: &[Column]
             continue;
         }
         state = state.max(match reason.answer {
-            Answer::Refer => REFER,
-            Answer::Unknown if reason.required => OPEN,
+            Answer::Refer => past(reason.then),
+            Answer::Unknown if reason.required => open(reason.then),
             _ => PASS,
         });
     }

@@ -29,6 +29,10 @@ pub(super) fn of(criterion: &Criterion) -> Option<Ladder> {
             .into_iter()
             .map(Test::LineOrWorse)
             .collect(),
+        Test::LettersOrWorse { line, missed } => lines(line, criterion.compare)
+            .into_iter()
+            .map(|line| Test::LettersOrWorse { line, missed })
+            .collect(),
         Test::LinesOrMore(n) => with((1..=6).collect(), n)
             .into_iter()
             .map(Test::LinesOrMore)
@@ -112,6 +116,7 @@ pub(super) fn words(test: &Test) -> String {
     match *test {
         Test::WorseThanLine(l) => format!("worse than {}", line(l)),
         Test::LineOrWorse(l) => format!("{} or worse", line(l)),
+        Test::LettersOrWorse { line: l, missed } => format!("{}-{missed} or worse", line(l)),
         Test::LinesOrMore(n) => format!("{n} lines or more"),
         Test::MoreThanDiopters(v) => format!("more than {} D", diopters(v)),
         Test::DioptersOrMore(v) => format!("{} D or more", diopters(v)),

@@ -1,7 +1,7 @@
 //! Acuity criteria: each eye against a line, and the difference between the eyes.
 
 use crate::domain::acuity::{Acuity, Line, LineCredit, LogMar, Notation, Step, StepRange};
-use crate::domain::outcome::{Answer, Margin};
+use crate::domain::outcome::{Answer, ChartChange, Margin};
 use crate::domain::readings::{AcuityResult, Eye, Eyes};
 use crate::rules::{Compare, Criterion, RuleSet, Test};
 
@@ -15,20 +15,13 @@ pub(super) fn each_eye(
     facts: &Facts<'_>,
     eyes: Eyes<Option<AcuityResult>>,
 ) -> Answered {
-    let (line, stricter) = match criterion.test {
-        Test::WorseThanLine(line) => (line, 0),
-        Test::LineOrWorse(line) => (line, 1),
-        _ => return Answered::new(Answer::Unknown, "not an acuity threshold"),
+    let letters = facts.letters;
+    let Some(limit) = Limit::of(criterion, letters) else {
+        return Answered::new(Answer::Unknown, "not an acuity threshold");
     };
     let near = criterion.measure == crate::rules::Measure::NearEachEye;
     let shift = if near { 0 } else { facts.shift };
-    let letters = facts.letters;
-    let by_letter = criterion.compare == Compare::Letter;
-    let limit = if by_letter {
-        line.logmar().0 * i32::from(letters) - stricter
-    } else {
-        line.step().0 - stricter
-    };
+    let by_letter = limit.by_letter;
     let ranges = eyes.both().map(|value| {
         let acuity = value?.acuity()?;
         if by_letter {
@@ -37,12 +30,12 @@ pub(super) fn each_eye(
             acuity.steps(set.credit, letters, shift)
         }
     });
-    let answers = ranges.map(|range| against(range, limit));
+    let answers = ranges.map(|range| against(range, limit.value));
     let answer = either_eye(answers);
     let mut out = Answered::new(answer, both_in_words(eyes));
     out.by_eye = Some(answers);
     out.eye = deciding_eye(answers);
-    out.margin = margin(ranges, answers, limit, by_letter, letters);
+    out.margin = margin(ranges, answers, limit.value, by_letter, letters);
     for (eye, value) in Eye::BOTH.into_iter().zip(eyes.both()) {
         remarks(
             set.credit,
@@ -54,14 +47,12 @@ pub(super) fn each_eye(
             &mut out.remarks,
         );
     }
+    if shift == 0 {
+        out.chart_change = limit.change(near, ranges, answers, facts.notation);
+    }
     if answer == Answer::Refer {
         // By letter a line's name stands for its letter score as well.
-        let best = if stricter == 0 {
-            line
-        } else {
-            Line::at(Step(limit_step(line)), line.notation())
-        };
-        let needed = needed_line(best, facts.notation, shift);
+        let needed = needed_line(limit.best_named(), facts.notation, shift);
         let failing: Vec<Eye> = failing(answers);
         out.would_change = match failing.as_slice() {
             [eye] if answers.contains(&Answer::Pass) => {
@@ -73,10 +64,122 @@ pub(super) fn each_eye(
     } else if answer == Answer::Unknown {
         out.would_change = format!(
             "each eye {} or better would pass",
-            needed_line(line, facts.notation, shift)
+            needed_line(limit.line, facts.notation, shift)
         );
     }
     out
+}
+
+/// The worst value that still passes an acuity threshold.
+struct Limit {
+    line: Line,
+    /// Whether the threshold's own line passes.
+    own_line_passes: bool,
+    /// Letters missed of the line, where the threshold speaks of them.
+    missed: i32,
+    by_letter: bool,
+    /// In steps, or in thousandths of logMAR times the letters of a line.
+    value: i32,
+    /// One step in that unit.
+    step: i32,
+}
+
+impl Limit {
+    fn of(criterion: &Criterion, letters: u8) -> Option<Limit> {
+        let (line, missed, own_line_passes) = match criterion.test {
+            Test::WorseThanLine(line) => (line, 0, true),
+            Test::LineOrWorse(line) => (line, 0, false),
+            Test::LettersOrWorse { line, missed } => (line, i32::from(missed), false),
+            _ => return None,
+        };
+        let by_letter = criterion.compare == Compare::Letter;
+        let at = if by_letter {
+            line.logmar().0 * i32::from(letters) + missed * 100
+        } else {
+            line.step().0
+        };
+        Some(Limit {
+            line,
+            own_line_passes,
+            missed,
+            by_letter,
+            value: at - i32::from(!own_line_passes),
+            step: if by_letter {
+                i32::from(letters) * 100
+            } else {
+                1
+            },
+        })
+    }
+
+    /// Returns the worst whole step that passes.
+    fn worst_pass(&self) -> i32 {
+        self.value.div_euclid(self.step)
+    }
+
+    /// Returns the line that is named as passing.
+    fn best_named(&self) -> Line {
+        if self.own_line_passes || self.missed > 0 {
+            self.line
+        } else {
+            Line::at(Step(limit_step(self.line)), self.line.notation())
+        }
+    }
+
+    /// Returns what would have to be read to turn the answer: the worst line that passes in each
+    /// failing eye, or the best that does not in the eye that is nearer to it.
+    fn change(
+        &self,
+        near: bool,
+        ranges: [Option<StepRange>; 2],
+        answers: [Answer; 2],
+        notation: Notation,
+    ) -> Option<ChartChange> {
+        let mut change = ChartChange {
+            near,
+            ..ChartChange::default()
+        };
+        match either_eye(answers) {
+            Answer::Refer => {
+                // By letter the threshold's own line may pass where its nearest step would not.
+                let own =
+                    self.by_letter && self.own_line_passes && self.line.notation() == notation;
+                let line = if own {
+                    self.line
+                } else {
+                    needed_at(self.line, Step(self.worst_pass()), notation)
+                };
+                change.right = (answers[0] == Answer::Refer).then_some(line);
+                change.left = (answers[1] == Answer::Refer).then_some(line);
+            }
+            Answer::Pass => {
+                let away = |range: Option<StepRange>| {
+                    Some((self.value - range?.worst?).div_euclid(self.step) + 1)
+                };
+                let (right, left) = (away(ranges[0])?, away(ranges[1])?);
+                let step = Step(self.worst_pass() + 1);
+                let line = if self.own_line_passes {
+                    Line::at(step, notation)
+                } else {
+                    needed_at(self.line, step, notation)
+                };
+                change.steps = right.min(left);
+                change.right = (right < left).then_some(line);
+                change.left = (right >= left).then_some(line);
+            }
+            Answer::Unknown => return None,
+        }
+        Some(change)
+    }
+}
+
+/// Names a step to be read: the threshold's own name where it is the threshold's own line.
+fn needed_at(line: Line, step: Step, notation: Notation) -> Line {
+    if line.step() == step && line.notation() == notation {
+        line
+    } else {
+        Line::at(step, notation)
+    }
 }
 
 fn limit_step(line: Line) -> i32 {
@@ -158,11 +261,8 @@ fn remarks(
 ) {
     let acuity = match value {
         Some(AcuityResult::Read(acuity)) => acuity,
-        Some(AcuityResult::NotTestable(why)) => {
-            out.push(format!("{}: not testable ({})", eye.title(), why.title()));
-            return;
-        }
-        None => return,
+        // Why an eye is not testable stands in the reading itself.
+        Some(AcuityResult::NotTestable(_)) | None => return,
     };
     if let Acuity::AsWritten(text) = acuity {
         out.push(format!("{}: {text} has no agreed equivalent", eye.title()));
@@ -261,8 +361,30 @@ pub(super) fn between_eyes(set: &RuleSet, criterion: &Criterion, facts: &Facts<'
             facts.notation,
         );
         out.would_change = format!("{} {line} would pass", eye.title());
+        if facts.shift == 0 {
+            out.chart_change = Some(one_eye(eye, line, 0));
+        }
+    }
+    // The eyes read alike or nearly so: how far the worse one is from the limit.
+    if answer == Answer::Pass
+        && exact
+        && facts.shift == 0
+        && let Some(best) = better_step(right, left)
+    {
+        let eye = worse_eye(right, left).unwrap_or(Eye::Left);
+        let line = Line::at(Step(best + limit), facts.notation);
+        out.chart_change = Some(one_eye(eye, line, limit - least));
     }
     out
+}
+
+fn one_eye(eye: Eye, line: Line, steps: i32) -> ChartChange {
+    ChartChange {
+        near: false,
+        right: (eye == Eye::Right).then_some(line),
+        left: (eye == Eye::Left).then_some(line),
+        steps,
+    }
 }
 
 fn worse_eye(right: StepRange, left: StepRange) -> Option<Eye> {

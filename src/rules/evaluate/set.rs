@@ -101,6 +101,8 @@ pub(in crate::rules) struct Spoken<'s> {
     pub set: &'s RuleSet,
     pub reason: Reason,
     pub not_applicable: Option<&'static str>,
+    /// What a criterion saw that the protocol leaves out, in words; empty when it saw nothing.
+    pub left_out: Option<String>,
 }
 
 /// Asks every criterion of a set that is for this child.
@@ -167,8 +169,10 @@ fn to_spoken<'s>(set: &'s RuleSet, criterion: &'s Criterion, answered: Answered)
         measure: criterion.measure,
         set,
         not_applicable: answered.not_applicable,
+        left_out: None,
         reason: Reason {
             rule_set: Arc::clone(&set.id),
+            said_by: Arc::clone(&set.short_title),
             criterion: Arc::clone(&criterion.id),
             answer: answered.answer,
             required: criterion.required,
@@ -186,7 +190,11 @@ fn to_spoken<'s>(set: &'s RuleSet, criterion: &'s Criterion, answered: Answered)
                 criterion.urgency
             },
             act_within_days: criterion.act_within_days,
+            then: criterion.then,
+            high_priority: criterion.high_priority,
+            may_be_at_once: false,
             would_change: answered.would_change,
+            chart_change: answered.chart_change,
         },
     }
 }

@@ -99,7 +99,7 @@ pub fn margin_words(reason: &Reason) -> String {
 /// Returns how soon to act, in words.
 pub(in crate::rules) fn act_words(days: u32) -> String {
     match days {
-        0 => "act the same day".to_owned(),
+        0 => "act today".to_owned(),
         1 => "act within 1 day".to_owned(),
         days => format!("act within {days} days"),
     }

@@ -5,8 +5,10 @@ use std::sync::Arc;
 
 use crate::domain::age::Grade;
 use crate::domain::codes::{History, Reflex, SignKind};
-use crate::domain::outcome::{RiskKind, Source, Urgency};
-use crate::rules::{Applies, Compare, Criterion, Finding, Measure, Metric, RiskRule, threshold};
+use crate::domain::outcome::{RiskKind, Source, Then, Urgency};
+use crate::rules::{
+    Applies, Compare, Criterion, Finding, Measure, Metric, RiskRule, Test, threshold,
+};
 
 use super::based_on::Base;
 use super::reader::{Reader, Section};
@@ -30,6 +32,9 @@ const KEYS: &[&str] = &[
     "act_within_days",
     "required",
     "informs",
+    "then",
+    "after_months",
+    "priority",
 ];
 
 /// Whom one criterion is for and where the file says so, kept even if the rest of it is faulty.
@@ -160,6 +165,25 @@ fn load(
     let act_within_days = reader.number(section, "act_within_days");
     let required = reader.flag(section, "required");
     let informs = reader.flag(section, "informs").unwrap_or(false);
+    let then = then(reader, section, informs);
+    let high_priority = reader
+        .optional(section, "priority")
+        .and_then(|(word, span)| {
+            reader.word(&word, span, "priority", "high", |w| {
+                (w == "high").then_some(())
+            })
+        })
+        .is_some();
+    if let (Some(Test::LettersOrWorse { .. }), Some((_, span))) = (&test, &refer)
+        && compare != Some(Compare::Letter)
+    {
+        reader.fault(
+            span.clone(),
+            "letters missed in a threshold by line",
+            "compare = \"letter\"",
+            "",
+        );
+    }
     let note = reader
         .optional(section, "note")
         .map(|v| v.0)
@@ -192,7 +216,45 @@ fn load(
         act_within_days,
         required: required.unwrap_or(default_required),
         informs,
+        then,
+        high_priority,
     })
+}
+
+/// Reads what a criterion asks for when it speaks.
+fn then(reader: &mut Reader<'_>, section: &Section<'_, '_>, informs: bool) -> Then {
+    let months = reader.number(section, "after_months").filter(|m| *m > 0);
+    let Some((word, span)) = reader.optional(section, "then") else {
+        return if informs { Then::Inform } else { Then::Refer };
+    };
+    match (word.as_str(), months) {
+        ("refer", None) => Then::Refer,
+        ("rescreen", None) => Then::Rescreen,
+        ("recheck", Some(months)) => Then::Recheck(months),
+        ("recheck", None) => {
+            reader.fault(span, "a recheck without its date", "after_months = 12", "");
+            Then::Refer
+        }
+        ("refer" | "rescreen", Some(_)) => {
+            reader.fault(
+                span,
+                "`after_months` goes with a recheck",
+                "then = \"recheck\"",
+                "",
+            );
+            Then::Refer
+        }
+        _ => {
+            reader.word(
+                &word,
+                span,
+                "then",
+                "refer, rescreen, recheck",
+                |_| None::<()>,
+            );
+            Then::Refer
+        }
+    }
 }
 
 pub(super) fn applies(

@@ -5,7 +5,10 @@ use std::sync::Arc;
 use crate::domain::acuity::LineCredit;
 use crate::domain::codes::AcuityMethod;
 use crate::domain::outcome::Source;
-use crate::rules::{Kind, Library, Measure, NotTestablePolicy, Protocol, RuleSet};
+use crate::rules::{
+    Applies, Exemption, FirstFail, Kind, Library, Measure, NotTestablePolicy, Protocol,
+    RequiredTests, RuleSet,
+};
 
 use super::reader::{Reader, Section};
 use super::{criterion, hash, head, practice, sources};
@@ -13,6 +16,7 @@ use super::{criterion, hash, head, practice, sources};
 const KEYS: &[&str] = &[
     "id",
     "title",
+    "short_title",
     "edition",
     "kind",
     "note",
@@ -22,7 +26,14 @@ const KEYS: &[&str] = &[
     "instrument_below_months",
     "instrument_stands_in",
     "required",
+    "required_at",
     "rescreen_days",
+    "rescreen_working_days",
+    "rescreen_source",
+    "settings_source",
+    "exempt",
+    "broken_glasses",
+    "leave_out",
     "glasses_return_days",
     "glasses_visits",
     "consent",
@@ -68,19 +79,29 @@ pub(super) fn load(
         }
         found
     });
-    let required = reader
-        .list(root, "required")
-        .into_iter()
-        .filter_map(|(word, span)| {
+    let required = required(reader, root);
+    let settings_source =
+        source_or(reader, root, "settings_source", &sources).unwrap_or_else(practice);
+    let first_fail_source = source_or(reader, root, "rescreen_source", &sources)
+        .unwrap_or_else(|| Arc::clone(&settings_source));
+    let first_fail = first_fail(reader, root);
+    let exempt = exempt(reader, root);
+    let broken_glasses_refer = reader
+        .optional(root, "broken_glasses")
+        .and_then(|(word, span)| {
             reader.word(
                 &word,
                 span,
-                "measure",
-                &Measure::words(),
-                Measure::from_word,
+                "broken_glasses",
+                "refer, return",
+                |w| match w {
+                    "refer" => Some(true),
+                    "return" => Some(false),
+                    _ => None,
+                },
             )
         })
-        .collect();
+        .unwrap_or(true);
     let consent_opt_in = match reader.optional(root, "consent") {
         None => false,
         Some((word, span)) => reader
@@ -108,10 +129,10 @@ pub(super) fn load(
         .chain(&instrument)
         .cloned()
         .collect();
-    let refer_at_once = at_once_ids(reader, root, &used, library);
+    let refer_at_once = known_ids(reader, root, "refer_at_once", &used, library);
+    let leave_out = known_ids(reader, root, "leave_out", &used, library);
     let at_once = criterion::load_all(reader, root, "at_once", &sources, None);
     let not_testable = not_testable(reader, root, &sources);
-    let rescreen_days = reader.number(root, "rescreen_days");
     let instrument_below_months = reader.number(root, "instrument_below_months");
     let instrument_stands_in = reader.flag(root, "instrument_stands_in").unwrap_or(false);
     let glasses_return_days = reader.number(root, "glasses_return_days").unwrap_or(14);
@@ -142,7 +163,12 @@ pub(super) fn load(
         instrument_below_months,
         instrument_stands_in,
         required,
-        rescreen_days,
+        first_fail,
+        settings_source,
+        first_fail_source,
+        exempt,
+        broken_glasses_refer,
+        leave_out,
         glasses_return_days,
         glasses_visits,
         consent_opt_in,
@@ -151,6 +177,7 @@ pub(super) fn load(
         at_once: RuleSet {
             id: id.clone(),
             title: String::new(),
+            short_title: super::said_by(head.short_title, head.approval.as_ref()),
             edition: edition.clone(),
             kind: Kind::Signs,
             region: String::new(),
@@ -205,14 +232,94 @@ fn known_sets(
     out
 }
 
-fn at_once_ids(
+fn source_or(
     reader: &mut Reader<'_>,
     root: &Section<'_, '_>,
+    key: &str,
+    sources: &[Arc<Source>],
+) -> Option<Arc<Source>> {
+    root.table
+        .contains_key(key)
+        .then(|| super::find_source(reader, root, key, sources))
+        .flatten()
+}
+
+fn measures(reader: &mut Reader<'_>, section: &Section<'_, '_>, key: &str) -> Vec<Measure> {
+    reader
+        .list(section, key)
+        .into_iter()
+        .filter_map(|(word, span)| {
+            let words = Measure::words();
+            reader.word(&word, span, "measure", &words, Measure::from_word)
+        })
+        .collect()
+}
+
+fn required(reader: &mut Reader<'_>, root: &Section<'_, '_>) -> Vec<RequiredTests> {
+    let mut out = vec![RequiredTests {
+        applies: Applies::Everyone,
+        measures: measures(reader, root, "required"),
+    }];
+    for section in reader.sections(root, "required_at") {
+        reader.only(&section, &["ages", "tests"]);
+        let (applies, span) = criterion::applies(reader, &section);
+        if span.is_none() {
+            reader.fault(
+                section.span.clone(),
+                "`ages` is missing",
+                "ages = \"60..\"",
+                "what is required of everybody stands in `required`",
+            );
+        }
+        out.push(RequiredTests {
+            applies,
+            measures: measures(reader, &section, "tests"),
+        });
+    }
+    out
+}
+
+fn first_fail(reader: &mut Reader<'_>, root: &Section<'_, '_>) -> FirstFail {
+    let days = reader.number(root, "rescreen_days");
+    let working = reader.number(root, "rescreen_working_days");
+    if let (Some(_), Some(value)) = (days, root.table.get("rescreen_working_days")) {
+        reader.fault(
+            value.span(),
+            "both calendar and working days",
+            "one of rescreen_days and rescreen_working_days",
+            "",
+        );
+    }
+    match (days, working) {
+        (Some(days), _) => FirstFail::WithinDays(days),
+        (None, Some(days)) => FirstFail::WithinSchoolDays(days),
+        (None, None) => FirstFail::Refer,
+    }
+}
+
+fn exempt(reader: &mut Reader<'_>, root: &Section<'_, '_>) -> Vec<Exemption> {
+    if !root.table.contains_key("exempt") {
+        return Exemption::ALL.to_vec();
+    }
+    reader
+        .list(root, "exempt")
+        .into_iter()
+        .filter_map(|(word, span)| {
+            let words = Exemption::words();
+            reader.word(&word, span, "exemption", &words, Exemption::from_word)
+        })
+        .collect()
+}
+
+fn known_ids(
+    reader: &mut Reader<'_>,
+    root: &Section<'_, '_>,
+    key: &str,
     used: &[Arc<str>],
     library: &Library,
 ) -> Vec<String> {
     let mut out = Vec::new();
-    for (id, span) in reader.list(root, "refer_at_once") {
+    for (id, span) in reader.list(root, key) {
         let known = id.split_once('/').is_some_and(|(set, criterion)| {
             used.iter().any(|u| &**u == set)
                 && library
@@ -243,16 +350,9 @@ fn not_testable(
         reader.only(&section, NOT_TESTABLE_KEYS);
         let (applies, _) = criterion::applies(reader, &section);
         let source = super::find_source(reader, &section, "source", sources);
-        if !section.table.contains_key("rescreen_months") {
-            reader.fault(
-                section.span.clone(),
-                "`rescreen_months` is missing",
-                "rescreen_months = 6",
-                "",
-            );
-        }
-        let months = reader.number(&section, "rescreen_months");
-        if let (Some(rescreen_months), Some(source)) = (months, source) {
+        // Without a number the next try is when the service says.
+        let rescreen_months = reader.number(&section, "rescreen_months");
+        if let Some(source) = source {
             out.push(NotTestablePolicy {
                 applies,
                 rescreen_months,

@@ -3,7 +3,7 @@
 use std::sync::Arc;
 
 use crate::domain::codes::{Correction, InstrumentResult};
-use crate::domain::outcome::Answer;
+use crate::domain::outcome::{Answer, Then};
 use crate::domain::readings::Readings;
 use crate::rules::evaluate::{self, Facts, Spoken, scope, speak};
 use crate::rules::{Case, Finding, Kind, Library, Measure, Protocol, RuleSet};
@@ -78,7 +78,14 @@ impl<'l> Gathered<'l> {
             }
         }
         for set in sets(&protocol.when_done) {
-            if was_done(set, case.readings) && scope(set, case.age, case.grade).speaks() {
+            // What is required at this age is asked for whether or not it was done.
+            let required = set
+                .criteria
+                .iter()
+                .any(|c| protocol.requires(c.measure, case.age));
+            if (required || was_done(set, case.readings))
+                && scope(set, case.age, case.grade).speaks()
+            {
                 gathered.ask(set, &facts, protocol);
             }
         }
@@ -90,7 +97,14 @@ impl<'l> Gathered<'l> {
     /// Asks a rule set and marks which of its answers the protocol requires.
     fn ask(&mut self, set: &'l RuleSet, facts: &Facts<'_>, protocol: &Protocol) {
         for mut spoken in speak(set, facts) {
-            spoken.reason.required = protocol.required.contains(&spoken.measure);
+            spoken.reason.required = protocol.requires(spoken.measure, facts.case.age)
+                && spoken.reason.then != Then::Inform
+                && (spoken.reason.required || !spoken.reason.high_priority);
+            if !protocol.leave_out.is_empty()
+                && protocol.leave_out.contains(&spoken.reason.full_id())
+            {
+                set_aside(&mut spoken);
+            }
             self.spoken.push(spoken);
         }
     }
@@ -172,9 +186,23 @@ impl<'l> Gathered<'l> {
     /// Asks the protocol's own thresholds that never wait; only those that refer are kept.
     fn at_once(&mut self, protocol: &'l Protocol, facts: &Facts<'_>) {
         for spoken in speak(&protocol.at_once, facts) {
-            if spoken.reason.answer == Answer::Refer {
-                self.spoken.push(spoken);
+            match spoken.reason.answer {
+                Answer::Refer => self.spoken.push(spoken),
+                // What is open here is what could make the same measure refer at once.
+                Answer::Unknown => self.open_at_once(spoken.measure),
+                Answer::Pass => {}
             }
+        }
+        for id in &protocol.refer_at_once {
+            for spoken in self.spoken.iter_mut().filter(|s| s.reason.full_id() == *id) {
+                spoken.reason.may_be_at_once = spoken.reason.answer == Answer::Unknown;
+            }
+        }
+    }
+
+    fn open_at_once(&mut self, measure: Measure) {
+        for spoken in self.spoken.iter_mut().filter(|s| s.measure == measure) {
+            spoken.reason.may_be_at_once = spoken.reason.answer == Answer::Unknown;
         }
     }
 
@@ -186,6 +214,28 @@ impl<'l> Gathered<'l> {
                 && !(s.measure == Measure::History && self.under_care)
         })
     }
+}
+
+/// Keeps what a left-out criterion saw beside the outcome, without acting on it.
+fn set_aside(spoken: &mut Spoken<'_>) {
+    if spoken.reason.answer == Answer::Refer {
+        let days = spoken
+            .reason
+            .act_within_days
+            .map_or_else(String::new, |days| {
+                format!(", {}", crate::rules::explain::act_words(days))
+            });
+        spoken.left_out = Some(format!(
+            "{}: {}{days} by {} ({}); shown, not acted on: this protocol leaves it out",
+            spoken.reason.reading,
+            spoken.reason.urgency.title(),
+            spoken.reason.source.citation,
+            spoken.reason.source.basis.title()
+        ));
+    } else {
+        spoken.left_out = Some(String::new());
+    }
+    spoken.not_applicable = Some("left out by this protocol");
 }
 
 fn is_refraction(measure: Measure) -> bool {

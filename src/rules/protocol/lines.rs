@@ -6,8 +6,9 @@ use crate::domain::age::{days_after, months_after};
 use crate::domain::codes::{Attempt, Consent, Correction, History, Status};
 use crate::domain::outcome::{Answer, DecidedBy, OutcomeKind, Urgency};
 use crate::domain::readings::{AcuityResult, NotTestable};
-use crate::rules::evaluate::Spoken;
-use crate::rules::{Applies, Case, Kind, Measure, Protocol};
+use crate::domain::school_calendar::SchoolCalendar;
+use crate::rules::evaluate::{Spoken, refers, screened_again};
+use crate::rules::{Applies, Case, Exemption, FirstFail, Kind, Measure, Protocol};
 
 use super::gather::Gathered;
 
@@ -18,6 +19,8 @@ pub(super) struct Decision {
     pub due_on: Option<NaiveDate>,
     pub qualifiers: Vec<String>,
     pub notes: Vec<String>,
+    /// Whether criteria that ask for a second screening decided.
+    pub again: bool,
 }
 
 impl Decision {
@@ -28,6 +31,7 @@ impl Decision {
             due_on: None,
             qualifiers: Vec::new(),
             notes: Vec::new(),
+            again: false,
         }
     }
 
@@ -56,7 +60,9 @@ pub(super) fn decide(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'
         .or_else(|| glasses(protocol, case, gathered))
         .or_else(|| criterion(protocol, case, gathered))
         .or_else(|| not_testable(protocol, case, gathered))
-        .or_else(|| missing(case, gathered))
+        .or_else(|| missing(case, gathered, false))
+        .or_else(|| again(case, gathered))
+        .or_else(|| missing(case, gathered, true))
         .unwrap_or_else(|| Decision::new(OutcomeKind::Pass, DecidedBy::Nothing));
     if !gathered.history_shown.is_empty() {
         decision.notes.push(format!(
@@ -88,23 +94,20 @@ fn exempt(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'_>) -> Opti
     if case.readings.anything_tested() {
         return None;
     }
-    let refused = match case.consent {
-        Some(Consent::No) => true,
-        Some(Consent::Yes) => false,
-        _ => protocol.consent_opt_in,
+    let holds = |why: &Exemption| match why {
+        Exemption::OptedOut => case.readings.status == Some(Status::OptedOut),
+        Exemption::NoConsent => match case.consent {
+            Some(Consent::No) => true,
+            Some(Consent::Yes) => false,
+            _ => protocol.consent_opt_in,
+        },
+        Exemption::UnderCare => gathered.under_care,
+        Exemption::ExaminedRecently => {
+            case.examined_recently || case.readings.has_history(History::Examined12Months)
+        }
     };
-    let why = if case.readings.status == Some(Status::OptedOut) {
-        "opted out"
-    } else if refused {
-        "no consent"
-    } else if gathered.under_care {
-        "under care"
-    } else if case.examined_recently || case.readings.has_history(History::Examined12Months) {
-        "examined in the last 12 months"
-    } else {
-        return None;
-    };
-    Some(Decision::new(OutcomeKind::Exempt, DecidedBy::Exempt).because(why))
+    let why = protocol.exempt.iter().find(|why| holds(why))?;
+    Some(Decision::new(OutcomeKind::Exempt, DecidedBy::Exempt).because(why.title()))
 }
 
 /// 3. A direct-referral group, not under care; the rule set holds the ages.
@@ -120,7 +123,9 @@ fn refer_at_once(protocol: &Protocol, gathered: &Gathered<'_>) -> Option<Decisio
     gathered
         .referring()
         .any(|s| {
-            s.reason.rule_set == protocol.id || protocol.refer_at_once.contains(&s.reason.full_id())
+            refers(&s.reason)
+                && (s.reason.rule_set == protocol.id
+                    || protocol.refer_at_once.contains(&s.reason.full_id()))
         })
         .then(|| Decision::new(OutcomeKind::Refer, DecidedBy::ReferAtOnce))
 }
@@ -131,7 +136,14 @@ fn glasses(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'_>) -> Opt
         return None;
     }
     let sign = |s: &Spoken<'_>| s.set.kind == Kind::Signs && s.measure != Measure::PlusLens;
-    match case.readings.correction {
+    // Where broken glasses do not refer they are glasses that are not worn.
+    let correction = match case.readings.correction {
+        Some(Correction::BrokenOrLost) if !protocol.broken_glasses_refer => {
+            Some(Correction::NotWorn)
+        }
+        correction => correction,
+    };
+    match correction {
         Some(Correction::BrokenOrLost) => Some(
             Decision::new(OutcomeKind::Refer, DecidedBy::GlassesNeverAvailable)
                 .because("glasses broken or lost"),
@@ -164,18 +176,47 @@ fn glasses(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'_>) -> Opt
 
 /// 6. Any other criterion.
 fn criterion(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'_>) -> Option<Decision> {
-    gathered.referring().next()?;
-    Some(match (case.attempt, protocol.rescreen_days) {
-        (Attempt::First, Some(days)) => Decision::new(OutcomeKind::Rescreen, DecidedBy::Criterion)
-            .due(case.on.map(|on| days_after(on, days)))
-            .note(format!(
-                "a first fail is rescreened within {days} days, then referred"
-            )),
-        (Attempt::First, None) => Decision::new(OutcomeKind::Refer, DecidedBy::Criterion)
-            .note("a fail is referred at once"),
+    gathered.referring().find(|s| refers(&s.reason))?;
+    Some(match (case.attempt, protocol.first_fail) {
+        (Attempt::First, FirstFail::WithinDays(days)) => {
+            Decision::new(OutcomeKind::Rescreen, DecidedBy::Criterion)
+                .due(case.on.map(|on| days_after(on, days)))
+                .note(format!(
+                    "a first fail is rescreened within {days} days, then referred"
+                ))
+        }
+        (Attempt::First, FirstFail::WithinSchoolDays(days)) => working_days(case, days),
+        (Attempt::First, FirstFail::Refer) => {
+            Decision::new(OutcomeKind::Refer, DecidedBy::Criterion)
+                .note("a fail is referred at once")
+        }
         (Attempt::Rescreen, _) => Decision::new(OutcomeKind::Refer, DecidedBy::Criterion)
             .note("a rescreen that fails is referred"),
     })
+}
+
+/// Counts the rescreen in days on which school is held.
+fn working_days(case: &Case<'_>, days: u32) -> Decision {
+    let plain = SchoolCalendar::default();
+    let calendar = case.calendar.unwrap_or(&plain);
+    let counted = match case.calendar {
+        Some(_) => "counted on the school calendar",
+        None => "counted Monday to Friday: no school calendar with holidays is known",
+    };
+    Decision::new(OutcomeKind::Rescreen, DecidedBy::Criterion)
+        .due(case.on.and_then(|on| calendar.days_after(on, days)))
+        .note(format!(
+            "a first fail is rescreened within {days} working days, then referred ({counted})"
+        ))
+}
+
+/// What asks for a second screening by itself, where nothing unknown could refer instead.
+fn again(case: &Case<'_>, gathered: &Gathered<'_>) -> Option<Decision> {
+    let (words, due) = screened_again(gathered.referring().map(|s| &s.reason), case.on)?;
+    let mut decision = Decision::new(OutcomeKind::Rescreen, DecidedBy::Criterion).due(due);
+    decision.again = true;
+    decision.qualifiers.extend(words);
+    Some(decision)
 }
 
 /// 7. Not testable: an instrument for both eyes may stand in, else a second visit, else refer.
@@ -191,11 +232,11 @@ fn not_testable(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'_>) -
             (applies, Some(age)) => applies.holds_age(age),
             (_, None) => true,
         })
-        .min_by_key(|p| p.rescreen_months);
+        .min_by_key(|p| p.rescreen_months.unwrap_or(u32::MAX));
     let due = case
         .on
-        .zip(policy)
-        .map(|(on, p)| months_after(on, p.rescreen_months));
+        .zip(policy.and_then(|p| p.rescreen_months))
+        .map(|(on, months)| months_after(on, months));
     if gathered.instrument_passes {
         return Some(
             Decision::new(OutcomeKind::Pass, DecidedBy::NotTestable)
@@ -214,10 +255,13 @@ fn not_testable(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'_>) -
         .because("not testable")
         .due(due);
     if let Some(policy) = policy {
-        let months = policy.rescreen_months;
-        let plural = if months == 1 { "" } else { "s" };
+        let when = match policy.rescreen_months {
+            Some(1) => "within 1 month".to_owned(),
+            Some(months) => format!("within {months} months"),
+            None => "when the service says".to_owned(),
+        };
         decision = decision.note(format!(
-            "a child who could not be tested is tried again within {months} month{plural}, then referred ({}, {})",
+            "a child who could not be tested is tried again {when}, then referred ({}, {})",
             policy.source.citation,
             policy.source.basis.title()
         ));
@@ -238,9 +282,12 @@ fn not_testable(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'_>) -
 }
 
 /// 8. A required test is unknown.
-fn missing(case: &Case<'_>, gathered: &Gathered<'_>) -> Option<Decision> {
+fn missing(case: &Case<'_>, gathered: &Gathered<'_>, again: bool) -> Option<Decision> {
     let unknown = gathered.spoken.iter().any(|s| {
-        s.reason.required && s.reason.answer == Answer::Unknown && s.not_applicable.is_none()
+        s.reason.required
+            && s.reason.answer == Answer::Unknown
+            && s.reason.then.is_again() == again
+            && s.not_applicable.is_none()
     });
     (unknown || !gathered.outside.is_empty()).then(|| {
         let decision = Decision::new(OutcomeKind::Incomplete, DecidedBy::Missing);

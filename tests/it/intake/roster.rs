@@ -202,3 +202,16 @@ fn many_children_of_one_birth_date_and_name_are_still_read() {
     assert_eq!(roster.children.len(), 60_000);
     assert_eq!(roster.alike.len(), 59_999);
 }
+
+#[test]
+fn an_id_with_something_invisible_in_it_is_no_second_child() {
+    for hidden in ['\u{200B}', '\u{FEFF}', '\u{202E}', '\u{AD}', '\u{E0041}'] {
+        let second = format!("A{hidden}1,Berg,Ana,2018-02-03,1,N1");
+        let said = said(&rows(&["A1,Berg,Ana,2018-02-03,1,N1", &second]));
+        assert_eq!(said.len(), 1, "{said:?}");
+        assert!(
+            said[0].contains("row 3, column child_id") && said[0].contains("invisible"),
+            "{said:?}"
+        );
+    }
+}

@@ -24,6 +24,8 @@ fn what_is_promised_is_there() {
         "ireland-school-entry",
         "iapb-school-6-9",
         "iapb-school-6-12",
+        "nsw-preschool",
+        "new-zealand-4y",
         "instrument-2003",
         "instrument-2013",
         "instrument-2021",
@@ -43,6 +45,19 @@ fn what_is_promised_is_there() {
         assert!(set.local.is_none());
         assert!(!show::sheet(set).rows.is_empty(), "{id}");
         assert!(show::list_line(set).contains(id));
+    }
+    for id in [
+        "preschool-groups",
+        "south-australia-acuity",
+        "nsw-strabismus",
+        "queensland-strabismus",
+    ] {
+        let grading = library
+            .grading(id)
+            .unwrap_or_else(|| panic!("{id} is missing"));
+        assert_eq!(grading.content_hash.len(), 64);
+        assert!(!show::grading_sheet(grading).rows.is_empty(), "{id}");
+        assert!(show::grading_line(grading).contains(id));
     }
     for id in [
         "us-school",

@@ -75,3 +75,24 @@ fn drafts_are_in_no_ledger() {
     let file = std::fs::read(store.dir().join("drafts.db")).unwrap();
     assert!(!file.starts_with(b"SQLite format 3"), "under the same key");
 }
+
+#[test]
+fn drafts_that_cannot_be_read_are_set_aside_and_typing_goes_on() {
+    let (_temp, store) = fresh();
+    drop(store.drafts().unwrap());
+    let noise = vec![0x5A_u8; 8192];
+    for n in 1..=2 {
+        std::fs::write(store.dir().join("drafts.db"), &noise).unwrap();
+        let drafts = store.drafts().unwrap();
+        let typed = draft("Q-1", "20/40");
+        drafts.save(typed.clone()).unwrap();
+        assert_eq!(drafts.load_every().unwrap(), [typed]);
+        drop(drafts);
+        let aside = store.dir().join(format!("drafts.db.damaged-{n}"));
+        assert_eq!(
+            std::fs::read(aside).unwrap(),
+            noise,
+            "nothing is thrown away"
+        );
+    }
+}

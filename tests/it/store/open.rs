@@ -5,7 +5,7 @@ use std::path::Path;
 use std::time::Duration;
 
 use tempfile::TempDir;
-use twoline::store::{Access, ErrorKind, Secret, Store};
+use twoline::store::{Access, ErrorKind, Kdf, New, Secret, Store};
 
 use super::support::*;
 
@@ -41,6 +41,25 @@ fn only_the_owner_reads_any_file_while_open_too() {
             "store.key"
         ]
     );
+}
+
+#[test]
+fn a_writer_takes_loose_modes_back() {
+    let (_temp, store) = fresh();
+    let dir = store.dir().to_owned();
+    drop(store);
+    let loosen = |path: &Path, mode| {
+        std::fs::set_permissions(path, std::fs::Permissions::from_mode(mode)).unwrap();
+    };
+    loosen(&dir, 0o777);
+    for name in ["store.key", "store.db", "lock"] {
+        loosen(&dir.join(name), 0o666);
+    }
+    let _store = open(&dir);
+    assert_eq!(mode(&dir), 0o700);
+    for name in ["store.key", "store.db", "lock"] {
+        assert_eq!(mode(&dir.join(name)), 0o600, "{name}");
+    }
 }
 
 #[test]
@@ -166,6 +185,91 @@ fn a_failed_init_leaves_nothing() {
         .map(|e| e.unwrap().file_name())
         .collect();
     assert_eq!(left, ["store.db-wal"], "only what was there before");
+}
+
+#[test]
+fn an_init_that_loses_a_race_removes_nothing_of_the_winner() {
+    let temp = TempDir::new().unwrap();
+    let dir = temp.path().join("store");
+    let start = std::sync::Barrier::new(4);
+    let made: Vec<bool> = std::thread::scope(|scope| {
+        let begun: Vec<_> = (0..4)
+            .map(|_| {
+                scope.spawn(|| {
+                    // The key takes a while to derive, so that all find the folder free before.
+                    let kdf = Kdf::Fixed {
+                        memory_kib: 8192,
+                        passes: 2,
+                    };
+                    start.wait();
+                    Store::create(
+                        &dir,
+                        New {
+                            kdf,
+                            ..new(secret())
+                        },
+                    )
+                    .is_ok()
+                })
+            })
+            .collect();
+        begun.into_iter().map(|one| one.join().unwrap()).collect()
+    });
+    assert_eq!(made.iter().filter(|made| **made).count(), 1, "{made:?}");
+    let store = Store::open(&dir, &secret(), WRITE).unwrap();
+    store.verify(None, |_, _| {}).unwrap();
+}
+
+#[test]
+fn a_held_lock_stays_when_an_init_meets_it() {
+    let temp = TempDir::new().unwrap();
+    let lock = std::fs::File::create(temp.path().join("lock")).unwrap();
+    lock.lock().unwrap();
+    let error = Store::create(temp.path(), new(Secret::None)).unwrap_err();
+    assert_eq!(error.kind(), ErrorKind::Locked);
+    assert!(temp.path().join("lock").exists());
+}
+
+#[test]
+fn a_broken_database_says_so_to_readers_and_writers() {
+    let whole = |dir: &Path| std::fs::read(dir.join("store.db")).unwrap();
+    for (name, kept) in [("empty", 0), ("noise", usize::MAX)] {
+        let (_temp, store) = fresh();
+        let dir = store.dir().to_owned();
+        drop(store);
+        let noise = whole(&dir).into_iter().map(|b| b ^ 0x5A);
+        let bytes: Vec<u8> = noise.take(kept).collect();
+        std::fs::write(dir.join("store.db"), &bytes).unwrap();
+        for access in [WRITE, Access::ReadOnly] {
+            let error = Store::open(&dir, &Secret::None, access).unwrap_err();
+            assert_eq!(error.kind(), ErrorKind::Damaged, "{name}: {error}");
+            assert!(error.to_string().contains("store.db"), "{name}: {error}");
+            assert!(error.hint().is_some_and(|h| h.contains("backup")), "{name}");
+        }
+        assert_eq!(whole(&dir), bytes, "{name}: left as it was");
+    }
+}
+
+#[test]
+fn a_page_that_cannot_be_read_is_damage_to_a_backup_too() {
+    let (temp, mut store) = fresh();
+    fill(&mut store);
+    let dir = store.dir().to_owned();
+    drop(store);
+    let whole = std::fs::read(dir.join("store.db")).unwrap();
+    // A page that opening has no need of.
+    let store = (1..whole.len() / 4096)
+        .find_map(|page| {
+            let mut bytes = whole.clone();
+            bytes[page * 4096 + 2000] ^= 1;
+            std::fs::write(dir.join("store.db"), bytes).unwrap();
+            Store::open(&dir, &Secret::None, WRITE).ok()
+        })
+        .unwrap();
+    let error = store.backup(&temp.path().join("copy")).unwrap_err();
+    assert_eq!(error.kind(), ErrorKind::Damaged, "{error}");
+    assert!(error.hint().is_some());
+    assert!(!temp.path().join("copy").exists());
 }
 
 #[test]

@@ -1,0 +1,256 @@
+//! Condition groups and clinic bands at each bound.
+//!
+//! Groups: VIP Study Group, Ophthalmology 2004;111:637–650, as printed in IOVS 2011;52:9658
+//! (primary). Bands: South Australia, New South Wales, Queensland (primary).
+
+use super::support::readings;
+use twoline::domain::age::AgeMonths;
+use twoline::rules::Library;
+use twoline::rules::grading::{Clinical, Graded, Level, Waiting, order, severity, triage};
+
+fn group(age: u32, text: &str) -> Option<u32> {
+    let readings = readings(text);
+    let grading = Library::shipped().grading("preschool-groups").unwrap();
+    let facts = Clinical::of_examination(Some(AgeMonths(age)), &readings);
+    match severity(grading, &facts).first()?.level {
+        Level::Group(group) => Some(group),
+        other => panic!("{other:?}"),
+    }
+}
+
+fn both(sphere: &str, cylinder: &str) -> String {
+    format!(
+        "sphere_right={sphere} cylinder_right={cylinder} axis_right=180 sphere_left={sphere} cylinder_left={cylinder} axis_left=180"
+    )
+}
+
+#[test]
+fn refraction_groups_at_each_bound() {
+    for (sphere, cylinder, expected) in [
+        ("+3.25", "0", None),
+        ("+3.26", "0", Some(3)),
+        ("+4.99", "0", Some(3)),
+        ("+5.00", "0", Some(1)),
+        ("0", "-1.50", None),
+        ("0", "-1.51", Some(2)),
+        ("0", "-2.49", Some(2)),
+        ("0", "-2.50", Some(1)),
+        ("-2.00", "0", None),
+        ("-2.01", "0", Some(3)),
+        ("-3.99", "0", Some(3)),
+        ("-4.00", "0", Some(2)),
+        ("-5.99", "0", Some(2)),
+        ("-6.00", "0", Some(1)),
+    ] {
+        assert_eq!(
+            group(50, &both(sphere, cylinder)),
+            expected,
+            "{sphere} {cylinder}"
+        );
+    }
+    // Hyperopia with a difference of spherical equivalents of 0.50 D or more is group 2.
+    for (left, expected) in [("+3.51", Some(3)), ("+3.50", Some(2))] {
+        let text =
+            format!("sphere_right=+4.00 cylinder_right=0 sphere_left={left} cylinder_left=0");
+        assert_eq!(group(50, &text), expected, "{left}");
+    }
+}
+
+#[test]
+fn anisometropia_groups_at_each_bound() {
+    for (right, left, expected) in [
+        ("+1.00", "0", None),
+        ("+1.01", "0", Some(2)),
+        ("+2.00", "0", Some(2)),
+        ("+2.01", "0", Some(1)),
+    ] {
+        let text =
+            format!("sphere_right={right} cylinder_right=0 sphere_left={left} cylinder_left=0");
+        assert_eq!(group(50, &text), expected, "{right} {left}");
+    }
+}
+
+#[test]
+fn strabismus_and_amblyopia_groups() {
+    let plain = "sphere_right=0 cylinder_right=0 sphere_left=0 cylinder_left=0";
+    assert_eq!(group(50, "cover=constant"), Some(1));
+    assert_eq!(group(50, "cover=intermittent"), Some(2));
+    assert_eq!(group(50, &format!("cover=phoria {plain}")), None);
+    let squint = "cover=intermittent deviating_eye=left";
+    for (right, left, expected) in [
+        ("20/20", "20/50", Some(2)), // four steps, better than 20/64
+        ("20/20", "20/63", Some(1)),
+        ("20/32", "20/63", Some(1)), // three steps
+        ("20/40", "20/63", Some(2)), // two steps with a factor
+    ] {
+        let text = format!("{squint} {plain} distance_right={right} distance_left={left}");
+        assert_eq!(group(50, &text), expected, "{right} {left}");
+    }
+    // No factor found: group 3; 20/16 with 20/25 is excepted.
+    let none = format!("cover=none {plain}");
+    for (age, right, left, expected) in [
+        (47, "20/50", "20/50", None),
+        (47, "20/50", "20/63", Some(3)),
+        (48, "20/40", "20/40", None),
+        (48, "20/40", "20/50", Some(3)),
+        (50, "20/20", "20/32", Some(3)),
+        (50, "20/16", "20/25", None),
+        (50, "20/20", "20/25", None),
+    ] {
+        let text = format!("{none} distance_right={right} distance_left={left}");
+        assert_eq!(group(age, &text), expected, "{age}: {right} {left}");
+    }
+}
+
+#[test]
+fn outside_its_ages_it_says_so() {
+    let readings = readings("cover=constant");
+    let grading = Library::shipped().grading("preschool-groups").unwrap();
+    for age in [None, Some(35), Some(72)] {
+        let facts = Clinical::of_screening(age.map(AgeMonths), &readings);
+        let graded = severity(grading, &facts);
+        assert!(
+            graded.first().is_none() && graded.outside.is_some(),
+            "{age:?}"
+        );
+    }
+    assert_eq!(group(36, "cover=constant"), Some(1));
+    assert_eq!(group(71, "cover=constant"), Some(1));
+}
+
+/// What is unknown is no "none": it is listed where it could be more serious.
+#[test]
+fn what_is_unknown_is_listed() {
+    let readings = readings("distance_right=20/20 distance_left=20/100 cover=none");
+    let grading = Library::shipped().grading("preschool-groups").unwrap();
+    let graded = severity(
+        grading,
+        &Clinical::of_screening(Some(AgeMonths(50)), &readings),
+    );
+    assert!(graded.first().is_none());
+    assert!(graded.could_be.iter().any(|s| s.level == Level::Group(1)));
+}
+
+fn band(set: &str, age: u32, text: &str, onset: Option<u32>) -> Graded {
+    let readings = readings(text);
+    let mut facts = Clinical::of_screening(Some(AgeMonths(age)), &readings);
+    facts.onset_months = onset;
+    triage(Library::shipped().grading(set).unwrap(), &facts)
+}
+
+fn level(graded: &Graded) -> Option<Level> {
+    graded.first().map(|s| s.level)
+}
+
+#[test]
+fn south_australia_by_the_worse_eye() {
+    for (worse, expected) in [
+        ("6/7.5", None),
+        ("6/9.5", Some(Level::Within(365))),
+        ("6/12", Some(Level::Within(90))),
+        ("6/30", Some(Level::Within(90))),
+        ("6/36", Some(Level::Within(30))),
+        ("6/38", Some(Level::Within(30))),
+        ("CF", Some(Level::Within(30))),
+    ] {
+        for (right, left) in [("6/6", worse), (worse, "6/6")] {
+            let text = format!("distance_right={right} distance_left={left} signs=none");
+            let graded = band("south-australia-acuity", 96, &text, None);
+            assert_eq!(level(&graded), expected, "{right} {left}");
+        }
+    }
+    let text = "distance_right=6/6 distance_left=6/36 signs=none";
+    let graded = band("south-australia-acuity", 96, text, None);
+    let remarks = &graded.first().unwrap().remarks;
+    assert!(
+        remarks
+            .iter()
+            .any(|r| r.starts_with("on presenting acuity")),
+        "{remarks:?}"
+    );
+    let graded = band(
+        "south-australia-acuity",
+        50,
+        "signs=sudden_vision_loss",
+        None,
+    );
+    assert_eq!(level(&graded), Some(Level::AtOnce));
+    // 3 to 5 years at 6/12 or better: a repeat in 6 months is shown beside the band.
+    for (age, line, repeat) in [
+        (35, "6/12", false),
+        (36, "6/12", true),
+        (71, "6/12", true),
+        (72, "6/12", false),
+        (50, "6/15", false),
+    ] {
+        let text = format!("distance_right=6/6 distance_left={line} signs=none");
+        let graded = band("south-australia-acuity", age, &text, None);
+        let said = graded
+            .spoke
+            .iter()
+            .any(|s| s.level == Level::RepeatAfter(6));
+        assert_eq!(said, repeat, "{age} {line}");
+    }
+}
+
+#[test]
+fn squints_by_their_onset() {
+    for (set, months, expected) in [
+        ("nsw-strabismus", 3, Level::Within(30)),
+        ("nsw-strabismus", 4, Level::Within(365)),
+        ("queensland-strabismus", 2, Level::Within(30)),
+        ("queensland-strabismus", 3, Level::Within(90)),
+    ] {
+        let text = "cover=intermittent signs=none distance_right=6/6 distance_left=6/6";
+        let graded = band(set, 100, text, Some(months));
+        assert_eq!(level(&graded), Some(expected), "{set} {months}");
+    }
+    // Unknown: the soonest it could be, said so.
+    let graded = band(
+        "queensland-strabismus",
+        100,
+        "cover=constant signs=none",
+        None,
+    );
+    assert_eq!(level(&graded), Some(Level::Within(30)));
+    assert!(graded.first().unwrap().remarks[0].starts_with("onset unknown"));
+    for (age, expected) in [(11, Some(Level::Within(30))), (12, None)] {
+        let text = "cover=constant signs=none distance_right=6/6 distance_left=6/6";
+        assert_eq!(
+            level(&band("nsw-strabismus", age, text, Some(9))),
+            expected,
+            "{age}"
+        );
+    }
+    for (age, expected) in [(95, Level::Within(90)), (96, Level::Within(365))] {
+        let text = "cover=intermittent signs=none distance_right=6/6 distance_left=6/12";
+        let graded = band("nsw-strabismus", age, text, Some(9));
+        assert!(graded.spoke.iter().any(|s| s.level == expected), "{age}");
+    }
+    let none = band("queensland-strabismus", 60, "cover=none signs=none", None);
+    assert_eq!(level(&none), None);
+}
+
+/// Inside a band: days waited, then the treatment window, then the group, each with its reason.
+#[test]
+fn order_inside_a_band() {
+    let grading = Library::shipped().grading("queensland-strabismus").unwrap();
+    let place = |band, days_waited, age, group| {
+        order(
+            grading,
+            &Waiting {
+                band,
+                days_waited,
+                age: Some(AgeMonths(age)),
+                group,
+            },
+        )
+    };
+    let b = Level::Within(90);
+    assert!(place(Level::Within(30), 0, 200, Some(3)) < place(b, 400, 40, Some(1)));
+    assert!(place(b, 20, 200, Some(3)) < place(b, 19, 40, Some(1)));
+    assert!(place(b, 20, 83, Some(3)) < place(b, 20, 84, Some(1)));
+    assert!(place(b, 20, 155, Some(3)) < place(b, 20, 156, Some(1)));
+    assert!(place(b, 20, 60, Some(1)) < place(b, 20, 60, Some(2)));
+    assert_eq!(place(b, 20, 60, Some(1)).reasons.len(), 4);
+}
