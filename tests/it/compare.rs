@@ -147,7 +147,7 @@ fn verdict(kind: OutcomeKind) -> Option<Verdict> {
         OutcomeKind::Rescreen => Some(Verdict::Rescreen),
         OutcomeKind::Incomplete => Some(Verdict::Incomplete),
         OutcomeKind::Refer => Some(Verdict::Refer),
-        _ => None,
+        OutcomeKind::Exempt => None,
     }
 }
 

@@ -47,7 +47,10 @@ fn a_results_file_is_compared_and_the_flips_are_written() {
 #[test]
 fn a_column_nobody_knows_and_a_set_nobody_knows_are_refused() {
     let bench = Bench::new();
-    bench.write("r.csv", "child_id,age_months,distance_rihgt\nA1,73,20/20\n");
+    bench.write(
+        "r.csv",
+        "child_id,age_months,distance_rihgt,distance_left\nA1,73,20/20,20/20\n",
+    );
     let ran = bench.run(&[
         "rules",
         "compare",
