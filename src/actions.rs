@@ -11,6 +11,7 @@ mod error;
 pub mod judge;
 mod judging;
 mod report;
+mod rescreen;
 mod results;
 mod roster;
 pub mod rulebook;
@@ -38,6 +39,6 @@ pub use search::SearchIndex;
 pub use setup::{NewChart, NewStore, init};
 pub use upkeep::{protected, remove_demo, store_info, writer};
 pub use views::{
-    ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay, OpenUrgent,
-    QueueState, SignRequest, Signed, StoredOutcome, UrgentAnswer, VisitView,
+    Before, ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay,
+    OpenUrgent, QueueState, SignRequest, Signed, StoredOutcome, UrgentAnswer, VisitView,
 };

@@ -11,4 +11,5 @@ pub mod readings;
 pub mod refraction;
 pub mod roster;
 pub mod school_calendar;
+pub mod screening_test;
 pub mod text;

@@ -72,6 +72,8 @@ pub struct Case<'a> {
     pub examined_recently: bool,
     /// Earlier visits.
     pub earlier: Earlier,
+    /// On a rescreen: the criteria that referred before, as `rule-set/criterion`; each is asked again.
+    pub failed_before: &'a [String],
     /// Lines of the chart in use, where it is known: decides "neighbouring lines on this chart".
     pub chart: Option<&'a [Line]>,
     /// Days on which school is held, where they are known: working days are counted on it.
@@ -93,6 +95,7 @@ impl<'a> Case<'a> {
             under_care: false,
             examined_recently: false,
             earlier: Earlier::default(),
+            failed_before: &[],
             chart: None,
             calendar: None,
             readings,

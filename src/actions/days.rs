@@ -94,8 +94,8 @@ impl Desk {
             .read()
             .day_children(&key_of(day), since)?
             .into_iter()
-            .map(|child| day_child(child, day.date))
-            .collect();
+            .map(|child| self.day_child_of(child, day.date))
+            .collect::<Result<_>>()?;
         children.sort_by_key(|c| c.due_on.is_none_or(|due| due > day.date));
         Ok(children)
     }
@@ -117,14 +117,21 @@ impl Desk {
                 earlier.push(visit);
             }
         }
-        Ok(day_child(
-            StoredChild {
-                child,
-                visits,
-                earlier,
-            },
-            day.date,
-        ))
+        let stored = StoredChild {
+            child,
+            visits,
+            earlier,
+        };
+        self.day_child_of(stored, day.date)
+    }
+
+    fn day_child_of(&self, stored: StoredChild, on: NaiveDate) -> Result<DayChild> {
+        let asked_back = asked_back(&stored.earlier).cloned();
+        let mut child = day_child(stored, on);
+        if let Some(visit) = asked_back.filter(|_| child.attempt == Attempt::Rescreen) {
+            child.before = self.before(&visit)?;
+        }
+        Ok(child)
     }
 
     pub(super) fn day_info(&self, id: Uuid) -> Result<DayInfo> {
@@ -163,6 +170,14 @@ fn info(day: ScreeningDay, names: &[(String, String)]) -> DayInfo {
     }
 }
 
+/// Returns the visit that asked for a rescreen, if the last one that judged the child did.
+fn asked_back(earlier: &[VisitNow]) -> Option<&VisitNow> {
+    earlier
+        .iter()
+        .rfind(|v| v.kind.is_some_and(|kind| kind != OutcomeKind::Incomplete))
+        .filter(|v| v.kind == Some(OutcomeKind::Rescreen))
+}
+
 pub(super) fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
     let StoredChild {
         child,
@@ -175,7 +190,7 @@ pub(super) fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
     let judged = earlier
         .iter()
         .rposition(|v| v.kind.is_some_and(|kind| kind != OutcomeKind::Incomplete));
-    let rescreen = judged.is_some_and(|at| earlier[at].kind == Some(OutcomeKind::Rescreen));
+    let rescreen = asked_back(&earlier).is_some();
     let due_on = earlier[judged.unwrap_or(0)..]
         .iter()
         .rev()
@@ -197,6 +212,7 @@ pub(super) fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
             .count() as u32,
         not_testable_before: earlier.iter().any(|v| decided(v, DecidedBy::NotTestable)),
         due_on,
+        before: None,
         state: here.map_or(QueueState::ToCome, |visit| state_of(visit, child.consent)),
         wears_glasses: child.wears_glasses.map(|v| v == YesNo::Yes),
         consent: child.consent,

@@ -1,8 +1,9 @@
 //! From a child at the bench to an outcome: pure, called on every key.
 
+use crate::actions::rescreen::carried_over;
 use crate::actions::views::{DayChild, DayInfo};
 use crate::domain::age::AgeMonths;
-use crate::domain::codes::{Correction, History, Status};
+use crate::domain::codes::{Attempt, Correction, History, Status};
 use crate::domain::field::Field;
 use crate::domain::outcome::Outcome;
 use crate::domain::readings::Readings;
@@ -28,11 +29,18 @@ pub fn preview(
     } else {
         readings
     };
-    Some(judge_protocol(
-        library,
-        protocol,
-        &case(day, child, readings),
-    ))
+    let carried = if child.attempt == Attempt::Rescreen {
+        carried_over(child, readings)
+    } else {
+        None
+    };
+    let (readings, words) = match &carried {
+        Some((readings, words)) => (readings, Some(words)),
+        None => (readings, None),
+    };
+    let mut outcome = judge_protocol(library, protocol, &case(day, child, readings));
+    outcome.protocol_notes.extend(words.cloned());
+    Some(outcome)
 }
 
 /// Returns the readings with what the roster knows, where the day says nothing of it.
@@ -63,7 +71,7 @@ fn with_roster(child: &DayChild, readings: &Readings) -> Readings {
     readings
 }
 
-fn case<'a>(day: &DayInfo, child: &DayChild, readings: &'a Readings) -> Case<'a> {
+fn case<'a>(day: &DayInfo, child: &'a DayChild, readings: &'a Readings) -> Case<'a> {
     Case {
         age: child.age,
         grade: child.grade,
@@ -79,6 +87,7 @@ fn case<'a>(day: &DayInfo, child: &DayChild, readings: &'a Readings) -> Case<'a>
             glasses_visits: child.glasses_visits,
             not_testable: child.not_testable_before,
         },
+        failed_before: child.before.as_ref().map_or(&[], |b| &b.failed),
         ..Case::new(readings)
     }
 }

@@ -114,8 +114,21 @@ pub struct DayChild {
     pub not_testable_before: bool,
     /// When a rescreen or a return is due, from an earlier visit.
     pub due_on: Option<NaiveDate>,
+    /// On a rescreen: what the visit before leaves to it.
+    pub before: Option<Before>,
     /// How the child stands on this day.
     pub state: QueueState,
+}
+
+/// What a visit that ended in a rescreen leaves to the next one.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Before {
+    /// Its date.
+    pub on: NaiveDate,
+    /// The criteria that referred, as `rule-set/criterion`: they are asked again.
+    pub failed: Vec<String>,
+    /// The readings of tests that passed.
+    pub passed: Readings,
 }
 
 /// What a person signs.

@@ -7,7 +7,7 @@ use include_dir::{Dir, include_dir};
 use crate::rules::error::{RuleError, RuleErrors};
 use crate::rules::grading::Grading;
 use crate::rules::load::{Loaded, load};
-use crate::rules::{Protocol, RuleSet};
+use crate::rules::{Criterion, Protocol, RuleSet};
 
 static SHIPPED_FILES: Dir<'_> = include_dir!("$CARGO_MANIFEST_DIR/referral_rules");
 
@@ -110,6 +110,11 @@ impl Library {
     /// Returns a rule set by its id.
     pub fn rule_set(&self, id: &str) -> Option<&RuleSet> {
         self.sets.iter().find(|s| &*s.id == id)
+    }
+
+    /// Returns a criterion of a rule set.
+    pub fn criterion(&self, set: &str, id: &str) -> Option<&Criterion> {
+        self.rule_set(set)?.criteria.iter().find(|c| &*c.id == id)
     }
 
     /// Returns a protocol by its id.

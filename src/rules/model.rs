@@ -9,6 +9,7 @@ use crate::domain::acuity::{Line, LineCredit};
 use crate::domain::age::{AgeMonths, Grade};
 use crate::domain::codes::{History, Reflex, SignKind, code_list};
 use crate::domain::outcome::{RiskKind, Source, Then, Urgency};
+use crate::domain::screening_test::ScreeningTest;
 
 code_list! {
     /// What a rule set is about.
@@ -38,6 +39,28 @@ code_list! {
         PlusLens = "plus lens", "plus lens";
         Stereo = "stereo", "stereo";
         ColorPlates = "color plates", "color plates";
+    }
+}
+
+impl Measure {
+    /// Returns the test that it judges; nothing for what is seen or told.
+    pub fn test(self) -> Option<ScreeningTest> {
+        Some(match self {
+            Measure::DistanceEachEye | Measure::DistanceBetweenEyes => ScreeningTest::Distance,
+            Measure::NearEachEye => ScreeningTest::Near,
+            Measure::Anisometropia
+            | Measure::Hyperopia
+            | Measure::Astigmatism
+            | Measure::Myopia
+            | Measure::MediaOpacity
+            | Measure::Ptosis => ScreeningTest::Instrument,
+            Measure::Strabismus => ScreeningTest::Cover,
+            Measure::RedReflex => ScreeningTest::RedReflex,
+            Measure::PlusLens => ScreeningTest::PlusLens,
+            Measure::Stereo => ScreeningTest::Stereo,
+            Measure::ColorPlates => ScreeningTest::ColorPlates,
+            Measure::Signs | Measure::History => return None,
+        })
     }
 }
 

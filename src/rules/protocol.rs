@@ -57,6 +57,7 @@ fn outcome(
     outcome
         .unknown
         .extend(gathered.outside.iter().map(|word| (*word).to_owned()));
+    let not_repeated = gathered.not_repeated;
     let acts_on_history = !gathered.under_care;
     // Without the glasses the chart is not judged: what it shows is no finding.
     let chart_unjudged = gathered.glasses_not_worn
@@ -102,6 +103,11 @@ fn outcome(
             Answer::Pass => {}
         }
         outcome.reasons.push(spoken.reason);
+    }
+    for id in not_repeated {
+        if !outcome.unknown.contains(&id) {
+            outcome.unknown.push(id);
+        }
     }
     if outcome.kind == OutcomeKind::Pass
         && outcome.decided_by == DecidedBy::Nothing

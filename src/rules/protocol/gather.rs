@@ -6,6 +6,7 @@ use crate::domain::codes::{Correction, InstrumentResult};
 use crate::domain::outcome::{Answer, Then};
 use crate::domain::readings::Readings;
 use crate::rules::evaluate::{self, Facts, Spoken, scope, speak};
+use crate::rules::threshold::split_band;
 use crate::rules::{Case, Finding, Kind, Library, Measure, Protocol, RuleSet};
 
 /// What was asked and answered.
@@ -26,6 +27,8 @@ pub(super) struct Gathered<'l> {
     pub critical_line: bool,
     /// Entries of the history that are shown and not acted on.
     pub history_shown: Vec<String>,
+    /// Criteria that referred before and have no answer today.
+    pub not_repeated: Vec<String>,
 }
 
 impl<'l> Gathered<'l> {
@@ -51,6 +54,7 @@ impl<'l> Gathered<'l> {
             ),
             critical_line: facts.critical_line,
             history_shown: Vec::new(),
+            not_repeated: Vec::new(),
         };
         let young = protocol
             .instrument_below_months
@@ -91,7 +95,29 @@ impl<'l> Gathered<'l> {
         }
         gathered.instrument(library, protocol, &facts, young);
         gathered.at_once(protocol, &facts);
+        gathered.not_repeated = gathered.unanswered(case.failed_before);
         gathered
+    }
+
+    /// Returns the criteria that referred before and have no answer today. The band is left aside: a
+    /// birthday between two visits moves a child to another one.
+    fn unanswered(&self, failed_before: &[String]) -> Vec<String> {
+        let answered = |id: &str| {
+            let Some((set, criterion)) = id.split_once('/') else {
+                return true;
+            };
+            let finding = split_band(criterion).0;
+            self.spoken.iter().any(|s| {
+                *s.reason.rule_set == *set
+                    && split_band(&s.reason.criterion).0 == finding
+                    && (s.reason.answer != Answer::Unknown || s.not_applicable.is_some())
+            })
+        };
+        failed_before
+            .iter()
+            .filter(|id| !answered(id))
+            .cloned()
+            .collect()
     }
 
     /// Asks a rule set and marks which of its answers the protocol requires.

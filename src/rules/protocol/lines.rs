@@ -63,6 +63,7 @@ pub(super) fn decide(protocol: &Protocol, case: &Case<'_>, gathered: &Gathered<'
         .or_else(|| missing(case, gathered, false))
         .or_else(|| again(case, gathered))
         .or_else(|| missing(case, gathered, true))
+        .or_else(|| not_repeated(gathered))
         .unwrap_or_else(|| Decision::new(OutcomeKind::Pass, DecidedBy::Nothing));
     if !gathered.history_shown.is_empty() {
         decision.notes.push(format!(
@@ -296,6 +297,13 @@ fn missing(case: &Case<'_>, gathered: &Gathered<'_>, again: bool) -> Option<Deci
             _ => decision,
         }
     })
+}
+
+/// 8. A test that failed before was not repeated: a rescreen repeats at least each failed test.
+fn not_repeated(gathered: &Gathered<'_>) -> Option<Decision> {
+    (!gathered.not_repeated.is_empty())
+        .then(|| Decision::new(OutcomeKind::Incomplete, DecidedBy::Missing))
+        .map(|decision| decision.because("a failed test was not repeated"))
 }
 
 /// Objecting to the covering of one eye only hints at unequal sight.

@@ -195,3 +195,108 @@ fn a_results_row_without_an_attempt_is_the_visit_that_is_due() {
         .expect_err("the same visit twice");
     assert!(refused.to_string().contains("once"), "{refused}");
 }
+
+/// logic of a rescreen (common practice): at least each failed test is repeated.
+#[test]
+fn a_rescreen_that_does_not_repeat_the_failed_test_is_no_pass() {
+    let (_folder, mut desk) = desk_with_children();
+    let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
+    let first = sign(
+        &mut desk,
+        &day,
+        "Q-1",
+        &[
+            (Field::DistanceRight, "20/20"),
+            (Field::DistanceLeft, "20/20"),
+            (Field::PlusLens, "read"),
+            (Field::Signs, "none"),
+        ],
+    );
+    assert_eq!(first.outcome.kind, OutcomeKind::Rescreen);
+    let later = open(
+        &mut desk,
+        "2026-10-28",
+        "us-school",
+        AcuityMethod::Threshold,
+    );
+    let chart_only = [
+        (Field::DistanceRight, "20/20"),
+        (Field::DistanceLeft, "20/20"),
+        (Field::Signs, "none"),
+    ];
+    let signed = sign(&mut desk, &later, "Q-1", &chart_only);
+    assert_eq!(signed.outcome.kind, OutcomeKind::Incomplete);
+    assert!(
+        signed
+            .outcome
+            .unknown
+            .contains(&"plus-lens-2.50/plus-lens".to_owned()),
+        "{:?}",
+        signed.outcome.unknown
+    );
+}
+
+/// Tests passed before carry over, marked so.
+#[test]
+fn tests_passed_before_carry_over_marked_so() {
+    let (_folder, mut desk) = desk_with_children();
+    let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
+    sign(
+        &mut desk,
+        &day,
+        "Q-1",
+        &[
+            (Field::DistanceRight, "20/20"),
+            (Field::DistanceLeft, "20/20"),
+            (Field::PlusLens, "read"),
+            (Field::Signs, "none"),
+        ],
+    );
+    let later = open(
+        &mut desk,
+        "2026-10-28",
+        "us-school",
+        AcuityMethod::Threshold,
+    );
+    let repeated = [(Field::PlusLens, "blurred"), (Field::Signs, "none")];
+    let signed = sign(&mut desk, &later, "Q-1", &repeated);
+    assert_eq!(
+        signed.outcome.kind,
+        OutcomeKind::Pass,
+        "{}",
+        signed.outcome.reasons
+    );
+    assert!(
+        signed
+            .outcome
+            .reasons
+            .contains("carried over from 14 Oct 2026: distance acuity"),
+        "{}",
+        signed.outcome.reasons
+    );
+    // What carried over is not recorded a second time.
+    let visit = desk.visit(&later, "Q-1").expect("read").expect("a visit");
+    assert_eq!(visit.readings.get(Field::DistanceRight), None);
+}
+
+/// What was not answered before does not carry over: a chart that failed is done again by both eyes.
+#[test]
+fn a_failed_chart_does_not_carry_over() {
+    let (_folder, mut desk) = desk_with_children();
+    let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
+    let values = [
+        (Field::DistanceRight, "20/20"),
+        (Field::DistanceLeft, "20/32"),
+        (Field::Signs, "none"),
+    ];
+    sign(&mut desk, &day, "Q-2", &values);
+    let later = open(
+        &mut desk,
+        "2026-10-28",
+        "us-school",
+        AcuityMethod::Threshold,
+    );
+    let one_eye = [(Field::DistanceLeft, "20/25"), (Field::Signs, "none")];
+    let signed = sign(&mut desk, &later, "Q-2", &one_eye);
+    assert_eq!(signed.outcome.kind, OutcomeKind::Incomplete);
+}
