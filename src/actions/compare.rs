@@ -9,6 +9,7 @@ use super::days::{day_child, key_of};
 use super::desk::Desk;
 use super::error::Result;
 use super::judging::completed;
+use super::rescreen::carried_over;
 use super::visit_rows::{judged, tries_of};
 use crate::domain::codes::Attempt;
 use crate::intake::results::{Options, ResultRow, ResultsReader};
@@ -128,7 +129,7 @@ impl Desk {
                 };
                 let readings = judged(&tries_of(&row.readings)?);
                 let attempt = visit.attempt;
-                let child = day_child(
+                let mut child = day_child(
                     StoredChild {
                         child: row.child,
                         visits: vec![visit],
@@ -136,6 +137,12 @@ impl Desk {
                     },
                     day.date,
                 );
+                if attempt == Attempt::Rescreen {
+                    // What passed before is not repeated, and counts as it did on that day.
+                    child = self.day_child(&day, &child.child_id)?;
+                }
+                let readings = completed(&child, readings);
+                let readings = carried_over(&child, &readings).map_or(readings, |(all, _)| all);
                 let subject = Subject {
                     name: format!("{}, {}", child.family_name, child.given_name),
                     site: day.site_name.clone(),
@@ -146,7 +153,7 @@ impl Desk {
                     method: Some(day.method),
                     consent: child.consent,
                     under_care: child.under_care,
-                    readings: completed(&child, readings),
+                    readings,
                     child_id: child.child_id,
                 };
                 keep(&mut subjects, &mut latest, subject);

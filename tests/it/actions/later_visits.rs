@@ -300,3 +300,42 @@ fn a_failed_chart_does_not_carry_over() {
     let signed = sign(&mut desk, &later, "Q-2", &one_eye);
     assert_eq!(signed.outcome.kind, OutcomeKind::Incomplete);
 }
+
+// Practice: on a rescreen only what failed is repeated. A comparison of rule sets counts the child
+// with what passed before.
+#[test]
+fn a_comparison_counts_what_a_rescreen_takes_over() {
+    let (_folder, mut desk) = desk_with_children();
+    let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
+    let first = [
+        TWO_STEPS[0],
+        TWO_STEPS[1],
+        TWO_STEPS[2],
+        (Field::SphereRight, "+0.50"),
+        (Field::CylinderRight, "0"),
+        (Field::SphereLeft, "+0.50"),
+        (Field::CylinderLeft, "0"),
+    ];
+    let signed = sign(&mut desk, &day, "Q-2", &first);
+    assert_eq!(signed.outcome.kind, OutcomeKind::Rescreen);
+    let later = open(
+        &mut desk,
+        "2026-10-28",
+        "us-school",
+        AcuityMethod::Threshold,
+    );
+    let repeated = [
+        (Field::DistanceRight, "20/20"),
+        (Field::DistanceLeft, "20/20"),
+        (Field::Signs, "none"),
+    ];
+    sign(&mut desk, &later, "Q-2", &repeated);
+    let (_, subjects) = desk.subjects_of_term(None).expect("children");
+    let readings = &subjects
+        .iter()
+        .find(|s| s.child_id == "Q-2")
+        .expect("a child")
+        .readings;
+    assert_eq!(readings.get(Field::DistanceLeft).as_deref(), Some("20/20"));
+    assert_eq!(readings.get(Field::SphereLeft).as_deref(), Some("+0.50"));
+}
