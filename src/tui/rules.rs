@@ -34,6 +34,8 @@ pub struct Rules {
 struct Page {
     id: String,
     kind: &'static str,
+    /// Whether it is a rule set, which judges children by itself.
+    comparable: bool,
     superseded: bool,
     body: RulePage,
     picture: Vec<String>,
@@ -41,6 +43,8 @@ struct Page {
 
 /// What the protocols are listed as.
 const PROTOCOLS: &str = "protocols";
+/// What condition groups and clinic bands are listed as.
+const TABLES: &str = "groups and bands";
 
 impl Rules {
     /// Reads the library.
@@ -50,7 +54,11 @@ impl Rules {
             .map(|(id, body)| {
                 let set = library.rule_set(&id);
                 Page {
-                    kind: set.map_or(PROTOCOLS, |s| s.kind.title()),
+                    kind: set
+                        .map(|s| s.kind.title())
+                        .or_else(|| library.grading(&id).map(|_| TABLES))
+                        .unwrap_or(PROTOCOLS),
+                    comparable: set.is_some(),
                     superseded: set.is_some_and(|s| !s.status.is_empty() && s.status != "current"),
                     picture: set.map(picture::lines).unwrap_or_default(),
                     id,
@@ -106,8 +114,8 @@ impl Rules {
         let Some(page) = self.listed().nth(self.at) else {
             return Done::effects(Vec::new());
         };
-        if page.kind == PROTOCOLS {
-            return Done::said("rule sets are compared, not protocols");
+        if !page.comparable {
+            return Done::said("only rule sets are compared");
         }
         let id = page.id.clone();
         match self.marked.take() {
@@ -124,8 +132,13 @@ impl Rules {
     }
 
     fn next_kind(&mut self) {
-        let mut kinds: Vec<&'static str> = self.pages.iter().map(|p| p.kind).collect();
-        kinds.dedup();
+        // Local sets stand behind all shipped ones, so that a kind comes up again.
+        let mut kinds: Vec<&'static str> = Vec::new();
+        for page in &self.pages {
+            if !kinds.contains(&page.kind) {
+                kinds.push(page.kind);
+            }
+        }
         self.kind = match self.kind {
             None => kinds.first().copied(),
             Some(kind) => kinds

@@ -66,8 +66,50 @@ fn kinds_are_listed_one_after_the_other_and_superseded_sets_are_bracketed() {
     h.press(Key::char('f'))
         .sees("instrument-2021")
         .misses("joint-policy-2016");
-    for _ in 0..3 {
-        h.press(Key::char('f'));
+    h.press(Key::char('f')).sees("only signs");
+    h.press(Key::char('f'))
+        .sees("only groups and bands")
+        .sees("preschool-groups");
+    h.press(Key::char('c')).sees("only rule sets are compared");
+    h.press(Key::char('f'))
+        .sees("only protocols")
+        .sees("us-school");
+    h.press(Key::char('f'))
+        .misses("only protocols")
+        .sees("arizona-school");
+}
+
+/// The list is longer than either screen: it goes along, so that the focus is always seen, and every
+/// entry comes by once, in both directions.
+#[test]
+fn a_list_longer_than_the_screen_scrolls() {
+    let library = twoline::rules::Library::shipped();
+    let count =
+        library.rule_sets().count() + library.protocols().count() + library.gradings().count();
+    for (columns, rows) in [(80, 24), (100, 30)] {
+        assert!(count > usize::from(rows), "{count} fit without scrolling");
+        let mut h = Hands::sit();
+        h.press(Key::alt('5'));
+        let focused = |h: &Hands| {
+            let screen = h.screen_at(columns, rows);
+            let lines: Vec<&str> = screen.lines().filter(|l| l.starts_with(" ▸ ")).collect();
+            assert_eq!(lines.len(), 1, "one focus is seen:\n{screen}");
+            lines[0].split('│').next().unwrap_or_default().to_owned()
+        };
+        let mut down = vec![focused(&h)];
+        for _ in 1..count {
+            h.key(KeyCode::Down);
+            down.push(focused(&h));
+        }
+        let mut each = down.clone();
+        each.sort_unstable();
+        each.dedup();
+        assert_eq!(each.len(), count);
+        h.key(KeyCode::Down);
+        assert_eq!(focused(&h), down[count - 1], "the last one stays");
+        for last in down.iter().rev().skip(1) {
+            h.key(KeyCode::Up);
+            assert_eq!(focused(&h), *last);
+        }
     }
-    h.sees("arizona-school");
 }
