@@ -7,7 +7,7 @@ mod intervals;
 
 use rand_chacha::ChaCha8Rng;
 use rand_chacha::rand_core::{Rng, SeedableRng};
-use twoline::actions::compare::{Comparison, Side, Subject, Verdict};
+use twoline::actions::compare::{self, Comparison, Side, Subject, Verdict};
 use twoline::domain::age::{AgeMonths, Grade};
 use twoline::domain::codes::{AcuityMethod, Attempt};
 use twoline::domain::field::Field;
@@ -299,6 +299,40 @@ fn two_lines_between_the_eyes_part_two_sets() {
         "3 lines or more"
     );
     assert_eq!(comparison.tally().all.only(Side::A), 0);
+}
+
+/// New South Wales preschool 2018 (primary): worse than 6/9 and better than 6/9-2 is rechecked at 12
+/// months, which is no referral; 6/9-2 refers. An eye that could still refer leaves it open.
+#[test]
+fn a_recheck_is_a_verdict_of_its_own_and_no_referral() {
+    let library = Library::shipped();
+    let a = library.rule_set("nsw-preschool").expect("shipped");
+    let b = library.rule_set("joint-policy-2016").expect("shipped");
+    let subjects = [
+        plain(50, "distance_right=6/9-1 distance_left=6/9"),
+        plain(50, "distance_right=6/9-2 distance_left=6/9"),
+        plain(50, "distance_right=6/9 distance_left=6/9"),
+        plain(50, "distance_right=6/9-1"),
+    ];
+    let comparison = Comparison::new(a, b, &subjects);
+    let verdicts: Vec<Verdict> = comparison.verdicts(Side::A).collect();
+    assert_eq!(
+        verdicts,
+        [
+            Verdict::Rescreen,
+            Verdict::Refer,
+            Verdict::Pass,
+            Verdict::Incomplete
+        ]
+    );
+    agrees(&comparison, Side::A, a, &subjects);
+    let all = comparison.tally().all;
+    assert_eq!(
+        (all.of(Side::A, Verdict::Rescreen), all.only(Side::A)),
+        (1, 1)
+    );
+    let report = compare::report(&comparison, &subjects, "four children").join("\n");
+    assert!(report.contains("screens again 1/4"), "{report}");
 }
 
 /// Equal spherical equivalents, cylinders of 1.50 D at right angles: 1.50 D along one meridian,

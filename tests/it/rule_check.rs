@@ -232,6 +232,60 @@ fn no_shipped_threshold_is_called_dead() {
     }
 }
 
+/// Every shipped file is sound when it is checked as a programme's own: under its own id, approved.
+#[test]
+fn every_shipped_file_is_sound_as_a_local_one() {
+    let library = Library::shipped();
+    let files: Vec<(&str, &str)> = (library.rule_sets().map(|s| (&*s.id, &*s.text)))
+        .chain(library.protocols().map(|p| (&*p.id, &*p.text)))
+        .chain(library.gradings().map(|g| (&*g.id, &*g.text)))
+        .collect();
+    assert!(files.len() >= 32, "{}", files.len());
+    for (id, text) in files {
+        let own = text.replacen(&format!("id = \"{id}\""), "id = \"quillmere\"", 1);
+        assert_ne!(own, text, "{id}");
+        assert_eq!(errors(&format!("{APPROVED}{own}")), [""; 0], "{id}");
+        // Without its approval the same file is refused.
+        assert_eq!(errors(&own).len(), 2, "{id}");
+    }
+}
+
+/// A second screening leaves room for a referral, not the other way round; high priority is said
+/// beside a referral that a stricter threshold already makes.
+#[test]
+fn a_second_screening_is_shadowed_by_a_referral_only() {
+    let two = |first: &str, second: &str| {
+        errors(&file(
+            "kind = \"acuity\"\n",
+            &(line("line", "", "worse than 20/40")
+                + first
+                + &line("line.far", "", "worse than 20/50")
+                + second),
+        ))
+    };
+    let dead = "`line.far` can never speak: `line` refers every child it would";
+    let recheck = "then = \"recheck\"\nafter_months = 12\n";
+    assert_eq!(two("", recheck), [dead]);
+    assert_eq!(two("", "then = \"rescreen\"\n"), [dead]);
+    assert_eq!(two(recheck, ""), [""; 0]);
+    assert_eq!(two(recheck, "then = \"rescreen\"\n"), [""; 0]);
+    assert_eq!(two("", "priority = \"high\"\n"), [""; 0]);
+    assert_eq!(two("priority = \"high\"\n", ""), [dead]);
+    let letters = |first: &str, second: &str| {
+        let by_letter = "compare = \"letter\"\n";
+        errors(&file(
+            "kind = \"acuity\"\n",
+            &(line("line", "", first) + by_letter + &line("line.far", "", second) + by_letter),
+        ))
+    };
+    assert_eq!(letters("worse than 20/40", "20/40-2 or worse"), [dead]);
+    assert_eq!(letters("20/40-1 or worse", "20/40-2 or worse"), [dead]);
+    assert_eq!(
+        letters("20/40-2 or worse", "worse than 20/40"),
+        ["`line` can never speak: `line.far` refers every child it would"]
+    );
+}
+
 /// The same id replaces, a new id adds, `remove` leaves out, and both sources stay.
 #[test]
 fn a_set_overrides_single_criteria_of_another() {
