@@ -242,7 +242,7 @@ pub(super) fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
 fn state_of(visit: &VisitNow, consent: Option<Consent>) -> QueueState {
     let by = visit.decided_by.as_deref().and_then(DecidedBy::from_word);
     match (visit.kind, by) {
-        (Some(OutcomeKind::Refer), _) => QueueState::Signed(OutcomeKind::Refer),
+        (Some(kind @ (OutcomeKind::Refer | OutcomeKind::Pass)), _) => QueueState::Signed(kind),
         (_, Some(DecidedBy::GlassesNotWorn)) => QueueState::GlassesAtHome,
         (_, Some(DecidedBy::NotTestable)) => QueueState::NotTestable,
         (Some(OutcomeKind::Exempt), _) => {

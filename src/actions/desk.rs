@@ -248,7 +248,10 @@ fn library_of(dir: &Path) -> Result<Library> {
         files.sort();
     }
     library_with(&files).map_err(|e| {
-        ActionError::bad(e.to_string()).hint("correct or remove the file, then start again")
+        ActionError::bad(format!("a rule file of this store was not taken\n{e}")).hint(format!(
+            "correct it, or take it out of {}, then start again",
+            folder.display()
+        ))
     })
 }
 

@@ -90,7 +90,11 @@ impl Desk {
             .hint("take that one back or move it first"));
         }
         let there = new_id();
-        let rows = self.new_visit(&day, &to, there, &self.tries(visit)?)?;
+        let mut rows = self.new_visit(&day, &to, there, &self.tries(visit)?)?;
+        let open = self.read().urgent_open()?;
+        if let Some(line) = open.iter().find(|u| u.raised.visit_id == Some(visit)) {
+            rows.raised_at(&line.raised);
+        }
         let author = self.author();
         self.store.append(&author, |tx| {
             take_back(tx, visit, &reason)?;

@@ -40,6 +40,14 @@ struct Edit {
 }
 
 impl VisitRows {
+    /// Lets the running line of an emergency go on from when it was first raised.
+    pub(super) fn raised_at(&mut self, raised: &UrgentAction) {
+        if let Some(line) = &mut self.raise {
+            line.at_ms = raised.at_ms;
+            line.at_offset_minutes = raised.at_offset_minutes;
+        }
+    }
+
     /// Adds the entries; a correction that changes nothing adds none.
     pub(super) fn write(self, tx: &mut Tx<'_>) -> crate::store::Result<()> {
         if self.new.is_none() && self.readings.is_empty() && self.edits.is_empty() {

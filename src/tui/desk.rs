@@ -20,13 +20,23 @@ pub struct Clerk {
 }
 
 /// Keeps drafts; saving and dropping never wait, whatever the store is busy with.
-#[derive(Debug, Clone, Default)]
-pub struct Keeper(Option<Arc<Drafts>>);
+#[derive(Debug, Clone)]
+pub struct Keeper(Kept);
+
+#[derive(Debug, Clone)]
+enum Kept {
+    /// On the drafts' own thread.
+    By(Arc<Drafts>),
+    /// Nothing is written here, so there is nothing to keep.
+    ReadOnly,
+    /// The drafts could not be opened.
+    Not(Refused),
+}
 
 impl Keeper {
     /// Keeps a draft, soon.
     pub fn save(&self, draft: Draft, now_ms: i64) {
-        if let Some(drafts) = &self.0 {
+        if let Kept::By(drafts) = &self.0 {
             // A failure shows at the next flush, which is waited for.
             let _ = drafts.save(actions::Draft {
                 day: draft_day(&draft.day),
@@ -42,7 +52,7 @@ impl Keeper {
 
     /// Forgets a draft.
     pub fn drop_draft(&self, day: &DayInfo, child_id: &str) {
-        if let Some(drafts) = &self.0 {
+        if let Kept::By(drafts) = &self.0 {
             let _ = drafts.delete(&draft_day(day), child_id);
         }
     }
@@ -50,20 +60,29 @@ impl Keeper {
     /// Writes every draft, and says what went wrong if one could not be written.
     pub fn flush(&self) -> Result<(), Refused> {
         match &self.0 {
-            Some(drafts) => drafts.flush().map_err(|e| Refused {
+            Kept::By(drafts) => drafts.flush().map_err(|e| Refused {
                 message: format!("drafts could not be written: {e}"),
                 hint: String::new(),
             }),
-            None => Ok(()),
+            Kept::ReadOnly => Ok(()),
+            Kept::Not(refused) => Err(refused.clone()),
+        }
+    }
+
+    /// Returns why drafts are not kept here, though they should be.
+    pub fn refusal(&self) -> Option<Refused> {
+        match &self.0 {
+            Kept::Not(refused) => Some(refused.clone()),
+            _ => None,
         }
     }
 
     fn load(&self, day: &Arc<DayInfo>) -> Vec<Draft> {
-        let drafts = self
-            .0
-            .as_ref()
-            .and_then(|d| d.load_all(&draft_day(day)).ok());
+        let Kept::By(drafts) = &self.0 else {
+            return Vec::new();
+        };
         drafts
+            .load_all(&draft_day(day))
             .unwrap_or_default()
             .into_iter()
             .map(|d| Draft {
@@ -116,7 +135,14 @@ impl Clerk {
     /// Sits down at a desk.
     pub fn new(desk: Desk) -> Clerk {
         Clerk {
-            keeper: Keeper(desk.drafts().ok().map(Arc::new)),
+            keeper: Keeper(match desk.drafts() {
+                Ok(drafts) => Kept::By(Arc::new(drafts)),
+                Err(_) if desk.is_read_only().is_some() => Kept::ReadOnly,
+                Err(error) => Kept::Not(Refused {
+                    message: format!("what is typed is not kept before it is signed: {error}"),
+                    hint: error.hint.unwrap_or_default(),
+                }),
+            }),
             desk,
             index: None,
         }

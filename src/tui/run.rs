@@ -69,6 +69,9 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     let (answers, from_store) = channel();
     let clerk = Clerk::new(desk);
     let keeper = clerk.keeper();
+    if let Some(refused) = keeper.refusal() {
+        app.refuse(refused);
+    }
     let store = thread::Builder::new()
         .name("store".into())
         .spawn(move || serve(clerk, &jobs, &answers))?;

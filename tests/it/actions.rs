@@ -424,6 +424,25 @@ fn a_visit_moves_to_the_child_it_belongs_to() {
 }
 
 #[test]
+fn the_clock_of_an_emergency_goes_on_when_its_visit_moves() {
+    let (_folder, mut desk) = desk_with_children();
+    let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);
+    let signed = sign(
+        &mut desk,
+        &day,
+        "Q-5",
+        &[(Field::Signs, "white_pupil:left")],
+    );
+    let since = desk.urgent_open().expect("read")[0].since;
+    std::thread::sleep(std::time::Duration::from_millis(5));
+    desk.move_visit(signed.visit, "Q-6", "wrong child")
+        .expect("moved");
+    let lines = desk.urgent_open().expect("read");
+    assert_eq!(lines.len(), 1);
+    assert_eq!((lines[0].child_id.as_str(), lines[0].since), ("Q-6", since));
+}
+
+#[test]
 fn a_retry_of_the_same_signature_writes_nothing() {
     let (_folder, mut desk) = desk_with_children();
     let day = open(&mut desk, DAY, "us-school", AcuityMethod::Threshold);

@@ -181,3 +181,16 @@ fn top_level() {
         );
     }
 }
+
+/// The keys in the README come from the one declaration of keys.
+#[test]
+fn the_readme_shows_the_keys_of_the_table() {
+    let readme = std::fs::read_to_string(concat!(env!("CARGO_MANIFEST_DIR"), "/README.md"))
+        .expect("the README");
+    for [place, keys, _, help] in twoline::keys::rows() {
+        if place.starts_with("Day") || place == "in every place" || place == "everywhere" {
+            let row = format!("| {place} | {keys} | {help} |");
+            assert!(readme.contains(&row), "missing in the README: {row}");
+        }
+    }
+}
