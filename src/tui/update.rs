@@ -83,6 +83,12 @@ impl App {
             .filter(|c| !crate::domain::text::is_unsafe(*c))
             .take(200)
             .collect();
+        if text.trim_end().chars().count() > line.chars().count() {
+            self.say(
+                Tone::Attention,
+                "only the first line of what was pasted is taken, 200 characters at most",
+            );
+        }
         if let Some(prompt) = &mut self.prompt {
             match &mut prompt.body {
                 Body::Form(form) => {

@@ -101,6 +101,7 @@ fn a_paste_is_one_edit_and_never_submits() {
     let mut h = Hands::sit();
     h.paste("20/25\n20/30\n\x1b[2J")
         .sees("20/25")
+        .sees("only the first line")
         .sees("OKAFOR, Ada");
     h.press(Key::ctrl('z'));
     assert!(
