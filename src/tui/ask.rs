@@ -179,6 +179,7 @@ impl App {
     pub(crate) fn ask_told_of(&mut self, urgent: &crate::actions::OpenUrgent) {
         let now = crate::tui::view::wall_clock(self.session.now_ms, self.session.offset_minutes);
         let me = self.session.screener.clone().unwrap_or_default();
+        let by = format!("Enter: {me}");
         self.prompt = Some(Prompt::form(
             Ask::Told(urgent.clone()),
             format!("EMERGENCY  {}: {}", safe(&urgent.name), safe(&urgent.what)),
@@ -188,15 +189,15 @@ impl App {
                     "mother by telephone; eye doctor on call",
                     false,
                 ),
-                ("when", &format!("{now}, as on the clock now"), false),
+                ("when", &format!("Enter: {now}, as on the clock"), true),
                 (
                     "by whom",
                     if me.is_empty() {
                         "initials and name"
                     } else {
-                        &me
+                        &by
                     },
-                    false,
+                    !me.is_empty(),
                 ),
             ]),
         ));

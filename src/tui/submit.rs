@@ -11,6 +11,7 @@ use crate::keys::Command;
 use crate::tui::app::{App, Effect, Request, Tone};
 use crate::tui::prompt::{Ask, Body, Form, Prompt};
 use crate::tui::text::safe;
+use crate::tui::view::wall_clock;
 
 /// What to carry out, or the field that stands against it and why.
 type Taken = Result<Vec<Effect>, (usize, String)>;
@@ -229,8 +230,13 @@ impl App {
             Ask::Told(urgent) => one(Request::Told(UrgentAnswer {
                 visit: urgent.visit,
                 told: form.value(0).to_owned(),
-                told_at: form.value(1).to_owned(),
-                told_by: form.value(2).to_owned(),
+                // What the form offers beside the blank is taken by Enter.
+                told_at: or(form.value(1), || {
+                    wall_clock(self.session.now_ms, self.session.offset_minutes)
+                }),
+                told_by: or(form.value(2), || {
+                    self.session.screener.clone().unwrap_or_default()
+                }),
             })),
             Ask::NewDay => self.new_day(form),
             _ => Ok(Vec::new()),
@@ -400,5 +406,14 @@ fn example_of(field: Field) -> String {
         Kind::List => "none, or words separated by ;".into(),
         Kind::Text if field == Field::Status => Status::words(),
         Kind::Text => "1.25".into(),
+    }
+}
+
+/// Returns what was typed, or else what is offered.
+fn or(typed: &str, offered: impl FnOnce() -> String) -> String {
+    if typed.is_empty() {
+        offered()
+    } else {
+        typed.to_owned()
     }
 }

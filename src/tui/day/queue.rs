@@ -158,13 +158,28 @@ impl Queue {
             }
             if searched.starts_with(words[0]) {
                 starts.push(i);
-                if starts.len() == limit {
+                if starts.len() == limit * 4 {
                     break;
                 }
-            } else if inside.len() < limit {
+            } else if inside.len() < limit * 4 {
                 inside.push(i);
             }
         }
+        // Enter takes the first: beginnings of names come before middles, who is to come before who
+        // is done.
+        let begins = |i: usize, word: &str| {
+            self.searched[i]
+                .split(' ')
+                .any(|part| part.starts_with(word))
+        };
+        let rank = |i: &usize| {
+            (
+                !words.iter().all(|word| begins(*i, word)),
+                self.children[*i].state != QueueState::ToCome,
+            )
+        };
+        starts.sort_by_key(rank);
+        inside.sort_by_key(rank);
         starts.extend(inside);
         starts.truncate(limit);
         starts

@@ -280,3 +280,15 @@ fn who_records_is_asked_once_when_it_is_not_known() {
         .typed("2")
         .sees("recording as T. Brandt");
 }
+
+/// Enter takes the first hit: who is still to come stands before who is done.
+#[test]
+fn a_find_has_the_children_to_come_first() {
+    let mut h = Hands::sit();
+    h.typed("20").enter().typed("20").enter();
+    h.press(Key::ctrl('s'));
+    h.key(KeyCode::Esc)
+        .typed("o")
+        .enter()
+        .sees("OYELARAN, Tunde");
+}
