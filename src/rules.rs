@@ -32,7 +32,9 @@ pub use model::{
     Applies, Approval, Compare, Criterion, Exemption, Finding, FirstFail, Kind, Measure, Metric,
     NotTestablePolicy, Protocol, RequiredTests, RiskRule, RuleSet, Test,
 };
-pub use protocol::{PassLine, judge_protocol, pass_line, pass_line_of_set};
+pub use protocol::{
+    CONFLICT, PassLine, judge_protocol, judge_protocol_alternatives, pass_line, pass_line_of_set,
+};
 
 /// What is said wherever an outcome is shown.
 pub const CAUTIONS: [&str; 4] = [

@@ -204,6 +204,7 @@ code_list! {
         GlassesNeverAvailable = "glasses_never_available", "glasses never available";
         Criterion = "criterion", "a criterion";
         NotTestable = "not_testable", "not testable";
+        Conflict = "conflict", "values that nobody has settled";
         Missing = "missing", "a required test is unknown";
         Nothing = "nothing", "nothing speaks against a pass";
     }
@@ -216,7 +217,7 @@ pub struct Outcome {
     pub kind: OutcomeKind,
     /// Which line of the protocol (or of a bare rule set) decided.
     pub decided_by: DecidedBy,
-    /// How soon; empty unless refer or rescreen.
+    /// How soon; empty unless refer or rescreen, or unless values are not settled of which one refers.
     pub urgency: Option<Urgency>,
     /// Days to act within, where a source prints a number.
     pub act_within_days: Option<u32>,

@@ -219,6 +219,7 @@ pub fn short(outcome: &Outcome) -> String {
         DecidedBy::GlassesNotWorn
         | DecidedBy::GlassesNeverAvailable
         | DecidedBy::Exempt
+        | DecidedBy::Conflict
         | DecidedBy::NotTestable => {
             let _ = write!(out, "{}.", capital(&outcome.qualifiers.join("; ")));
         }

@@ -1,5 +1,6 @@
 //! Protocol, case → outcome: the first line that applies.
 
+mod alternatives;
 mod gather;
 mod lines;
 
@@ -11,6 +12,7 @@ use crate::domain::outcome::{Answer, DecidedBy, Margin, Outcome, OutcomeKind};
 use crate::rules::evaluate::{self, settle};
 use crate::rules::{Case, Library, Measure, Protocol, RuleSet};
 
+pub use alternatives::{CONFLICT, judge_protocol_alternatives};
 use gather::Gathered;
 use lines::Decision;
 

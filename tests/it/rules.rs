@@ -9,6 +9,7 @@
 
 mod again;
 mod alike;
+mod alternatives;
 mod broken;
 mod children;
 mod grading;

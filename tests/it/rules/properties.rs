@@ -27,7 +27,7 @@ fn one_of(words: Vec<&'static str>) -> impl Strategy<Value = String> {
     prop::sample::select(words).prop_map(str::to_owned)
 }
 
-fn fields() -> impl Strategy<Value = Vec<(Field, String)>> {
+pub fn fields() -> impl Strategy<Value = Vec<(Field, String)>> {
     let signs: Vec<&'static str> = SignKind::ALL
         .iter()
         .map(|s| s.word())
@@ -98,7 +98,7 @@ fn fields() -> impl Strategy<Value = Vec<(Field, String)>> {
     })
 }
 
-fn set_all(fields: &[(Field, String)]) -> Readings {
+pub fn set_all(fields: &[(Field, String)]) -> Readings {
     let mut out = Readings::default();
     for (field, text) in fields {
         out.set(*field, text, ReadingContext::default()).unwrap();
@@ -115,7 +115,7 @@ fn swapped(readings: &Readings) -> Readings {
     out
 }
 
-fn case(readings: &Readings, age: u32, rescreen: bool) -> Case<'_> {
+pub fn case(readings: &Readings, age: u32, rescreen: bool) -> Case<'_> {
     let mut case = Case::new(readings);
     case.age = Some(AgeMonths(age));
     case.grade = twoline::domain::age::Grade::parse("01");
