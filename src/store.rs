@@ -21,6 +21,7 @@ mod project;
 pub mod read;
 pub mod row;
 mod schema;
+mod upgrade;
 mod verify;
 mod write;
 

@@ -2,6 +2,9 @@
 
 use chrono::{Datelike, Days, NaiveDate, Weekday};
 
+/// The days of the week as they are written, Monday first.
+const WORDS: [&str; 7] = ["mon", "tue", "wed", "thu", "fri", "sat", "sun"];
+
 /// Days of the week on which school is held, and the days on which it is not.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct SchoolCalendar {
@@ -37,6 +40,63 @@ impl SchoolCalendar {
     pub fn with_holiday(mut self, first: NaiveDate, last: NaiveDate) -> SchoolCalendar {
         self.holidays.push((first.min(last), first.max(last)));
         self
+    }
+
+    /// Reads the text forms `mon,tue,wed,thu,fri` and `2026-11-26..2026-11-27;2026-12-25`.
+    ///
+    /// # Errors
+    /// The part that is not a day of the week, a date or a range of dates, first to last.
+    pub fn parse(days_held: &str, holidays: &str) -> Result<SchoolCalendar, String> {
+        let parts = |text: &'static [char], all: &str| -> Vec<String> {
+            all.split(text)
+                .map(|part| part.trim().to_ascii_lowercase())
+                .filter(|part| !part.is_empty())
+                .collect()
+        };
+        let mut held = Vec::new();
+        for part in parts(&[','], days_held) {
+            let day = WORDS.iter().position(|word| *word == part);
+            held.push(day.ok_or(part)?);
+        }
+        let mut calendar = SchoolCalendar {
+            held: std::array::from_fn(|day| held.contains(&day)),
+            holidays: Vec::new(),
+        };
+        for part in parts(&[';'], holidays) {
+            let (first, last) = part.split_once("..").unwrap_or((&part, &part));
+            let dates = (first.trim().parse(), last.trim().parse());
+            match dates {
+                (Ok(first), Ok(last)) if first <= last => {
+                    calendar = calendar.with_holiday(first, last);
+                }
+                _ => return Err(part),
+            }
+        }
+        Ok(calendar)
+    }
+
+    /// Returns the days of the week on which school is held, as [`SchoolCalendar::parse`] reads them.
+    pub fn days_held_text(&self) -> String {
+        let words = WORDS.iter().zip(self.held).filter(|(_, held)| *held);
+        words.map(|(word, _)| *word).collect::<Vec<_>>().join(",")
+    }
+
+    /// Returns the holidays as [`SchoolCalendar::parse`] reads them, earliest first.
+    pub fn holidays_text(&self) -> String {
+        let mut holidays = self.holidays.clone();
+        holidays.sort_unstable();
+        holidays.dedup();
+        let texts: Vec<String> = holidays
+            .iter()
+            .map(|(first, last)| {
+                if first == last {
+                    first.to_string()
+                } else {
+                    format!("{first}..{last}")
+                }
+            })
+            .collect();
+        texts.join(";")
     }
 
     /// Says whether school is held on a day.
@@ -113,5 +173,34 @@ mod tests {
             SchoolCalendar::on(&[]).days_after(date("2026-10-14"), 1),
             None
         );
+    }
+
+    #[test]
+    fn text_forms_are_read_and_written_alike() {
+        let read = |days: &str, holidays: &str| SchoolCalendar::parse(days, holidays).unwrap();
+        let calendar = read("mon,tue,wed,thu,fri", "2026-11-26..2026-11-27;2026-12-25");
+        assert_eq!(
+            calendar,
+            SchoolCalendar::default()
+                .with_holiday(date("2026-11-26"), date("2026-11-27"))
+                .with_holiday(date("2026-12-25"), date("2026-12-25"))
+        );
+        assert_eq!(calendar.days_held_text(), "mon,tue,wed,thu,fri");
+        assert_eq!(
+            calendar.holidays_text(),
+            "2026-11-26..2026-11-27;2026-12-25"
+        );
+        let loose = read(" Sun, MON ,", "; 2026-12-25 ;2026-11-26 .. 2026-11-27;");
+        assert_eq!(loose.days_held_text(), "mon,sun");
+        assert_eq!(loose.holidays_text(), calendar.holidays_text());
+        assert_eq!(read("", "").days_held_text(), "");
+        for (days, holidays, wrong) in [
+            ("mon,day", "", "day"),
+            ("mon", "2026-13-01", "2026-13-01"),
+            ("mon", "2026-12-25..2026-12-24", "2026-12-25..2026-12-24"),
+            ("mon", "2026-12-24..", "2026-12-24.."),
+        ] {
+            assert_eq!(SchoolCalendar::parse(days, holidays), Err(wrong.to_owned()));
+        }
     }
 }

@@ -3,7 +3,10 @@
 use std::fs;
 use std::path::Path;
 
+use rusqlite::Connection;
+
 use super::error::{Error, ErrorKind, Result};
+use super::key::RawKey;
 use super::open::{FILE, For, connect};
 use super::{Access, Head, Store, files, key};
 
@@ -39,25 +42,15 @@ impl Store {
     fn copy_to(&self, aside: &Path) -> Result<Head> {
         files::private_dir(aside)?;
         let path = aside.join(FILE);
-        {
-            let mut target = connect(&path, &self.raw_key, For::Entries)?;
-            let backup = rusqlite::backup::Backup::new(&self.conn, &mut target)?;
-            let copied = backup.run_to_completion(1024, std::time::Duration::ZERO, None);
-            drop(backup);
-            if let Err(error) = copied {
-                let error = Error::from(error);
-                if error.kind() == ErrorKind::Engine {
-                    // A page that cannot be read has no code of its own here: the check names it.
-                    self.verify(None, |_, _| {})?;
-                }
-                return Err(error);
+        let copied = copy_database(&self.conn, &path, &self.raw_key);
+        if let Err(error) = copied {
+            if error.kind() == ErrorKind::Engine {
+                // A page that cannot be read has no code of its own here: the check names it.
+                self.verify(None, |_, _| {})?;
             }
-            // One file is easier to carry than three.
-            target.query_row("PRAGMA wal_checkpoint(TRUNCATE)", [], |_| Ok(()))?;
+            return Err(error);
         }
-        let key_file = fs::read(self.dir.join(key::FILE))
-            .map_err(|e| Error::file(&self.dir.join(key::FILE), "read", e))?;
-        files::write_whole(&aside.join(key::FILE), &key_file)?;
+        copy_key_file(&self.dir, aside)?;
         files::sync(&path)?;
         let copy = Store::with_key(aside, self.raw_key.clone(), Access::ReadOnly)?;
         let head = copy.verify(None, |_, _| {})?.head;
@@ -68,4 +61,22 @@ impl Store {
         files::sync(aside)?;
         Ok(head)
     }
+}
+
+/// Copies a database into a new file under a key of its own.
+pub(super) fn copy_database(from: &Connection, path: &Path, key: &RawKey) -> Result<()> {
+    let mut target = connect(path, key, For::Entries)?;
+    let backup = rusqlite::backup::Backup::new(from, &mut target)?;
+    backup.run_to_completion(1024, std::time::Duration::ZERO, None)?;
+    drop(backup);
+    // One file is easier to carry than three.
+    target.query_row("PRAGMA wal_checkpoint(TRUNCATE)", [], |_| Ok(()))?;
+    Ok(())
+}
+
+/// Copies the key file of a store into the folder of its copy.
+pub(super) fn copy_key_file(from: &Path, to: &Path) -> Result<()> {
+    let file = from.join(key::FILE);
+    let bytes = fs::read(&file).map_err(|e| Error::file(&file, "read", e))?;
+    files::write_whole(&to.join(key::FILE), &bytes)
 }

@@ -10,6 +10,7 @@ use crate::domain::age::Grade;
 use crate::domain::codes::{AcuityMethod, Attempt, Consent, Status, YesNo};
 use crate::domain::field::Field;
 use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::domain::screening_test::ScreeningTest;
 
 /// A value as the engine keeps it; there are no reals.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -192,6 +193,7 @@ words!(
     Consent,
     Field,
     OutcomeKind,
+    ScreeningTest,
     Status,
     Urgency,
     YesNo

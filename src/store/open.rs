@@ -10,7 +10,7 @@ use super::error::{Error, ErrorKind, Result};
 use super::key::{KeyFile, RawKey, RecoveryKey, Secret};
 use super::ledger::hex;
 use super::row::{Chain, Programme, Setting, Station};
-use super::{Access, Author, New, Store, files, lock, new_id, project, schema, write};
+use super::{Access, Author, New, Store, files, lock, new_id, project, schema, upgrade, write};
 
 /// Name of the database.
 pub(super) const FILE: &str = "store.db";
@@ -148,7 +148,7 @@ impl First {
             &conn,
             &format!("application_id = {}", schema::APPLICATION_ID),
         )?;
-        schema::migrate(&mut conn)?;
+        schema::migrate(&mut conn, |_| Ok(()))?;
         let (programme, station, chain) = (
             self.programme.programme_id,
             self.station.station_id,
@@ -208,6 +208,8 @@ impl Store {
                 station_id: new_id(),
                 name: station,
                 chart_id: None,
+                task: None,
+                masked: None,
             },
             notation: Setting {
                 id: new_id(),
@@ -264,15 +266,12 @@ impl Store {
                 format!("{} was not made by twoline", path.display()),
             ));
         }
-        if schema::version(&conn)? < schema::NEWEST {
+        let version = schema::version(&conn)?;
+        if version < schema::NEWEST {
             if lock.is_none() {
-                return Err(Error::new(
-                    ErrorKind::Older,
-                    "this store was made by an older twoline and must be brought up to date first",
-                )
-                .with_hint("open it once for writing"));
+                return Err(upgrade::must_be_written(version));
             }
-            schema::migrate(&mut conn)?;
+            upgrade::run(dir, &mut conn, &raw_key, version)?;
         }
         let here = conn.query_row("SELECT programme, station, chain FROM here", [], |r| {
             let id = |at| r.get_ref(at).map(Uuid::from_stored);

@@ -121,6 +121,15 @@ pub(super) const VISITS: &str = concat!(
     "ORDER BY t.lamport DESC, t.chain DESC, t.seq DESC, t.tx_hash DESC, x.ord DESC LIMIT 1)",
 );
 
+/// Rebuilds every projection from the entries.
+pub(super) fn rebuild(conn: &Connection) -> Result<()> {
+    conn.execute_batch(&format!(
+        "DELETE FROM child_current; INSERT INTO child_current {CHILDREN}; \
+         DELETE FROM visit_current; INSERT INTO visit_current {VISITS};"
+    ))?;
+    Ok(())
+}
+
 /// Moves the projection of the children touched.
 pub(super) fn children(conn: &Connection, touched: &BTreeSet<String>) -> Result<()> {
     if touched.is_empty() {

@@ -10,6 +10,7 @@ use crate::domain::age::Grade;
 use crate::domain::codes::{AcuityMethod, Attempt, Consent, YesNo};
 use crate::domain::field::Field;
 use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::domain::screening_test::ScreeningTest;
 
 use super::cell::{Cell, Ids, Value};
 
@@ -92,11 +93,26 @@ macro_rules! touched {
     };
 }
 
+/// Returns how many fields each row version has, from how many it added.
+const fn in_all<const N: usize>(mut added: [usize; N]) -> [usize; N] {
+    let mut at = 1;
+    while at < N {
+        added[at] += added[at - 1];
+        at += 1;
+    }
+    added
+}
+
+// A `+` block after the fields holds those of the next row version; an older row has none of
+// them, and its bytes and hash stay as they were.
 macro_rules! tables {
     ($(
         $(#[$doc:meta])*
         $name:ident = $table:literal, key($($key:ident),+), touches $touch:ident {
             $($(#[$fdoc:meta])* $field:ident: $ty:ty,)+
+            $(+ {
+                $($(#[$xdoc:meta])* $xfield:ident: $xty:ty,)+
+            })*
         }
     )+) => {
         $(
@@ -107,14 +123,18 @@ macro_rules! tables {
                 /// Id of the entry, made before it is written.
                 pub id: Uuid,
                 $($(#[$fdoc])* pub $field: $ty,)+
+                $($($(#[$xdoc])* pub $xfield: $xty,)+)*
             }
 
             impl Row for $name {
                 const TABLE: &'static Table = &Table {
                     name: $table,
-                    columns: &[$(stringify!($field)),+],
+                    columns: &[$(stringify!($field),)+ $($(stringify!($xfield),)+)*],
                     key: &[$(stringify!($key)),+],
-                    versions: &[[$(stringify!($field)),+].len()],
+                    versions: &in_all([
+                        [$(stringify!($field)),+].len(),
+                        $([$(stringify!($xfield)),+].len(),)*
+                    ]),
                     touch: Touch::$touch,
                 };
 
@@ -128,6 +148,7 @@ macro_rules! tables {
 
                 fn each(&self, mut f: impl FnMut(Cell<'_>)) {
                     $(f(self.$field.cell());)+
+                    $($(f(self.$xfield.cell());)+)*
                 }
 
                 fn each_key(&self, mut f: impl FnMut(Cell<'_>)) {
@@ -142,6 +163,7 @@ macro_rules! tables {
                     Ok($name {
                         id: take(row, &mut next, "id")?,
                         $($field: take(row, &mut next, stringify!($field))?,)+
+                        $($($xfield: take(row, &mut next, stringify!($xfield))?,)+)*
                     })
                 }
 
@@ -189,6 +211,12 @@ tables! {
         name: String,
         /// The chart it uses.
         chart_id: Option<Uuid>,
+        + {
+            /// The one test that is done here; none for a whole screening.
+            task: Option<ScreeningTest>,
+            /// Whether outcome and pass line wait until both eyes are entered; not known is no.
+            masked: Option<bool>,
+        }
     }
 
     /// A person who records.
@@ -273,6 +301,24 @@ tables! {
         title: String,
         starts_on: NaiveDate,
         ends_on: NaiveDate,
+    }
+
+    /// Days on which school is held at a site.
+    Calendar = "school_calendar", key(site), touches None {
+        /// Site code; empty for every site without a row of its own.
+        site: String,
+        /// `mon,tue,wed,thu,fri`
+        days_held: String,
+        /// `2026-11-26..2026-11-27;2026-12-25`
+        holidays: String,
+    }
+
+    /// Two ids that a person found to be one child.
+    SameChild = "same_child", key(a, b), touches None {
+        /// The id that stays.
+        a: String,
+        /// The id that is the same child.
+        b: String,
     }
 
     /// A chart the programme owns.

@@ -1,13 +1,17 @@
 //! The schema and its versions.
+//!
+//! A migration only adds. It runs in one transaction that is kept only when the whole store verifies
+//! after it; that is why it is not left to a crate, which would commit first.
 
-use rusqlite::Connection;
-use rusqlite_migration::{M, Migrations};
+use rusqlite::{Connection, TransactionBehavior};
 
 use super::error::{Error, ErrorKind, Result};
+use super::project;
 
-const ALL: &[M<'static>] = &[M::up(include_str!("../../migrations/0001_entries.sql"))];
-
-const MIGRATIONS: Migrations<'static> = Migrations::from_slice(ALL);
+const ALL: &[&str] = &[
+    include_str!("../../migrations/0001_entries.sql"),
+    include_str!("../../migrations/0002_stations.sql"),
+];
 
 /// `TwoL` in ASCII: what `file` and other programs know a store by.
 pub(super) const APPLICATION_ID: i32 = 0x5477_6F4C;
@@ -24,14 +28,46 @@ pub(super) fn version(conn: &Connection) -> Result<usize> {
     }
 }
 
-/// Brings a store to a schema version.
-pub(super) fn migrate(conn: &mut Connection) -> Result<()> {
-    MIGRATIONS.to_latest(conn).map_err(|e| {
-        Error::new(
-            ErrorKind::Engine,
-            format!("the store could not be brought up to date: {e}"),
-        )
-    })
+/// Brings a store to the newest version, rebuilds its projections and keeps that only if `check`
+/// finds nothing wrong.
+pub(super) fn migrate(
+    conn: &mut Connection,
+    check: impl FnOnce(&Connection) -> Result<()>,
+) -> Result<()> {
+    to(conn, NEWEST, check)
+}
+
+fn to(
+    conn: &mut Connection,
+    newest: usize,
+    check: impl FnOnce(&Connection) -> Result<()>,
+) -> Result<()> {
+    let tx = conn.transaction_with_behavior(TransactionBehavior::Immediate)?;
+    let from = version(&tx)?;
+    for sql in ALL.iter().take(newest).skip(from) {
+        tx.execute_batch(sql).map_err(|e| not_migrated(&e))?;
+    }
+    if newest == NEWEST {
+        project::rebuild(&tx)?;
+    }
+    tx.execute_batch(&format!("PRAGMA user_version = {newest}"))
+        .map_err(|e| not_migrated(&e))?;
+    check(&tx)?;
+    tx.commit().map_err(|e| not_migrated(&e))
+}
+
+fn not_migrated(error: &rusqlite::Error) -> Error {
+    let full = error.sqlite_error_code() == Some(rusqlite::ErrorCode::DiskFull);
+    let kind = if full {
+        ErrorKind::DiskFull
+    } else {
+        ErrorKind::Engine
+    };
+    Error::new(
+        kind,
+        format!("the store could not be brought up to date: {error}"),
+    )
+    .with_hint("nothing was changed; make room on the disk and open it again")
 }
 
 #[cfg(test)]
@@ -39,11 +75,6 @@ pub(super) fn migrate(conn: &mut Connection) -> Result<()> {
 mod tests {
     use super::*;
     use crate::store::row::TABLES;
-
-    #[test]
-    fn migrations_are_sound() {
-        MIGRATIONS.validate().unwrap();
-    }
 
     /// From every earlier version the same tables come out.
     #[test]
@@ -57,13 +88,15 @@ mod tests {
                 .collect()
         };
         let mut newest = Connection::open_in_memory().unwrap();
-        migrate(&mut newest).unwrap();
+        project::functions(&newest).unwrap();
+        migrate(&mut newest, |_| Ok(())).unwrap();
         assert_eq!(version(&newest).unwrap(), NEWEST);
         for from in 0..=NEWEST {
             let mut conn = Connection::open_in_memory().unwrap();
-            MIGRATIONS.to_version(&mut conn, from).unwrap();
+            project::functions(&conn).unwrap();
+            to(&mut conn, from, |_| Ok(())).unwrap();
             assert_eq!(version(&conn).unwrap(), from);
-            migrate(&mut conn).unwrap();
+            migrate(&mut conn, |_| Ok(())).unwrap();
             assert_eq!(schema(&conn), schema(&newest), "from version {from}");
         }
     }
@@ -72,7 +105,8 @@ mod tests {
     #[test]
     fn tables_match_their_declaration() {
         let mut conn = Connection::open_in_memory().unwrap();
-        MIGRATIONS.to_latest(&mut conn).unwrap();
+        project::functions(&conn).unwrap();
+        migrate(&mut conn, |_| Ok(())).unwrap();
         for table in TABLES {
             let columns: Vec<String> = conn
                 .prepare(&format!(
@@ -104,5 +138,16 @@ mod tests {
                 .unwrap();
             assert_eq!(triggers, 2, "{}", table.name);
         }
+    }
+
+    #[test]
+    fn what_does_not_verify_is_not_kept() {
+        let mut conn = Connection::open_in_memory().unwrap();
+        project::functions(&conn).unwrap();
+        to(&mut conn, 1, |_| Ok(())).unwrap();
+        let error = migrate(&mut conn, |_| Err(Error::damaged("site", None, "odd"))).unwrap_err();
+        assert_eq!(error.kind(), ErrorKind::Damaged);
+        assert_eq!(version(&conn).unwrap(), 1);
+        conn.prepare("SELECT * FROM same_child").unwrap_err();
     }
 }

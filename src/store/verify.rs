@@ -82,17 +82,31 @@ impl Store {
         progress: impl FnMut(u64, u64),
     ) -> Result<Verified> {
         let snapshot = self.conn.unchecked_transaction()?;
-        file_is_sound(&snapshot)?;
-        let walk = Walk::new(&snapshot, expected, progress)?;
-        let verified = walk.run()?;
+        file_is_sound(&snapshot, &["cipher_integrity_check", "integrity_check"])?;
+        let verified = Walk::new(&snapshot, expected, progress)?.run()?;
         projections(&snapshot)?;
         here(&snapshot)?;
         Ok(verified)
     }
 }
 
-fn file_is_sound(conn: &Connection) -> Result<()> {
-    for check in ["cipher_integrity_check", "integrity_check"] {
+/// Recomputes the ledger of a database of any known version; its projections are not looked at.
+pub(super) fn ledger(conn: &Connection) -> Result<Verified> {
+    file_is_sound(conn, &["cipher_integrity_check", "integrity_check"])?;
+    Walk::new(conn, None, |_, _| {})?.run()
+}
+
+/// Checks everything while a transaction is open that may still be rolled back.
+pub(super) fn uncommitted(conn: &Connection) -> Result<Verified> {
+    file_is_sound(conn, &["integrity_check"])?;
+    let verified = Walk::new(conn, None, |_, _| {})?.run()?;
+    projections(conn)?;
+    here(conn)?;
+    Ok(verified)
+}
+
+fn file_is_sound(conn: &Connection, checks: &[&str]) -> Result<()> {
+    for check in checks {
         let mut statement = conn.prepare(&format!("PRAGMA {check}"))?;
         let mut rows = statement.query([])?;
         while let Some(row) = rows.next()? {
@@ -194,15 +208,16 @@ impl<'c, 'e, P: FnMut(u64, u64)> Walk<'c, 'e, P> {
         let conn = self.conn;
         let mut statements = Vec::new();
         for table in TABLES {
-            let sql = format!(
-                "SELECT tx, ord, id, v, salt, {} FROM {} ORDER BY tx, ord",
-                table.columns.join(", "),
-                table.name
-            );
-            statements.push(conn.prepare(&sql)?);
+            if let Some(columns) = columns_of(conn, table)? {
+                let sql = format!(
+                    "SELECT tx, ord, id, v, salt, {columns} FROM {} ORDER BY tx, ord",
+                    table.name
+                );
+                statements.push((table, conn.prepare(&sql)?));
+            }
         }
         let mut cursors = Vec::new();
-        for (table, statement) in TABLES.iter().zip(&mut statements) {
+        for (table, statement) in &mut statements {
             let mut cursor = Cursor {
                 table,
                 rows: statement.query([])?,
@@ -384,6 +399,30 @@ impl<'c, 'e, P: FnMut(u64, u64)> Walk<'c, 'e, P> {
             chains: self.chains.len() as u64,
         })
     }
+}
+
+/// Returns what to select for the fields of a table, `NULL` for those that an older schema does not
+/// have yet; nothing where it does not have the table.
+pub(super) fn columns_of(
+    conn: &Connection,
+    table: &Table,
+) -> std::result::Result<Option<String>, rusqlite::Error> {
+    let mut statement = conn.prepare_cached("SELECT name FROM pragma_table_info(?1)")?;
+    let there: Vec<String> = statement
+        .query_map([table.name], |r| r.get(0))?
+        .collect::<std::result::Result<_, _>>()?;
+    let columns: Vec<&str> = table
+        .columns
+        .iter()
+        .map(|column| {
+            if there.iter().any(|name| name == column) {
+                column
+            } else {
+                "NULL"
+            }
+        })
+        .collect();
+    Ok((!there.is_empty()).then(|| columns.join(", ")))
 }
 
 fn damaged_tx(tx: i64, what: &str) -> Damage {

@@ -5,6 +5,7 @@ mod append;
 mod drafts;
 mod key;
 mod ledger;
+mod older;
 mod open;
 mod random;
 mod reads;

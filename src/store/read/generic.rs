@@ -9,8 +9,8 @@ use crate::store::cell::{Cell, Value};
 use crate::store::error::{Error, Result};
 use crate::store::ledger::Head;
 use crate::store::row::{
-    Chart, Child, ColumnMapping, Correction, Import, Programme, Row, RuleSetUsed, Screener,
-    ScreeningDay, Setting, Site, Station, TABLES, Term,
+    Calendar, Chart, Child, ColumnMapping, Correction, Import, Programme, Row, RuleSetUsed,
+    SameChild, Screener, ScreeningDay, Setting, Site, Station, TABLES, Term,
 };
 
 /// An entry with who recorded it and when, and what superseded it.
@@ -224,6 +224,36 @@ impl Reads<'_> {
     /// Returns the screening days, latest first.
     pub fn days(&self) -> Result<Vec<ScreeningDay>> {
         self.rows(LIVE, "x.screened_on DESC, x.site, x.protocol", &[])
+    }
+
+    /// Returns a station as it is now.
+    pub fn station(&self, station_id: Uuid) -> Result<Option<Station>> {
+        Ok(self
+            .rows(
+                &format!("x.station_id = ?1 AND {LIVE}"),
+                LATEST_FIRST,
+                &[station_id.cell()],
+            )?
+            .into_iter()
+            .next())
+    }
+
+    /// Returns the school days of a site: its own row, else the row for every site.
+    pub fn school_calendar(&self, site: &str) -> Result<Option<Calendar>> {
+        let site = site.to_owned();
+        Ok(self
+            .rows(
+                &format!("x.site IN (?1, '') AND {LIVE}"),
+                &format!("x.site = '', {LATEST_FIRST}"),
+                &[site.cell()],
+            )?
+            .into_iter()
+            .next())
+    }
+
+    /// Returns the pairs of ids that a person found to be one child.
+    pub fn same_children(&self) -> Result<Vec<SameChild>> {
+        self.all()
     }
 
     /// Returns the settings.

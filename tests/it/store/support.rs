@@ -215,6 +215,12 @@ fn programme(store: &mut Store, screener: Uuid, chart: Uuid) {
                 letters_per_line: 5,
                 distance_mm: 3000,
                 lines: "20/40 20/32".to_owned(),
+            })?;
+            tx.add(&row::Calendar {
+                id: new_id(),
+                site: "QE".to_owned(),
+                days_held: "mon,tue,wed,thu,fri".to_owned(),
+                holidays: "2026-11-26..2026-11-27;2026-12-25".to_owned(),
             })
         })
         .unwrap();
@@ -280,6 +286,11 @@ fn roster(store: &mut Store, by: &Author, chart: Uuid) {
                 })?;
                 tx.add(&enrolment(id, "1B"))?;
             }
+            tx.add(&row::SameChild {
+                id: new_id(),
+                a: "Q-1".to_owned(),
+                b: "P-7".to_owned(),
+            })?;
             tx.add(&row::ScreeningDay {
                 id: new_id(),
                 site: "QE".to_owned(),
