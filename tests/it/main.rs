@@ -12,4 +12,5 @@ mod kill;
 mod rule_check;
 mod rules;
 mod screens;
+mod stats;
 mod store;

@@ -1,0 +1,4 @@
+//! Tests of the statistics that stand on a distribution library.
+
+mod funnel;
+mod pace;
