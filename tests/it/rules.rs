@@ -11,6 +11,7 @@ mod again;
 mod alike;
 mod alternatives;
 mod broken;
+mod check;
 mod children;
 mod grading;
 mod local;

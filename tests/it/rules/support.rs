@@ -81,3 +81,10 @@ impl Child {
 pub fn word(outcome: &Outcome) -> &'static str {
     outcome.kind.word()
 }
+
+/// Returns a shipped file's text as a programme would keep it: another id, and approved.
+pub fn local_form(text: &str) -> String {
+    let (first, rest) = text.split_once('\n').unwrap();
+    let id = first.strip_prefix("id = \"").unwrap().trim_end_matches('"');
+    format!("id = \"local-{id}\"\napproved_by = \"Dr. R. Quill\"\napproved_on = 2026-08-01\n{rest}")
+}
