@@ -9,9 +9,10 @@ use std::sync::Arc;
 
 use crate::domain::acuity::LineCredit;
 use crate::domain::outcome::Source;
+use crate::rules::explain::source_words;
 use crate::rules::{Applies, Approval};
 
-pub(super) use condition::{Condition, EXPECTED as CONDITION_EXPECTED};
+pub(super) use condition::{Condition, EXPECTED as CONDITION_EXPECTED, Terms};
 pub use facts::{Clinical, Correctedness};
 
 pub use order::{Place, Waiting, order};
@@ -108,6 +109,29 @@ pub struct Window {
     pub source: Arc<Source>,
 }
 
+/// A word that the source prints without a number, and what the file takes it as.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Taken {
+    /// The word: "unequal acuity", "new squint".
+    pub word: Arc<str>,
+    /// The condition it stands for.
+    pub stands_for: Arc<str>,
+    /// Where that comes from.
+    pub source: Arc<Source>,
+}
+
+impl Taken {
+    /// Returns it as one sentence.
+    pub fn in_words(&self) -> String {
+        format!(
+            "{} is taken as {} ({})",
+            self.word,
+            self.stands_for,
+            source_words(&self.source)
+        )
+    }
+}
+
 /// A published table of groups or bands.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Grading {
@@ -133,6 +157,8 @@ pub struct Grading {
     pub titles: Vec<(Level, Arc<str>)>,
     /// Its entries in the order of the file.
     pub entries: Vec<Entry>,
+    /// What words without a number are taken as.
+    pub taken: Vec<Taken>,
     /// Treatment window, for order inside a band.
     pub windows: Vec<Window>,
     /// Every source it names.
@@ -274,6 +300,7 @@ fn spoke(entry: &Entry, facts: &Clinical<'_>, onset_assumed: bool) -> Spoke {
     {
         remarks.push("on presenting acuity; the band means best-corrected".to_owned());
     }
+    remarks.extend(entry.all.iter().filter_map(|c| c.remark(facts)));
     let mut reading: Vec<String> = Vec::new();
     for words in entry.all.iter().map(|c| c.reading(facts)) {
         if !words.is_empty() && !reading.contains(&words) {

@@ -4,7 +4,7 @@ use std::fmt::Write;
 
 use crate::domain::outcome::{Basis, Source};
 use crate::rules::explain::{act_words, basis_words, criterion_words, source_words};
-use crate::rules::grading::{Grading, Level};
+use crate::rules::grading::{Grading, Level, Taken};
 use crate::rules::{Applies, FirstFail, Kind, Measure, Protocol, RuleSet, threshold};
 
 /// A rule set as a table: bands across, findings down.
@@ -218,6 +218,7 @@ pub fn grading_sheet(grading: &Grading) -> RuleSheet {
             notes.push(format!("{}: {}", entry.finding, entry.note));
         }
     }
+    notes.extend(grading.taken.iter().map(Taken::in_words));
     for window in &grading.windows {
         notes.push(format!(
             "order inside a band: {} ({})",

@@ -9,7 +9,7 @@ use crate::domain::readings::{AcuityResult, Eye};
 use crate::domain::refraction::{Diopters, Range};
 
 use super::facts::Powers;
-use super::{Clinical, Truth};
+use super::{Clinical, Taken, Truth};
 
 /// What is taken when a text is none of the conditions.
 pub(in crate::rules) const EXPECTED: &str = "a condition such as \"worse eye 6/36 or worse\", \"3 lines or more between the eyes\", \
@@ -23,6 +23,26 @@ pub(in crate::rules) struct Condition {
     /// As printed.
     pub text: Arc<str>,
     corrected: bool,
+    /// What a word of it is taken as.
+    taken: Option<Taken>,
+}
+
+/// What a file says once for all its entries.
+#[derive(Debug, Clone, Default)]
+pub(in crate::rules) struct Terms {
+    /// Its risk factors.
+    pub factors: Vec<Condition>,
+    /// Words that the source prints without a number.
+    pub taken: Vec<Taken>,
+}
+
+impl Terms {
+    /// Returns what a word is taken as, with its condition.
+    fn of(&self, word: &str) -> Option<(What, Taken)> {
+        let taken = self.taken.iter().find(|t| *t.word == *word)?;
+        // One word is not explained by another.
+        Some((what(&taken.stands_for, &Terms::default())?, taken.clone()))
+    }
 }
 
 /// A limit on a whole number.
@@ -61,25 +81,33 @@ enum What {
     OfPower(Power, Bound),
     DifferenceOf(Power, Bound),
     Equivalents(Bound),
-    Onset(u32),
+    /// So many months or less, and within how many a new squint was noticed, where that is said.
+    Onset(u32, Option<u32>),
     Seen(SignKind),
     NoFixation,
     SuspectedPoor,
-    UnequalOrLost,
+    UnequalOrLost(Bound),
     Pair(i32, i32),
 }
 
 impl Condition {
-    /// Reads a condition; `factors` are the risk factors that the file declares.
-    pub fn parse(text: &str, factors: &[Condition]) -> Option<Condition> {
+    /// Reads a condition in the terms of its file.
+    pub fn parse(text: &str, terms: &Terms) -> Option<Condition> {
         let (bare, corrected) = match text.strip_prefix("best-corrected, ") {
             Some(rest) => (rest, true),
             None => (text, false),
         };
+        let what = what(bare.trim(), terms)?;
+        let taken = match what {
+            What::UnequalOrLost(_) => terms.of(UNEQUAL),
+            What::Onset(..) => terms.of(NEW_SQUINT),
+            _ => None,
+        };
         Some(Condition {
-            what: what(bare.trim(), factors)?,
+            what,
             text: text.into(),
             corrected,
+            taken: taken.map(|(_, taken)| taken),
         })
     }
 
@@ -90,12 +118,24 @@ impl Condition {
 
     /// Says whether it asks since when.
     pub fn is_onset(&self) -> bool {
-        matches!(self.what, What::Onset(_))
+        matches!(self.what, What::Onset(..))
     }
 
     /// Asks it of a child.
     pub fn ask(&self, facts: &Clinical<'_>) -> Truth {
         self.what.ask(facts)
+    }
+
+    /// Says what a word was taken as, where the answer hangs on it.
+    pub fn remark(&self, facts: &Clinical<'_>) -> Option<String> {
+        let hangs = match self.what {
+            What::UnequalOrLost(_) => facts.binocularity_lost != Some(true),
+            What::Onset(..) => {
+                facts.onset_months.is_none() && facts.readings.has_sign(SignKind::NewSquint)
+            }
+            _ => false,
+        };
+        self.taken.as_ref().filter(|_| hangs).map(Taken::in_words)
     }
 
     /// Returns what was found, in words; empty where nothing was.
@@ -128,18 +168,18 @@ impl Condition {
                 };
                 format!("spherical equivalents differ by {}", in_words(half))
             }
-            What::Onset(_) => match facts.onset() {
-                Some((low, Some(high))) if low == high => format!("onset {low} months ago"),
-                Some((_, Some(high))) => format!("onset within {high} months"),
-                _ => "onset unknown".to_owned(),
+            What::Onset(_, new_squint) => match facts.onset(*new_squint) {
+                Some((low, high)) if low == high => format!("onset {low} months ago"),
+                Some((_, high)) => format!("onset within {high} months"),
+                None => "onset unknown".to_owned(),
             },
             What::Seen(kind) => kind.title().to_owned(),
             What::NoFixation => "does not fix and follow".to_owned(),
             What::SuspectedPoor => "suspected of poor vision".to_owned(),
-            What::UnequalOrLost if facts.binocularity_lost == Some(true) => {
+            What::UnequalOrLost(_) if facts.binocularity_lost == Some(true) => {
                 "binocularity lost".to_owned()
             }
-            What::UnequalOrLost => facts.acuity_words(),
+            What::UnequalOrLost(_) => facts.acuity_words(),
         }
     }
 }
@@ -160,9 +200,13 @@ fn in_words(range: Range) -> String {
     }
 }
 
-fn what(text: &str, factors: &[Condition]) -> Option<What> {
+/// Words that a file says what they are taken as.
+const UNEQUAL: &str = "unequal acuity";
+const NEW_SQUINT: &str = "new squint";
+
+fn what(text: &str, terms: &Terms) -> Option<What> {
     let factor = |whose| {
-        let list: Arc<[What]> = factors.iter().map(|f| f.what.clone()).collect();
+        let list: Arc<[What]> = terms.factors.iter().map(|f| f.what.clone()).collect();
         (!list.is_empty()).then_some(What::RiskFactor(whose, list))
     };
     match text {
@@ -174,7 +218,12 @@ fn what(text: &str, factors: &[Condition]) -> Option<What> {
         "intermittent strabismus" => return Some(What::Intermittent),
         "does not fix and follow" => return Some(What::NoFixation),
         "suspected of poor vision" => return Some(What::SuspectedPoor),
-        "unequal acuity or loss of binocularity" => return Some(What::UnequalOrLost),
+        "unequal acuity or loss of binocularity" => {
+            return match terms.of(UNEQUAL)?.0 {
+                What::Between(bound) => Some(What::UnequalOrLost(bound)),
+                _ => None,
+            };
+        }
         _ => {}
     }
     if let Some(rest) = text.strip_suffix(" between the eyes") {
@@ -201,7 +250,12 @@ fn what(text: &str, factors: &[Condition]) -> Option<What> {
     }
     if let Some(rest) = text.strip_prefix("onset ") {
         let months = number::fixed(rest.strip_suffix(" months or less")?, 0)?;
-        return u32::try_from(months).ok().map(What::Onset);
+        let new_squint = match terms.of(NEW_SQUINT) {
+            Some((What::Onset(months, _), _)) => Some(months),
+            _ => None,
+        };
+        let months = u32::try_from(months).ok()?;
+        return Some(What::Onset(months, new_squint));
     }
     if let Some(word) = text.strip_prefix("seen: ") {
         return SignKind::from_word(word).map(What::Seen);
@@ -415,8 +469,8 @@ impl What {
             }
             What::DifferenceOf(power, bound) => bound.ask(power.difference(facts)),
             What::Equivalents(bound) => bound.ask(equivalents(facts)),
-            What::Onset(limit) => match facts.onset() {
-                Some((_, Some(most))) if most <= *limit => Truth::Yes,
+            What::Onset(limit, new_squint) => match facts.onset(*new_squint) {
+                Some((_, most)) if most <= *limit => Truth::Yes,
                 Some((least, _)) if least > *limit => Truth::No,
                 _ => Truth::Unknown,
             },
@@ -430,8 +484,8 @@ impl What {
             What::SuspectedPoor => facts
                 .suspected_poor_vision
                 .map_or(Truth::Unknown, Truth::from),
-            What::UnequalOrLost => any([
-                Bound::AtLeast(2).ask(between(facts)),
+            What::UnequalOrLost(unequal) => any([
+                unequal.ask(between(facts)),
                 facts.binocularity_lost.map_or(Truth::Unknown, Truth::from),
             ]),
             What::Pair(a, b) => all([

@@ -127,12 +127,11 @@ impl<'a> Clinical<'a> {
         }
     }
 
-    /// Returns the months since the onset, least and most.
-    pub(super) fn onset(&self) -> Option<(u32, Option<u32>)> {
+    /// Returns the months since the onset, least and most; a new squint was noticed within so many.
+    pub(super) fn onset(&self, new_squint: Option<u32>) -> Option<(u32, u32)> {
         match self.onset_months {
-            Some(months) => Some((months, Some(months))),
-            // A new squint is one noticed within 3 months (the words of the signs list).
-            None if self.readings.has_sign(SignKind::NewSquint) => Some((0, Some(3))),
+            Some(months) => Some((months, months)),
+            None if self.readings.has_sign(SignKind::NewSquint) => Some((0, new_squint?)),
             None => None,
         }
     }

@@ -5,7 +5,7 @@ use std::sync::Arc;
 use crate::domain::outcome::Source;
 use crate::rules::Applies;
 use crate::rules::grading::{
-    CONDITION_EXPECTED, Condition, Entry, Grading, GradingKind, Level, Window,
+    CONDITION_EXPECTED, Condition, Entry, Grading, GradingKind, Level, Taken, Terms, Window,
 };
 
 use super::reader::{Reader, Section};
@@ -22,6 +22,7 @@ const KEYS: &[&str] = &[
     "note",
     "ages",
     "risk_factors",
+    "taken",
     "approved_by",
     "approved_on",
     "source",
@@ -54,7 +55,11 @@ pub(super) fn load(
     let head = head(reader, root, local);
     let sources = sources(reader, root);
     let (applies, _) = criterion::applies(reader, root);
-    let factors = conditions(reader, root, "risk_factors", &[]);
+    let mut terms = Terms {
+        taken: taken(reader, root, &sources),
+        ..Terms::default()
+    };
+    terms.factors = conditions(reader, root, "risk_factors", &terms);
     let mut titles = Vec::new();
     for section in reader.sections(root, "column") {
         reader.only(
@@ -68,7 +73,7 @@ pub(super) fn load(
     }
     let mut entries: Vec<Entry> = Vec::new();
     for section in reader.sections(root, "entry") {
-        let loaded = entry(reader, &section, kind, &sources, &factors);
+        let loaded = entry(reader, &section, kind, &sources, &terms);
         if let Some(twice) = loaded
             .as_ref()
             .filter(|e| entries.iter().any(|o| o.id == e.id))
@@ -102,6 +107,7 @@ pub(super) fn load(
         applies,
         titles,
         entries,
+        taken: terms.taken,
         windows,
         sources,
         local: head.approval,
@@ -114,11 +120,11 @@ fn conditions(
     reader: &mut Reader<'_>,
     section: &Section<'_, '_>,
     key: &str,
-    factors: &[Condition],
+    terms: &Terms,
 ) -> Vec<Condition> {
     let mut out = Vec::new();
     for (text, span) in reader.list(section, key) {
-        match Condition::parse(&text, factors) {
+        match Condition::parse(&text, terms) {
             Some(condition) => out.push(condition),
             None => reader.fault(
                 span,
@@ -126,6 +132,36 @@ fn conditions(
                 CONDITION_EXPECTED,
                 "",
             ),
+        }
+    }
+    out
+}
+
+/// Reads what words without a number are taken as.
+fn taken(reader: &mut Reader<'_>, root: &Section<'_, '_>, sources: &[Arc<Source>]) -> Vec<Taken> {
+    let mut out = Vec::new();
+    for section in reader.sections(root, "taken") {
+        reader.only(&section, &["word", "as", "source"]);
+        let word = reader.string(&section, "word");
+        let stands_for = reader.string(&section, "as");
+        let source = find_source(reader, &section, "source", sources);
+        let Some((stands_for, span)) = stands_for else {
+            continue;
+        };
+        if Condition::parse(&stands_for, &Terms::default()).is_none() {
+            reader.fault(
+                span,
+                format!("`{stands_for}` is not a condition"),
+                CONDITION_EXPECTED,
+                "",
+            );
+        }
+        if let (Some((word, _)), Some(source)) = (word, source) {
+            out.push(Taken {
+                word: word.into(),
+                stands_for: stands_for.into(),
+                source,
+            });
         }
     }
     out
@@ -174,15 +210,15 @@ fn entry(
     section: &Section<'_, '_>,
     kind: GradingKind,
     sources: &[Arc<Source>],
-    factors: &[Condition],
+    terms: &Terms,
 ) -> Option<Entry> {
     reader.only(section, ENTRY_KEYS);
     let id = reader.string(section, "id");
     let finding = reader.string(section, "finding");
     let level = level(reader, section, kind);
     let (applies, _) = criterion::applies(reader, section);
-    let all = conditions(reader, section, "all", factors);
-    let except = conditions(reader, section, "except", factors);
+    let all = conditions(reader, section, "all", terms);
+    let except = conditions(reader, section, "except", terms);
     if all.is_empty() && reader.errors.is_empty() {
         reader.fault(
             section.span.clone(),

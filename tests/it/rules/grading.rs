@@ -3,7 +3,7 @@
 //! Groups: VIP Study Group, Ophthalmology 2004;111:637–650, as printed in IOVS 2011;52:9658
 //! (primary). Bands: South Australia, New South Wales, Queensland (primary).
 
-use super::support::readings;
+use super::support::{local_form, readings};
 use twoline::domain::age::AgeMonths;
 use twoline::rules::Library;
 use twoline::rules::grading::{Clinical, Graded, Level, Waiting, order, severity, triage};
@@ -67,6 +67,105 @@ fn anisometropia_groups_at_each_bound() {
         let text =
             format!("sphere_right={right} cylinder_right=0 sphere_left={left} cylinder_left=0");
         assert_eq!(group(50, &text), expected, "{right} {left}");
+    }
+}
+
+/// The entries that speak, of the rows that start so.
+fn entries(age: u32, text: &str, row: &str) -> Vec<String> {
+    let readings = readings(text);
+    let grading = Library::shipped().grading("preschool-groups").unwrap();
+    let facts = Clinical::of_examination(Some(AgeMonths(age)), &readings);
+    severity(grading, &facts)
+        .spoke
+        .iter()
+        .filter(|s| s.entry.starts_with(row))
+        .map(|s| s.entry.to_string())
+        .collect()
+}
+
+/// Table in IOVS 2011;52:9658 (primary): more than 2 and 1 D hyperopic, 3 and 1.5 D astigmatic, 6
+/// and 3 D myopic. Group 1 lies within group 2, so that both rows speak.
+#[test]
+fn anisometropia_of_each_kind_at_each_bound() {
+    let cases: [(&str, fn(&str) -> String, [&str; 6]); 3] = [
+        (
+            "anisometropia.hyperopic",
+            |d| format!("sphere_right=+{d} cylinder_right=0 sphere_left=0 cylinder_left=0"),
+            ["0.99", "1.00", "1.01", "1.99", "2.00", "2.01"],
+        ),
+        (
+            "anisometropia.astigmatic",
+            |d| {
+                format!(
+                    "sphere_right=0 cylinder_right=-{d} axis_right=90 sphere_left=0 cylinder_left=0"
+                )
+            },
+            ["1.49", "1.50", "1.51", "2.99", "3.00", "3.01"],
+        ),
+        (
+            "anisometropia.myopic",
+            |d| format!("sphere_right=-{d} cylinder_right=0 sphere_left=0 cylinder_left=0"),
+            ["2.99", "3.00", "3.01", "5.99", "6.00", "6.01"],
+        ),
+    ];
+    for (row, text, bounds) in cases {
+        let (one, two) = (format!("{row}.1"), format!("{row}.2"));
+        let expected: [&[&String]; 6] = [&[], &[], &[&two], &[&two], &[&two], &[&one, &two]];
+        for (difference, expected) in bounds.into_iter().zip(expected) {
+            let text = text(difference);
+            let swapped = text
+                .replace("_right", "_x")
+                .replace("_left", "_right")
+                .replace("_x", "_left");
+            for text in [text, swapped] {
+                let found = entries(50, &text, row);
+                assert_eq!(found.iter().collect::<Vec<_>>(), expected, "{text}");
+            }
+        }
+    }
+}
+
+/// Same table: worse eye worse than 20/50 at 3 years (20/40 at 4 and 5) and the other worse than 20/40
+/// (20/30); with a risk factor in both eyes group 1, with none at all group 3.
+#[test]
+fn both_eyes_rows_at_each_bound() {
+    let hyperopia =
+        "cover=none sphere_right=+3.50 cylinder_right=0 sphere_left=+3.50 cylinder_left=0";
+    let one_eye =
+        "cover=none sphere_right=+3.50 cylinder_right=0 sphere_left=+3.00 cylinder_left=0";
+    let none = "cover=none sphere_right=0 cylinder_right=0 sphere_left=0 cylinder_left=0";
+    for (age, worse, better, speaks) in [
+        (36, "20/63", "20/50", true),
+        (47, "20/63", "20/50", true),
+        (47, "20/63", "20/63", true),
+        // At the limit of the worse eye, and of the better one.
+        (47, "20/50", "20/50", false),
+        (47, "20/63", "20/40", false),
+        (47, "20/40", "20/40", false),
+        // A month later the next band holds.
+        (48, "20/50", "20/40", true),
+        (71, "20/50", "20/40", true),
+        (71, "20/50", "20/50", true),
+        (71, "20/40", "20/40", false),
+        (71, "20/50", "20/30", false),
+        (71, "20/50", "20/32", false),
+    ] {
+        let band = if age < 48 { "36-47" } else { "48-71" };
+        for (right, left) in [(worse, better), (better, worse)] {
+            let acuity = format!("distance_right={right} distance_left={left}");
+            for (factors, row, holds) in [
+                (hyperopia, "amblyopia-both-eyes", speaks),
+                (one_eye, "amblyopia-both-eyes", false),
+                (none, "amblyopia-both-eyes", false),
+                (none, "reduced-both-eyes", speaks),
+                (hyperopia, "reduced-both-eyes", false),
+            ] {
+                let expected: Vec<String> =
+                    holds.then(|| format!("{row}.{band}")).into_iter().collect();
+                let found = entries(age, &format!("{factors} {acuity}"), row);
+                assert_eq!(found, expected, "{age}: {right} {left}, {factors}");
+            }
+        }
     }
 }
 
@@ -229,6 +328,77 @@ fn squints_by_their_onset() {
     }
     let none = band("queensland-strabismus", 60, "cover=none signs=none", None);
     assert_eq!(level(&none), None);
+}
+
+/// Words that a source prints without a number stand in the file with their own basis, and are said
+/// where an answer hangs on them: unequal acuity is two lines or more, a new squint one noticed within
+/// 3 months (both practice).
+#[test]
+fn what_a_word_is_taken_as_is_data() {
+    let unequal = "unequal acuity is taken as 2 lines or more between the eyes (common practice)";
+    let text = "cover=intermittent signs=none distance_right=6/6 distance_left=6/9.5";
+    let graded = band("nsw-strabismus", 60, text, Some(9));
+    assert_eq!(level(&graded), Some(Level::Within(90)));
+    assert_eq!(graded.first().unwrap().remarks, [unequal]);
+    let text = "cover=intermittent signs=none distance_right=6/6 distance_left=6/7.5";
+    assert_eq!(level(&band("nsw-strabismus", 60, text, Some(9))), None);
+
+    let new = "new squint is taken as onset 3 months or less (common practice)";
+    let text = "signs=new_squint distance_right=6/6 distance_left=6/6";
+    let graded = band("nsw-strabismus", 100, text, None);
+    assert_eq!(level(&graded), Some(Level::Within(30)));
+    assert_eq!(graded.first().unwrap().remarks, [new]);
+    // Within 3 months may still be more than Queensland's 2: taken as the soonest, said so.
+    let graded = band("queensland-strabismus", 100, text, None);
+    let first = graded.first().unwrap();
+    assert_eq!(first.level, Level::Within(30));
+    assert!(first.remarks[0].starts_with("onset unknown"));
+
+    // Another number in the file is another answer, and without one nothing is assumed.
+    let shipped = &Library::shipped().grading("nsw-strabismus").unwrap().text;
+    let other = local_form(shipped)
+        .replace(
+            "\"2 lines or more between the eyes\"",
+            "\"3 lines or more between the eyes\"",
+        )
+        .replace(
+            "word = \"new squint\"\nas = \"onset 3 months or less\"",
+            "word = \"new squint\"\nas = \"onset 4 months or less\"",
+        );
+    assert_ne!(other, local_form(shipped));
+    let library = Library::shipped()
+        .with_local([("local.toml".to_owned(), other)])
+        .unwrap();
+    let grading = library.grading("local-nsw-strabismus").unwrap();
+    let by = |text: &str, onset| {
+        let readings = readings(text);
+        let mut facts = Clinical::of_screening(Some(AgeMonths(60)), &readings);
+        facts.onset_months = onset;
+        let graded = triage(grading, &facts);
+        graded
+            .first()
+            .map(|s| (s.entry.to_string(), s.remarks.first().cloned()))
+    };
+    let two_lines = "cover=intermittent signs=none distance_right=6/6 distance_left=6/9.5";
+    assert_eq!(by(two_lines, Some(9)), None);
+    let said = by(
+        "signs=new_squint distance_right=6/6 distance_left=6/6",
+        None,
+    )
+    .unwrap();
+    assert_eq!(said.0, "onset.3-months");
+    assert!(said.1.unwrap().starts_with("onset unknown"));
+
+    let faulty = local_form(shipped).replace("as = \"2 lines", "as = \"two lines");
+    let faults = Library::shipped()
+        .with_local([("local.toml".to_owned(), faulty)])
+        .err()
+        .unwrap()
+        .to_string();
+    assert!(
+        faults.contains("`two lines or more between the eyes` is not a condition"),
+        "{faults}"
+    );
 }
 
 /// Inside a band: days waited, then the treatment window, then the group, each with its reason.

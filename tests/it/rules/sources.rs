@@ -52,6 +52,9 @@ fn files() -> Vec<(String, Vec<Arc<Source>>, Numbers)> {
             .iter()
             .map(|e| (e.id.to_string(), Arc::clone(&e.source)))
             .collect();
+        for taken in &grading.taken {
+            numbers.push((taken.word.replace(' ', "_"), Arc::clone(&taken.source)));
+        }
         for window in &grading.windows {
             let name = format!("window{}", ages(&window.applies));
             numbers.push((name, Arc::clone(&window.source)));
