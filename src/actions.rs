@@ -31,7 +31,7 @@ pub use crate::store::{
 };
 pub use desk::{Desk, DeskOptions};
 pub use error::{ActionError, Kind, Result};
-pub use judging::{bench_fields, correction_from_roster, pass_line_for, preview};
+pub use judging::{BenchTests, bench_tests, correction_from_roster, pass_line_for, preview};
 pub use report::Report;
 pub use results::{Different, PlannedVisit, ResultsPlan};
 pub use roster::RosterPlan;
@@ -42,3 +42,4 @@ pub use views::{
     Before, ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay,
     OpenUrgent, QueueState, SignRequest, Signed, StoredOutcome, UrgentAnswer, VisitView,
 };
+pub use visit_rows::judged;

@@ -210,7 +210,7 @@ commands! {
     SideLeft = "side-left"; SideBoth = "side-both"; NoneSeen = "none-seen"; Submit = "submit";
     FormNext = "form-next"; FormPrevious = "form-previous"; CompareSets = "compare";
     OneKind = "one-kind"; Stricter = "stricter"; Milder = "milder"; OtherSet = "other-set";
-    PutBack = "put-back";
+    PutBack = "put-back"; Tests = "other-tests"; SecondTry = "second-try";
 }
 
 /// One line of the table: what a command is called, where and by which keys.

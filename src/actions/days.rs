@@ -127,7 +127,13 @@ impl Desk {
 
     fn day_child_of(&self, stored: StoredChild, on: NaiveDate) -> Result<DayChild> {
         let asked_back = asked_back(&stored.earlier).cloned();
+        let visit = stored.visits.last().map(|v| v.visit_id);
         let mut child = day_child(stored, on);
+        if let Some(visit) = visit.filter(|_| child.state == QueueState::NotTestable) {
+            let tries = self.read().readings(visit)?;
+            let last = tries.iter().map(|r| r.try_no).max();
+            child.tries = last.and_then(|n| u32::try_from(n).ok()).unwrap_or(1);
+        }
         if let Some(visit) = asked_back.filter(|_| child.attempt == Attempt::Rescreen) {
             child.before = self.before(&visit)?;
         }
@@ -213,6 +219,7 @@ pub(super) fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
         not_testable_before: earlier.iter().any(|v| decided(v, DecidedBy::NotTestable)),
         due_on,
         before: None,
+        tries: 0,
         state: here.map_or(QueueState::ToCome, |visit| state_of(visit, child.consent)),
         wears_glasses: child.wears_glasses.map(|v| v == YesNo::Yes),
         consent: child.consent,

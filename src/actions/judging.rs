@@ -4,9 +4,9 @@ use crate::actions::rescreen::carried_over;
 use crate::actions::views::{DayChild, DayInfo};
 use crate::domain::age::AgeMonths;
 use crate::domain::codes::{Attempt, Correction, History, Status};
-use crate::domain::field::Field;
 use crate::domain::outcome::Outcome;
 use crate::domain::readings::Readings;
+use crate::domain::screening_test::ScreeningTest;
 use crate::rules::{
     Applies, Case, Criterion, Earlier, Library, Measure, PassLine, Protocol, judge_protocol,
     pass_line,
@@ -102,57 +102,75 @@ pub fn pass_line_for(library: &Library, day: &DayInfo, child: &DayChild) -> Opti
     )
 }
 
-/// Returns the fields that the protocol and this age ask for, in the order of the bench (common
-/// practice): history and signs are said on signing, stereo, cover, distance right, distance left,
-/// near, instrument, red reflex, color, the plus lens last.
-pub fn bench_fields(library: &Library, day: &DayInfo, child: &DayChild) -> Vec<Field> {
+/// The tests of a bench: those that the protocol and this age need, and those that are judged when
+/// done.
+#[derive(Debug, Clone, PartialEq, Eq, Default)]
+pub struct BenchTests {
+    /// Needed for an outcome.
+    pub needed: Vec<ScreeningTest>,
+    /// Offered.
+    pub offered: Vec<ScreeningTest>,
+}
+
+/// Returns the tests that the protocol asks for and offers at this age.
+pub fn bench_tests(library: &Library, day: &DayInfo, child: &DayChild) -> BenchTests {
     let Some(protocol) = library.protocol(&day.protocol) else {
-        return Vec::new();
+        return BenchTests::default();
     };
-    let asked = |measure: Measure| {
-        protocol.requires(measure, child.age)
-            || always(library, protocol).any(|c| {
-                c.measure == measure && holds(&c.applies, child) && (c.required || c.informs)
-            })
-    };
-    let instrument = protocol
+    let by_instrument = protocol
         .instrument_below_months
         .zip(child.age)
         .is_some_and(|(below, AgeMonths(age))| age < below);
-    let mut fields = Vec::new();
-    if child.wears_glasses != Some(false) {
-        fields.push(Field::CorrectionWorn);
-    }
-    if instrument {
-        fields.extend([
-            Field::SphereRight,
-            Field::CylinderRight,
-            Field::AxisRight,
-            Field::SphereLeft,
-            Field::CylinderLeft,
-            Field::AxisLeft,
-        ]);
-    } else {
-        if asked(Measure::Stereo) {
-            fields.extend([Field::StereoCorrect, Field::StereoShown]);
-        }
-        if asked(Measure::DistanceEachEye) {
-            fields.extend([Field::DistanceRight, Field::DistanceLeft]);
-        }
-        if asked(Measure::NearEachEye) {
-            fields.extend([Field::NearRight, Field::NearLeft]);
-        }
-        if asked(Measure::ColorPlates) {
-            fields.extend([Field::PlatesMissed, Field::PlatesShown]);
-        }
-        let plus_lens = always(library, protocol)
-            .any(|c| c.measure == Measure::PlusLens && holds(&c.applies, child));
-        if plus_lens && child.wears_glasses != Some(true) {
-            fields.push(Field::PlusLens);
+    let mut tests = BenchTests::default();
+    for test in ScreeningTest::ALL {
+        let needed = match test {
+            // Below this age the instrument stands in the chart's place.
+            ScreeningTest::Instrument if by_instrument => true,
+            ScreeningTest::Distance | ScreeningTest::Near if by_instrument => false,
+            _ => measures().any(|m| m.test() == Some(*test) && asked(library, protocol, child, m)),
+        };
+        let offered = || {
+            always(library, protocol)
+                .chain(when_done(library, protocol))
+                .any(|c| c.measure.test() == Some(*test) && holds(&c.applies, child))
+        };
+        let fits = match test {
+            ScreeningTest::PlusLens => child.wears_glasses != Some(true) && !by_instrument,
+            // Offered where the chart is not testable; else one key away.
+            ScreeningTest::Instrument | ScreeningTest::Distance => false,
+            _ => true,
+        };
+        if needed {
+            tests.needed.push(*test);
+        } else if fits && offered() {
+            tests.offered.push(*test);
         }
     }
-    fields.push(Field::Signs);
-    fields
+    tests
+}
+
+fn measures() -> impl Iterator<Item = Measure> {
+    Measure::ALL.iter().copied()
+}
+
+/// Says whether an outcome of this age needs a measure.
+fn asked(library: &Library, protocol: &Protocol, child: &DayChild, measure: Measure) -> bool {
+    protocol.requires(measure, child.age)
+        || always(library, protocol)
+            .filter(|c| c.measure == measure && c.required && holds(&c.applies, child))
+            // The plus lens is offered; color plates inform and refer nobody.
+            .any(|c| !c.informs && measure != Measure::PlusLens)
+}
+
+fn when_done<'a>(
+    library: &'a Library,
+    protocol: &'a Protocol,
+) -> impl Iterator<Item = &'a Criterion> {
+    protocol
+        .when_done
+        .iter()
+        .filter_map(|id| library.rule_set(id))
+        .flat_map(|set| set.criteria.iter())
 }
 
 fn always<'a>(library: &'a Library, protocol: &'a Protocol) -> impl Iterator<Item = &'a Criterion> {

@@ -118,6 +118,15 @@ pub struct DayChild {
     pub before: Option<Before>,
     /// How the child stands on this day.
     pub state: QueueState,
+    /// Tries of this day of a chart that was not testable.
+    pub tries: u32,
+}
+
+impl DayChild {
+    /// Says whether the one try of this day was not testable, so that a second one is still to come.
+    pub fn waits_for_second_try(&self) -> bool {
+        self.state == QueueState::NotTestable && self.tries == 1
+    }
 }
 
 /// What a visit that ended in a rescreen leaves to the next one.

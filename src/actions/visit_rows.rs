@@ -461,7 +461,7 @@ pub(super) fn tries_of(readings: &[ReadingNow]) -> Result<Vec<Readings>> {
 
 /// Returns what is judged of several tries: the distance acuity of the latest complete try, else the
 /// latest that each eye read, and the latest of everything else.
-pub(super) fn judged(tries: &[Readings]) -> Readings {
+pub fn judged(tries: &[Readings]) -> Readings {
     let Some(last) = tries.last() else {
         return Readings::default();
     };

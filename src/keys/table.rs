@@ -69,6 +69,8 @@ pub const TABLE: &[Binding] = &[
     on(C::Day, K::Swap, &[Key::f(6), Key::alt('x')], "swap eyes", "Swaps right and left acuity; after signing as a correction with a reason"),
     on(C::Day, K::Move, &[Key::f(7), Key::alt('m')], "move", "Moves what was entered to another child"),
     on(C::Day, K::Correct, &[Key::f(8), Key::alt('c')], "correct", "Corrects a signed value, with the reason"),
+    on(C::Day, K::Tests, &[Key::f(12), Key::alt('t')], "", "Brings another test to the bench, or goes to it"),
+    on(C::Day, K::SecondTry, &[Key::alt('r')], "", "Enters a second try of a child who was not testable; both tries stay"),
     on(C::Day, K::AddChild, &[Key::f(10), Key::alt('a')], "add", "Adds a child who is not on the roster"),
     on(C::Day, K::Undo, &[Key::ctrl('z')], "undo", "Undoes the last edit; with none, offers to take back the last signature"),
     on(C::Day, K::NextChild, &[Key::ctrl('n')], "", "Brings the next child to come"),

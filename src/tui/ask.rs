@@ -8,6 +8,7 @@ use crate::tui::app::{App, Tone};
 use crate::tui::day::bench::Bench;
 use crate::tui::day::bench_view::value_words;
 use crate::tui::day::kind;
+use crate::tui::day::path::Group;
 use crate::tui::judging::explain;
 use crate::tui::prompt::{Ask, Body, Form, Prompt, Scope, SignMarks, listed};
 use crate::tui::text::{name, safe};
@@ -27,7 +28,7 @@ impl App {
         if signed
             && matches!(
                 command,
-                Command::NotTestable | Command::NotPresent | Command::Signs
+                Command::NotTestable | Command::NotPresent | Command::Signs | Command::Tests
             )
         {
             self.say(
@@ -39,6 +40,7 @@ impl App {
         let prompt = match command {
             Command::NotTestable => ask_not_testable(&who, bench),
             Command::NotPresent => ask_not_present(&who),
+            Command::Tests => ask_tests(&who),
             Command::Signs => Prompt {
                 ask: Ask::Signs,
                 title: format!("{who}: signs seen"),
@@ -321,6 +323,16 @@ fn ask_not_testable(who: &str, bench: &Bench) -> Prompt {
         Ask::NotTestable,
         format!("{who}: distance not testable, why?"),
         choices,
+    )
+}
+
+fn ask_tests(who: &str) -> Prompt {
+    let keys = "123456789abcdefghijklmnopqrstuvwxyz".chars();
+    let groups = Group::ALL.iter().zip(keys);
+    Prompt::choices(
+        Ask::Tests,
+        format!("{who}: which test?"),
+        listed(groups.map(|(group, key)| (key, group.title(), key))),
     )
 }
 

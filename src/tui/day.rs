@@ -1,10 +1,13 @@
 //! The Day place: who is to come on the left, one child on the bench on the right, the outcome
 //! below.
 
+mod answers;
 pub mod bench;
 pub mod bench_view;
+pub mod echo;
 pub mod kind;
 pub mod ladder;
+pub mod path;
 pub mod queue;
 pub mod scan;
 pub mod verdict;
@@ -18,7 +21,7 @@ use ratatui::text::Line;
 use ratatui::widgets::Paragraph;
 use uuid::Uuid;
 
-use crate::actions::{DayChild, DayInfo, Signed};
+use crate::actions::{DayChild, DayInfo};
 use crate::domain::field::Field;
 use crate::keys::Command;
 use crate::tui::app::{Effect, Request, Session};
@@ -328,10 +331,7 @@ impl Day {
         let Some(bench) = &mut self.bench else {
             return Done::default();
         };
-        let edits = matches!(
-            command,
-            Command::Better | Command::Worse | Command::Erase | Command::ClearField
-        );
+        let edits = matches!(command, Command::Erase | Command::ClearField);
         if edits && bench.is_signed() {
             return Done::refused("this visit is signed: F8 corrects a value, with the reason");
         }
@@ -339,6 +339,9 @@ impl Day {
             Command::Accept => return self.accept(session),
             Command::NextField => bench.forward(),
             Command::PreviousField => bench.back(),
+            // Nothing of a signed visit is typed over: the arrows go through its rows.
+            Command::Better if bench.is_signed() => bench.back(),
+            Command::Worse if bench.is_signed() => bench.forward(),
             Command::Better => bench.step(true),
             Command::Worse => bench.step(false),
             Command::OtherEyeLeft => bench.across(false),
@@ -384,7 +387,11 @@ impl Day {
             .map(|c| c.child_id.clone())
         {
             Some(id) => self.bring(session, &id),
-            None => Done::said("nobody is left to come"),
+            None => Done::said(match self.queue.second_tries() {
+                0 => "nobody is left to come".to_owned(),
+                1 => "nobody is left to come; one child waits for a second try".to_owned(),
+                n => format!("nobody is left to come; {n} wait for a second try"),
+            }),
         }
     }
 
@@ -428,68 +435,6 @@ impl Day {
         }
     }
 
-    // --- answers -----------------------------------------------------------------------------
-
-    /// Takes the store's word that a visit is signed.
-    pub fn signed(&mut self, signed: Signed) -> Vec<Effect> {
-        let child = signed.child;
-        let id = child.child_id.clone();
-        self.saving.remove(&id);
-        self.last_signed = Some((
-            signed.visit,
-            id.clone(),
-            name(&child.family_name, &child.given_name),
-        ));
-        let mut effects = self.forget_draft(&id);
-        self.queue.update(child);
-        effects.extend(self.reload(&id));
-        effects
-    }
-
-    /// Takes the store's word that a visit was not signed: the draft stays.
-    pub fn not_signed(&mut self, id: &str) -> String {
-        self.saving.remove(id);
-        self.queue
-            .child(id)
-            .map_or_else(|| id.to_owned(), |c| name(&c.family_name, &c.given_name))
-    }
-
-    /// Puts a child's new standing into the list, and onto the bench if the child is there.
-    pub fn refresh(&mut self, session: &Session, child: DayChild) -> Vec<Effect> {
-        let id = child.child_id.clone();
-        self.queue.update(child.clone());
-        if self.bench.as_ref().is_some_and(|b| b.child.child_id == id) {
-            let draft = self.drafts.get(&id);
-            self.bench = Some(Bench::new(session, &self.info, child, draft));
-        }
-        self.reload(&id)
-    }
-
-    fn reload(&self, id: &str) -> Vec<Effect> {
-        let on_bench = self.bench.as_ref().is_some_and(|b| b.child.child_id == id);
-        let done = self
-            .queue
-            .child(id)
-            .is_some_and(|c| c.state != crate::actions::QueueState::ToCome);
-        if on_bench && done {
-            vec![Effect::ask(Request::Visit(
-                (*self.info).clone(),
-                id.to_owned(),
-            ))]
-        } else {
-            Vec::new()
-        }
-    }
-
-    /// Shows a signed visit if its child is on the bench.
-    pub fn show_visit(&mut self, id: &str, visit: Option<crate::actions::VisitView>) {
-        if let (Some(bench), Some(visit)) = (&mut self.bench, visit)
-            && bench.child.child_id == id
-        {
-            bench.show_signed(visit);
-        }
-    }
-
     /// Moves what was entered, but not signed, to another child.
     pub fn move_draft(&mut self, session: &Session, to: &str) -> Done {
         let Some(bench) = &mut self.bench else {
@@ -510,6 +455,26 @@ impl Day {
         Done {
             effects,
             said: Some((false, "moved; nothing is signed yet".into())),
+        }
+    }
+
+    /// Brings another test to the bench.
+    pub fn open_test(&mut self, group: path::Group) {
+        if let Some(bench) = &mut self.bench {
+            bench.open(group);
+            self.list_focus = false;
+        }
+    }
+
+    /// Begins another try of the child on the bench.
+    pub fn second_try(&mut self, session: &Session) -> Done {
+        match &mut self.bench {
+            Some(bench) if bench.may_try_again() => {
+                bench.try_again((session.new_id)(), None);
+                self.list_focus = false;
+                Done::said("another try of the same visit; the one before stays")
+            }
+            _ => Done::refused("another try is for a signed child who was not testable"),
         }
     }
 

@@ -6,7 +6,9 @@ use std::sync::Arc;
 use chrono::NaiveDate;
 use uuid::Uuid;
 
-pub use crate::actions::{CAUTIONS, Library, PassLine, bench_fields, explain, pass_line_for, show};
+pub use crate::actions::{
+    CAUTIONS, Library, PassLine, bench_tests, explain, judged, pass_line_for, show,
+};
 
 use crate::actions::{self, DayChild, DayInfo};
 use crate::domain::codes::Attempt;

@@ -233,6 +233,8 @@ pub enum Ask {
     Emergency,
     /// Which history entries (`none` or one).
     History,
+    /// Which test to bring to the bench.
+    Tests,
     /// Which value to correct.
     CorrectWhat,
     /// The new value and the reason.

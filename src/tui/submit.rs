@@ -9,6 +9,7 @@ use crate::domain::field::Field;
 use crate::domain::readings::{Eye, Readings, Sign};
 use crate::keys::Command;
 use crate::tui::app::{App, Effect, Request, Tone};
+use crate::tui::day::path::Group;
 use crate::tui::prompt::{Ask, Body, Form, Prompt};
 use crate::tui::text::safe;
 use crate::tui::view::wall_clock;
@@ -42,6 +43,7 @@ impl App {
                 effects
             }
             Ask::NotPresent => self.not_present(word),
+            Ask::Tests => self.open_test(&prompt.body, word),
             Ask::Emergency if word == "save" => self.run(Command::Sign),
             Ask::Emergency => {
                 self.say(
@@ -87,6 +89,19 @@ impl App {
             Ask::Screener => vec![Effect::ask(Request::Screener(word.to_owned()))],
             _ => Vec::new(),
         }
+    }
+
+    fn open_test(&mut self, body: &Body, word: &str) -> Vec<Effect> {
+        let place = match body {
+            Body::Choices(choices) => choices.items.iter().position(|c| c.word == word),
+            _ => None,
+        };
+        if let Ok(day) = &mut self.day
+            && let Some(group) = place.and_then(|i| Group::ALL.get(i))
+        {
+            day.open_test(*group);
+        }
+        Vec::new()
     }
 
     fn not_present(&mut self, word: &str) -> Vec<Effect> {

@@ -204,6 +204,7 @@ impl App {
             | Command::NotPresent
             | Command::Why
             | Command::Signs
+            | Command::Tests
             | Command::Move
             | Command::Correct => {
                 self.ask_about_child(command);
@@ -230,6 +231,7 @@ impl App {
                 day.sign(&self.session)
             }
             Command::NextChild => day.next_child(&self.session),
+            Command::SecondTry => day.second_try(&self.session),
             Command::ShowAll => Done::said(if day.queue.toggle_all() {
                 "all children of the day are listed"
             } else {

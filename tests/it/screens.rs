@@ -5,6 +5,7 @@
 mod bench;
 mod desk;
 mod drawn;
+mod every_test;
 mod keystrokes;
 mod people;
 mod rules_place;

@@ -13,7 +13,7 @@ use crate::domain::field::Field;
 use crate::domain::outcome::{Outcome, Urgency};
 use crate::domain::readings::{ReadingContext, Readings};
 use crate::tui::app::Session;
-use crate::tui::day::kind::{self, Kind};
+use crate::tui::day::path::{Group, Plan};
 use crate::tui::judging::{self, Draft, Library, PassLine};
 
 /// What a field holds.
@@ -37,31 +37,10 @@ pub enum State {
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Spot {
     /// In a field of the path.
-    Field(usize),
+    Field(Field),
     /// On the line that signs.
     Sign,
 }
-
-/// Offered for every child, after what the protocol asks for; judged when done.
-const OFFERED: [Field; 5] = [
-    Field::Signs,
-    Field::History,
-    Field::Cover,
-    Field::RedReflexRight,
-    Field::RedReflexLeft,
-];
-
-/// Offered where the chart could not be tested.
-const INSTRUMENT: [Field; 8] = [
-    Field::InstrumentRight,
-    Field::InstrumentLeft,
-    Field::SphereRight,
-    Field::CylinderRight,
-    Field::AxisRight,
-    Field::SphereLeft,
-    Field::CylinderLeft,
-    Field::AxisLeft,
-];
 
 /// Fields with what was typed into them.
 pub(super) type Raws = Vec<(Field, String)>;
@@ -75,6 +54,7 @@ pub struct Bench {
     pub visit: Uuid,
     /// The fields in their order.
     pub path: Vec<Field>,
+    plan: Plan,
     /// Where the focus is.
     pub at: Spot,
     /// What is understood of what was typed.
@@ -85,8 +65,10 @@ pub struct Bench {
     pub pass_line: Option<PassLine>,
     /// The visit as it was signed; then nothing is typed over it.
     pub signed: Option<VisitView>,
+    /// Tries of this visit before the one that is shown, oldest first.
+    pub earlier: Vec<Readings>,
     raws: Raws,
-    states: Vec<State>,
+    states: Vec<(Field, State)>,
     undo: Vec<(Raws, Spot)>,
     given: Given,
 }
@@ -121,16 +103,8 @@ impl Bench {
             library: Arc::clone(&session.library),
             bare: session.notation,
         };
-        let asked = judging::bench_fields(&given.library, day, &child);
-        let mut path = vec![Field::CorrectionWorn];
-        if asked.contains(&Field::SphereRight) {
-            path.extend([Field::InstrumentRight, Field::InstrumentLeft]);
-        }
-        for field in asked.into_iter().chain(OFFERED) {
-            if !path.contains(&field) {
-                path.push(field);
-            }
-        }
+        let tests = judging::bench_tests(&given.library, day, &child);
+        let plan = Plan::new(&tests, None, child.wears_glasses != Some(false));
         let pass_line = judging::pass_line_for(&given.library, day, &child);
         let readings = Readings::default();
         let outcome = judging::preview(&given.library, day, &child, &readings);
@@ -141,44 +115,44 @@ impl Bench {
             states: Vec::new(),
             undo: Vec::new(),
             signed: None,
+            earlier: Vec::new(),
             child,
-            path,
+            path: Vec::new(),
+            plan,
             readings,
             outcome,
             pass_line,
             given,
         };
         if let Some(draft) = draft {
-            bench.raws = draft
-                .fields
-                .iter()
-                .filter_map(|(word, raw)| Some((Field::from_word(word)?, raw.clone())))
-                .collect();
+            bench.raws = entered_before(draft);
         }
+        bench.judge();
         bench.at = draft
             .and_then(|d| bench.spot_of(&d.cursor))
             .unwrap_or_else(|| bench.first_spot());
-        bench.judge();
         bench
     }
 
+    /// Returns where the draft's cursor stood.
     fn spot_of(&self, cursor: &str) -> Option<Spot> {
         if cursor == "sign" {
             return Some(Spot::Sign);
         }
         let field = Field::from_word(cursor)?;
-        self.path.iter().position(|f| *f == field).map(Spot::Field)
+        self.path.contains(&field).then_some(Spot::Field(field))
     }
 
     /// Returns where a fresh child begins: at the glasses unless the roster says there are none,
-    /// else at the first acuity.
+    /// else at the first test that is needed.
     fn first_spot(&self) -> Spot {
-        if self.roster_correction().is_none() {
-            return Spot::Field(0);
+        if self.roster_correction().is_none() && self.path.contains(&Field::CorrectionWorn) {
+            return Spot::Field(Field::CorrectionWorn);
         }
-        (1..self.path.len())
-            .find(|i| self.is_main(*i))
-            .map_or(Spot::Sign, Spot::Field)
+        self.path
+            .iter()
+            .find(|f| self.plan.is_main(**f))
+            .map_or(Spot::Sign, |f| Spot::Field(*f))
     }
 
     /// Returns what the roster alone says of glasses, where it says that there are none.
@@ -186,20 +160,10 @@ impl Bench {
         (self.child.wears_glasses == Some(false)).then_some(Correction::None)
     }
 
-    /// Says whether Enter stops at a field. The chart, or the instrument where there is no chart or
-    /// it could not be tested, is the way through; Tab goes to every other test that is offered.
-    fn is_main(&self, index: usize) -> bool {
-        use Field as F;
-        matches!(
-            self.path[index],
-            F::DistanceRight | F::DistanceLeft | F::NearRight | F::NearLeft
-        ) || INSTRUMENT.contains(&self.path[index])
-    }
-
     /// Returns the field that has the focus.
     pub fn field(&self) -> Option<Field> {
         match self.at {
-            Spot::Field(index) => self.path.get(index).copied(),
+            Spot::Field(field) => Some(field),
             Spot::Sign => None,
         }
     }
@@ -214,11 +178,10 @@ impl Bench {
 
     /// Returns what a field of the path holds.
     pub fn state(&self, field: Field) -> &State {
-        self.path
+        self.states
             .iter()
-            .position(|f| *f == field)
-            .and_then(|i| self.states.get(i))
-            .unwrap_or(&State::Empty)
+            .find(|(f, _)| *f == field)
+            .map_or(&State::Empty, |(_, state)| state)
     }
 
     /// Says whether nothing was entered.
@@ -272,10 +235,9 @@ impl Bench {
             bare: Some(self.given.bare),
             critical_line: self.pass_line.as_ref().map(|p| p.line),
         };
-        if INSTRUMENT.iter().any(|f| !self.raw(*f).is_empty()) {
-            self.offer_instrument();
-        }
-        self.states = vec![State::Empty; self.path.len()];
+        // Letters and method decide what an acuity means: the field list has them first.
+        self.raws.sort_by_key(|(field, _)| *field);
+        self.states.clear();
         for (field, raw) in &self.raws {
             if raw.trim().is_empty() {
                 continue;
@@ -286,28 +248,50 @@ impl Bench {
                     expected: error.expected,
                 },
             };
-            if let Some(i) = self.path.iter().position(|f| f == field) {
-                self.states[i] = state;
-            }
+            self.states.push((*field, state));
         }
         self.readings = readings;
-        if self.readings.chart_not_testable() {
-            self.offer_instrument();
-        }
+        self.plan
+            .offer_instrument(self.readings.chart_not_testable());
+        self.arrange();
+        let together = (!self.is_signed() && !self.earlier.is_empty()).then(|| {
+            let mut tries = self.earlier.clone();
+            tries.push(self.readings.clone());
+            judging::judged(&tries)
+        });
         self.outcome = judging::preview(
             &self.given.library,
             &self.given.day,
             &self.child,
-            &self.readings,
+            together.as_ref().unwrap_or(&self.readings),
         );
     }
 
-    fn offer_instrument(&mut self) {
-        for field in INSTRUMENT {
-            if !self.path.contains(&field) {
-                self.path.push(field);
-                self.states.push(State::Empty);
-            }
+    /// Lists the fields of the path again; the focus stays where it is, or goes to the line that signs.
+    fn arrange(&mut self) {
+        self.path = self.plan.fields(
+            |field| !matches!(self.state(field), State::Empty) || self.at == Spot::Field(field),
+            &self.readings,
+            self.given.bare,
+        );
+    }
+
+    /// Brings a test to the bench, with the focus in its first empty field.
+    pub fn open(&mut self, group: Group) {
+        self.plan.open(group);
+        self.arrange();
+        let mut fields = self
+            .path
+            .iter()
+            .copied()
+            .filter(|f| group.fields().contains(f));
+        let first = fields.next();
+        let empty = first
+            .into_iter()
+            .chain(fields)
+            .find(|f| matches!(self.state(*f), State::Empty));
+        if let Some(field) = empty.or(first) {
+            self.at = Spot::Field(field);
         }
     }
 
@@ -315,10 +299,38 @@ impl Bench {
     pub fn show_signed(&mut self, visit: VisitView) {
         self.raws = visit.readings.recorded();
         self.visit = visit.id;
+        self.earlier.clone_from(&visit.earlier_tries);
         self.signed = Some(visit);
         self.undo.clear();
         self.at = Spot::Sign;
         self.judge();
+    }
+
+    /// Says whether the signed visit may be followed by another try on the same day.
+    pub fn may_try_again(&self) -> bool {
+        self.is_signed() && self.readings.any_eye_not_testable()
+    }
+
+    /// Says whether this is another try of a signed visit.
+    pub fn is_further_try(&self) -> bool {
+        !self.is_signed() && !self.earlier.is_empty()
+    }
+
+    /// Begins another try of the signed visit, with its draft if there is one. What was tested before
+    /// stays; nothing of it is filled in again.
+    pub fn try_again(&mut self, id: Uuid, draft: Option<&Draft>) {
+        let Some(visit) = self.signed.take() else {
+            return;
+        };
+        self.earlier.push(visit.readings);
+        self.visit = draft.map_or(id, |d| d.visit);
+        self.raws = draft.map_or_else(Vec::new, entered_before);
+        self.undo.clear();
+        self.at = Spot::Sign;
+        self.judge();
+        self.at = draft
+            .and_then(|d| self.spot_of(&d.cursor))
+            .unwrap_or_else(|| self.first_spot());
     }
 
     /// Says whether the child's visit of this day is signed.
@@ -345,12 +357,14 @@ impl Bench {
 
     /// Says whether signing will state "no signs seen".
     pub fn will_state_no_signs(&self) -> bool {
-        self.readings.signs.is_none() && self.status().is_none()
+        self.readings.signs.is_none()
+            && self.status().is_none()
+            && self.earlier.iter().all(|t| t.signs.is_none())
     }
 
     /// Returns what to sign, or the field that stands against it and why.
     pub fn to_sign(&self) -> Result<SignRequest, (Option<Field>, String)> {
-        for (field, state) in self.path.iter().zip(&self.states) {
+        for (field, state) in &self.states {
             if let State::Invalid { expected } = state {
                 return Err((
                     Some(*field),
@@ -367,11 +381,7 @@ impl Bench {
                 Some(Correction::LeftAtHome | Correction::BrokenOrLost | Correction::NotWorn)
             );
         if !speaks {
-            let spot = self
-                .path
-                .iter()
-                .copied()
-                .find(|f| kind::kind(*f) == Kind::Acuity);
+            let spot = self.path.iter().copied().find(|f| self.plan.is_main(*f));
             return Err((
                 spot,
                 "nothing was tested yet; F3 says why a child is not tested".into(),
@@ -397,4 +407,13 @@ impl Bench {
             readings,
         })
     }
+}
+
+/// Returns what was typed into a draft.
+fn entered_before(draft: &Draft) -> Raws {
+    draft
+        .fields
+        .iter()
+        .filter_map(|(word, raw)| Some((Field::from_word(word)?, raw.clone())))
+        .collect()
 }

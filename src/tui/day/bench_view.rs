@@ -1,20 +1,24 @@
 //! Draws the bench: who it is, the fields with right and left side by side, the ladder.
 
+mod cells;
+mod head;
+
 use ratatui::Frame;
 use ratatui::layout::{Position, Rect};
 use ratatui::text::{Line, Span};
 use ratatui::widgets::Paragraph;
 
-use crate::domain::age::spoken;
-use crate::domain::codes::{Attempt, Consent, Correction, History};
 use crate::domain::field::Field;
-use crate::domain::readings::Readings;
 use crate::tui::app::Session;
-use crate::tui::day::bench::{Bench, Spot, State};
-use crate::tui::day::kind::{self, AcuityOf, Kind};
-use crate::tui::day::{ladder, verdict};
-use crate::tui::text::{cut, ends, fit, safe, width};
+use crate::tui::day::bench::{Bench, Spot};
+use crate::tui::day::kind::{self, Kind};
+use crate::tui::day::path::Group;
+use crate::tui::day::{echo, ladder};
+use crate::tui::text::{cut, fit, width};
 use crate::tui::theme::Theme;
+
+use cells::cell;
+pub use cells::{sign_words, value_words};
 
 /// Columns of the labels.
 const LABEL: usize = 13;
@@ -24,6 +28,8 @@ const LABEL: usize = 13;
 enum Row {
     One(Field),
     Pair(Field, Field),
+    /// The distance acuity of a try before this one.
+    Earlier(usize),
     Sign,
 }
 
@@ -36,6 +42,9 @@ fn rows(bench: &Bench) -> Vec<Row> {
         };
         if !out.contains(&row) {
             out.push(row);
+            if *field == Field::DistanceRight {
+                out.extend((0..bench.earlier.len()).map(Row::Earlier));
+            }
         }
     }
     out.push(Row::Sign);
@@ -66,33 +75,23 @@ pub fn draw(
         ..area
     };
     let columns = usize::from(area.width);
-    let mut lines = head(bench, columns, theme);
+    let mut lines = head::lines(bench, columns, theme);
     let column = (columns.saturating_sub(LABEL) / 2).min(26);
-    lines.push(Line::from(vec![
-        Span::raw(fit("", LABEL)),
-        Span::styled(fit("RIGHT EYE", column), theme.muted()),
-        Span::styled("LEFT EYE", theme.muted()),
-    ]));
-    let fixed = lines.len();
+    let fixed = lines.len() + 1;
     let rows = rows(bench);
     let wide = columns >= 2 * 26 + LABEL + 40;
     let height = usize::from(area.height);
-    let below = if wide { 1 } else { 6 };
-    let room = height
-        .saturating_sub(fixed + below)
-        .max(3)
-        .min(height.saturating_sub(fixed));
-    let at = rows.iter().position(|r| has_focus(*r, bench)).unwrap_or(0);
-    let top = if rows.len() <= room {
-        0
-    } else {
-        at.saturating_sub(room / 2).min(rows.len() - room)
-    };
+    let view = Scrolled::new(&rows, bench, height.saturating_sub(fixed), wide, focused);
+    lines.push(Line::from(vec![
+        Span::styled(fit(&view.hidden(), LABEL), theme.muted()),
+        Span::styled(fit("RIGHT EYE", column), theme.muted()),
+        Span::styled("LEFT EYE", theme.muted()),
+    ]));
     let mut cursor = Position::new(area.x, area.y);
-    for (i, row) in rows.iter().enumerate().skip(top).take(room) {
-        let y = area.y + (fixed + i - top) as u16;
-        let (line, x) = row_line(*row, bench, column, columns, focused, theme);
-        if i == at {
+    for row in view.visible(&rows) {
+        let y = area.y + lines.len() as u16;
+        let (line, x) = row_line(row, bench, column, columns, focused, theme);
+        if has_focus(row, bench) {
             cursor = Position::new(area.x + x.min(columns.saturating_sub(1)) as u16, y);
         }
         lines.push(line);
@@ -106,7 +105,7 @@ pub fn draw(
     };
     if rest.height > 0 {
         let line = if focused {
-            verdict::echo(bench, theme)
+            echo::line(bench, theme)
         } else {
             Line::default()
         };
@@ -131,6 +130,68 @@ pub fn draw(
     cursor
 }
 
+/// Which rows are on the screen: the line that signs always is, the others move with the focus.
+struct Scrolled {
+    top: usize,
+    shown: usize,
+    fields: usize,
+}
+
+impl Scrolled {
+    /// Shares the height between the rows and what stands below them, which gives way first.
+    fn new(rows: &[Row], bench: &Bench, height: usize, wide: bool, focused: bool) -> Scrolled {
+        let group = bench.field().and_then(Group::of);
+        let choices = if focused { choice_count(bench) } else { 0 };
+        let least = match (wide, choices, group) {
+            (false, 0, None | Some(Group::Distance)) => 4,
+            (_, 0, _) => 1,
+            (_, n, _) => 1 + n.div_ceil(2),
+        };
+        let most = if wide { least } else { least.max(6) };
+        let room = rows
+            .len()
+            .min(height.saturating_sub(least))
+            .max(height.saturating_sub(most))
+            .max(2);
+        let fields = rows.len() - 1;
+        let shown = fields.min(room - 1);
+        let at = rows.iter().position(|r| has_focus(*r, bench)).unwrap_or(0);
+        let top = match bench.at {
+            // A signed visit is read from its top.
+            Spot::Sign if bench.is_signed() => 0,
+            _ => at.saturating_sub(shown / 2).min(fields - shown),
+        };
+        Scrolled { top, shown, fields }
+    }
+
+    fn visible<'a>(&self, rows: &'a [Row]) -> impl Iterator<Item = Row> + 'a {
+        rows.iter()
+            .skip(self.top)
+            .take(self.shown)
+            .chain(rows.last())
+            .copied()
+    }
+
+    /// Says how many rows are out of sight above and below.
+    fn hidden(&self) -> String {
+        let below = self.fields - self.top - self.shown;
+        match (self.top, below) {
+            (0, 0) => String::new(),
+            (above, 0) => format!("↑{above} more"),
+            (0, below) => format!("↓{below} more"),
+            (above, below) => format!("↑{above} ↓{below} more"),
+        }
+    }
+}
+
+fn choice_count(bench: &Bench) -> usize {
+    match bench.field().map(kind::kind) {
+        Some(Kind::Choice(choices)) => choices.len(),
+        Some(Kind::List) => 1,
+        _ => 0,
+    }
+}
+
 /// Draws the ladder, and the choices of a field that has some.
 fn lower(
     frame: &mut Frame<'_>,
@@ -143,7 +204,12 @@ fn lower(
 ) {
     let theme = session.theme;
     let choices = if focused {
-        choice_lines(bench, usize::from(rest.width), theme)
+        choice_lines(
+            bench,
+            usize::from(rest.width),
+            usize::from(rest.height),
+            theme,
+        )
     } else {
         Vec::new()
     };
@@ -152,7 +218,11 @@ fn lower(
         pass: bench.pass_line.as_ref(),
         notation: session.notation,
     };
-    let shows_ladder = bench.path.contains(&Field::DistanceRight);
+    let shows_ladder = bench.path.contains(&Field::DistanceRight)
+        && bench
+            .field()
+            .and_then(Group::of)
+            .is_none_or(|group| group != Group::Instrument);
     match beside {
         Some(x) => {
             frame.render_widget(Paragraph::new(choices), rest);
@@ -172,29 +242,34 @@ fn lower(
     }
 }
 
-fn choice_lines(bench: &Bench, columns: usize, theme: Theme) -> Vec<Line<'static>> {
+/// The choices with their keys, in two columns where they are more than the rows.
+fn choice_lines(bench: &Bench, columns: usize, rows: usize, theme: Theme) -> Vec<Line<'static>> {
     let Some(field) = bench.field() else {
         return Vec::new();
     };
     match kind::kind(field) {
-        Kind::Choice(choices) => choices
-            .into_iter()
-            .map(|(key, word, title)| {
-                let chosen = bench.raw(field) == word;
-                Line::from(vec![
-                    Span::raw(fit("", LABEL)),
-                    Span::styled(format!("{key} "), theme.focus()),
-                    Span::styled(
-                        cut(title, columns.saturating_sub(LABEL + 2)),
-                        if chosen {
+        Kind::Choice(choices) => {
+            let across = if choices.len() > rows { 2 } else { 1 };
+            let half = choices.len().div_ceil(across);
+            // Two columns need the width that the labels have above them.
+            let indent = if across == 1 { LABEL } else { 0 };
+            let room = (columns.saturating_sub(indent) / across).saturating_sub(2);
+            (0..half)
+                .map(|row| {
+                    let mut spans = vec![Span::raw(fit("", indent))];
+                    for (key, word, title) in choices.iter().skip(row).step_by(half) {
+                        let style = if bench.raw(field) == *word {
                             theme.strong()
                         } else {
                             ratatui::style::Style::new()
-                        },
-                    ),
-                ])
-            })
-            .collect(),
+                        };
+                        spans.push(Span::styled(format!("{key} "), theme.focus()));
+                        spans.push(Span::styled(fit(title, room), style));
+                    }
+                    Line::from(spans)
+                })
+                .collect()
+        }
         Kind::List => vec![Line::from(vec![
             Span::raw(fit("", LABEL)),
             Span::styled("n ", theme.focus()),
@@ -217,80 +292,6 @@ fn choice_lines(bench: &Bench, columns: usize, theme: Theme) -> Vec<Line<'static
     }
 }
 
-fn head(bench: &Bench, columns: usize, theme: Theme) -> Vec<Line<'static>> {
-    let child = &bench.child;
-    let age = child
-        .age
-        .map_or_else(|| "age unknown".to_owned(), |a| a.to_string());
-    let grade = match (child.grade, child.class.as_str()) {
-        (Some(grade), "") => format!(" · grade {grade}"),
-        (Some(grade), class) => format!(" · grade {grade}, {}", safe(class)),
-        (None, "") => String::new(),
-        (None, class) => format!(" · {}", safe(class)),
-    };
-    let born = child.dob.map_or_else(
-        || " · birth date unknown".to_owned(),
-        |d| format!(" · {}", spoken(d)),
-    );
-    let who = format!(
-        "{}, {}",
-        safe(&child.family_name).to_uppercase(),
-        safe(&child.given_name)
-    );
-    let facts = format!("{age}{grade}{born}");
-    let (left, right) = if width(&who) + width(&facts) + 2 <= columns {
-        ends(&who, &facts, columns.saturating_sub(1))
-    } else {
-        let short = format!(
-            "{age}{}",
-            if child.class.is_empty() {
-                String::new()
-            } else {
-                format!(" · {}", safe(&child.class))
-            }
-        );
-        let (left, right) = ends(&who, &format!("{short}{born}"), columns.saturating_sub(1));
-        (left, right)
-    };
-    vec![
-        Line::from(vec![Span::styled(left, theme.strong()), Span::raw(right)]),
-        Line::from(standing(bench, theme)),
-    ]
-}
-
-/// Returns what is to be known before testing: id, rescreen, consent, care, history.
-fn standing(bench: &Bench, theme: Theme) -> Vec<Span<'static>> {
-    let child = &bench.child;
-    let mut spans = vec![Span::styled(safe(&child.child_id), theme.muted())];
-    let mut add = |text: String, style| {
-        spans.push(Span::raw("  "));
-        spans.push(Span::styled(text, style));
-    };
-    if let Some(status) = bench.status() {
-        add(status.title().to_uppercase(), theme.attention());
-    }
-    if child.attempt == Attempt::Rescreen {
-        let due = child
-            .due_on
-            .map_or(String::new(), |d| format!(" due {}", spoken(d)));
-        add(format!("rescreen{due}"), theme.attention());
-    } else if let Some(due) = child.due_on {
-        add(format!("return due {}", spoken(due)), theme.attention());
-    }
-    if child.consent == Some(Consent::No) {
-        add("no consent".into(), theme.refer());
-    }
-    if child.under_care {
-        add("under care".into(), theme.attention());
-    } else if child.examined_recently {
-        add("examined in the last 12 months".into(), theme.attention());
-    }
-    if child.glasses_visits > 0 {
-        add("came without glasses before".into(), theme.attention());
-    }
-    spans
-}
-
 fn row_line(
     row: Row,
     bench: &Bench,
@@ -301,6 +302,7 @@ fn row_line(
 ) -> (Line<'static>, usize) {
     match row {
         Row::Sign => sign_line(bench, columns, focused, theme),
+        Row::Earlier(n) => (earlier_line(bench, n, column, theme), 0),
         Row::One(field) => {
             let here = focused && bench.field() == Some(field);
             let (text, style) = cell(field, bench, here, theme);
@@ -354,6 +356,22 @@ fn row_line(
     }
 }
 
+/// A try before this one, which stays as it was.
+fn earlier_line(bench: &Bench, n: usize, column: usize, theme: Theme) -> Line<'static> {
+    let label = format!("  try {}", n + 1);
+    let mut spans = vec![Span::styled(fit(&label, LABEL), theme.muted())];
+    if let Some(readings) = bench.earlier.get(n) {
+        for eye in readings.distance.both() {
+            let words = eye.map_or_else(
+                || "not done".to_owned(),
+                crate::domain::readings::AcuityResult::in_words,
+            );
+            spans.push(Span::styled(fit(&words, column), theme.muted()));
+        }
+    }
+    Line::from(spans)
+}
+
 fn label_span(field: Field, here: bool, theme: Theme) -> Span<'static> {
     Span::styled(
         fit(kind::label(field), LABEL),
@@ -363,82 +381,6 @@ fn label_span(field: Field, here: bool, theme: Theme) -> Span<'static> {
             ratatui::style::Style::new()
         },
     )
-}
-
-/// Returns what stands in a field.
-fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, ratatui::style::Style) {
-    let raw = bench.raw(field);
-    let plain = ratatui::style::Style::new();
-    if here && matches!(kind::kind(field), Kind::Acuity | Kind::Text) && !raw.starts_with("NT:") {
-        let rest = if raw.is_empty() { "____" } else { "" };
-        return (format!("{}{rest}", safe(raw)), theme.focus());
-    }
-    let focus = |style| if here { theme.focus() } else { style };
-    match bench.state(field) {
-        State::Invalid { .. } => (format!("{} ?", safe(raw)), theme.error()),
-        State::Empty => match field {
-            Field::CorrectionWorn => match (bench.roster_correction(), bench.child.wears_glasses) {
-                (Some(Correction::None), _) => ("owns no glasses (roster)".into(), focus(plain)),
-                (_, Some(true)) => (
-                    "owns glasses (roster): worn today?".into(),
-                    focus(theme.attention()),
-                ),
-                _ => ("not known: ask".into(), focus(theme.attention())),
-            },
-            Field::Signs if bench.will_state_no_signs() => {
-                ("none seen, said on signing".into(), focus(theme.muted()))
-            }
-            Field::Signs => ("not looked for".into(), focus(theme.muted())),
-            _ if here => ("____".into(), theme.focus()),
-            _ => ("·".into(), theme.muted()),
-        },
-        State::Valid { .. } => (
-            value_words(&bench.readings, field, raw),
-            focus(theme.strong()),
-        ),
-    }
-}
-
-/// Returns a recorded value in words.
-pub fn value_words(readings: &Readings, field: Field, raw: &str) -> String {
-    if let Some(result) = readings.acuity_of(field) {
-        return result.in_words();
-    }
-    match kind::kind(field) {
-        Kind::Choice(choices) => choices
-            .iter()
-            .find(|(_, word, _)| *word == raw)
-            .map_or_else(|| safe(raw), |(_, _, title)| (*title).to_owned()),
-        Kind::List if raw == "none" => if field == Field::Signs {
-            "none seen"
-        } else {
-            "none"
-        }
-        .into(),
-        Kind::List if field == Field::Signs => readings
-            .signs
-            .iter()
-            .flatten()
-            .map(|s| sign_words(*s))
-            .collect::<Vec<_>>()
-            .join("; "),
-        Kind::List => readings
-            .history
-            .iter()
-            .flatten()
-            .map(|h: &History| h.title())
-            .collect::<Vec<_>>()
-            .join("; "),
-        _ => safe(raw),
-    }
-}
-
-/// Returns a sign in words (`white pupil, left eye`).
-pub fn sign_words(sign: crate::domain::readings::Sign) -> String {
-    match sign.side {
-        Some(side) => format!("{}, {}", sign.kind.title(), side.title()),
-        None => sign.kind.title().to_owned(),
-    }
 }
 
 /// The line that signs says what will be stored.
@@ -453,7 +395,11 @@ fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Lin
         },
     );
     if bench.is_signed() {
-        let words = "signed · F8 corrects · F7 moves · Enter next child";
+        let words = if bench.may_try_again() {
+            "signed · Alt-r second try · Enter next"
+        } else {
+            "signed · F8 corrects · Enter next child"
+        };
         return (
             Line::from(vec![
                 label,
@@ -468,9 +414,14 @@ fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Lin
             LABEL,
         );
     }
+    let verb = if bench.is_further_try() {
+        "Enter signs this try"
+    } else {
+        "Enter signs"
+    };
     let mut words = match bench.status() {
-        Some(status) => format!("Enter signs: {}", status.title()),
-        None => format!("Enter signs: {}", bench.outcome.kind.title()),
+        Some(status) => format!("{verb}: {}", status.title()),
+        None => format!("{verb}: {}", bench.outcome.kind.title()),
     };
     if bench.will_state_no_signs() {
         words.push_str(", no signs seen");

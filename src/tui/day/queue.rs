@@ -253,6 +253,14 @@ impl Queue {
         })
     }
 
+    /// Returns how many were not testable and wait for a second try today.
+    pub fn second_tries(&self) -> usize {
+        self.children
+            .iter()
+            .filter(|c| c.waits_for_second_try())
+            .count()
+    }
+
     /// Moves the cursor by so many children; class headings are passed over.
     pub fn step(&mut self, by: isize) {
         if !self.find.is_empty() {
@@ -520,6 +528,14 @@ fn state_word(child: &DayChild, marks: QueueMarks<'_>, theme: Theme) -> (&'stati
     if marks.saving.contains(&child.child_id) {
         return ("saving…", theme.muted());
     }
+    if child.waits_for_second_try() {
+        let word = if marks.drafts.contains(&child.child_id) {
+            "draft, 2nd try"
+        } else {
+            "second try"
+        };
+        return (word, theme.attention());
+    }
     if child.state != QueueState::ToCome {
         return (short_state(child.state), theme.state(child.state));
     }
@@ -537,10 +553,8 @@ fn state_word(child: &DayChild, marks: QueueMarks<'_>, theme: Theme) -> (&'stati
 
 fn short_state(state: QueueState) -> &'static str {
     match state {
-        QueueState::GlassesAtHome => "glasses",
-        QueueState::NotTestable => "not test.",
+        QueueState::NotTestable => "not testable",
         QueueState::NotAttempted => "not att.",
-        QueueState::LeftEarly => "left",
         other => other.title(),
     }
 }

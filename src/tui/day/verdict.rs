@@ -6,8 +6,7 @@ use ratatui::text::{Line, Span};
 
 use crate::domain::age::spoken;
 use crate::domain::outcome::OutcomeKind;
-use crate::tui::day::bench::{Bench, Spot, State};
-use crate::tui::day::kind::{AcuityOf, eye};
+use crate::tui::day::bench::{Bench, State};
 use crate::tui::judging::explain;
 use crate::tui::text::{safe, wrap};
 use crate::tui::theme::Theme;
@@ -130,38 +129,4 @@ fn flow(
             Line::from(spans)
         })
         .collect()
-}
-
-/// Returns what the focused field understood or offers, in one line.
-pub fn echo(bench: &Bench, theme: Theme) -> Line<'static> {
-    let Spot::Field(_) = bench.at else {
-        return Line::default();
-    };
-    let Some(field) = bench.field() else {
-        return Line::default();
-    };
-    match bench.state(field) {
-        State::Empty => Line::default(),
-        State::Invalid { .. } => Line::styled("not understood", theme.error()),
-        State::Valid { echo } => {
-            let mut words = bench
-                .readings
-                .acuity_of(field)
-                .map(crate::domain::readings::AcuityResult::in_words)
-                .unwrap_or_default();
-            if let Some(echo) = echo {
-                words = if echo.contains(&words) {
-                    echo.clone()
-                } else {
-                    format!("{words}: {echo}")
-                };
-            }
-            let who = eye(field).map_or("", crate::domain::readings::Eye::title);
-            if words.is_empty() {
-                Line::default()
-            } else {
-                Line::styled(format!("{who} {}", safe(&words)), theme.focus())
-            }
-        }
-    }
 }

@@ -83,7 +83,9 @@ impl Bench {
             }
             Kind::List => false,
             Kind::Acuity | Kind::Text => {
-                if self.raw(field).is_empty() && self.critical_key(field, c) {
+                if self.raw(field).is_empty()
+                    && (self.critical_key(field, c) || self.no_reading_key(field, c))
+                {
                     return true;
                 }
                 self.insert(&c.to_string());
@@ -108,20 +110,45 @@ impl Bench {
         }
     }
 
-    /// On a critical-line day `+` and `-` in an empty field say passed and not passed.
+    /// `+` in an empty distance field says that the pass line was passed and nothing smaller was
+    /// shown; on a critical-line day `-` says that it was not passed (elsewhere a minus may begin a
+    /// logMAR value).
     fn critical_key(&mut self, field: Field, c: char) -> bool {
         let distance = matches!(field, Field::DistanceRight | Field::DistanceLeft);
-        let (true, AcuityMethod::CriticalLine, Some(pass)) =
-            (distance, self.given.day.method, &self.pass_line)
-        else {
+        let (true, Some(pass)) = (distance, &self.pass_line) else {
             return false;
         };
         let text = match c {
             '+' => format!(">={}", pass.line),
-            '-' => format!("<{}", pass.line),
+            '-' if self.given.day.method == AcuityMethod::CriticalLine => {
+                format!("<{}", pass.line)
+            }
             _ => return false,
         };
         self.put(field, &text);
+        true
+    }
+
+    /// `x` in an empty sphere says that the instrument gave no reading of this eye.
+    fn no_reading_key(&mut self, field: Field, c: char) -> bool {
+        let (result, next) = match field {
+            Field::SphereRight => (Field::InstrumentRight, Some(Field::SphereLeft)),
+            Field::SphereLeft => (Field::InstrumentLeft, None),
+            _ => return false,
+        };
+        if !c.eq_ignore_ascii_case(&'x') {
+            return false;
+        }
+        self.put(
+            result,
+            crate::domain::codes::InstrumentResult::NoReading.word(),
+        );
+        if let Some(next) = next {
+            self.go_to(next);
+        } else {
+            self.at = Spot::Field(Field::InstrumentLeft);
+            self.advance();
+        }
         true
     }
 
@@ -243,37 +270,48 @@ impl Bench {
         self.judge();
     }
 
-    /// Goes where Enter leads after the field that has the focus.
+    /// Goes where Enter leads after the field that has the focus: through the rest of its test, then
+    /// to the next test that is needed.
     pub fn advance(&mut self) {
         self.canonical();
-        self.at = match self.at {
-            Spot::Sign => Spot::Sign,
-            Spot::Field(i) if i == 0 || self.is_main(i) => (i + 1..self.path.len())
-                .find(|j| self.is_main(*j))
-                .map_or(Spot::Sign, Spot::Field),
-            Spot::Field(i) if i + 1 < self.path.len() => Spot::Field(i + 1),
-            Spot::Field(_) => Spot::Sign,
+        let Some(here) = self.field() else {
+            return;
         };
+        let rest = self.path.iter().skip_while(|f| **f != here).skip(1);
+        self.at = rest
+            .copied()
+            .find(|f| self.plan.leads_to(here, *f))
+            .map_or(Spot::Sign, Spot::Field);
     }
 
     /// Goes to the next field of the path.
     pub fn forward(&mut self) {
-        self.canonical();
-        self.at = match self.at {
-            Spot::Field(i) if i + 1 < self.path.len() => Spot::Field(i + 1),
-            Spot::Field(_) => Spot::Sign,
-            Spot::Sign => Spot::Field(0),
-        };
+        self.walk(1);
     }
 
     /// Goes to the field before.
     pub fn back(&mut self) {
+        self.walk(-1);
+    }
+
+    /// The line that signs stands behind the last field and before the first.
+    fn walk(&mut self, by: isize) {
         self.canonical();
-        self.at = match self.at {
-            Spot::Field(0) => Spot::Sign,
-            Spot::Field(i) => Spot::Field(i - 1),
-            Spot::Sign => Spot::Field(self.path.len().saturating_sub(1)),
+        let n = self.path.len() as isize;
+        let here = match self.at {
+            Spot::Sign => n,
+            Spot::Field(field) => self
+                .path
+                .iter()
+                .position(|f| *f == field)
+                .map_or(n, |i| i as isize),
         };
+        let to = (here + by).rem_euclid(n + 1);
+        self.at = self
+            .path
+            .get(to as usize)
+            .map_or(Spot::Sign, |f| Spot::Field(*f));
+        self.arrange();
     }
 
     /// Goes to the field of the other eye: the right eye is on the left-hand side.
@@ -287,8 +325,8 @@ impl Bench {
 
     /// Puts the focus into a field of the path.
     pub fn go_to(&mut self, field: Field) {
-        if let Some(i) = self.path.iter().position(|f| *f == field) {
-            self.at = Spot::Field(i);
+        if self.path.contains(&field) {
+            self.at = Spot::Field(field);
         }
     }
 
