@@ -16,12 +16,15 @@ mod results;
 mod roster;
 pub mod rulebook;
 mod search;
+mod settings;
 mod setup;
 mod sign;
+mod triage;
 mod upkeep;
 mod urgent;
 mod views;
 mod visit_rows;
+mod worklist;
 
 pub use crate::rules::{CAUTIONS, Library, PassLine, RuleSet, explain, pass_line_of_set, show};
 pub use crate::store::new_id as new_visit_id;
@@ -31,15 +34,18 @@ pub use crate::store::{
 };
 pub use desk::{Desk, DeskOptions};
 pub use error::{ActionError, Kind, Result};
-pub use judging::{BenchTests, bench_tests, correction_from_roster, pass_line_for, preview};
+pub use judging::{BenchTests, bench_tests, correction_from_roster, known, pass_line_for, preview};
 pub use report::Report;
 pub use results::{Different, PlannedVisit, ResultsPlan};
 pub use roster::RosterPlan;
 pub use search::SearchIndex;
+pub use settings::SettingView;
 pub use setup::{NewChart, NewStore, init};
+pub use triage::{NO_TRIAGE_SET, Said, Standing, whole_reason};
 pub use upkeep::{protected, remove_demo, store_info, writer};
 pub use views::{
     Before, ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay,
     OpenUrgent, QueueState, SignRequest, Signed, StoredOutcome, UrgentAnswer, VisitView,
 };
 pub use visit_rows::judged;
+pub use worklist::{DueBack, ORDER, Referred, Worklist, due_words};

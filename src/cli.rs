@@ -23,6 +23,7 @@ mod roster;
 mod rules;
 mod screener;
 mod screens;
+mod setting;
 mod site;
 mod term;
 mod verify;
@@ -94,6 +95,7 @@ enum Command {
     Site(site::Site),
     Term(term::Term),
     Screener(screener::Screener),
+    Setting(setting::Setting),
     Chart(chart::Chart),
     Roster(roster::Roster),
     Day(day::Day),
@@ -138,6 +140,7 @@ pub fn run(args: impl IntoIterator<Item = OsString>) -> Result<(), Failure> {
         Some(Command::Site(args)) => args.run(global),
         Some(Command::Term(args)) => args.run(global),
         Some(Command::Screener(args)) => args.run(global),
+        Some(Command::Setting(args)) => args.run(global),
         Some(Command::Chart(args)) => args.run(global),
         Some(Command::Roster(args)) => args.run(global),
         Some(Command::Day(args)) => args.run(global),

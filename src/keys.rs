@@ -154,8 +154,10 @@ contexts! {
     Days = "Day, list of days", [Places, Everywhere];
     /// In the Children place.
     Children = "Children", [Places, Everywhere];
-    /// In a table of the Referrals and Term places.
-    Tables = "Referrals and Term", [Places, Everywhere];
+    /// In the worklist of the Referrals place.
+    Referrals = "Referrals", [Places, Everywhere];
+    /// In the table of the Term place.
+    Tables = "Term", [Places, Everywhere];
     /// In the Rules place.
     Rules = "Rules", [Places, Everywhere];
     /// Where two rule sets are compared.

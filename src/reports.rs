@@ -2,3 +2,4 @@
 
 pub mod csv;
 pub mod day;
+pub mod referrals;

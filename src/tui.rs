@@ -14,6 +14,7 @@ mod desk;
 mod judging;
 mod prompt;
 mod prompt_view;
+mod referrals;
 mod rules;
 mod run;
 mod submit;

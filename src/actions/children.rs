@@ -7,8 +7,9 @@ use uuid::Uuid;
 use super::days::key_of;
 use super::desk::Desk;
 use super::error::{ActionError, Result};
-use super::judging::preview;
+use super::judging::{known, preview};
 use super::search::SearchIndex;
+use super::triage::Standing;
 use super::views::{
     ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, VisitView,
 };
@@ -187,20 +188,21 @@ impl Desk {
         let corrections = self.corrections(&record.readings, &screeners)?;
         let key = record.now.day();
         let day = self.days()?.into_iter().find(|d| key_of(d) == key);
-        let now = match (&day, outcome) {
-            (Some(day), Some(signed)) => {
-                let child = DayChild {
-                    attempt: record.now.attempt,
-                    ..self.day_child(day, &record.now.child_id)?
-                };
-                preview(&self.library, day, &child, &readings)
-                    .filter(|o| {
-                        o.kind != signed.row.kind || o.criteria.join(";") != signed.row.criteria
-                    })
-                    .map(|o| explain::headline(&o))
-            }
-            _ => None,
-        };
+        let mut standing = Standing::default();
+        let mut now = None;
+        if let (Some(day), Some(signed)) = (&day, outcome) {
+            let child = DayChild {
+                attempt: record.now.attempt,
+                ..self.day_child(day, &record.now.child_id)?
+            };
+            let (whole, _) = known(&child, &readings);
+            standing = Standing::of(&self.library, &self.triage_sets(), child.age, &whole);
+            now = preview(&self.library, day, &child, &readings)
+                .filter(|o| {
+                    o.kind != signed.row.kind || o.criteria.join(";") != signed.row.criteria
+                })
+                .map(|o| explain::headline(&o));
+        }
         let stations = self.stations()?;
         Ok(VisitView {
             id: record.now.visit_id,
@@ -220,6 +222,7 @@ impl Desk {
             entered,
             late: outcome.is_some_and(|o| o.row.late),
             corrections,
+            standing,
         })
     }
 

@@ -1,5 +1,7 @@
 //! From a child at the bench to an outcome: pure, called on every key.
 
+use std::borrow::Cow;
+
 use crate::actions::rescreen::carried_over;
 use crate::actions::views::{DayChild, DayInfo};
 use crate::domain::age::AgeMonths;
@@ -22,25 +24,27 @@ pub fn preview(
     readings: &Readings,
 ) -> Option<Outcome> {
     let protocol = library.protocol(&day.protocol)?;
-    let completed;
-    let readings = if lacks_what_the_roster_knows(child, readings) {
-        completed = with_roster(child, readings);
-        &completed
-    } else {
-        readings
-    };
-    let carried = if child.attempt == Attempt::Rescreen {
-        carried_over(child, readings)
-    } else {
-        None
-    };
-    let (readings, words) = match &carried {
-        Some((readings, words)) => (readings, Some(words)),
-        None => (readings, None),
-    };
-    let mut outcome = judge_protocol(library, protocol, &case(day, child, readings));
-    outcome.protocol_notes.extend(words.cloned());
+    let (readings, carried) = known(child, readings);
+    let mut outcome = judge_protocol(library, protocol, &case(day, child, &readings));
+    outcome.protocol_notes.extend(carried);
     Some(outcome)
+}
+
+/// Returns the readings that are judged: with what the roster knows, and on a rescreen with the
+/// tests that passed before, in words.
+pub fn known<'a>(child: &DayChild, readings: &'a Readings) -> (Cow<'a, Readings>, Option<String>) {
+    let readings = if lacks_what_the_roster_knows(child, readings) {
+        Cow::Owned(with_roster(child, readings))
+    } else {
+        Cow::Borrowed(readings)
+    };
+    if child.attempt != Attempt::Rescreen {
+        return (readings, None);
+    }
+    match carried_over(child, &readings) {
+        Some((carried, words)) => (Cow::Owned(carried), Some(words)),
+        None => (readings, None),
+    }
 }
 
 /// Returns the readings with what the roster knows, where the day says nothing of it.

@@ -11,7 +11,6 @@ use super::views::DayInfo;
 use super::visit_rows::{judged, stored_outcome, tries_of};
 use crate::clock::Moment;
 use crate::domain::age::{AgeMonths, spoken};
-use crate::domain::outcome::{OutcomeKind, Urgency};
 use crate::reports::csv::Form;
 use crate::reports::day::{self, About, DayReportRow, RuleSetUsed, StoreState};
 use crate::rules::CAUTIONS;
@@ -164,31 +163,6 @@ impl Desk {
             }
         }
         out
-    }
-
-    /// Returns who was referred or is due to come back, soonest first, as a table with its header.
-    pub fn referrals(&self) -> Result<Vec<Vec<String>>> {
-        let mut table = vec![row(["due", "child", "born", "class", "outcome"])];
-        let read = self.read();
-        for (child, visit) in read.referred()?.into_iter().chain(read.due()?) {
-            let due = visit.act_by.or(visit.due_on);
-            let words = [
-                visit.kind.map(OutcomeKind::title),
-                visit.urgency.map(Urgency::title),
-            ];
-            table.push(vec![
-                match due {
-                    Some(date) if date < self.today => format!("{date} late"),
-                    Some(date) => date.to_string(),
-                    None => "no date".to_owned(),
-                },
-                format!("{}, {}", child.family_name, child.given_name),
-                child.dob.map(|d| d.to_string()).unwrap_or_default(),
-                child.class.unwrap_or_default(),
-                words.into_iter().flatten().collect::<Vec<_>>().join(", "),
-            ]);
-        }
-        Ok(table)
     }
 
     /// Returns the counts of the present term by site as a table with its header. The latest signed

@@ -3,6 +3,7 @@
 use chrono::NaiveDate;
 use uuid::Uuid;
 
+use super::triage::Standing;
 use crate::clock::Moment;
 use crate::domain::age::{AgeMonths, Grade};
 use crate::domain::codes::{AcuityMethod, Attempt, Consent, History};
@@ -226,6 +227,8 @@ pub struct VisitView {
     pub late: bool,
     /// What was corrected, oldest first.
     pub corrections: Vec<CorrectionView>,
+    /// How serious and how soon it is, as judged now.
+    pub standing: Standing,
 }
 
 /// One correction, for people.

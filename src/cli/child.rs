@@ -141,6 +141,8 @@ fn visit_lines(visit: &VisitView) -> Vec<String> {
             None => lines.push(format!("  {}", signed.headline())),
         }
         lines.extend(outcome_lines(signed));
+        let standing = visit.standing.lines_for(signed.kind);
+        lines.extend(standing.iter().map(|line| format!("  {line}")));
     }
     let who = if visit.screener.is_empty() {
         "screener not named"

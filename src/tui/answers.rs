@@ -81,8 +81,8 @@ impl App {
             Answer::Compared(compared) => self.rules.compared(*compared),
             Answer::Found(text, found) => self.children.found(&text, found),
             Answer::History(history) => self.children.show(history.map(|h| *h)),
-            Answer::Referrals(rows) => self.tables[0].fill(rows),
-            Answer::Term(rows) => self.tables[1].fill(rows),
+            Answer::Referrals(list) => self.referrals.fill(*list),
+            Answer::Term(rows) => self.term.fill(rows),
             Answer::Screener(name) => {
                 self.say(
                     Tone::Quiet,

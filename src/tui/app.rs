@@ -10,7 +10,7 @@ use uuid::Uuid;
 
 use crate::actions::{
     ChildHistory, DayChild, DayInfo, FoundChild, NewChild, NewDay, OpenUrgent, SignRequest, Signed,
-    UrgentAnswer, VisitView,
+    UrgentAnswer, VisitView, Worklist,
 };
 use crate::domain::acuity::Notation;
 use crate::domain::field::Field;
@@ -20,6 +20,7 @@ use crate::tui::day::Day;
 use crate::tui::days::Days;
 use crate::tui::judging::{Draft, Library};
 use crate::tui::prompt::Prompt;
+use crate::tui::referrals::Referrals;
 use crate::tui::rules::Rules;
 use crate::tui::tables::Table;
 use crate::tui::theme::Theme;
@@ -49,6 +50,8 @@ pub struct Session {
     pub today: NaiveDate,
     /// The rules.
     pub library: Arc<Library>,
+    /// Triage sets whose bands are shown.
+    pub triage: Vec<String>,
     /// Styles.
     pub theme: Theme,
     /// Makes the id of a visit.
@@ -129,8 +132,10 @@ pub struct App {
     pub day: Result<Day, Days>,
     /// Every child.
     pub children: Children,
-    /// Referrals and Term.
-    pub tables: [Table; 2],
+    /// Referrals.
+    pub referrals: Referrals,
+    /// Term.
+    pub term: Table,
     /// Rule sets.
     pub rules: Rules,
     /// The question on the screen.
@@ -204,7 +209,7 @@ pub enum Request {
     Find(String),
     /// The history of a child.
     History(String),
-    /// The referrals as a table.
+    /// The referrals as a worklist.
     Referrals,
     /// The term as a table.
     Term,
@@ -251,7 +256,7 @@ pub enum Answer {
     /// A child's history.
     History(Option<Box<ChildHistory>>),
     /// The referrals.
-    Referrals(Vec<Vec<String>>),
+    Referrals(Box<Worklist>),
     /// The term.
     Term(Vec<Vec<String>>),
     /// Two rule sets on the children of a term.
@@ -277,7 +282,8 @@ impl App {
             at: PlaceName::Day,
             day: Err(Days::new(days)),
             children: Children::default(),
-            tables: [Table::default(), Table::default()],
+            referrals: Referrals::default(),
+            term: Table::default(),
             rules,
             prompt: None,
             notice: None,
@@ -312,7 +318,8 @@ impl App {
             (PlaceName::Day, Ok(day)) if day.in_list() => Context::List,
             (PlaceName::Day, Ok(_)) => Context::Bench,
             (PlaceName::Children, _) => Context::Children,
-            (PlaceName::Referrals | PlaceName::Term, _) => Context::Tables,
+            (PlaceName::Referrals, _) => Context::Referrals,
+            (PlaceName::Term, _) => Context::Tables,
             (PlaceName::Rules, _) => self.rules.context(),
         }
     }

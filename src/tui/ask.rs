@@ -4,12 +4,12 @@ use crate::domain::codes::{Correction, History, Status};
 use crate::domain::field::Field;
 use crate::domain::readings::{Eye, NotTestable};
 use crate::keys::{self, Command};
-use crate::tui::app::{App, Tone};
+use crate::tui::app::{App, Session, Tone};
 use crate::tui::day::bench::Bench;
 use crate::tui::day::bench_view::value_words;
 use crate::tui::day::kind;
 use crate::tui::day::path::Group;
-use crate::tui::judging::explain;
+use crate::tui::judging::{self, Standing};
 use crate::tui::prompt::{Ask, Body, Form, Prompt, Scope, SignMarks, listed};
 use crate::tui::text::{name, safe};
 
@@ -49,7 +49,7 @@ impl App {
                     at: 0,
                 }),
             },
-            Command::Why => whole_reason(&who, bench),
+            Command::Why => whole_reason(&who, bench, &self.session),
             Command::Swap if signed => Prompt::form(
                 Ask::SwapSigned,
                 format!("{who}: swap right eye and left eye"),
@@ -365,7 +365,7 @@ fn ask_not_present(who: &str) -> Prompt {
     )
 }
 
-fn whole_reason(who: &str, bench: &Bench) -> Prompt {
+fn whole_reason(who: &str, bench: &Bench, session: &Session) -> Prompt {
     let mut lines = Vec::new();
     if let Some(outcome) = bench.signed.as_ref().and_then(|v| v.outcome.as_ref()) {
         lines.push(format!(
@@ -376,7 +376,11 @@ fn whole_reason(who: &str, bench: &Bench) -> Prompt {
         lines.push(String::new());
         lines.push("The same readings now:".into());
     }
-    lines.extend(explain::whole(&bench.outcome).iter().map(|l| safe(l)));
+    let child = &bench.child;
+    let (readings, _) = judging::known(child, &bench.readings);
+    let standing = Standing::of(&session.library, &session.triage, child.age, &readings);
+    let whole = judging::whole_reason(&bench.outcome, &standing);
+    lines.extend(whole.iter().map(|l| safe(l)));
     Prompt::page(format!("{who}: the whole reason"), lines)
 }
 

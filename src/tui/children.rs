@@ -308,6 +308,17 @@ fn visit_lines(visit: &VisitView, columns: usize, theme: Theme, out: &mut Vec<Li
                 .map(|l| Line::styled(format!("{indent}{l}"), theme.attention())),
         );
     }
+    if let Some(standing) = visit
+        .outcome
+        .as_ref()
+        .and_then(|o| visit.standing.short(o.kind))
+    {
+        out.extend(
+            wrap(&safe(&standing), room)
+                .into_iter()
+                .map(|l| Line::raw(format!("{indent}{l}"))),
+        );
+    }
     if let Some(now) = &visit.now {
         out.push(Line::styled(
             cut(&format!("{indent}now it would be {}", safe(now)), columns),

@@ -116,6 +116,7 @@ pub fn session(
         sites: desk.sites()?,
         today: desk.today(),
         library: desk.library(),
+        triage: desk.triage_sets(),
         theme: Theme::new(color),
         new_id: actions::new_visit_id,
         now_ms,
@@ -223,7 +224,7 @@ impl Clerk {
                 Answer::Found(text, found)
             }
             Request::History(child) => Answer::History(self.desk.history(&child)?.map(Box::new)),
-            Request::Referrals => Answer::Referrals(self.desk.referrals()?),
+            Request::Referrals => Answer::Referrals(Box::new(self.desk.worklist()?)),
             Request::Term => Answer::Term(self.desk.term_table()?),
             Request::Compare(a, b) => {
                 let (term, subjects) = self.desk.subjects_of_term(None)?;

@@ -7,7 +7,8 @@ use chrono::NaiveDate;
 use uuid::Uuid;
 
 pub use crate::actions::{
-    CAUTIONS, Library, PassLine, bench_tests, explain, judged, pass_line_for, show,
+    CAUTIONS, Library, PassLine, Standing, bench_tests, explain, judged, known, pass_line_for,
+    show, whole_reason,
 };
 
 use crate::actions::{self, DayChild, DayInfo};

@@ -1,4 +1,4 @@
-//! Referrals and Term: what is known, in a table.
+//! Term: what is known, in a table.
 
 use ratatui::Frame;
 use ratatui::layout::{Position, Rect};

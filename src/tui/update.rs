@@ -283,8 +283,15 @@ impl App {
                 _ if paging => self.children.scroll(by),
                 _ => self.children.step(by),
             },
-            PlaceName::Referrals => self.tables[0].scroll(by),
-            PlaceName::Term => self.tables[1].scroll(by),
+            PlaceName::Referrals if command == Command::Open => {
+                let effects = self.referrals.open();
+                if !effects.is_empty() {
+                    self.at = PlaceName::Children;
+                }
+                return effects;
+            }
+            PlaceName::Referrals => self.referrals.step(by),
+            PlaceName::Term => self.term.scroll(by),
             PlaceName::Rules => {
                 let done = self.rules.command(command, by, paging);
                 return self.done(done);

@@ -250,11 +250,10 @@ impl App {
             (PlaceName::Day, Ok(day)) => day.draw(frame, area, &self.session),
             (PlaceName::Day, Err(days)) => days.draw(frame, area, &self.session),
             (PlaceName::Children, _) => self.children.draw(frame, area, &self.session),
-            (PlaceName::Referrals, _) => {
-                self.tables[0].draw(frame, area, &self.session, "nobody was referred yet")
-            }
+            (PlaceName::Referrals, _) => self.referrals.draw(frame, area, &self.session),
             (PlaceName::Term, _) => {
-                self.tables[1].draw(frame, area, &self.session, "nobody was screened yet")
+                self.term
+                    .draw(frame, area, &self.session, "nobody was screened yet")
             }
             (PlaceName::Rules, _) => self.rules.draw(frame, area, &self.session),
         }

@@ -2,6 +2,7 @@
 
 mod later_visits;
 mod rosters;
+mod worklist;
 
 use chrono::NaiveDate;
 use twoline::actions::{

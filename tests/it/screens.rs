@@ -8,6 +8,7 @@ mod drawn;
 mod every_test;
 mod keystrokes;
 mod people;
+mod referrals;
 mod rules_place;
 mod terminal;
 mod urgent;

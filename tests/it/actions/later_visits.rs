@@ -40,10 +40,10 @@ fn a_child_who_was_absent_on_the_rescreen_day_is_still_due() {
         (first.child_id.as_str(), first.attempt, first.due_on),
         ("Q-2", Attempt::Rescreen, Some(date("2026-10-28")))
     );
-    let due = desk.referrals().expect("read");
+    let due = desk.worklist().expect("read").back;
     assert!(
         due.iter()
-            .any(|row| row[0].starts_with("2026-10-28") && row[1] == "Okafor, Ada"),
+            .any(|back| back.due_on == Some(date("2026-10-28")) && back.child_id == "Q-2"),
         "{due:?}"
     );
     let signed = sign(&mut desk, &third, "Q-2", &TWO_STEPS);

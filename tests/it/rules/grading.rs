@@ -6,7 +6,7 @@
 use super::support::{local_form, readings};
 use twoline::domain::age::AgeMonths;
 use twoline::rules::Library;
-use twoline::rules::grading::{Clinical, Graded, Level, Waiting, order, severity, triage};
+use twoline::rules::grading::{Clinical, Graded, Level, Place, Waiting, order, severity, triage};
 
 fn group(age: u32, text: &str) -> Option<u32> {
     let readings = readings(text);
@@ -402,20 +402,23 @@ fn what_a_word_is_taken_as_is_data() {
 }
 
 /// Inside a band: days waited, then the treatment window, then the group, each with its reason.
+/// Before that: emergencies, then the date to act by (common practice).
 #[test]
-fn order_inside_a_band() {
-    let grading = Library::shipped().grading("queensland-strabismus").unwrap();
-    let place = |band, days_waited, age, group| {
-        order(
-            grading,
-            &Waiting {
-                band,
-                days_waited,
-                age: Some(AgeMonths(age)),
-                group,
-            },
-        )
+fn order_of_a_worklist() {
+    let windows = &Library::shipped()
+        .grading("queensland-strabismus")
+        .unwrap()
+        .windows;
+    let date = |text: &str| text.parse().ok();
+    let waiting = |band, days_waited, age, group| Waiting {
+        emergency: false,
+        act_by: None,
+        band: Some(band),
+        days_waited,
+        age: Some(AgeMonths(age)),
+        group,
     };
+    let place = |band, days, age, group| order(windows, &waiting(band, days, age, group));
     let b = Level::Within(90);
     assert!(place(Level::Within(30), 0, 200, Some(3)) < place(b, 400, 40, Some(1)));
     assert!(place(b, 20, 200, Some(3)) < place(b, 19, 40, Some(1)));
@@ -423,4 +426,48 @@ fn order_inside_a_band() {
     assert!(place(b, 20, 155, Some(3)) < place(b, 20, 156, Some(1)));
     assert!(place(b, 20, 60, Some(1)) < place(b, 20, 60, Some(2)));
     assert_eq!(place(b, 20, 60, Some(1)).reasons.len(), 4);
+
+    let by = |act_by: &str, waiting: Waiting| {
+        order(
+            windows,
+            &Waiting {
+                act_by: date(act_by),
+                ..waiting
+            },
+        )
+    };
+    let one = waiting(b, 20, 60, Some(1));
+    let emergency = order(
+        windows,
+        &Waiting {
+            emergency: true,
+            ..one
+        },
+    );
+    assert!(emergency < by("2026-10-14", one));
+    assert_eq!(emergency.reasons[0], "an emergency goes first");
+    assert!(by("2026-10-14", one) < by("2026-10-15", waiting(b, 400, 60, Some(1))));
+    // The same date: who waits longer, whatever the band.
+    let longer = waiting(Level::Within(365), 21, 60, Some(3));
+    assert!(by("2026-10-14", longer) < by("2026-10-14", one));
+    // No date goes last, whatever the band.
+    assert!(by("2099-01-01", one) < place(Level::AtOnce, 400, 40, Some(1)));
+    let none = Waiting {
+        band: None,
+        age: None,
+        group: None,
+        ..one
+    };
+    assert!(one_place(windows, one) < one_place(windows, none));
+    let reasons = order(&[], &none).reasons;
+    assert_eq!(reasons[0], "no date to act by");
+    assert!(reasons[2].starts_with("age unknown"), "{reasons:?}");
+    assert!(
+        reasons[3].starts_with("condition group unknown"),
+        "{reasons:?}"
+    );
+}
+
+fn one_place(windows: &[twoline::rules::grading::Window], waiting: Waiting) -> Place {
+    order(windows, &waiting)
 }
