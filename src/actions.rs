@@ -3,6 +3,7 @@
 //! A [`Desk`] is an open store with the rule library beside it: what a nurse sits down at. The
 //! screens and the command line ask it and tell it things; neither sees a table.
 
+pub mod board;
 mod children;
 pub mod compare;
 mod days;

@@ -150,6 +150,8 @@ contexts! {
     List = "Day, list of children", [Day, Places, Everywhere];
     /// In the Day place, whatever has the focus.
     Day = "Day", [Places, Everywhere];
+    /// On the day board.
+    Board = "Day, the day board", [Places, Everywhere];
     /// In the list of days.
     Days = "Day, list of days", [Places, Everywhere];
     /// In the Children place.
@@ -201,7 +203,7 @@ commands! {
     OtherEyeRight = "go-left-eye"; Erase = "erase"; ClearField = "clear-field"; ToList = "to-list";
     NotTestable = "not-testable"; NotPresent = "not-present"; Why = "whole-reason"; Signs = "signs";
     Swap = "swap-eyes"; Move = "move-to-child"; Correct = "correct"; AddChild = "add-child";
-    Undo = "undo"; NextChild = "next-child"; ShowAll = "show-all"; Told = "urgent-told";
+    Undo = "undo"; NextChild = "next-child"; ShowAll = "show-all"; Told = "urgent-told"; Board = "day-board";
     ListUp = "up"; ListDown = "down"; PageUp = "page-up"; PageDown = "page-down"; First = "first";
     Last = "last"; Open = "open"; ClearFind = "clear-find"; EraseFind = "erase-find";
     ToBench = "to-bench"; OpenDay = "open-day"; Days = "days"; Screener = "screener";

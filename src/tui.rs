@@ -7,6 +7,7 @@
 mod answers;
 pub mod app;
 mod ask;
+pub mod board;
 mod children;
 mod day;
 mod days;

@@ -1,5 +1,6 @@
 //! `twoline report`: files to hand on.
 
+use std::io::{self, IsTerminal};
 use std::path::{Path, PathBuf};
 
 use clap::{Args, Subcommand};
@@ -8,6 +9,7 @@ use super::output::{clean, print_bytes, print_clean, say};
 use super::values::{WhichDay, title};
 use super::{Failure, Global, open, write};
 use crate::actions::Report as Made;
+use crate::tui::board::plain;
 
 /// Write reports
 #[derive(Debug, Args)]
@@ -35,6 +37,17 @@ enum Command {
         /// Form of the file: a table, or text for people
         #[arg(long, value_parser = ["csv", "text"], default_value = "csv")]
         format: String,
+    },
+    /// How a screening day stands: by class, by station, and when it will end
+    Board {
+        #[command(flatten)]
+        day: WhichDay,
+        /// Words for people, or a table for other programs
+        #[arg(long, value_parser = ["text", "csv"], default_value = "text")]
+        format: String,
+        /// Text as it is in CSV: no byte order mark, no guard against spreadsheet formulas
+        #[arg(long)]
+        exact: bool,
     },
 }
 
@@ -93,6 +106,23 @@ impl Report {
                 }
                 to.write(&report, "referrals")
             }
+            Command::Board { day, format, exact } => {
+                let board = desk.board(&day.of(&desk)?)?;
+                if format == "csv" {
+                    print_bytes(&board.csv(*exact)?)
+                } else {
+                    print_clean(&plain(&board, columns()))
+                }
+            }
         }
+    }
+}
+
+/// Returns the width of the terminal, or one for a page where there is none.
+fn columns() -> usize {
+    if io::stdout().is_terminal() {
+        crossterm::terminal::size().map_or(80, |(columns, _)| usize::from(columns).max(40))
+    } else {
+        100
     }
 }

@@ -5,6 +5,7 @@ mod day;
 mod find;
 mod generic;
 mod report;
+mod signed;
 mod visit;
 
 use rusqlite::Connection;
@@ -17,6 +18,7 @@ pub use day::{DayChild, DayCount};
 pub use find::IndexRow;
 pub use generic::{Conflict, Recorded};
 pub use report::{ReportRow, TermCounts, UrgentOpen};
+pub use signed::SignedVisit;
 pub use visit::{ReadingNow, VisitNow, VisitRecord};
 
 /// The typed reads of a store, or of a transaction being written.

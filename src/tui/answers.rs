@@ -21,6 +21,7 @@ impl App {
             }
             Answer::Day(info, children, drafts) => {
                 let n = drafts.len();
+                self.board.forget();
                 let (day, effects) = Day::new(&self.session, info, children, drafts);
                 self.day = Ok(day);
                 if n > 0 {
@@ -33,6 +34,12 @@ impl App {
                     );
                 }
                 return effects;
+            }
+            Answer::Board(board) => {
+                let of_this_day = self.day.as_ref().is_ok_and(|d| d.info.id == board.day.id);
+                if of_this_day && let Some(words) = self.board.take(board, self.session.now_ms) {
+                    self.say(Tone::Attention, words);
+                }
             }
             Answer::Signed(signed) => return self.signed(*signed, "saved"),
             Answer::NotSigned(id, refused) => {
@@ -112,6 +119,7 @@ impl App {
         let who = name(&child.family_name, &child.given_name);
         let id = child.child_id.clone();
         let mut effects = vec![Effect::ask(Request::Urgent)];
+        self.board.changed();
         if let Ok(day) = &mut self.day {
             day.last_signed = None;
             effects.extend(day.refresh(&self.session, child));
@@ -125,6 +133,7 @@ impl App {
     }
 
     fn signed(&mut self, signed: Signed, verb: &str) -> Vec<Effect> {
+        self.board.changed();
         let outcome = &signed.outcome;
         let who = name(&signed.child.family_name, &signed.child.given_name);
         let mut words = match signed.child.state {

@@ -15,6 +15,7 @@ use crate::actions::{
 use crate::domain::acuity::Notation;
 use crate::domain::field::Field;
 use crate::keys::{Context, Key};
+use crate::tui::board::BoardPage;
 use crate::tui::children::Children;
 use crate::tui::day::Day;
 use crate::tui::days::Days;
@@ -130,6 +131,8 @@ pub struct App {
     pub at: PlaceName,
     /// The screening day, or the list of days while none is open.
     pub day: Result<Day, Days>,
+    /// The day board.
+    pub board: BoardPage,
     /// Every child.
     pub children: Children,
     /// Referrals.
@@ -189,6 +192,8 @@ pub enum Request {
     NewDay(NewDay),
     /// The children and drafts of a day.
     LoadDay(DayInfo),
+    /// The board of a day.
+    Board(DayInfo),
     /// Signs a visit.
     Sign(SignRequest),
     /// The signed visit of a child.
@@ -235,6 +240,8 @@ pub enum Answer {
     Days(Vec<DayInfo>),
     /// A day with its children and drafts.
     Day(Arc<DayInfo>, Vec<DayChild>, Vec<Draft>),
+    /// The board of a day.
+    Board(Box<crate::actions::board::Board>),
     /// A visit was signed.
     Signed(Box<Signed>),
     /// A visit was not signed; its draft stays.
@@ -281,6 +288,7 @@ impl App {
         App {
             at: PlaceName::Day,
             day: Err(Days::new(days)),
+            board: BoardPage::default(),
             children: Children::default(),
             referrals: Referrals::default(),
             term: Table::default(),
@@ -315,6 +323,7 @@ impl App {
         }
         match (self.at, &self.day) {
             (PlaceName::Day, Err(_)) => Context::Days,
+            (PlaceName::Day, Ok(_)) if self.board.is_shown() => Context::Board,
             (PlaceName::Day, Ok(day)) if day.in_list() => Context::List,
             (PlaceName::Day, Ok(_)) => Context::Bench,
             (PlaceName::Children, _) => Context::Children,

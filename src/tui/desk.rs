@@ -188,6 +188,7 @@ impl Clerk {
                 self.load_day(day)?
             }
             Request::LoadDay(day) => self.load_day(day)?,
+            Request::Board(day) => Answer::Board(Box::new(self.desk.board(&day)?)),
             Request::Sign(sign) => Answer::Signed(Box::new(self.desk.sign(sign)?)),
             Request::Visit(day, child) => {
                 let visit = self.desk.visit(&day, &child)?;

@@ -236,7 +236,7 @@ fn event_loop(
         stale = !messages.is_empty() || now.utc_ms / tick != app.session.now_ms / tick;
         app.session.now_ms = now.utc_ms;
         app.session.offset_minutes = now.offset_minutes;
-        for message in messages {
+        for message in messages.into_iter().chain([Message::Tick]) {
             match wires.carry_out(app.update(message))? {
                 Next::GoOn => {}
                 Next::Suspend => screen.suspend()?,

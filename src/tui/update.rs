@@ -15,9 +15,17 @@ impl App {
         match message {
             Message::Key(key) => self.key(key),
             Message::Paste(text) => self.paste(&text),
-            Message::Tick => Vec::new(),
+            Message::Tick => self.tick(),
             Message::Answer(answer) => self.answer(answer),
             Message::Leave => self.leave(),
+        }
+    }
+
+    /// The clock moved on: a day board that is due is asked for.
+    fn tick(&mut self) -> Vec<Effect> {
+        match &self.day {
+            Ok(day) => self.board.tick(&day.info, self.session.now_ms),
+            Err(_) => Vec::new(),
         }
     }
 
@@ -179,6 +187,13 @@ impl App {
     }
 
     fn run_in_day(&mut self, command: Command) -> Vec<Effect> {
+        if self.context() == Context::Board {
+            match command {
+                Command::Cancel => self.board.close(),
+                _ => self.board.command(command),
+            }
+            return Vec::new();
+        }
         match command {
             Command::OpenDay => {
                 self.ask_new_day();
@@ -220,6 +235,7 @@ impl App {
 
     fn run_on_day(&mut self, command: Command) -> Vec<Effect> {
         let in_list = self.context() == Context::List;
+        let now_ms = self.session.now_ms;
         let Ok(day) = &mut self.day else {
             return Vec::new();
         };
@@ -229,6 +245,11 @@ impl App {
                     bench.judge();
                 }
                 day.sign(&self.session)
+            }
+            Command::Board => {
+                let mut effects = day.keep_draft();
+                effects.extend(self.board.open(&day.info, now_ms));
+                return effects;
             }
             Command::NextChild => day.next_child(&self.session),
             Command::SecondTry => day.second_try(&self.session),

@@ -53,7 +53,8 @@ impl App {
         let head = take(1);
         let urgent = take(urgent_rows);
         let upper_rule = take(1);
-        let verdict_rows = if self.at == PlaceName::Day && self.day.is_ok() {
+        let bench_shown = self.at == PlaceName::Day && self.day.is_ok() && !self.board.is_shown();
+        let verdict_rows = if bench_shown {
             VERDICT + u16::from(area.height >= 30) + u16::from(area.height >= 36)
         } else {
             0
@@ -247,6 +248,9 @@ impl App {
 
     fn draw_place(&self, frame: &mut Frame<'_>, area: Rect) -> Position {
         match (self.at, &self.day) {
+            (PlaceName::Day, Ok(_)) if self.board.is_shown() => {
+                self.board.draw(frame, area, &self.session)
+            }
             (PlaceName::Day, Ok(day)) => day.draw(frame, area, &self.session),
             (PlaceName::Day, Err(days)) => days.draw(frame, area, &self.session),
             (PlaceName::Children, _) => self.children.draw(frame, area, &self.session),
@@ -276,6 +280,7 @@ impl App {
             }
         }
         if self.at == PlaceName::Day
+            && !self.board.is_shown()
             && let Ok(day) = &self.day
             && let Some(bench) = &day.bench
         {

@@ -1,5 +1,6 @@
 //! Tests of `actions`: a desk on a store of its own, as a nurse would use it.
 
+mod board;
 mod later_visits;
 mod rosters;
 mod worklist;

@@ -2,6 +2,7 @@
 
 #![allow(clippy::panic)]
 
+mod board;
 mod children;
 mod demo;
 mod files;

@@ -3,6 +3,7 @@
 #![allow(clippy::unwrap_used, clippy::panic)]
 
 mod bench;
+mod board;
 mod desk;
 mod drawn;
 mod every_test;

@@ -13,7 +13,7 @@ use twoline::keys::Key;
 use super::desk::Hands;
 
 /// Saves a snapshot with the store's head blanked out: it differs in each run.
-fn snapshot(name: &str, screen: &str) {
+pub fn snapshot(name: &str, screen: &str) {
     let clean: Vec<String> = screen
         .lines()
         .map(|line| {
@@ -158,6 +158,7 @@ fn no_size_crashes_anything() {
         vec![Key::alt('4')],
         vec![Key::alt('5')],
         vec![Key::alt('d')],
+        vec![Key::alt('b')],
     ] {
         let mut h = begun();
         for key in keys {
