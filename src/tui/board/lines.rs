@@ -107,10 +107,7 @@ fn progress(board: &Board, look: Look, out: &mut Vec<Text>) {
     }
     let (due_to_come, due) = board.due;
     if due > 0 {
-        let words = format!(
-            "Rescreens and returns due: {} of {due} still to come.",
-            due_to_come
-        );
+        let words = format!("Rescreens and returns due: {due_to_come} of {due} still to come.");
         let meaning = if due_to_come > 0 {
             Meaning::Attention
         } else {

@@ -1,5 +1,7 @@
 //! The station watch on a store.
 
+#![allow(clippy::panic)]
+
 use twoline::actions::Desk;
 use twoline::actions::board::Side;
 use twoline::actions::board::watch::{Level, Watch, With};

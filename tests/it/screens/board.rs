@@ -4,6 +4,8 @@ use std::fmt::Write as _;
 use std::time::Duration;
 
 use crossterm::event::KeyCode;
+use rand_chacha::ChaCha8Rng;
+use rand_chacha::rand_core::{Rng, SeedableRng};
 use twoline::actions::board::watch::{Compared, Level, Share, Watch, With};
 use twoline::actions::board::{Board, Counts, Pace, STATES, Side, StationRow};
 use twoline::actions::{DayInfo, NewDay, QueueState, SignRequest, new_visit_id};
@@ -303,8 +305,7 @@ fn a_station_that_passes_a_limit_is_told_once_on_day() {
 /// Every child of the roster stands in one state and one class, whatever is signed.
 #[test]
 fn the_sums_agree_with_the_roster() {
-    let mut random = rand_chacha::ChaCha8Rng::seed_from_u64(20_261_014);
-    use rand_chacha::rand_core::{Rng, SeedableRng};
+    let mut random = ChaCha8Rng::seed_from_u64(20_261_014);
     let mut roster = String::from("child_id,family_name,given_name,dob,grade,class,site,consent\n");
     for i in 0..60 {
         let consent = if i % 9 == 0 { "no" } else { "yes" };
