@@ -168,6 +168,7 @@ impl Desk {
             .filter(|r| !r.superseded)
             .map(|r| ReadingNow {
                 id: r.row.id,
+                visit_id: r.row.visit_id,
                 try_no: r.row.try_no,
                 field: r.row.field,
                 value: r.row.value.clone(),

@@ -6,12 +6,11 @@
 use std::collections::BTreeSet;
 
 use rusqlite::functions::FunctionFlags;
-use rusqlite::{Connection, ErrorCode, params};
+use rusqlite::{Connection, ErrorCode, params, params_from_iter};
 use uuid::Uuid;
 
 use super::cell::Value;
 use super::error::Result;
-use super::ledger::Hash;
 
 /// Registers the functions the projections use.
 pub(super) fn functions(conn: &Connection) -> rusqlite::Result<()> {
@@ -88,43 +87,89 @@ const PLAIN_CHILD: &str = concat!(
     "WHERE s.id IN (c.id, e.id, d.id, g.id, h.id, k.id))",
 );
 
-/// The state of visits; ends in a WHERE clause to add to.
+/// The latest present row of the visit id in a table `x`.
+macro_rules! standing {
+    ($of:literal) => {
+        concat!(
+            "(SELECT x.id FROM visit x JOIN tx t ON t.tx = x.tx WHERE x.visit_id = ",
+            $of,
+            " AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) ",
+            "ORDER BY t.lamport DESC, t.chain DESC, t.seq DESC, t.tx_hash DESC, x.ord DESC LIMIT 1)"
+        )
+    };
+}
+
+/// The ids under which a visit was recorded, each with the first of its key; ends in a WHERE clause
+/// to add to, by whole keys.
+pub(super) const PARTS: &str = concat!(
+    "SELECT v.visit_id, first_value(v.visit_id) OVER (",
+    "PARTITION BY v.child_id, v.site, v.screened_on, v.protocol, v.attempt ",
+    "ORDER BY u.lamport, u.chain, u.seq, u.tx_hash, v.ord) ",
+    "FROM visit v JOIN tx u ON u.tx = v.tx WHERE v.id = ",
+    standing!("v.visit_id"),
+);
+
+/// Holds for a row `x` of any part of the visit `v`.
+macro_rules! of_parts {
+    () => {
+        "x.visit_id IN (SELECT q.visit_id FROM visit_part q WHERE q.lead = v.visit_id) "
+    };
+}
+
+/// The same for a row that no correction superseded.
+macro_rules! live_of_parts {
+    () => {
+        concat!(
+            of_parts!(),
+            "AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) "
+        )
+    };
+}
+
+/// The state of visits, from the present `visit_part`; ends in a WHERE clause to add to.
 pub(super) const VISITS: &str = concat!(
     "SELECT v.visit_id, v.child_id, v.site, v.screened_on, v.protocol, v.attempt, ",
-    "(SELECT x.value FROM reading x JOIN tx t ON t.tx = x.tx WHERE x.visit_id = v.visit_id ",
-    "AND x.field = 'status' AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) ",
+    "(SELECT x.value FROM reading x JOIN tx t ON t.tx = x.tx WHERE x.field = 'status' AND ",
+    live_of_parts!(),
     "ORDER BY x.try_no DESC, t.lamport DESC, t.chain DESC, t.seq DESC, t.tx_hash DESC, x.ord DESC LIMIT 1), ",
-    "(SELECT count(*) FROM reading x WHERE x.visit_id = v.visit_id ",
-    "AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id)), ",
-    "(SELECT coalesce(max(x.try_no), 0) FROM reading x WHERE x.visit_id = v.visit_id ",
-    "AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id)), ",
-    "o.id, o.kind, o.decided_by, o.urgency, o.act_by, o.due_on, o.qualifiers, o.screener_id, o.station_id, ",
-    "EXISTS (SELECT 1 FROM reading x JOIN superseded s ON s.id = x.id WHERE x.visit_id = v.visit_id) ",
-    "OR EXISTS (SELECT 1 FROM outcome x JOIN superseded s ON s.id = x.id WHERE x.visit_id = v.visit_id) ",
-    "OR EXISTS (SELECT 1 FROM visit x JOIN superseded s ON s.id = x.id WHERE x.visit_id = v.visit_id), ",
-    "EXISTS (SELECT 1 FROM reading x WHERE x.visit_id = v.visit_id ",
-    "AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) ",
-    "GROUP BY x.try_no, x.field HAVING count(*) > 1) ",
-    "OR EXISTS (SELECT 1 FROM visit x WHERE x.child_id = v.child_id AND x.site = v.site ",
-    "AND x.screened_on = v.screened_on AND x.protocol = v.protocol AND x.attempt = v.attempt ",
-    "AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) AND x.id <> v.id), ",
-    "(SELECT max(t.recorded_at_ms) FROM tx t WHERE t.tx IN (",
-    "SELECT x.tx FROM visit x WHERE x.visit_id = v.visit_id UNION ",
-    "SELECT x.tx FROM reading x WHERE x.visit_id = v.visit_id UNION ",
-    "SELECT x.tx FROM outcome x WHERE x.visit_id = v.visit_id)) ",
-    "FROM visit v LEFT JOIN outcome o ON o.id = ",
-    "(SELECT x.id FROM outcome x JOIN tx t ON t.tx = x.tx WHERE x.visit_id = v.visit_id ",
-    "AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) ",
+    "(SELECT count(DISTINCT x.try_no || x.field) FROM reading x WHERE ",
+    live_of_parts!(),
+    "), (SELECT coalesce(max(x.try_no), 0) FROM reading x WHERE ",
+    live_of_parts!(),
+    "), o.id, o.kind, o.decided_by, o.urgency, o.act_by, o.due_on, o.qualifiers, o.screener_id, o.station_id, ",
+    "EXISTS (SELECT 1 FROM reading x JOIN superseded s ON s.id = x.id WHERE ",
+    of_parts!(),
+    ") OR EXISTS (SELECT 1 FROM outcome x JOIN superseded s ON s.id = x.id WHERE ",
+    of_parts!(),
+    ") OR EXISTS (SELECT 1 FROM visit x JOIN superseded s ON s.id = x.id WHERE ",
+    of_parts!(),
+    "), EXISTS (SELECT 1 FROM reading x WHERE ",
+    live_of_parts!(),
+    "GROUP BY x.try_no, x.field HAVING count(DISTINCT x.value) > 1), ",
+    "(SELECT count(*) FROM visit_part q WHERE q.lead = v.visit_id), ",
+    "(SELECT count(*) FROM outcome x WHERE ",
+    live_of_parts!(),
+    "), (SELECT max(t.recorded_at_ms) FROM tx t WHERE t.tx IN (",
+    "SELECT x.tx FROM visit x WHERE ",
+    of_parts!(),
+    "UNION SELECT x.tx FROM reading x WHERE ",
+    of_parts!(),
+    "UNION SELECT x.tx FROM outcome x WHERE ",
+    of_parts!(),
+    ")) FROM visit_part p JOIN visit v ON v.id = ",
+    standing!("p.visit_id"),
+    " LEFT JOIN outcome o ON o.id = ",
+    "(SELECT x.id FROM outcome x JOIN tx t ON t.tx = x.tx WHERE ",
+    live_of_parts!(),
     "ORDER BY t.lamport DESC, t.chain DESC, t.seq DESC, t.tx_hash DESC, x.ord DESC LIMIT 1) ",
-    "WHERE v.id = (SELECT x.id FROM visit x JOIN tx t ON t.tx = x.tx WHERE x.visit_id = v.visit_id ",
-    "AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) ",
-    "ORDER BY t.lamport DESC, t.chain DESC, t.seq DESC, t.tx_hash DESC, x.ord DESC LIMIT 1)",
+    "WHERE p.visit_id = p.lead",
 );
 
 /// Rebuilds every projection from the entries.
 pub(super) fn rebuild(conn: &Connection) -> Result<()> {
     conn.execute_batch(&format!(
         "DELETE FROM child_current; INSERT INTO child_current {CHILDREN}; \
+         DELETE FROM visit_part; INSERT INTO visit_part {PARTS}; \
          DELETE FROM visit_current; INSERT INTO visit_current {VISITS};"
     ))?;
     Ok(())
@@ -156,52 +201,80 @@ pub(super) fn children(conn: &Connection, touched: &BTreeSet<String>) -> Result<
     Ok(())
 }
 
-/// Moves the projection of the visits touched.
+/// Moves the projection of the visits touched, and of all that share a key with one of them.
 pub(super) fn visits(conn: &Connection, touched: &BTreeSet<Uuid>) -> Result<()> {
-    if touched.is_empty() {
-        return Ok(());
-    }
-    let mut gone = conn.prepare_cached("DELETE FROM visit_current WHERE visit_id = ?1")?;
-    let mut come = conn.prepare_cached(&format!(
-        "INSERT INTO visit_current {VISITS} AND v.visit_id = ?1"
+    const KEY: &str = "x.child_id, x.site, x.screened_on, x.protocol, x.attempt";
+    let mut keys: BTreeSet<[String; 5]> = BTreeSet::new();
+    let mut ids = touched.clone();
+    let mut of_id =
+        conn.prepare_cached(&format!("SELECT {KEY} FROM visit x WHERE x.visit_id = ?1"))?;
+    let mut of_key = conn.prepare_cached(&format!(
+        "SELECT x.visit_id FROM visit x WHERE ({KEY}) = (?1, ?2, ?3, ?4, ?5)"
     ))?;
-    for visit in with_siblings(conn, touched)? {
-        gone.execute([visit.cell()])?;
-        come.execute([visit.cell()])?;
+    let mut to_see: Vec<Uuid> = touched.iter().copied().collect();
+    while let Some(id) = to_see.pop() {
+        let mut rows = of_id.query([id.cell()])?;
+        while let Some(row) = rows.next()? {
+            let key = [
+                row.get(0)?,
+                row.get(1)?,
+                row.get(2)?,
+                row.get(3)?,
+                row.get(4)?,
+            ];
+            if !keys.contains(&key) {
+                let mut rows = of_key.query(params_from_iter(&key))?;
+                while let Some(row) = rows.next()? {
+                    let other = Uuid::from_stored(row.get_ref(0)?);
+                    to_see.extend(other.filter(|other| ids.insert(*other)));
+                }
+                keys.insert(key);
+            }
+        }
+    }
+    for id in &ids {
+        for table in ["visit_part", "visit_current"] {
+            conn.prepare_cached(&format!("DELETE FROM {table} WHERE visit_id = ?1"))?
+                .execute([id.cell()])?;
+        }
+    }
+    for key in &keys {
+        conn.prepare_cached(&format!(
+            "INSERT INTO visit_part {PARTS} \
+             AND (v.child_id, v.site, v.screened_on, v.protocol, v.attempt) = (?1, ?2, ?3, ?4, ?5)"
+        ))?
+        .execute(params_from_iter(key))?;
+    }
+    for id in &ids {
+        conn.prepare_cached(&format!(
+            "INSERT INTO visit_current {VISITS} AND p.visit_id = ?1"
+        ))?
+        .execute([id.cell()])?;
     }
     Ok(())
 }
 
-/// Adds the visits that share the key of a touched one: a conflict shows on each of them.
-fn with_siblings(conn: &Connection, touched: &BTreeSet<Uuid>) -> Result<BTreeSet<Uuid>> {
-    let mut all = touched.clone();
-    let mut siblings = conn.prepare_cached(
-        "SELECT y.visit_id FROM visit x JOIN visit y ON y.child_id = x.child_id AND y.site = x.site \
-         AND y.screened_on = x.screened_on AND y.protocol = x.protocol AND y.attempt = x.attempt \
-         WHERE x.visit_id = ?1 AND y.visit_id <> ?1",
-    )?;
-    for visit in touched {
-        let mut rows = siblings.query([visit.cell()])?;
-        while let Some(row) = rows.next()? {
-            all.extend(Uuid::from_stored(row.get_ref(0)?));
-        }
-    }
-    Ok(all)
-}
-
-/// Moves a chain to its new last transaction.
+/// Moves a chain from one transaction (none at its start) to the next; where another followed it
+/// already this is a second end.
 pub(super) fn chain(
     conn: &Connection,
     chain: Uuid,
-    seq: i64,
-    tx_hash: &Hash,
+    prev: Option<&[u8]>,
+    next: (i64, &[u8]),
     entries: i64,
 ) -> Result<()> {
-    conn.prepare_cached(
-        "INSERT INTO chain_current (chain, seq, tx_hash, entries) VALUES (?1, ?2, ?3, ?4) \
-         ON CONFLICT (chain) DO UPDATE SET seq = excluded.seq, tx_hash = excluded.tx_hash, \
-         entries = entries + excluded.entries",
-    )?
-    .execute(params![chain.cell(), seq, &tx_hash[..], entries])?;
+    let (seq, hash) = next;
+    let moved = conn
+        .prepare_cached(
+            "UPDATE chain_current SET seq = ?3, tx_hash = ?4, entries = entries + ?5 \
+             WHERE chain = ?1 AND tx_hash = ?2",
+        )?
+        .execute(params![chain.cell(), prev, seq, hash, entries])?;
+    if moved == 0 {
+        conn.prepare_cached(
+            "INSERT INTO chain_current (chain, seq, tx_hash, entries) VALUES (?1, ?2, ?3, ?4)",
+        )?
+        .execute(params![chain.cell(), seq, hash, entries])?;
+    }
     Ok(())
 }

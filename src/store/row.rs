@@ -81,6 +81,13 @@ pub struct DayKey {
     pub protocol: String,
 }
 
+/// Returns the key of a row in bytes, to compare.
+pub(super) fn key_bytes<R: Row>(row: &R) -> Vec<u8> {
+    let mut out = Vec::new();
+    row.each_key(|cell| cell.write(&mut out));
+    out
+}
+
 macro_rules! touched {
     (None, $self:ident) => {
         Touched::Nothing

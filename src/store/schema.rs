@@ -11,6 +11,7 @@ use super::project;
 const ALL: &[&str] = &[
     include_str!("../../migrations/0001_entries.sql"),
     include_str!("../../migrations/0002_stations.sql"),
+    include_str!("../../migrations/0003_packets.sql"),
 ];
 
 /// `TwoL` in ASCII: what `file` and other programs know a store by.

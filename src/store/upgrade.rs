@@ -49,7 +49,7 @@ fn free_name(dir: &Path, from: usize) -> PathBuf {
         } else {
             format!("-{n}")
         };
-        dir.join(format!("before-version-{}{more}", from + 1))
+        dir.join(format!("copy-of-version-{from}{more}"))
     };
     (1..=u32::MAX)
         .map(named)

@@ -5,10 +5,10 @@ use std::collections::BTreeSet;
 use rusqlite::{Connection, OptionalExtension, TransactionBehavior, params};
 use uuid::Uuid;
 
-use super::cell::{Cell, Ids, Value};
+use super::cell::{Ids, Value};
 use super::error::{Error, ErrorKind, Result};
 use super::ledger::{self, TxHeader, TxRows};
-use super::row::{Correction, Row, Table, Touched};
+use super::row::{Correction, Row, Table, Touched, key_bytes};
 use super::{Reads, Store, new_id, project};
 use crate::clock::Moment;
 
@@ -225,8 +225,8 @@ impl Tx<'_> {
         }
         let replaced_by = replacement.as_ref().map(Row::id);
         if let Some(new) = replacement {
-            let key = key_of(&new);
-            if before.iter().any(|row| key_of(row) != key) {
+            let key = key_bytes(&new);
+            if before.iter().any(|row| key_bytes(row) != key) {
                 return Err(Error::new(
                     ErrorKind::Refused,
                     format!(
@@ -236,8 +236,10 @@ impl Tx<'_> {
                 )
                 .with_hint("take the entry back and record it where it belongs"));
             }
-            if let [only] = &before[..]
-                && only.clone().with_id(new.id()) == new
+            if !before.is_empty()
+                && before
+                    .iter()
+                    .all(|row| row.clone().with_id(new.id()) == new)
             {
                 return Ok(Put::Unchanged);
             }
@@ -332,7 +334,13 @@ impl Tx<'_> {
                 &tx_hash[..],
                 self.rows.bytes(),
             ])?;
-        project::chain(self.conn, chain, seq, &tx_hash, self.rows.count())?;
+        project::chain(
+            self.conn,
+            chain,
+            header.prev.as_deref(),
+            (seq, &tx_hash[..]),
+            self.rows.count(),
+        )?;
         project::children(self.conn, &self.children)?;
         project::visits(self.conn, &self.visits)?;
         Ok((seq, tx_hash))
@@ -351,14 +359,8 @@ fn there_already(error: rusqlite::Error, table: &Table, id: Uuid) -> Error {
     }
 }
 
-fn key_of<R: Row>(row: &R) -> Vec<u8> {
-    let mut out = Vec::new();
-    row.each_key(|cell: Cell<'_>| cell.write(&mut out));
-    out
-}
-
 /// Returns the INSERT of a table, built once.
-fn insert_sql(table: &'static Table) -> &'static str {
+pub(super) fn insert_sql(table: &'static Table) -> &'static str {
     use std::collections::HashMap;
     use std::sync::OnceLock;
     static ALL: OnceLock<HashMap<&'static str, String>> = OnceLock::new();

@@ -1,5 +1,8 @@
 //! Reads that hold for every table of entries.
 
+use std::collections::HashMap;
+use std::collections::hash_map::Entry;
+
 use rusqlite::{OptionalExtension, params_from_iter};
 use uuid::Uuid;
 
@@ -10,7 +13,7 @@ use crate::store::error::{Error, Result};
 use crate::store::ledger::Head;
 use crate::store::row::{
     Calendar, Chart, Child, ColumnMapping, Correction, Import, Programme, Row, RuleSetUsed,
-    SameChild, Screener, ScreeningDay, Setting, Site, Station, TABLES, Term,
+    SameChild, Screener, ScreeningDay, Setting, Site, Station, TABLES, Term, key_bytes,
 };
 
 /// An entry with who recorded it and when, and what superseded it.
@@ -37,12 +40,16 @@ pub struct Conflict {
 
 /// The merge order, latest first, of a table named `x` joined with its transaction `t`.
 pub(in crate::store) const LATEST_FIRST: &str =
-    "t.lamport DESC, t.chain DESC, t.seq DESC, t.tx_hash DESC, x.ord DESC";
+    "t.lamport IS NOT NULL, t.lamport DESC, t.chain DESC, t.seq DESC, t.tx_hash DESC, x.ord DESC";
+
+/// The merge order; what is being written comes last.
+pub(in crate::store) const OLDEST_FIRST: &str =
+    "t.lamport IS NULL, t.lamport, t.chain, t.seq, t.tx_hash, x.ord";
 
 impl Reads<'_> {
     /// Returns the entry of an id.
     pub fn entry<R: Row>(&self, id: Uuid) -> Result<Option<R>> {
-        Ok(self.rows("x.id = ?1", "x.tx, x.ord", &[id.cell()])?.pop())
+        Ok(self.rows("x.id = ?1", OLDEST_FIRST, &[id.cell()])?.pop())
     }
 
     /// Says whether a correction superseded an entry.
@@ -70,9 +77,10 @@ impl Reads<'_> {
         )
     }
 
-    /// Returns every present entry of a table, in the order they were recorded.
+    /// Returns what is present in a table, in the merge order: one entry for each key, the latest
+    /// where there are several.
     pub fn all<R: Row>(&self) -> Result<Vec<R>> {
-        self.rows(LIVE, "x.tx, x.ord", &[])
+        Ok(one_of_each_key(self.rows(LIVE, OLDEST_FIRST, &[])?))
     }
 
     /// Returns every entry of a table for which a condition on `x` holds, with its history.
@@ -129,14 +137,34 @@ impl Reads<'_> {
         Ok(out)
     }
 
-    /// Returns every key that has two present entries.
+    /// Returns every key that has two present entries which do not say the same.
+    ///
+    /// Two signed outcomes of a visit are none: the latest stands, and what the readings say now is
+    /// shown beside it.
     pub fn conflicts(&self) -> Result<Vec<Conflict>> {
         let mut out = Vec::new();
-        for table in TABLES.iter().filter(|t| t.name != "correction") {
-            let key = table.key.join(", ");
+        for table in TABLES {
+            let said: Vec<String> = table
+                .columns
+                .iter()
+                .filter(|c| !table.key.contains(c) && **c != "visit_id")
+                .map(|c| format!("quote(x.{c})"))
+                .collect();
+            if said.is_empty() || matches!(table.name, "correction" | "outcome" | "import") {
+                continue;
+            }
+            let (key, from) = if table.name == "reading" {
+                (
+                    "q.lead, x.try_no, x.field".to_owned(),
+                    "reading x JOIN visit_part q ON q.visit_id = x.visit_id".to_owned(),
+                )
+            } else {
+                (table.key.join(", "), format!("{} x", table.name))
+            };
             let sql = format!(
-                "SELECT group_concat(hex(x.id)) FROM {} x WHERE {LIVE} GROUP BY {key} HAVING count(*) > 1",
-                table.name
+                "SELECT group_concat(hex(x.id)) FROM {from} WHERE {LIVE} GROUP BY {key} \
+                 HAVING count(DISTINCT {}) > 1",
+                said.join(" || ',' || ")
             );
             let mut found = self.conn.prepare_cached(&sql)?;
             let lists = found.query_map([], |r| r.get::<_, String>(0))?;
@@ -165,7 +193,7 @@ impl Reads<'_> {
     /// Returns the head of the ledger.
     pub fn head(&self) -> Result<Head> {
         let mut found = self.conn.prepare_cached(
-            "SELECT chain, seq, tx_hash, entries FROM chain_current ORDER BY chain",
+            "SELECT chain, seq, tx_hash, entries FROM chain_current ORDER BY chain, seq, tx_hash",
         )?;
         let mut rows = found.query([])?;
         let mut chains: Vec<(Uuid, i64, Vec<u8>)> = Vec::new();
@@ -223,7 +251,11 @@ impl Reads<'_> {
 
     /// Returns the screening days, latest first.
     pub fn days(&self) -> Result<Vec<ScreeningDay>> {
-        self.rows(LIVE, "x.screened_on DESC, x.site, x.protocol", &[])
+        let mut days: Vec<ScreeningDay> = self.all()?;
+        days.sort_by(|a, b| {
+            (b.screened_on, &a.site, &a.protocol).cmp(&(a.screened_on, &b.site, &b.protocol))
+        });
+        Ok(days)
     }
 
     /// Returns a station as it is now.
@@ -277,7 +309,7 @@ impl Reads<'_> {
         let kind = kind.to_owned();
         self.rows(
             &format!("x.kind = ?1 AND {LIVE}"),
-            "x.tx, x.ord",
+            OLDEST_FIRST,
             &[kind.cell()],
         )
     }
@@ -322,6 +354,22 @@ impl Reads<'_> {
 
 /// Holds for an entry `x` that no correction superseded.
 pub(in crate::store) const LIVE: &str = "NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id)";
+
+/// Keeps the latest of each key, where the first of it stood.
+fn one_of_each_key<R: Row>(rows: Vec<R>) -> Vec<R> {
+    let mut places: HashMap<Vec<u8>, usize> = HashMap::new();
+    let mut out: Vec<R> = Vec::with_capacity(rows.len());
+    for row in rows {
+        match places.entry(key_bytes(&row)) {
+            Entry::Occupied(place) => out[*place.get()] = row,
+            Entry::Vacant(place) => {
+                place.insert(out.len());
+                out.push(row);
+            }
+        }
+    }
+    out
+}
 
 fn columns_of<R: Row>() -> String {
     let columns: Vec<String> = R::TABLE.columns.iter().map(|c| format!("x.{c}")).collect();

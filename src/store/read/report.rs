@@ -6,7 +6,8 @@ use chrono::NaiveDate;
 use rusqlite::params;
 use uuid::Uuid;
 
-use super::visit::VISIT_NOW;
+use super::generic::OLDEST_FIRST;
+use super::visit::{OF_VISIT, VISIT_NOW};
 use super::{ChildNow, Columns, ReadingNow, Reads, VisitNow};
 use crate::clock::Moment;
 use crate::store::cell::Value;
@@ -59,10 +60,10 @@ impl Reads<'_> {
         for outcome in self.rows::<Outcome>(
             "x.id IN (SELECT v.outcome_id FROM visit_current v WHERE v.site = ?1 \
              AND v.screened_on = ?2 AND v.protocol = ?3)",
-            "x.tx, x.ord",
+            OLDEST_FIRST,
             &[day.site.cell(), day.screened_on.cell(), day.protocol.cell()],
         )? {
-            outcomes.insert(outcome.visit_id, outcome);
+            outcomes.insert(outcome.id, outcome);
         }
         let mut out = Vec::new();
         for child in self.day_children(day, day.screened_on)? {
@@ -80,9 +81,9 @@ impl Reads<'_> {
                 out.push(ReportRow {
                     child: child.child.clone(),
                     readings: self.readings(visit.visit_id)?,
-                    outcome: outcomes.remove(&visit.visit_id),
+                    outcome: visit.outcome_id.and_then(|id| outcomes.remove(&id)),
                     entered: self
-                        .recorded::<Visit>("x.visit_id = ?1", &[visit.visit_id.cell()])?
+                        .recorded::<Visit>(OF_VISIT, &[visit.visit_id.cell()])?
                         .first()
                         .map(|entry| entry.at),
                     visit: Some(visit),
@@ -101,7 +102,7 @@ impl Reads<'_> {
                  AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = y.id))",
                 super::generic::LIVE
             ),
-            "x.at_ms, x.tx, x.ord",
+            &format!("x.at_ms, {OLDEST_FIRST}"),
             &[],
         )?
         .into_iter()
@@ -118,10 +119,10 @@ impl Reads<'_> {
     pub fn urgent_of(&self, visit: Uuid) -> Result<Vec<UrgentAction>> {
         self.rows::<UrgentAction>(
             &format!(
-                "x.visit_id = ?1 AND x.step = 'raised' AND {}",
+                "{OF_VISIT} AND x.step = 'raised' AND {}",
                 super::generic::LIVE
             ),
-            "x.tx, x.ord",
+            OLDEST_FIRST,
             &[visit.cell()],
         )
     }
@@ -145,6 +146,15 @@ impl Reads<'_> {
                  AND (w.kind <> 'incomplete' OR w.due_on IS NOT NULL) AND (w.screened_on > v.screened_on \
                  OR (w.screened_on = v.screened_on AND w.attempt > v.attempt))) \
              ORDER BY v.due_on IS NULL, v.due_on, v.visit_id"
+        ))
+    }
+
+    /// Returns the visits for which several signatures stand or values differ: what
+    /// they say now may be something else than what was signed last.
+    pub fn several(&self) -> Result<Vec<(ChildNow, VisitNow)>> {
+        self.with_children(&format!(
+            "SELECT {VISIT_NOW} FROM visit_current v WHERE v.signatures > 1 OR v.conflict \
+             ORDER BY v.screened_on, v.child_id, v.attempt, v.visit_id"
         ))
     }
 

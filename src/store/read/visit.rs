@@ -4,6 +4,7 @@ use chrono::NaiveDate;
 use rusqlite::params;
 use uuid::Uuid;
 
+use super::generic::{LATEST_FIRST, LIVE, OLDEST_FIRST};
 use super::{Columns, Corrected, Reads};
 use crate::domain::codes::{Attempt, Status};
 use crate::domain::field::Field;
@@ -11,6 +12,10 @@ use crate::domain::outcome::{OutcomeKind, Urgency};
 use crate::store::cell::Value;
 use crate::store::error::Result;
 use crate::store::row::{DayKey, Outcome, Reading, Visit};
+
+/// Holds for a row `x` of any part of the visit `?1`.
+pub(super) const OF_VISIT: &str = "x.visit_id IN (SELECT ?1 UNION SELECT q.visit_id \
+    FROM visit_part p JOIN visit_part q ON q.lead = p.lead WHERE p.visit_id = ?1)";
 
 /// What a screen shows of a visit.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -39,8 +44,12 @@ pub struct VisitNow {
     pub station_id: Option<Uuid>,
     /// Whether anything of it was corrected.
     pub corrected: bool,
-    /// Whether two present values stand for one fact.
+    /// Whether two present values for one fact differ.
     pub conflict: bool,
+    /// Under how many ids stations recorded it: the parts of one visit.
+    pub parts: i64,
+    /// How many present outcomes were signed for it.
+    pub signatures: i64,
     /// When it was last recorded, UTC milliseconds.
     pub recorded_at_ms: i64,
 }
@@ -48,6 +57,7 @@ pub struct VisitNow {
 pub(super) const VISIT_NOW: &str = "v.visit_id, v.child_id, v.site, v.screened_on, v.protocol, \
     v.attempt, v.status, v.readings, v.tries, v.outcome_id, v.kind, v.decided_by, v.urgency, \
     v.act_by, v.due_on, v.qualifiers, v.screener_id, v.station_id, v.corrected, v.conflict, \
+    v.parts, v.signatures, \
     v.recorded_at_ms";
 
 impl VisitNow {
@@ -73,8 +83,16 @@ impl VisitNow {
             station_id: c.take()?,
             corrected: c.take()?,
             conflict: c.take()?,
+            parts: c.take()?,
+            signatures: c.take()?,
             recorded_at_ms: c.take()?,
         })
+    }
+
+    /// Says whether what was signed last need not be what the readings say together: several
+    /// signatures stand, or values differ.
+    pub fn is_several(&self) -> bool {
+        self.signatures > 1 || self.conflict
     }
 
     /// Returns the key of its day.
@@ -92,10 +110,12 @@ impl VisitNow {
 #[allow(missing_docs)]
 pub struct ReadingNow {
     pub id: Uuid,
+    /// The part of the visit it was recorded under.
+    pub visit_id: Uuid,
     pub try_no: i64,
     pub field: Field,
     pub value: String,
-    /// Whether another present value stands beside it.
+    /// Whether another present value of the same field differs.
     pub conflict: bool,
 }
 
@@ -110,10 +130,13 @@ pub struct VisitRecord {
 }
 
 impl Reads<'_> {
-    /// Returns a visit as it is now.
+    /// Returns a visit as it is now, by the id of any of its parts.
     pub fn visit(&self, visit_id: Uuid) -> Result<Option<VisitNow>> {
         Ok(self
-            .visits_where("v.visit_id = ?1", params![visit_id.cell()])?
+            .visits_where(
+                "v.visit_id = (SELECT p.lead FROM visit_part p WHERE p.visit_id = ?1)",
+                params![visit_id.cell()],
+            )?
             .pop())
     }
 
@@ -144,22 +167,24 @@ impl Reads<'_> {
         self.visits_where("v.child_id = ?1", params![child_id])
     }
 
-    /// Returns the present readings of a visit, by try and field.
+    /// Returns the present readings of a visit, all its parts together, by try and field.
     ///
-    /// Where two present values stand for one fact both are here and say so.
+    /// Where present values for one fact differ all are here and say so.
     pub fn readings(&self, visit_id: Uuid) -> Result<Vec<ReadingNow>> {
-        let mut found = self.conn.prepare_cached(
-            "SELECT x.id, x.try_no, x.field, x.value, count(*) OVER (PARTITION BY x.try_no, x.field) > 1 \
-             FROM reading x WHERE x.visit_id = ?1 \
-             AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id) \
-             ORDER BY x.try_no, x.tx, x.ord",
-        )?;
+        let mut found = self.conn.prepare_cached(&format!(
+            "SELECT x.id, x.visit_id, x.try_no, x.field, x.value, \
+             min(x.value) OVER same <> max(x.value) OVER same \
+             FROM reading x LEFT JOIN tx t ON t.tx = x.tx WHERE {OF_VISIT} AND {LIVE} \
+             WINDOW same AS (PARTITION BY x.try_no, x.field) \
+             ORDER BY x.try_no, {OLDEST_FIRST}"
+        ))?;
         let mut rows = found.query([visit_id.cell()])?;
         let mut out = Vec::new();
         while let Some(row) = rows.next()? {
             let c = &mut Columns::of(row, "reading");
             out.push(ReadingNow {
                 id: c.take()?,
+                visit_id: c.take()?,
                 try_no: c.take()?,
                 field: c.take()?,
                 value: c.take()?,
@@ -171,11 +196,10 @@ impl Reads<'_> {
 
     /// Returns the present outcomes of a visit, latest first.
     pub fn outcomes(&self, visit_id: Uuid) -> Result<Vec<Outcome>> {
-        let id = visit_id.cell();
         self.rows(
-            &format!("x.visit_id = ?1 AND {}", super::generic::LIVE),
-            super::generic::LATEST_FIRST,
-            &[id],
+            &format!("{OF_VISIT} AND {LIVE}"),
+            LATEST_FIRST,
+            &[visit_id.cell()],
         )
     }
 
@@ -190,9 +214,9 @@ impl Reads<'_> {
     pub fn visit_record(&self, now: VisitNow) -> Result<VisitRecord> {
         let id = now.visit_id;
         Ok(VisitRecord {
-            visit: self.recorded("x.visit_id = ?1", &[id.cell()])?,
-            readings: self.recorded("x.visit_id = ?1", &[id.cell()])?,
-            outcomes: self.recorded("x.visit_id = ?1", &[id.cell()])?,
+            visit: self.recorded(OF_VISIT, &[id.cell()])?,
+            readings: self.recorded(OF_VISIT, &[id.cell()])?,
+            outcomes: self.recorded(OF_VISIT, &[id.cell()])?,
             now,
         })
     }

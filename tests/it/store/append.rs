@@ -320,20 +320,77 @@ fn two_present_values_are_a_conflict_until_settled() {
 }
 
 #[test]
-fn two_visits_of_one_key_show_the_conflict_on_both() {
+fn two_visits_of_one_key_are_parts_of_one() {
     let (_temp, mut store) = fresh();
     let one = fill(&mut store);
     let two = visit("Q-1");
-    store.append(&author(), |tx| tx.add(&two)).unwrap();
+    store
+        .append(&author(), |tx| {
+            tx.add(&two)?;
+            tx.add(&reading(two.visit_id, Field::Status, "present"))?;
+            tx.add(&reading(two.visit_id, Field::StereoCorrect, "6"))?;
+            tx.add(&reading(two.visit_id, Field::DistanceRight, "20/63"))?;
+            tx.add(&outcome(two.visit_id, OutcomeKind::Refer))
+        })
+        .unwrap();
+    store.verify(None, |_, _| {}).unwrap();
+    let now = store.read().visit(one).unwrap().unwrap();
+    assert_eq!(store.read().visit(two.visit_id).unwrap(), Some(now.clone()));
+    assert_eq!(store.read().visits_now("Q-1").unwrap(), [now.clone()]);
+    assert_eq!(
+        (now.visit_id, now.parts, now.signatures),
+        (one, 2, 2),
+        "the first stands for both"
+    );
+    assert_eq!(now.kind, Some(OutcomeKind::Refer), "signed last");
+    assert_eq!(now.readings, 4, "each field once");
+    assert!(now.conflict && now.is_several());
     for id in [one, two.visit_id] {
-        assert!(store.read().visit(id).unwrap().unwrap().conflict);
+        let readings = store.read().readings(id).unwrap();
+        assert_eq!(readings.len(), 6);
+        for r in readings {
+            assert_eq!(r.conflict, r.field == Field::DistanceRight, "{r:?}");
+        }
+        assert_eq!(store.read().outcomes(id).unwrap().len(), 2);
     }
+    let conflicts = store.read().conflicts().unwrap();
+    assert_eq!(conflicts.len(), 1, "two signatures are none: {conflicts:?}");
+    assert_eq!(conflicts[0].table, "reading");
+
     store
         .append(&author(), |tx| {
             tx.supersede::<row::Visit>(&[two.id], None, "entered twice")
         })
         .unwrap();
-    assert!(!store.read().visit(one).unwrap().unwrap().conflict);
+    let now = store.read().visit(one).unwrap().unwrap();
+    assert_eq!((now.parts, now.signatures, now.conflict), (1, 1, false));
+    assert_eq!(store.read().visit(two.visit_id).unwrap(), None);
+    store.verify(None, |_, _| {}).unwrap();
+}
+
+#[test]
+fn the_same_values_twice_are_no_conflict() {
+    let (_temp, mut store) = fresh();
+    fill(&mut store);
+    for _ in 0..2 {
+        store
+            .append(&author(), |tx| tx.add(&child("Q-9", "Moss", "Tobin")))
+            .unwrap();
+    }
+    assert!(store.read().conflicts().unwrap().is_empty());
+    let put = store
+        .append(&author(), |tx| tx.put(child("Q-9", "Moss", "Tobin"), ""))
+        .unwrap();
+    assert_eq!(put, Put::Unchanged);
+    store
+        .append(&author(), |tx| tx.add(&child("Q-9", "Moss", "Tobias")))
+        .unwrap();
+    assert_eq!(store.read().conflicts().unwrap().len(), 1);
+    assert_eq!(
+        store.read().child("Q-9").unwrap().unwrap().given_name,
+        "Tobias",
+        "the latest stands"
+    );
     store.verify(None, |_, _| {}).unwrap();
 }
 

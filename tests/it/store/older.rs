@@ -97,7 +97,7 @@ fn the_copy_made_first_is_the_old_store() {
     let (_temp, dir) = sample();
     let before = fs::read(dir.join("store.db")).unwrap();
     drop(Store::open(&dir, &secret(), WRITE).unwrap());
-    let copy = dir.join("before-version-2");
+    let copy = dir.join("copy-of-version-1");
     let error = Store::open(&copy, &secret(), Access::ReadOnly).unwrap_err();
     assert_eq!(error.kind(), ErrorKind::Older);
     let error = error.to_string();
@@ -116,7 +116,7 @@ fn reading_only_says_what_to_do_and_changes_nothing() {
     assert_eq!(error.kind(), ErrorKind::Older);
     assert!(error.hint().unwrap().contains("any command that writes"));
     assert_eq!(fs::read(dir.join("store.db")).unwrap(), before);
-    assert!(!dir.join("before-version-2").exists());
+    assert!(!dir.join("copy-of-version-1").exists());
 }
 
 /// What is wrong before a migration is found before it, and nothing is touched.
@@ -136,7 +136,7 @@ fn a_damaged_old_store_is_left_as_it_is() {
         let error = Store::open(&dir, &secret(), WRITE).unwrap_err();
         assert_eq!(error.kind(), ErrorKind::Damaged);
         assert!(error.to_string().starts_with("damaged: site"), "{error}");
-        assert!(!dir.join("before-version-2").exists());
+        assert!(!dir.join("copy-of-version-1").exists());
     }
     let error = Store::open(&dir, &secret(), Access::ReadOnly).unwrap_err();
     assert_eq!(error.kind(), ErrorKind::Older, "still the old version");
@@ -149,12 +149,12 @@ fn without_room_for_the_copy_nothing_is_changed() {
     let key_file = dir.join("store.key");
     let key = fs::read(&key_file).unwrap();
     // A file stands where each copy would have its folder.
-    fs::write(dir.join("before-version-2"), b"in the way").unwrap();
+    fs::write(dir.join("copy-of-version-1"), b"in the way").unwrap();
     drop(Store::open(&dir, &secret(), WRITE).unwrap());
     assert_eq!(
-        fs::read(dir.join("before-version-2")).unwrap(),
+        fs::read(dir.join("copy-of-version-1")).unwrap(),
         b"in the way"
     );
-    assert!(dir.join("before-version-2-2").join("store.db").exists());
+    assert!(dir.join("copy-of-version-1-2").join("store.db").exists());
     assert_eq!(fs::read(&key_file).unwrap(), key);
 }

@@ -138,6 +138,7 @@ fn every_column_of_transactions_and_projections() {
         "superseded",
         "chain_current",
         "child_current",
+        "visit_part",
         "visit_current",
         "here",
     ] {
