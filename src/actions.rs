@@ -21,6 +21,7 @@ mod settings;
 mod setup;
 mod sign;
 mod triage;
+mod united;
 mod upkeep;
 mod urgent;
 mod views;
@@ -46,7 +47,8 @@ pub use triage::{NO_TRIAGE_SET, Said, Standing, whole_reason};
 pub use upkeep::{protected, remove_demo, store_info, writer};
 pub use views::{
     Before, ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay,
-    OpenUrgent, QueueState, SignRequest, Signed, StoredOutcome, UrgentAnswer, VisitView,
+    OpenUrgent, QueueState, SignRequest, Signed, StoredOutcome, Together, Unsettled, UrgentAnswer,
+    VisitView,
 };
 pub use visit_rows::judged;
 pub use worklist::{DueBack, ORDER, Referred, Worklist, due_words};

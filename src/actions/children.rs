@@ -7,9 +7,10 @@ use uuid::Uuid;
 use super::days::key_of;
 use super::desk::Desk;
 use super::error::{ActionError, Result};
-use super::judging::{known, preview};
+use super::judging::known;
 use super::search::SearchIndex;
 use super::triage::Standing;
+use super::united::unsettled;
 use super::views::{
     ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, VisitView,
 };
@@ -19,7 +20,7 @@ use crate::domain::codes::{Consent, YesNo};
 use crate::domain::text::is_unsafe;
 use crate::rules::explain;
 use crate::store::new_id;
-use crate::store::read::{ReadingNow, Recorded, VisitRecord};
+use crate::store::read::{Recorded, VisitRecord};
 use crate::store::row::{Child, Correction, Enrolment, Reading};
 
 impl Desk {
@@ -162,19 +163,7 @@ impl Desk {
             id.and_then(|id| screeners.get(&id).cloned())
                 .unwrap_or_default()
         };
-        let present: Vec<ReadingNow> = record
-            .readings
-            .iter()
-            .filter(|r| !r.superseded)
-            .map(|r| ReadingNow {
-                id: r.row.id,
-                visit_id: r.row.visit_id,
-                try_no: r.row.try_no,
-                field: r.row.field,
-                value: r.row.value.clone(),
-                conflict: false,
-            })
-            .collect();
+        let present = self.read().readings(record.now.visit_id)?;
         let mut tries = tries_of(&present)?;
         let readings = judged(&tries);
         tries.pop();
@@ -198,7 +187,8 @@ impl Desk {
             };
             let (whole, _) = known(&child, &readings);
             standing = Standing::of(&self.library, &self.triage_sets(), child.age, &whole);
-            now = preview(&self.library, day, &child, &readings)
+            now = self
+                .judged_together(day, &child, &present)?
                 .filter(|o| {
                     o.kind != signed.row.kind || o.criteria.join(";") != signed.row.criteria
                 })
@@ -215,6 +205,7 @@ impl Desk {
             earlier_tries: tries,
             outcome: outcome.map(|o| stored_outcome(&o.row)),
             now,
+            unsettled: unsettled(&present),
             screener: named(outcome.and_then(|o| o.row.screener_id)),
             station: outcome
                 .and_then(|o| o.row.station_id)

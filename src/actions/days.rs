@@ -94,7 +94,7 @@ impl Desk {
             .read()
             .day_children(&key_of(day), since)?
             .into_iter()
-            .map(|child| self.day_child_of(child, day.date))
+            .map(|child| self.child_of_day(child, day))
             .collect::<Result<_>>()?;
         children.sort_by_key(|c| c.due_on.is_none_or(|due| due > day.date));
         Ok(children)
@@ -122,13 +122,14 @@ impl Desk {
             visits,
             earlier,
         };
-        self.day_child_of(stored, day.date)
+        self.child_of_day(stored, day)
     }
 
-    fn day_child_of(&self, stored: StoredChild, on: NaiveDate) -> Result<DayChild> {
+    /// Returns a child of a day with what an earlier visit leaves to it.
+    pub(super) fn with_before(&self, stored: StoredChild, day: &DayInfo) -> Result<DayChild> {
         let asked_back = asked_back(&stored.earlier).cloned();
         let visit = stored.visits.last().map(|v| v.visit_id);
-        let mut child = day_child(stored, on);
+        let mut child = day_child(stored, day.date);
         if let Some(visit) = visit.filter(|_| child.state == QueueState::NotTestable) {
             let tries = self.read().readings(visit)?;
             let last = tries.iter().map(|r| r.try_no).max();
@@ -141,9 +142,16 @@ impl Desk {
     }
 
     pub(super) fn day_info(&self, id: Uuid) -> Result<DayInfo> {
+        // Two stations may both have opened the day: either entry means it.
+        let opened = self.read().entry::<ScreeningDay>(id)?;
+        let key = opened.map(|day| DayKey {
+            site: day.site,
+            screened_on: day.screened_on,
+            protocol: day.protocol,
+        });
         self.days()?
             .into_iter()
-            .find(|day| day.id == id)
+            .find(|day| Some(key_of(day)) == key)
             .ok_or_else(|| ActionError::bad("this screening day is not in the store"))
     }
 
@@ -220,6 +228,7 @@ pub(super) fn day_child(stored: StoredChild, on: NaiveDate) -> DayChild {
         due_on,
         before: None,
         tries: 0,
+        together: None,
         state: here.map_or(QueueState::ToCome, |visit| state_of(visit, child.consent)),
         wears_glasses: child.wears_glasses.map(|v| v == YesNo::Yes),
         consent: child.consent,

@@ -11,7 +11,7 @@ use crate::domain::readings::Readings;
 use crate::domain::screening_test::ScreeningTest;
 use crate::rules::{
     Applies, Case, Criterion, Earlier, Library, Measure, PassLine, Protocol, judge_protocol,
-    pass_line,
+    judge_protocol_alternatives, pass_line,
 };
 
 /// Returns what the readings come to for this child on this day.
@@ -23,10 +23,37 @@ pub fn preview(
     child: &DayChild,
     readings: &Readings,
 ) -> Option<Outcome> {
+    preview_alternatives(library, day, child, std::slice::from_ref(readings))
+}
+
+/// Returns what readings come to of which nobody has settled which they are.
+pub(super) fn preview_alternatives(
+    library: &Library,
+    day: &DayInfo,
+    child: &DayChild,
+    alternatives: &[Readings],
+) -> Option<Outcome> {
     let protocol = library.protocol(&day.protocol)?;
-    let (readings, carried) = known(child, readings);
-    let mut outcome = judge_protocol(library, protocol, &case(day, child, &readings));
-    outcome.protocol_notes.extend(carried);
+    let mut words: Vec<String> = Vec::new();
+    let mut whole: Vec<Cow<'_, Readings>> = Vec::new();
+    for readings in alternatives {
+        let (readings, carried) = known(child, readings);
+        words.extend(carried.filter(|said| !words.contains(said)));
+        whole.push(readings);
+    }
+    let mut outcome = match &whole[..] {
+        [] => return None,
+        [only] => judge_protocol(library, protocol, &case(day, child, only)),
+        [first, ..] => {
+            let case = Case {
+                under_care: whole.iter().all(|r| case(day, child, r).under_care),
+                ..case(day, child, first)
+            };
+            let all: Vec<Readings> = whole.iter().map(|r| r.as_ref().clone()).collect();
+            judge_protocol_alternatives(library, protocol, &case, &all)
+        }
+    };
+    outcome.protocol_notes.extend(words);
     Some(outcome)
 }
 

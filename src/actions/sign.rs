@@ -9,6 +9,7 @@ use super::views::{DayChild, DayInfo, SignRequest, Signed};
 use super::visit_rows::{reasoned, stored_outcome, take_back};
 use crate::domain::field::Field;
 use crate::domain::readings::Readings;
+use crate::domain::screening_test::ScreeningTest;
 use crate::store::new_id;
 use crate::store::read::VisitNow;
 
@@ -16,7 +17,9 @@ impl Desk {
     /// Signs a visit: readings, outcome and, for an emergency, the running line, in one transaction.
     ///
     /// The same visit id with the same readings again is a retry and writes nothing. Another try of a
-    /// child whose chart was not testable is kept as a second try of the same visit.
+    /// child whose chart was not testable is kept as a second try of the same visit. Readings of
+    /// fields that the signed visit lacks, and that contradict none of it, are a further part of it:
+    /// one station did the chart, another one the instrument.
     pub fn sign(&mut self, request: SignRequest) -> Result<Signed> {
         let day = self.day_info(request.day)?;
         let child = self.day_child(&day, &request.child_id)?;
@@ -39,6 +42,30 @@ impl Desk {
         if visit.visit_id == request.visit && tries.last() == Some(&readings) {
             return self.signed(&day, &request.child_id, visit.visit_id);
         }
+        let whole = visit.visit_id;
+        let chart_again = tries.last().is_some_and(Readings::any_eye_not_testable)
+            && ScreeningTest::Distance
+                .fields()
+                .iter()
+                .any(|field| readings.get(*field).is_some());
+        let adds = if chart_again {
+            None
+        } else {
+            self.adds_to(whole, &readings)?
+        };
+        match adds {
+            // The same part again is a retry.
+            Some(more) if more.is_empty() && self.read().visit(request.visit)?.is_some() => {
+                return self.signed(&day, &request.child_id, whole);
+            }
+            Some(more) if !more.is_empty() => {
+                let ids = (whole, request.visit);
+                let rows = self.further_part(&day, &child, ids, more)?;
+                self.write_visits(vec![rows])?;
+                return self.signed(&day, &request.child_id, whole);
+            }
+            _ => {}
+        }
         if !tries.last().is_some_and(Readings::any_eye_not_testable) {
             return Err(ActionError::bad(format!(
                 "{}, {} is signed already on this day",
@@ -50,6 +77,22 @@ impl Desk {
         let rows = self.further_try(&day, &child, visit.visit_id, &tries)?;
         self.write_visits(vec![rows])?;
         self.signed(&day, &request.child_id, visit.visit_id)
+    }
+
+    /// Returns the readings of fields that a signed visit does not have yet, where all others say what
+    /// it says: another station's part of the visit. Nothing where anything differs.
+    fn adds_to(&self, visit: Uuid, readings: &Readings) -> Result<Option<Vec<(Field, String)>>> {
+        let present = self.read().readings(visit)?;
+        let mut more = Vec::new();
+        for (field, value) in readings.recorded() {
+            let mut of_field = present.iter().filter(|r| r.field == field).peekable();
+            if of_field.peek().is_none() {
+                more.push((field, value));
+            } else if of_field.any(|r| r.value != value) {
+                return Ok(None);
+            }
+        }
+        Ok(Some(more))
     }
 
     /// Corrects fields of a signed visit, with a reason; an empty text takes a value back.
@@ -76,6 +119,12 @@ impl Desk {
         let (now, day) = self.visit_and_day(visit)?;
         if now.child_id == to_child_id {
             return Err(ActionError::bad("this visit is that child's already"));
+        }
+        if now.conflict {
+            return Err(
+                ActionError::bad("values of this visit differ between stations")
+                    .hint("settle them first: twoline correct"),
+            );
         }
         let to = self.day_child(&day, to_child_id)?;
         if self

@@ -7,7 +7,8 @@ use super::triage::Standing;
 use crate::clock::Moment;
 use crate::domain::age::{AgeMonths, Grade};
 use crate::domain::codes::{AcuityMethod, Attempt, Consent, History};
-use crate::domain::outcome::{OutcomeKind, RiskKind, Urgency};
+use crate::domain::field::Field;
+use crate::domain::outcome::{Outcome, OutcomeKind, RiskKind, Urgency};
 use crate::domain::readings::Readings;
 
 /// A screening day: one site, one date, one protocol.
@@ -117,10 +118,12 @@ pub struct DayChild {
     pub due_on: Option<NaiveDate>,
     /// On a rescreen: what the visit before leaves to it.
     pub before: Option<Before>,
-    /// How the child stands on this day.
+    /// How the child stands on this day; after several stations, what their readings say now.
     pub state: QueueState,
     /// Tries of this day of a chart that was not testable.
     pub tries: u32,
+    /// What several stations' readings of the visit of this day say together.
+    pub together: Option<Together>,
 }
 
 impl DayChild {
@@ -128,6 +131,48 @@ impl DayChild {
     pub fn waits_for_second_try(&self) -> bool {
         self.state == QueueState::NotTestable && self.tries == 1
     }
+}
+
+/// What the readings of a visit say together, where several signatures stand for it or values differ.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Together {
+    /// What was signed last.
+    pub signed: Option<OutcomeKind>,
+    /// What all readings say now.
+    pub now: Outcome,
+    /// The same as one line: `REFER, prompt, by 28 Oct 2026`.
+    pub headline: String,
+    /// Values that nobody has settled.
+    pub unsettled: Vec<Unsettled>,
+}
+
+impl Together {
+    /// Says in words what was signed and what it is now; nothing where the two are the same and
+    /// nothing differs.
+    pub fn words(&self) -> Option<String> {
+        let signed = self.signed.map_or("nothing", OutcomeKind::title);
+        if self.unsettled.is_empty() {
+            return (self.signed != Some(self.now.kind))
+                .then(|| format!("signed as {signed}, now {}", self.now.kind.title()));
+        }
+        let fields: Vec<&str> = self.unsettled.iter().map(|u| u.field.title()).collect();
+        Some(format!(
+            "signed as {signed}, now {}; not settled: {}",
+            self.now.kind.title(),
+            fields.join(", ")
+        ))
+    }
+}
+
+/// One fact with different values, until a person settles it.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Unsettled {
+    /// The try, from 1.
+    pub try_no: i64,
+    /// The field.
+    pub field: Field,
+    /// The values, in the order they were recorded.
+    pub values: Vec<String>,
 }
 
 /// What a visit that ended in a rescreen leaves to the next one.
@@ -217,6 +262,8 @@ pub struct VisitView {
     pub outcome: Option<StoredOutcome>,
     /// What the readings would say now, where that differs.
     pub now: Option<String>,
+    /// Values that differ between the parts of the visit; they are left out of the readings.
+    pub unsettled: Vec<Unsettled>,
     /// Who signed.
     pub screener: String,
     /// Where.

@@ -1,5 +1,7 @@
 //! The entries that a signature, a further try or a correction consists of.
 
+mod parts;
+
 use uuid::Uuid;
 
 use super::desk::Desk;
@@ -15,6 +17,8 @@ use crate::rules::explain;
 use crate::store::read::ReadingNow;
 use crate::store::row::{self, Reading, RuleSetUsed, UrgentAction, Visit};
 use crate::store::{Row, Tx, new_id};
+
+use parts::edits_of;
 
 /// What separates list items in a stored cell.
 const SEPARATOR: &str = ";";
@@ -144,15 +148,7 @@ impl Desk {
             .zip(1..)
             .flat_map(|(r, n)| reading_rows(visit, n, r))
             .collect();
-        rows.new = Some(Visit {
-            id: new_id(),
-            visit_id: visit,
-            child_id: child.child_id.clone(),
-            site: day.site.clone(),
-            screened_on: day.date,
-            protocol: day.protocol.clone(),
-            attempt: child.attempt,
-        });
+        rows.new = Some(visit_row(day, child, visit));
         Ok(rows)
     }
 
@@ -199,51 +195,61 @@ impl Desk {
         if tries.is_empty() {
             tries.push(Readings::default());
         }
-        let try_no = tries.len() as i64;
-        let last = tries.len() - 1;
-        let readings = &mut tries[last];
         let context = ReadingContext {
             bare: Some(self.notation()),
             critical_line: pass_line_for(&self.library, &day, &child).map(|p| p.line),
         };
         let mut edits = Vec::new();
+        let mut after = present;
         for (field, text) in changes {
+            // What differs is settled where it differs; anything else is of the last try.
+            let differs = after.iter().filter(|r| r.conflict && r.field == *field);
+            let try_no = differs
+                .map(|r| r.try_no)
+                .max()
+                .unwrap_or(tries.len() as i64);
+            let readings = &mut tries[try_no as usize - 1];
             readings
                 .set(*field, text, context)
                 .map_err(|e| ActionError::bad(e.to_string()))?;
             let value = readings.get(*field);
-            let old: Vec<&ReadingNow> = present
-                .iter()
-                .filter(|r| r.field == *field && r.try_no == try_no)
-                .collect();
-            if matches!(&old[..], [one] if Some(&one.value) == value.as_ref())
-                || (old.is_empty() && value.is_none())
+            let of_field = |r: &ReadingNow| r.field == *field && r.try_no == try_no;
+            let old: Vec<&ReadingNow> = after.iter().filter(|r| of_field(r)).collect();
+            if old.iter().all(|r| Some(&r.value) == value.as_ref())
+                && old.is_empty() == value.is_none()
             {
                 continue;
             }
-            edits.push(Edit {
-                old: old.iter().map(|r| r.id).collect(),
-                new: value.map(|value| Reading {
-                    id: new_id(),
-                    visit_id: visit,
-                    try_no,
-                    field: *field,
-                    value,
-                }),
-            });
+            edits.extend(edits_of(
+                now.visit_id,
+                (try_no, *field),
+                &old,
+                value.as_deref(),
+            ));
+            after.retain(|r| !of_field(r));
+            after.extend(value.map(|value| ReadingNow {
+                id: Uuid::nil(),
+                visit_id: now.visit_id,
+                try_no,
+                field: *field,
+                value,
+                conflict: false,
+            }));
         }
-        if let Some(problem) = readings.contradictions().first() {
+        if let Some(problem) = tries.iter().flat_map(Readings::contradictions).next() {
             return Err(ActionError::bad(problem.to_string()));
         }
         let readings = judged(&tries);
-        let outcome = self.outcome_of(&day, &child, &readings)?;
+        let outcome = self
+            .judged_together(&day, &child, &after)?
+            .ok_or_else(|| no_protocol(&day))?;
         Ok(VisitRows {
-            visit,
+            visit: now.visit_id,
             new: None,
             readings: Vec::new(),
             edits,
-            outcome: self.outcome_row(visit, &day, &child, &outcome),
-            raise: self.emergency(visit, &child, &readings, &outcome)?,
+            outcome: self.outcome_row(now.visit_id, &day, &child, &outcome),
+            raise: self.emergency(now.visit_id, &child, &readings, &outcome)?,
             rules: self.rules_used(&day),
             reason: Some(reason),
         })
@@ -255,13 +261,7 @@ impl Desk {
     }
 
     fn outcome_of(&self, day: &DayInfo, child: &DayChild, readings: &Readings) -> Result<Outcome> {
-        preview(&self.library, day, child, readings).ok_or_else(|| {
-            ActionError::failed(format!(
-                "the protocol {} is not among the rule files",
-                day.protocol
-            ))
-            .hint("put its file back into the store's rules folder")
-        })
+        preview(&self.library, day, child, readings).ok_or_else(|| no_protocol(day))
     }
 
     /// Returns the running line that an emergency raises, unless this visit has one that still runs
@@ -376,6 +376,26 @@ impl Desk {
     }
 }
 
+fn visit_row(day: &DayInfo, child: &DayChild, visit: Uuid) -> Visit {
+    Visit {
+        id: new_id(),
+        visit_id: visit,
+        child_id: child.child_id.clone(),
+        site: day.site.clone(),
+        screened_on: day.date,
+        protocol: day.protocol.clone(),
+        attempt: child.attempt,
+    }
+}
+
+fn no_protocol(day: &DayInfo) -> ActionError {
+    ActionError::failed(format!(
+        "the protocol {} is not among the rule files",
+        day.protocol
+    ))
+    .hint("put its file back into the store's rules folder")
+}
+
 fn reading_rows(visit: Uuid, try_no: i64, readings: &Readings) -> Vec<Reading> {
     readings
         .recorded()
@@ -398,9 +418,9 @@ fn replace_outcome(
     reason: &str,
 ) -> crate::store::Result<()> {
     let old = tx.read().outcomes(visit)?;
-    let (same, other): (Vec<_>, Vec<_>) = old
-        .into_iter()
-        .partition(|o| o.rule_set == new.rule_set && o.edition == new.edition);
+    let (same, other): (Vec<_>, Vec<_>) = old.into_iter().partition(|o| {
+        o.visit_id == new.visit_id && o.rule_set == new.rule_set && o.edition == new.edition
+    });
     let ids = |rows: &[row::Outcome]| rows.iter().map(Row::id).collect::<Vec<_>>();
     if !other.is_empty() {
         tx.supersede::<row::Outcome>(&ids(&other), None, reason)?;
@@ -443,11 +463,11 @@ pub(super) fn take_back(tx: &mut Tx<'_>, visit: Uuid, reason: &str) -> crate::st
     Ok(())
 }
 
-/// Returns the tries of a visit, oldest first.
+/// Returns the tries of a visit, oldest first; values that differ are left out.
 pub(super) fn tries_of(readings: &[ReadingNow]) -> Result<Vec<Readings>> {
     let count = readings.iter().map(|r| r.try_no).max().unwrap_or(0);
     let mut tries = vec![Readings::default(); count as usize];
-    let mut sorted: Vec<&ReadingNow> = readings.iter().collect();
+    let mut sorted: Vec<&ReadingNow> = readings.iter().filter(|r| !r.conflict).collect();
     // Letters and method decide what an acuity means: the field list has them first.
     sorted.sort_by_key(|r| r.field);
     for reading in sorted {

@@ -143,6 +143,10 @@ fn every_column_of_transactions_and_projections() {
         "here",
     ] {
         for column in columns(&raw(&dir), table) {
+            // A secret and no entry: another one shows when a packet is read.
+            if column == "packet_key" {
+                continue;
+            }
             let damage = after(&dir, |conn| {
                 let value: Value = conn
                     .query_row(&format!("SELECT {column} FROM {table} ORDER BY 1 DESC LIMIT 1"), [], |r| r.get(0))

@@ -1,0 +1,283 @@
+//! A visit that several stations recorded: what its united readings say now, and what differs.
+//!
+//! What was signed last stands as it was signed. What all readings say together is judged anew
+//! whenever it is shown; of values that differ every combination is judged, and what they do not
+//! agree on is unknown.
+
+use std::collections::BTreeMap;
+
+use uuid::Uuid;
+
+use super::days::{day_child, key_of};
+use super::desk::Desk;
+use super::error::{ActionError, Result};
+use super::judging::preview_alternatives;
+use super::views::{DayChild, DayInfo, QueueState, Signed, Together, Unsettled};
+use super::visit_rows::{judged, tries_of};
+use crate::domain::field::Field;
+use crate::domain::outcome::{DecidedBy, Outcome, OutcomeKind};
+use crate::domain::readings::Readings;
+use crate::rules::explain;
+use crate::store::read::{ChildNow, DayChild as StoredChild, ReadingNow, VisitNow};
+
+/// How many combinations of unsettled values are judged; beyond it they all count as unknown.
+const COMBINATIONS: usize = 64;
+
+/// What an unsettled visit may have been, with whether all combinations are there.
+pub(super) struct Alternatives {
+    /// The judged readings of each combination.
+    pub(super) readings: Vec<Readings>,
+    /// Whether there were too many, so that only what is settled is here.
+    pub(super) too_many: bool,
+}
+
+/// Returns the readings that a visit may consist of: one for each combination of values that differ.
+pub(super) fn alternatives(present: &[ReadingNow]) -> Result<Alternatives> {
+    let mut choices: BTreeMap<(i64, Field), Vec<&ReadingNow>> = BTreeMap::new();
+    for reading in present.iter().filter(|r| r.conflict) {
+        let values = choices.entry((reading.try_no, reading.field)).or_default();
+        if !values.iter().any(|r| r.value == reading.value) {
+            values.push(reading);
+        }
+    }
+    let settled: Vec<ReadingNow> = present.iter().filter(|r| !r.conflict).cloned().collect();
+    let combinations = choices
+        .values()
+        .try_fold(1usize, |n, values| n.checked_mul(values.len()))
+        .filter(|n| *n <= COMBINATIONS);
+    let Some(combinations) = combinations else {
+        return Ok(Alternatives {
+            readings: vec![judged(&tries_of(&settled)?)],
+            too_many: true,
+        });
+    };
+    let mut readings = Vec::with_capacity(combinations);
+    for mut which in 0..combinations {
+        let mut chosen = settled.clone();
+        for values in choices.values() {
+            chosen.push(ReadingNow {
+                conflict: false,
+                ..values[which % values.len()].clone()
+            });
+            which /= values.len();
+        }
+        readings.push(judged(&tries_of(&chosen)?));
+    }
+    Ok(Alternatives {
+        readings,
+        too_many: false,
+    })
+}
+
+/// Returns the values that nobody has settled.
+pub(super) fn unsettled(present: &[ReadingNow]) -> Vec<Unsettled> {
+    let mut out: Vec<Unsettled> = Vec::new();
+    for reading in present.iter().filter(|r| r.conflict) {
+        let of = (reading.try_no, reading.field);
+        let values = match out.iter_mut().find(|u| (u.try_no, u.field) == of) {
+            Some(known) => &mut known.values,
+            None => {
+                out.push(Unsettled {
+                    try_no: reading.try_no,
+                    field: reading.field,
+                    values: Vec::new(),
+                });
+                let last = out.len() - 1;
+                &mut out[last].values
+            }
+        };
+        if !values.contains(&reading.value) {
+            values.push(reading.value.clone());
+        }
+    }
+    out.sort_by_key(|u| (u.try_no, u.field));
+    out
+}
+
+impl Desk {
+    /// Settles a value that differs between the parts of a visit, with a reason: one value stands.
+    pub fn settle(
+        &mut self,
+        visit: Uuid,
+        field: Field,
+        value: &str,
+        reason: &str,
+    ) -> Result<Signed> {
+        let present = self.read().readings(visit)?;
+        if !present.iter().any(|r| r.conflict && r.field == field) {
+            return Err(
+                ActionError::bad(format!("{} is not in conflict", field.title()))
+                    .hint("a value that was recorded once is corrected: twoline correct"),
+            );
+        }
+        self.correct(visit, &[(field, value.to_owned())], reason)
+    }
+
+    /// Returns what the readings of a visit say together, where several signatures stand for it or
+    /// values differ; nothing for any other visit.
+    pub(super) fn together(&self, visit: &VisitNow) -> Result<Option<Together>> {
+        if !visit.is_several() {
+            return Ok(None);
+        }
+        let key = visit.day();
+        let Some(day) = self.days()?.into_iter().find(|d| key_of(d) == key) else {
+            return Ok(None);
+        };
+        let child = self.child_on(&day, visit)?;
+        self.together_on(&day, &child, visit)
+    }
+
+    /// The same for a child whose day and roster are at hand.
+    pub(super) fn together_on(
+        &self,
+        day: &DayInfo,
+        child: &DayChild,
+        visit: &VisitNow,
+    ) -> Result<Option<Together>> {
+        if !visit.is_several() {
+            return Ok(None);
+        }
+        let present = self.read().readings(visit.visit_id)?;
+        let Some(outcome) = self.judged_together(day, child, &present)? else {
+            return Ok(None);
+        };
+        Ok(Some(Together {
+            signed: visit.kind,
+            headline: explain::headline(&outcome),
+            unsettled: unsettled(&present),
+            now: outcome,
+        }))
+    }
+
+    /// Judges present readings, all combinations of those that differ; nothing where the library does
+    /// not hold the protocol.
+    pub(super) fn judged_together(
+        &self,
+        day: &DayInfo,
+        child: &DayChild,
+        present: &[ReadingNow],
+    ) -> Result<Option<Outcome>> {
+        let alternatives = alternatives(present)?;
+        let outcome = preview_alternatives(&self.library, day, child, &alternatives.readings);
+        Ok(outcome.map(|mut outcome| {
+            if alternatives.too_many {
+                outcome.kind = OutcomeKind::Incomplete;
+                outcome.decided_by = DecidedBy::Conflict;
+                outcome.unknown.insert(0, crate::rules::CONFLICT.to_owned());
+            }
+            outcome
+        }))
+    }
+
+    /// Returns a visit with what its readings say now in the place of what was signed last.
+    pub(super) fn as_now(&self, visit: VisitNow) -> Result<VisitNow> {
+        Ok(match self.together(&visit)? {
+            Some(together) => said_now(visit, &together.now),
+            None => visit,
+        })
+    }
+
+    /// Returns the child of a visit as that day knew it.
+    fn child_on(&self, day: &DayInfo, visit: &VisitNow) -> Result<DayChild> {
+        let child = self.day_child(day, &visit.child_id)?;
+        Ok(DayChild {
+            attempt: visit.attempt,
+            ..child
+        })
+    }
+
+    /// Returns a child of a day as it stands, from what the store knows: visits of several parts
+    /// count as what they say now.
+    pub(super) fn child_of_day(&self, mut stored: StoredChild, day: &DayInfo) -> Result<DayChild> {
+        if stored.earlier.iter().any(VisitNow::is_several) {
+            stored.earlier = stored
+                .earlier
+                .into_iter()
+                .map(|visit| self.as_now(visit))
+                .collect::<Result<_>>()?;
+        }
+        let last = stored.visits.last().filter(|v| v.is_several()).cloned();
+        let Some(last) = last else {
+            return self.with_before(stored, day);
+        };
+        let child = self.with_before(stored.clone(), day)?;
+        let Some(together) = self.together_on(day, &child, &last)? else {
+            return Ok(child);
+        };
+        let tries = last.tries;
+        stored.visits.pop();
+        stored.visits.push(said_now(last, &together.now));
+        let standing = day_child(stored, day.date);
+        Ok(DayChild {
+            tries: if standing.state == QueueState::NotTestable {
+                u32::try_from(tries).unwrap_or(1)
+            } else {
+                0
+            },
+            state: standing.state,
+            together: Some(together),
+            ..child
+        })
+    }
+
+    /// Returns who is referred now, by the date to act by; visits of several parts count as what they
+    /// say now.
+    pub(super) fn referred_now(&self) -> Result<Vec<(ChildNow, VisitNow)>> {
+        let mut out = self.read().referred()?;
+        self.replace_several(&mut out, |v| v.kind == Some(OutcomeKind::Refer))?;
+        out.sort_by_key(|(_, v)| (v.act_by.is_none(), v.act_by, v.screened_on, v.visit_id));
+        Ok(out)
+    }
+
+    /// Returns who waits for another visit, by its date; visits of several parts count as what they
+    /// say now.
+    pub(super) fn due_now(&self) -> Result<Vec<(ChildNow, VisitNow)>> {
+        let waits = |v: &VisitNow| {
+            v.kind == Some(OutcomeKind::Rescreen)
+                || (v.kind.is_some_and(|kind| kind != OutcomeKind::Refer) && v.due_on.is_some())
+        };
+        let mut out = self.read().due()?;
+        self.replace_several(&mut out, waits)?;
+        out.sort_by_key(|(_, v)| (v.due_on.is_none(), v.due_on, v.visit_id));
+        Ok(out)
+    }
+
+    /// Puts visits of several parts into a list only where they belong there as they are now, and no
+    /// later visit of the child came to anything.
+    fn replace_several(
+        &self,
+        list: &mut Vec<(ChildNow, VisitNow)>,
+        belongs: impl Fn(&VisitNow) -> bool,
+    ) -> Result<()> {
+        list.retain(|(_, visit)| !visit.is_several());
+        for (child, visit) in self.read().several()? {
+            let now = self.as_now(visit)?;
+            if !belongs(&now) {
+                continue;
+            }
+            let refers = now.kind == Some(OutcomeKind::Refer);
+            let later = |v: &VisitNow| {
+                (v.screened_on, v.attempt) > (now.screened_on, now.attempt)
+                    && (v.kind != Some(OutcomeKind::Incomplete) || v.due_on.is_some())
+            };
+            let mut after = self.read().visits_now(&now.child_id)?.into_iter();
+            if refers || !after.any(|v| later(&v)) {
+                list.push((child, now));
+            }
+        }
+        Ok(())
+    }
+}
+
+/// Returns a visit that came to an outcome.
+fn said_now(visit: VisitNow, outcome: &Outcome) -> VisitNow {
+    VisitNow {
+        kind: Some(outcome.kind),
+        decided_by: Some(outcome.decided_by.word().to_owned()),
+        urgency: outcome.urgency,
+        act_by: outcome.act_by,
+        due_on: outcome.due_on,
+        qualifiers: Some(outcome.qualifiers.join(";")),
+        ..visit
+    }
+}
