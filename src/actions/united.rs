@@ -71,27 +71,21 @@ pub(super) fn alternatives(present: &[ReadingNow]) -> Result<Alternatives> {
 
 /// Returns the values that nobody has settled.
 pub(super) fn unsettled(present: &[ReadingNow]) -> Vec<Unsettled> {
-    let mut out: Vec<Unsettled> = Vec::new();
+    let mut fields: BTreeMap<(i64, Field), Vec<String>> = BTreeMap::new();
     for reading in present.iter().filter(|r| r.conflict) {
-        let of = (reading.try_no, reading.field);
-        let values = match out.iter_mut().find(|u| (u.try_no, u.field) == of) {
-            Some(known) => &mut known.values,
-            None => {
-                out.push(Unsettled {
-                    try_no: reading.try_no,
-                    field: reading.field,
-                    values: Vec::new(),
-                });
-                let last = out.len() - 1;
-                &mut out[last].values
-            }
-        };
+        let values = fields.entry((reading.try_no, reading.field)).or_default();
         if !values.contains(&reading.value) {
             values.push(reading.value.clone());
         }
     }
-    out.sort_by_key(|u| (u.try_no, u.field));
-    out
+    fields
+        .into_iter()
+        .map(|((try_no, field), values)| Unsettled {
+            try_no,
+            field,
+            values,
+        })
+        .collect()
 }
 
 impl Desk {
