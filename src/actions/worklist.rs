@@ -151,7 +151,7 @@ impl Desk {
             .map(|day| (key_of(&day), day))
             .collect();
         let mut by_child: BTreeMap<String, (ChildNow, Vec<VisitNow>)> = BTreeMap::new();
-        for (child, visit) in self.read().referred()? {
+        for (child, visit) in self.referred_now()? {
             if (from..=to).contains(&visit.screened_on) {
                 by_child
                     .entry(child.child_id.clone())
@@ -170,8 +170,7 @@ impl Desk {
                 .then_with(|| a.child_id.cmp(&b.child_id))
         });
         let back = self
-            .read()
-            .due()?
+            .due_now()?
             .into_iter()
             .filter(|(_, visit)| (from..=to).contains(&visit.screened_on))
             .map(|(child, visit)| DueBack {
