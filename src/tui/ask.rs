@@ -33,7 +33,7 @@ impl App {
         {
             self.say(
                 Tone::Attention,
-                "this visit is signed: F8 corrects a value, with the reason",
+                "this visit is signed: Ctrl-E corrects a value, with the reason",
             );
             return;
         }

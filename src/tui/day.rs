@@ -206,7 +206,7 @@ impl Day {
             return Done::default();
         };
         if bench.is_signed() {
-            return Done::refused("this visit is signed: F8 corrects a value, with the reason");
+            return Done::refused("this visit is signed: Ctrl-E corrects a value, with the reason");
         }
         bench.type_char(c);
         Done::effects(self.keep_draft())
@@ -333,7 +333,7 @@ impl Day {
         };
         let edits = matches!(command, Command::Erase | Command::ClearField);
         if edits && bench.is_signed() {
-            return Done::refused("this visit is signed: F8 corrects a value, with the reason");
+            return Done::refused("this visit is signed: Ctrl-E corrects a value, with the reason");
         }
         match command {
             Command::Accept => return self.accept(session),

@@ -398,7 +398,7 @@ fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Lin
         let words = if bench.may_try_again() {
             "signed · Alt-r second try · Enter next"
         } else {
-            "signed · F8 corrects · Enter next child"
+            "signed · Ctrl-E corrects · Enter next"
         };
         return (
             Line::from(vec![

@@ -182,7 +182,7 @@ fn a_signed_value_is_corrected_with_a_reason_and_the_old_one_stays() {
         .sees("saved Okafor, Ada: rescreen");
     h.scan("Q-10482").sees("signed");
     h.typed("2").sees("this visit is signed");
-    h.press(Key::f(8))
+    h.press(Key::ctrl('e'))
         .sees("which value is wrong?")
         .sees("distance acuity, left eye: 20/32");
     let line = h.screen();

@@ -83,7 +83,7 @@ fn the_terminals_own_cursor_stands_in_the_focused_field() {
     let buffer = terminal.backend().buffer();
     assert_eq!(buffer[(at.x - 2, at.y)].symbol(), "3");
     assert_eq!(buffer[(at.x - 1, at.y)].symbol(), "2");
-    h.press(Key::f(7)).typed("pe");
+    h.press(Key::f(11)).typed("pe");
     terminal.draw(|frame| h.app.draw(frame)).unwrap();
     let at = terminal.get_cursor_position().unwrap();
     assert_eq!(terminal.backend().buffer()[(at.x - 1, at.y)].symbol(), "e");
@@ -105,7 +105,7 @@ fn questions_stand_above_the_foot_line() {
     snapshot("keys_80x24", &h.screen());
     h.key(KeyCode::Esc).press(Key::ctrl('p'));
     snapshot("palette_80x24", &h.screen());
-    h.key(KeyCode::Esc).press(Key::f(7)).typed("o");
+    h.key(KeyCode::Esc).press(Key::f(11)).typed("o");
     snapshot("move_80x24", &h.screen());
 }
 
@@ -149,7 +149,7 @@ fn no_size_crashes_anything() {
         vec![Key::f(2)],
         vec![Key::f(4)],
         vec![Key::f(5)],
-        vec![Key::f(7)],
+        vec![Key::f(11)],
         vec![Key::f(10)],
         vec![Key::char('?')],
         vec![Key::ctrl('p')],

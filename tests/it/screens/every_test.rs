@@ -265,7 +265,7 @@ fn rows_out_of_sight_are_counted_and_a_signed_child_opens_at_its_top() {
     let rows: Vec<&str> = screen.lines().filter_map(|l| l.split('│').nth(1)).collect();
     assert!(rows[3].contains("glasses"), "{screen}");
     assert!(
-        screen.contains("signed · F8 corrects · Enter next child"),
+        screen.contains("signed · Ctrl-E corrects · Enter next"),
         "{screen}"
     );
 }

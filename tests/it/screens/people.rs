@@ -95,7 +95,7 @@ fn a_draft_moves_to_the_child_it_belongs_to() {
     h.typed("20")
         .enter()
         .typed("25")
-        .press(Key::f(7))
+        .press(Key::f(11))
         .typed("petit")
         .sees("Q-10484")
         .enter();
@@ -122,7 +122,7 @@ fn a_signed_visit_moves_with_a_reason() {
     let mut h = Hands::sit();
     h.typed("20").enter().typed("25").enter().enter();
     h.scan("Q-10482")
-        .press(Key::f(7))
+        .press(Key::f(11))
         .typed("Q-10484")
         .enter()
         .typed("wrong child")
@@ -192,7 +192,7 @@ fn esc_in_a_question_leaves_the_bench_as_it_was() {
         Key::f(3),
         Key::f(4),
         Key::f(5),
-        Key::f(7),
+        Key::f(11),
         Key::f(10),
         Key::f(1),
         Key::ctrl('p'),
