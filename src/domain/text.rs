@@ -58,3 +58,11 @@ pub fn nearest<'a>(written: &str, known: impl IntoIterator<Item = &'a str>) -> O
         .min_by_key(|(distance, _)| *distance)
         .map(|(_, word)| word)
 }
+
+/// Returns what would have been taken from a list of words, naming the one that was perhaps meant.
+pub fn one_of(words: &str, written: &str) -> String {
+    match nearest(&written.to_lowercase(), words.split(", ")) {
+        Some(word) => format!("one of {words} (did you mean {word}?)"),
+        None => format!("one of {words}"),
+    }
+}

@@ -9,7 +9,7 @@ use crate::domain::codes::{
 use crate::domain::field::{Field, FieldError};
 use crate::domain::number;
 use crate::domain::refraction::{Axis, Power};
-use crate::domain::text::nearest;
+use crate::domain::text::one_of;
 
 /// What decides the meaning of a bare or critical-line acuity.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
@@ -258,13 +258,6 @@ fn optional<T>(text: &str, parse: impl FnOnce(&str) -> Option<T>) -> Result<Opti
         Ok(None)
     } else {
         parse(text).map(Some).ok_or(())
-    }
-}
-
-fn one_of(words: &str, text: &str) -> String {
-    match nearest(&text.to_lowercase(), words.split(", ")) {
-        Some(word) => format!("one of {words} (did you mean {word}?)"),
-        None => format!("one of {words}"),
     }
 }
 
