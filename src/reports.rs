@@ -2,4 +2,5 @@
 
 pub mod csv;
 pub mod day;
+pub mod letters;
 pub mod referrals;

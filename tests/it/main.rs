@@ -9,6 +9,7 @@ mod demo;
 mod domain;
 mod intake;
 mod kill;
+mod letters;
 mod rule_check;
 mod rules;
 mod screens;
