@@ -9,6 +9,7 @@ pub mod compare;
 mod days;
 mod desk;
 mod error;
+mod follow_up;
 pub mod judge;
 mod judging;
 mod report;
@@ -36,6 +37,9 @@ pub use crate::store::{
 };
 pub use desk::{Desk, DeskOptions};
 pub use error::{ActionError, Kind, Result};
+pub use follow_up::{
+    ExamKept, LetterChoice, Printed, PrintedLetter, ReferralDetails, ReferralView, StepView,
+};
 pub use judging::{BenchTests, bench_tests, correction_from_roster, known, pass_line_for, preview};
 pub use report::Report;
 pub use results::{Different, PlannedVisit, ResultsPlan};

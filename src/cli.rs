@@ -12,11 +12,14 @@ mod child;
 mod correct;
 mod day;
 mod demo;
+mod exam;
 mod init;
 mod judge;
 mod keys;
 mod later;
+mod letters;
 mod record;
+mod refer;
 mod report;
 mod results;
 mod roster;
@@ -25,6 +28,7 @@ mod screener;
 mod screens;
 mod setting;
 mod site;
+mod step;
 mod term;
 mod verify;
 
@@ -106,6 +110,10 @@ enum Command {
     Judge(judge::Judge),
     Rules(rules::Rules),
     Report(report::Report),
+    Refer(refer::Refer),
+    Step(step::Step),
+    Exam(exam::Exam),
+    Letters(letters::Letters),
     Verify(verify::Verify),
     Backup(backup::Backup),
     Keys(keys::Keys),
@@ -151,6 +159,10 @@ pub fn run(args: impl IntoIterator<Item = OsString>) -> Result<(), Failure> {
         Some(Command::Judge(args)) => args.run(global),
         Some(Command::Rules(args)) => args.run(global),
         Some(Command::Report(args)) => args.run(global),
+        Some(Command::Refer(args)) => args.run(global),
+        Some(Command::Step(args)) => args.run(global),
+        Some(Command::Exam(args)) => args.run(global),
+        Some(Command::Letters(args)) => args.run(global),
         Some(Command::Verify(args)) => args.run(global),
         Some(Command::Backup(args)) => args.run(global),
         Some(Command::Keys(args)) => args.run(global),

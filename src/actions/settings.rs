@@ -12,7 +12,7 @@ use crate::store::{Put, new_id};
 const NONE: &str = "none";
 
 /// A setting by its name, with what it is for.
-const KNOWN: [(&str, &str); 3] = [
+const KNOWN: [(&str, &str); 14] = [
     (
         "notation",
         "what a bare acuity stands under: feet or metres",
@@ -24,6 +24,38 @@ const KNOWN: [(&str, &str); 3] = [
     (
         "triage",
         "triage sets whose bands are shown, separated by commas, or none",
+    ),
+    (
+        "notice_days",
+        "days within which a family is told of a referral (10)",
+    ),
+    (
+        "second_letter_days",
+        "days from the first letter to the second (28)",
+    ),
+    ("call_again_days", "days between attempts after that (7)"),
+    (
+        "contact_attempts",
+        "documented attempts before a referral may be closed (3)",
+    ),
+    (
+        "report_days",
+        "days from an appointment to asking for the report (14)",
+    ),
+    (
+        "wear_days",
+        "days after which wear of glasses is looked at (42)",
+    ),
+    (
+        "wear_months",
+        "months after which it is looked at again (6)",
+    ),
+    ("letters_from", "who answers questions, as letters print it"),
+    ("letters_phone", "telephone that letters print"),
+    ("letters_help", "where families find help with the cost"),
+    (
+        "letters_approved",
+        "translations somebody has approved: es by A. Solano on 2026-09-01; ar by ...",
     ),
 ];
 
@@ -92,6 +124,13 @@ impl Desk {
                 shown(value, 60)
             ))),
             "triage" => self.checked_triage(value),
+            _ if is_count(name) && value.parse().is_ok_and(|n: u32| (1..=3650).contains(&n)) => {
+                Ok(value.to_owned())
+            }
+            _ if is_count(name) => Err(ActionError::bad(format!(
+                "found {:?}, expected a whole number from 1 to 3650",
+                shown(value, 60)
+            ))),
             _ if value.is_empty() || value.chars().any(is_unsafe) => {
                 Err(ActionError::bad("the value needs ordinary characters")
                     .hint("none takes a setting back"))
@@ -137,4 +176,11 @@ impl Desk {
             .map(str::to_owned)
             .collect()
     }
+}
+
+/// Says whether a setting is a number of days, months or attempts.
+fn is_count(name: &str) -> bool {
+    ["_days", "_months", "_attempts"]
+        .iter()
+        .any(|end| name.ends_with(end))
 }

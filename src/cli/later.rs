@@ -8,14 +8,6 @@ use super::{Failure, Global};
 #[derive(Debug, Subcommand)]
 pub(super) enum Later {
     #[command(hide = true)]
-    Refer(Anything),
-    #[command(hide = true)]
-    Step(Anything),
-    #[command(hide = true)]
-    Exam(Anything),
-    #[command(hide = true)]
-    Letters(Anything),
-    #[command(hide = true)]
     Packet(Anything),
     #[command(hide = true)]
     Restore(Anything),
@@ -31,10 +23,6 @@ pub(super) struct Anything {
 impl Later {
     pub(super) fn run(&self, _global: &Global) -> Result<(), Failure> {
         let name = match self {
-            Later::Refer(_) => "refer",
-            Later::Step(_) => "step",
-            Later::Exam(_) => "exam",
-            Later::Letters(_) => "letters",
             Later::Packet(_) => "packet",
             Later::Restore(_) => "restore",
         };

@@ -6,37 +6,53 @@ use super::Failure;
 use super::output::clean;
 use crate::actions::{DayInfo, Desk};
 use crate::domain::field::Field;
-use crate::domain::text::{nearest, shown};
+use crate::domain::text::{nearest, one_of, shown};
 
 /// Reads `FIELD=VALUE` arguments; an empty value takes a field back.
 pub(super) fn fields(values: &[String]) -> Result<Vec<(Field, String)>, Failure> {
-    let mut out: Vec<(Field, String)> = Vec::new();
+    let known = Field::ALL.iter().map(|f| f.word());
+    assigned(values, "distance_right=20/40", Field::from_word, known)
+}
+
+/// Reads `NAME=VALUE` arguments, each name once.
+pub(super) fn assigned<T: PartialEq>(
+    values: &[String],
+    example: &str,
+    from_word: fn(&str) -> Option<T>,
+    known: impl Iterator<Item = &'static str> + Clone,
+) -> Result<Vec<(T, String)>, Failure> {
+    let mut out: Vec<(T, String)> = Vec::new();
     for text in values {
         let Some((name, value)) = text.split_once('=') else {
             return Err(Failure::bad_input(format!(
                 "found {:?}, expected FIELD=VALUE",
                 shown(text, 60)
             ))
-            .hint("for example distance_right=20/40"));
+            .hint(format!("for example {example}")));
         };
         let name = name.trim();
-        let Some(field) = Field::from_word(name) else {
-            let known = Field::ALL.iter().map(|f| f.word());
+        let Some(field) = from_word(name) else {
             let failure = Failure::bad_input(format!("there is no field {:?}", shown(name, 60)));
-            return Err(failure.hint(match nearest(name, known) {
+            return Err(failure.hint(match nearest(name, known.clone()) {
                 Some(near) => format!("did you mean {near}?"),
-                None => format!("known: {}", Field::words()),
+                None => format!("known: {}", known.collect::<Vec<_>>().join(", ")),
             }));
         };
         if out.iter().any(|(f, _)| *f == field) {
-            return Err(Failure::bad_input(format!(
-                "{} is given twice",
-                field.word()
-            )));
+            return Err(Failure::bad_input(format!("{name} is given twice")));
         }
         out.push((field, value.trim().to_owned()));
     }
     Ok(out)
+}
+
+/// Reads a word of a code list, for an argument.
+pub(super) fn code<T>(
+    text: &str,
+    from_word: fn(&str) -> Option<T>,
+    words: fn() -> String,
+) -> Result<T, String> {
+    from_word(text).ok_or_else(|| format!("expected {}", one_of(&words(), text)))
 }
 
 /// Which screening day is meant.

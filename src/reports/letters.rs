@@ -59,6 +59,10 @@ pub enum FoundValues {
 pub enum FoundValue {
     /// As it was recorded: `20/40`.
     Value(String),
+    /// Nothing that calls for a look.
+    Fine,
+    /// Something that an eye doctor should look at.
+    Look,
     /// It could not be done.
     NotTestable,
     /// Nobody did it.

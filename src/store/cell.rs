@@ -2,14 +2,16 @@
 
 use std::borrow::Cow;
 
-use chrono::NaiveDate;
+use chrono::{NaiveDate, NaiveTime};
 use rusqlite::types::{ToSql, ToSqlOutput, ValueRef};
 use uuid::Uuid;
 
 use crate::domain::age::Grade;
 use crate::domain::codes::{AcuityMethod, Attempt, Consent, Status, YesNo};
+use crate::domain::exam::{Evidence, ExamField};
 use crate::domain::field::Field;
 use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::domain::referral::{Channel, Closing, ContactResult, LetterKind, StepKind};
 use crate::domain::screening_test::ScreeningTest;
 
 /// A value as the engine keeps it; there are no reals.
@@ -136,6 +138,15 @@ impl Value for NaiveDate {
     }
 }
 
+impl Value for NaiveTime {
+    fn cell(&self) -> Cell<'_> {
+        Cell::Text(Cow::Owned(self.format("%H:%M").to_string()))
+    }
+    fn from_stored(value: ValueRef<'_>) -> Option<Self> {
+        NaiveTime::parse_from_str(value.as_str().ok()?, "%H:%M").ok()
+    }
+}
+
 impl Value for Grade {
     fn cell(&self) -> Cell<'_> {
         Cell::Text(Cow::Owned(self.to_string()))
@@ -190,11 +201,18 @@ macro_rules! words {
 words!(
     AcuityMethod,
     Attempt,
+    Channel,
+    Closing,
     Consent,
+    ContactResult,
+    Evidence,
+    ExamField,
     Field,
+    LetterKind,
     OutcomeKind,
     ScreeningTest,
     Status,
+    StepKind,
     Urgency,
     YesNo
 );

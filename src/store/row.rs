@@ -3,13 +3,15 @@
 //! A field is only ever added at the end of a table, together with a new row version and a
 //! migration that adds a nullable column; the bytes of older rows never change.
 
-use chrono::NaiveDate;
+use chrono::{NaiveDate, NaiveTime};
 use uuid::Uuid;
 
 use crate::domain::age::Grade;
 use crate::domain::codes::{AcuityMethod, Attempt, Consent, YesNo};
+use crate::domain::exam::{Evidence, ExamField};
 use crate::domain::field::Field;
 use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::domain::referral::{Channel, Closing, ContactResult, LetterKind, StepKind};
 use crate::domain::screening_test::ScreeningTest;
 
 use super::cell::{Cell, Ids, Value};
@@ -461,5 +463,75 @@ tables! {
         rule_set: String,
         edition: String,
         text: String,
+    }
+
+    /// What is known of a referral beside the outcome that opened it, or its opening by hand.
+    Referral = "referral", key(referral_id), touches None {
+        /// That of the visit whose outcome opened it, else its own.
+        referral_id: Uuid,
+        child_id: String,
+        visit_id: Option<Uuid>,
+        opened_on: NaiveDate,
+        urgency: Urgency,
+        act_by: Option<NaiveDate>,
+        /// Why it was opened by hand; empty where an outcome did.
+        reason: String,
+        responsible: String,
+        consent_to_share: Option<YesNo>,
+        interpreter: Option<YesNo>,
+        language: String,
+        prior_exam: String,
+    }
+
+    /// One thing that was done about a referral.
+    StepEntry = "step", key(step_id), touches None {
+        step_id: Uuid,
+        referral_id: Uuid,
+        child_id: String,
+        kind: StepKind,
+        done_on: NaiveDate,
+        done_at: Option<NaiveTime>,
+        channel: Option<Channel>,
+        language: String,
+        result: Option<ContactResult>,
+        letter: Option<LetterKind>,
+        due_on: Option<NaiveDate>,
+        worn: Option<YesNo>,
+        evidence: Option<Evidence>,
+        closing: Option<Closing>,
+        whom: String,
+        note: String,
+        screener_id: Option<Uuid>,
+        entered_on: NaiveDate,
+    }
+
+    /// A report of an examination; its values are entries of their own.
+    ExamEntry = "exam_report", key(report_id), touches None {
+        report_id: Uuid,
+        referral_id: Uuid,
+        child_id: String,
+        examined_on: NaiveDate,
+        received_on: NaiveDate,
+        evidence: Evidence,
+        screener_id: Option<Uuid>,
+    }
+
+    /// One value of a report, as canonical text.
+    ExamValue = "exam_value", key(report_id, field), touches None {
+        report_id: Uuid,
+        field: ExamField,
+        value: String,
+    }
+
+    /// Something about a child that left the programme (34 CFR 99.32).
+    Disclosure = "disclosure", key(disclosure_id), touches None {
+        disclosure_id: Uuid,
+        child_id: String,
+        disclosed_on: NaiveDate,
+        recipient: String,
+        purpose: String,
+        what: String,
+        file_name: String,
+        screener_id: Option<Uuid>,
     }
 }

@@ -12,6 +12,7 @@ const ALL: &[&str] = &[
     include_str!("../../migrations/0001_entries.sql"),
     include_str!("../../migrations/0002_stations.sql"),
     include_str!("../../migrations/0003_packets.sql"),
+    include_str!("../../migrations/0004_referrals.sql"),
 ];
 
 /// `TwoL` in ASCII: what `file` and other programs know a store by.

@@ -6,6 +6,7 @@ mod board;
 mod children;
 mod demo;
 mod files;
+mod follow_up;
 mod lock;
 mod terminal;
 mod whole_day;

@@ -271,10 +271,15 @@ fn found(found: &Found, language: &Language) -> Value {
         ScreeningTest::ColorPlates => "test-color",
         ScreeningTest::Instrument => "test-instrument",
     };
-    let word = |value: &FoundValue| match value {
-        FoundValue::Value(text) => text.clone(),
-        FoundValue::NotTestable => language.text("not-testable", &[]).unwrap_or_default(),
-        FoundValue::NotDone => language.text("not-done", &[]).unwrap_or_default(),
+    let word = |value: &FoundValue| {
+        let id = match value {
+            FoundValue::Value(text) => return text.clone(),
+            FoundValue::Fine => "value-fine",
+            FoundValue::Look => "value-look",
+            FoundValue::NotTestable => "not-testable",
+            FoundValue::NotDone => "not-done",
+        };
+        language.text(id, &[]).unwrap_or_default()
     };
     context! {
         test => test,

@@ -46,6 +46,9 @@ pub(in crate::store) const LATEST_FIRST: &str =
 pub(in crate::store) const OLDEST_FIRST: &str =
     "t.lamport IS NULL, t.lamport, t.chain, t.seq, t.tx_hash, x.ord";
 
+/// The merge order, oldest first.
+pub(in crate::store) const IN_ORDER: &str = "t.lamport, t.chain, t.seq, t.tx_hash, x.ord";
+
 impl Reads<'_> {
     /// Returns the entry of an id.
     pub fn entry<R: Row>(&self, id: Uuid) -> Result<Option<R>> {

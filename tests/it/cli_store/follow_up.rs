@@ -1,0 +1,292 @@
+//! From refer to treated, from the command line: letter, call, report, wear of glasses.
+//!
+//! Intervals are the defaults of the settings (Colorado's 10 days for a parent notice: secondary;
+//! second letter after four weeks, three attempts, six weeks for wear: common practice; six months:
+//! IAPB school guidelines, secondary).
+
+use super::Bench;
+
+/// A day on which Okafor, Ada was referred: her third line between the eyes refers at once.
+fn referred() -> Bench {
+    let bench = Bench::on_a_day("us-school", "threshold");
+    let out = bench.ok(&[
+        "record",
+        "Q-2",
+        "correction_worn=none",
+        "distance_right=20/20",
+        "distance_left=20/100",
+        "signs=none",
+        "--sign",
+    ]);
+    assert!(out.contains("REFER"), "{out}");
+    bench
+}
+
+impl Bench {
+    fn on(&self, date: &str, args: &[&str]) -> String {
+        let mut command = std::process::Command::new(env!("CARGO_BIN_EXE_twoline"));
+        let out = command
+            .current_dir(self.folder.path())
+            .env_remove("TWOLINE_PASSPHRASE_FILE")
+            .env("TWOLINE_STORE", self.path("store"))
+            .args(args)
+            .args(["--today", date])
+            .output()
+            .expect("the program runs");
+        assert!(
+            out.status.success(),
+            "{args:?}\n{}",
+            String::from_utf8_lossy(&out.stderr)
+        );
+        String::from_utf8_lossy(&out.stdout).into_owned()
+    }
+}
+
+fn code_in(text: &str) -> String {
+    let at = text.find("code ").expect("a code") + 5;
+    text[at..]
+        .lines()
+        .next()
+        .unwrap()
+        .chars()
+        .filter(char::is_ascii_digit)
+        .collect()
+}
+
+#[test]
+fn a_child_is_carried_from_refer_to_treated() {
+    let bench = referred();
+    let list = bench.ok(&["refer", "list"]);
+    assert!(list.contains("1 referrals, 0 overdue"), "{list}");
+    assert!(list.contains("print the referral letter"), "{list}");
+
+    let code = code_in(&bench.ok(&["refer", "show", "Q-2"]));
+    assert_eq!(code.len(), 10);
+    let out = bench.ok(&["letters", "-o", "due.html"]);
+    assert!(out.contains("exam report form"), "{out}");
+    assert!(out.contains("missing:"), "{out}");
+    let html = bench.read("due.html");
+    assert_eq!(html.matches("<article").count(), 2);
+    assert!(html.contains("Quillmere East"));
+    // Printed once, it is not due again; it waits to be sent.
+    assert!(bench.ok(&["letters"]).contains("no letter is due"));
+    assert!(
+        bench
+            .ok(&["refer", "list"])
+            .contains("send the referral letter")
+    );
+
+    bench.ok(&[
+        "step",
+        &code,
+        "letter_sent",
+        "--letter",
+        "referral",
+        "--by",
+        "post",
+    ]);
+    let out = bench.on("2026-11-12", &["letters"]);
+    assert!(out.contains("second notice"), "{out}");
+    let out = bench.on(
+        "2026-11-15",
+        &[
+            "step",
+            &code,
+            "call",
+            "--result",
+            "no_answer",
+            "--by",
+            "telephone",
+        ],
+    );
+    assert!(out.contains("call, no answer (by telephone)"), "{out}");
+    bench.on(
+        "2026-11-20",
+        &["step", &code, "appointment", "--due", "2026-12-02"],
+    );
+    let out = bench.on("2026-11-21", &["refer", "list"]);
+    assert!(out.contains("ask how the appointment went"), "{out}");
+
+    let out = bench.on(
+        "2026-12-09",
+        &[
+            "exam",
+            "add",
+            &code,
+            "examined_on=2026-12-02",
+            "best_right=20",
+            "best_left=20/50",
+            "sphere_right=+1.00",
+            "cylinder_right=0",
+            "sphere_left=+4.50",
+            "cylinder_left=0",
+            "amblyopia_left=present",
+            "findings=H53.022",
+            "treatment=glasses",
+        ],
+    );
+    assert!(out.contains("closed: examined, examiner's form"), "{out}");
+    assert!(out.contains("confirmed: amblyopia, left eye"), "{out}");
+    assert!(out.contains("treatment started: glasses"), "{out}");
+    assert!(
+        out.contains("look in class: are the glasses worn?"),
+        "{out}"
+    );
+    bench.on(
+        "2027-01-15",
+        &["step", &code, "glasses_seen", "--worn", "yes"],
+    );
+    let out = bench.on(
+        "2027-06-03",
+        &["step", &code, "wear_checked", "--worn", "yes"],
+    );
+    assert!(!out.contains("next:"), "{out}");
+    assert!(
+        bench
+            .on("2027-06-04", &["refer", "list"])
+            .contains("0 referrals")
+    );
+    assert!(
+        bench
+            .on("2027-06-04", &["refer", "list", "--all"])
+            .contains("examined")
+    );
+    bench.ok(&["verify"]);
+}
+
+#[test]
+fn what_cannot_be_is_refused_and_nothing_is_written() {
+    let bench = referred();
+    let code = code_in(&bench.ok(&["refer", "show", "Q-2"]));
+    let head = bench.head();
+    // A mistyped code names the near ones; the child is not guessed.
+    let mut wrong = code.clone().into_bytes();
+    wrong[3] = if wrong[3] == b'9' { b'0' } else { wrong[3] + 1 };
+    let wrong = String::from_utf8(wrong).unwrap();
+    let err = bench.refused(&["exam", "add", &wrong, "examined_on=2026-10-14"]);
+    assert!(err.contains("a digit is wrong"), "{err}");
+    assert!(err.contains("Okafor, Ada"), "{err}");
+    let err = bench.refused(&["exam", "add", "0000000000", "examined_on=2026-10-14"]);
+    assert!(
+        err.contains("is not a form code") || err.contains("no referral"),
+        "{err}"
+    );
+    // Examined before referred; every wrong field is named, not only the first.
+    let err = bench.refused(&[
+        "exam",
+        "add",
+        &code,
+        "examined_on=2026-10-13",
+        "cylinder_left=-1.00",
+    ]);
+    assert!(err.contains("examined_on"), "{err}");
+    assert!(err.contains("axis_left"), "{err}");
+    let err = bench.refused(&[
+        "exam",
+        "add",
+        &code,
+        "examined_on=2026-10-14",
+        "sphere_left=99",
+    ]);
+    assert!(err.contains("sphere_left"), "{err}");
+    let err = bench.refused(&["exam", "add", &code, "examinedon=2026-10-14"]);
+    assert!(err.contains("did you mean examined_on?"), "{err}");
+    let err = bench.refused(&["step", &code, "closed"]);
+    assert!(err.contains("why it is closed"), "{err}");
+    let err = bench.refused(&[
+        "step",
+        &code,
+        "call",
+        "--result",
+        "reached",
+        "--on",
+        "2026-10-20",
+    ]);
+    assert!(err.contains("after today"), "{err}");
+    let err = bench.refused(&["refer", "open", "Q-2", "--reason", "again"]);
+    assert!(err.contains("open referral already"), "{err}");
+    let err = bench.refused(&["refer", "open", "Q-99", "--reason", "again"]);
+    assert!(err.contains("no child"), "{err}");
+    assert_eq!(bench.head(), head);
+
+    // A closed referral takes no report; twice the same is said.
+    let exam = [
+        "exam",
+        "add",
+        &code,
+        "examined_on=2026-10-14",
+        "no_abnormality=yes",
+    ];
+    let out = bench.ok(&exam);
+    assert!(out.contains("nothing was confirmed"), "{out}");
+    let err = bench.refused(&exam);
+    assert!(err.contains("is in already"), "{err}");
+    let err = bench.refused(&["step", &code, "call", "--result", "reached"]);
+    assert!(err.contains("closed: examined"), "{err}");
+    assert!(err.contains("reopened"), "{err}");
+    bench.ok(&["step", &code, "reopened"]);
+    bench.ok(&["step", &code, "call", "--result", "reached"]);
+}
+
+#[test]
+fn a_referral_by_hand_needs_its_reason_and_a_broken_template_shows_its_line() {
+    let bench = Bench::on_a_day("us-school", "threshold");
+    let out = bench.ok(&["refer", "open", "Q-1", "--reason", "teacher's concern"]);
+    assert!(out.contains("teacher's concern"), "{out}");
+    let out = bench.ok(&[
+        "refer",
+        "set",
+        "Q-1",
+        "--responsible",
+        "J. Imani",
+        "--consent",
+        "yes",
+        "--interpreter",
+        "no",
+        "--language",
+        "Español",
+    ]);
+    assert!(out.contains("responsible: J. Imani"), "{out}");
+    let folder = bench.path("store").join("letters");
+    std::fs::create_dir_all(&folder).unwrap();
+    std::fs::write(folder.join("referral.html"), "<p>{{ chid }}</p>\n").unwrap();
+    let err = bench.refused(&["letters", "-o", "x.html"]);
+    assert!(err.contains("referral.html:1:"), "{err}");
+    assert!(err.contains("did you mean child?"), "{err}");
+    assert!(!bench.path("x.html").exists());
+    std::fs::remove_file(folder.join("referral.html")).unwrap();
+    bench.ok(&["letters", "-o", "x.html"]);
+    let html = bench.read("x.html");
+    assert!(html.contains("draft: have a speaker check"));
+    assert!(html.contains("Ojo derecho"));
+    bench.ok(&[
+        "setting",
+        "set",
+        "letters_approved",
+        "es by A. Solano on 2026-09-01",
+    ]);
+    bench.ok(&["letters", "-o", "y.html", "--child", "Q-1"]);
+    assert!(!bench.read("y.html").contains("draft: have"));
+}
+
+#[test]
+fn an_urgent_letter_is_never_in_a_batch() {
+    let bench = Bench::on_a_day("us-school", "threshold");
+    bench.ok(&["record", "Q-4", "signs=white_pupil:left", "--sign"]);
+    let out = bench.ok(&["letters", "-o", "batch.html"]);
+    assert!(out.contains("no letter is due"), "{out}");
+    assert!(out.contains("printed alone"), "{out}");
+    assert!(!bench.path("batch.html").exists());
+    assert!(bench.ok(&["refer", "list"]).contains("call the family now"));
+    bench.ok(&["letters", "-o", "one.html", "--child", "Q-4"]);
+    assert!(
+        bench
+            .read("one.html")
+            .contains("We have not reached you by telephone.")
+    );
+    bench.ok(&[
+        "step", "Q-4", "call", "--result", "reached", "--whom", "R. Moss",
+    ]);
+    bench.ok(&["letters", "-o", "two.html", "--child", "Q-4"]);
+    assert!(bench.read("two.html").contains("R. Moss"));
+}
