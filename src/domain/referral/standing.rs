@@ -250,7 +250,12 @@ fn letter(
     state: State,
     settings: &FollowUp,
 ) -> Option<Next> {
-    let newest = |kind: StepKind| steps.iter().rposition(|s| s.kind == kind);
+    // A report form goes with its letter.
+    let newest = |kind: StepKind| {
+        steps
+            .iter()
+            .rposition(|s| s.kind == kind && s.letter != Some(LetterKind::ExamForm))
+    };
     let (printed, sent) = (
         newest(StepKind::LetterPrinted),
         newest(StepKind::LetterSent),

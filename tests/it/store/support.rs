@@ -3,12 +3,15 @@
 use std::path::Path;
 use std::time::Duration;
 
+use chrono::NaiveTime;
 use rusqlite::Connection;
 use tempfile::TempDir;
 use twoline::clock::Moment;
 use twoline::domain::codes::{AcuityMethod, Attempt, Consent, YesNo};
+use twoline::domain::exam::{Evidence, ExamField};
 use twoline::domain::field::Field;
 use twoline::domain::outcome::{OutcomeKind, Urgency};
+use twoline::domain::referral::{Channel, ContactResult, StepKind};
 use twoline::store::{self, Access, Author, DayKey, Kdf, New, Secret, Store, new_id, row};
 use uuid::Uuid;
 use zeroize::Zeroizing;
@@ -291,6 +294,12 @@ fn roster(store: &mut Store, by: &Author, chart: Uuid) {
                 a: "Q-1".to_owned(),
                 b: "P-7".to_owned(),
             })?;
+            let rows = follow_up(new_id(), new_id());
+            tx.add(&rows.referral)?;
+            tx.add(&rows.step)?;
+            tx.add(&rows.report)?;
+            tx.add(&rows.value)?;
+            tx.add(&rows.disclosure)?;
             tx.add(&row::ScreeningDay {
                 id: new_id(),
                 site: "QE".to_owned(),
@@ -362,4 +371,81 @@ fn corrected(store: &mut Store, by: &Author, visit_id: Uuid) {
             )
         })
         .unwrap();
+}
+
+/// One entry of each kind about a referral; the ids of the entries do not matter to their hash.
+pub struct FollowUp {
+    pub referral: row::Referral,
+    pub step: row::StepEntry,
+    pub report: row::ExamEntry,
+    pub value: row::ExamValue,
+    pub disclosure: row::Disclosure,
+}
+
+pub fn follow_up(referral_id: Uuid, other: Uuid) -> FollowUp {
+    FollowUp {
+        referral: row::Referral {
+            id: new_id(),
+            referral_id,
+            child_id: "Q-1".to_owned(),
+            visit_id: None,
+            opened_on: date("2026-10-14"),
+            urgency: Urgency::Routine,
+            act_by: None,
+            reason: "teacher's concern".to_owned(),
+            responsible: "J. Imani".to_owned(),
+            consent_to_share: Some(YesNo::Yes),
+            interpreter: None,
+            language: "Español".to_owned(),
+            prior_exam: String::new(),
+        },
+        step: row::StepEntry {
+            id: new_id(),
+            step_id: other,
+            referral_id,
+            child_id: "Q-1".to_owned(),
+            kind: StepKind::Call,
+            done_on: date("2026-11-10"),
+            done_at: NaiveTime::from_hms_opt(14, 5, 0),
+            channel: Some(Channel::Telephone),
+            language: "Español".to_owned(),
+            result: Some(ContactResult::NoAnswer),
+            letter: None,
+            due_on: None,
+            worn: None,
+            evidence: None,
+            closing: None,
+            whom: "R. Moss".to_owned(),
+            note: String::new(),
+            screener_id: Some(Uuid::from_bytes([0x5c; 16])),
+            entered_on: date("2026-11-10"),
+        },
+        report: row::ExamEntry {
+            id: new_id(),
+            report_id: other,
+            referral_id,
+            child_id: "Q-1".to_owned(),
+            examined_on: date("2026-12-02"),
+            received_on: date("2026-12-09"),
+            evidence: Evidence::Form,
+            screener_id: None,
+        },
+        value: row::ExamValue {
+            id: new_id(),
+            report_id: other,
+            field: ExamField::BestLeft,
+            value: "20/50".to_owned(),
+        },
+        disclosure: row::Disclosure {
+            id: new_id(),
+            disclosure_id: other,
+            child_id: "Q-1".to_owned(),
+            disclosed_on: date("2026-10-15"),
+            recipient: "Dr. P. Lindqvist".to_owned(),
+            purpose: "referral".to_owned(),
+            what: "referral letter".to_owned(),
+            file_name: "due.html".to_owned(),
+            screener_id: None,
+        },
+    }
 }
