@@ -277,9 +277,9 @@ fn golden_vectors_of_schema_2() {
     );
 }
 
-/// Schema version 3, from the same lines of Python.
+/// Schema version 4, from the same lines of Python.
 #[test]
-fn golden_vectors_of_schema_3() {
+fn golden_vectors_of_schema_4() {
     let rows =
         super::support::follow_up(Uuid::from_bytes([0x52; 16]), Uuid::from_bytes([0x54; 16]));
     let hashes = [

@@ -130,7 +130,7 @@ fn a_newer_store_is_refused_and_left_alone() {
     assert_eq!(
         error.to_string(),
         format!(
-            "this store has schema version 99; this program, twoline {}, knows up to 3",
+            "this store has schema version 99; this program, twoline {}, knows up to 4",
             env!("CARGO_PKG_VERSION")
         )
     );
