@@ -5,7 +5,7 @@ use std::collections::HashMap;
 use uuid::Uuid;
 
 use super::generic::{IN_ORDER, LIVE};
-use super::{ChildNow, Reads, VisitNow};
+use super::{ChildNow, Columns, Reads, VisitNow};
 use crate::store::cell::Value;
 use crate::store::error::Result;
 use crate::store::row::{Disclosure, ExamEntry, ExamValue, Referral, StepEntry};
@@ -61,7 +61,7 @@ impl Reads<'_> {
         rest.sort_unstable();
         rest.dedup();
         for id in rest {
-            out.extend(self.rest(&mut known, id)?);
+            out.extend(self.rest(&mut known, id, self.visit(id)?)?);
         }
         Ok(out)
     }
@@ -69,12 +69,9 @@ impl Reads<'_> {
     /// Returns one referral.
     pub fn referral(&self, id: Uuid) -> Result<Option<ReferralRecord>> {
         let mut known = self.follow_up(Some(id))?;
-        if let Some(visit) = self.visit(id)?
-            && let Some(child) = self.child(&visit.child_id)?
-        {
-            return Ok(Some(known.record(id, child, Some(visit))));
-        }
-        self.rest(&mut known, id)
+        let visit = self.visit(id)?;
+        let id = visit.as_ref().map_or(id, |v| v.visit_id);
+        self.rest(&mut known, id, visit)
     }
 
     /// Returns everything that left the programme, in the order it was written down.
@@ -82,8 +79,12 @@ impl Reads<'_> {
         self.rows(LIVE, &format!("x.disclosed_on, {IN_ORDER}"), &[])
     }
 
-    fn rest(&self, known: &mut FollowUp, id: Uuid) -> Result<Option<ReferralRecord>> {
-        let visit = self.visit(id)?;
+    fn rest(
+        &self,
+        known: &mut FollowUp,
+        id: Uuid,
+        visit: Option<VisitNow>,
+    ) -> Result<Option<ReferralRecord>> {
         let child_id = visit
             .as_ref()
             .map(|v| v.child_id.clone())
@@ -98,17 +99,30 @@ impl Reads<'_> {
         Ok(Some(known.record(id, child, visit)))
     }
 
+    /// Stations may have recorded parts of one visit: what is about any part is about the visit.
     fn follow_up(&self, only: Option<Uuid>) -> Result<FollowUp> {
         let (filter, key) = match &only {
-            Some(id) => (format!("x.referral_id = ?1 AND {LIVE}"), vec![id.cell()]),
+            Some(id) => (
+                format!(
+                    "(x.referral_id = ?1 OR x.referral_id IN (SELECT q.visit_id FROM visit_part p \
+                     JOIN visit_part q ON q.lead = p.lead WHERE p.visit_id = ?1)) AND {LIVE}"
+                ),
+                vec![id.cell()],
+            ),
             None => (LIVE.to_owned(), Vec::new()),
         };
+        let leads = self.leads()?;
+        let lead = |id: Uuid| leads.get(&id).copied().unwrap_or(id);
         let mut known = FollowUp::default();
         for row in self.rows::<Referral>(&filter, IN_ORDER, &key)? {
-            known.rows.insert(row.referral_id, row);
+            known.rows.insert(lead(row.referral_id), row);
         }
         for step in self.rows::<StepEntry>(&filter, &format!("x.done_on, {IN_ORDER}"), &key)? {
-            known.steps.entry(step.referral_id).or_default().push(step);
+            known
+                .steps
+                .entry(lead(step.referral_id))
+                .or_default()
+                .push(step);
         }
         let mut values: HashMap<Uuid, Vec<ExamValue>> = HashMap::new();
         let entries =
@@ -129,11 +143,27 @@ impl Reads<'_> {
             };
             known
                 .reports
-                .entry(entry.referral_id)
+                .entry(lead(entry.referral_id))
                 .or_default()
                 .push(ExamRecord { entry, values });
         }
         Ok(known)
+    }
+}
+
+impl Reads<'_> {
+    /// Returns the first id of each visit of several parts, by each of its other ids.
+    fn leads(&self) -> Result<HashMap<Uuid, Uuid>> {
+        let mut found = self
+            .conn
+            .prepare_cached("SELECT visit_id, lead FROM visit_part WHERE visit_id <> lead")?;
+        let mut rows = found.query([])?;
+        let mut leads = HashMap::new();
+        while let Some(row) = rows.next()? {
+            let mut columns = Columns::of(row, "visit_part");
+            leads.insert(columns.take()?, columns.take()?);
+        }
+        Ok(leads)
     }
 }
 
