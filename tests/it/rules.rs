@@ -18,6 +18,7 @@ mod local;
 mod nhanes;
 mod parts;
 mod properties;
+mod said;
 mod second_evaluation;
 mod settings;
 mod shipped;
