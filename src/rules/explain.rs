@@ -182,9 +182,9 @@ fn asks(reason: &Reason) -> &'static str {
 /// Names a source shortly: "Joint policy 2016, two-line rule (as quoted elsewhere)"; what does not
 /// wait names its own source.
 fn brief_source(reason: &Reason) -> String {
-    let rule = match (&*reason.criterion, &*reason.threshold) {
-        (id, "2 lines or more") if id.starts_with("between-eyes") => ", two-line rule",
-        (id, "3 lines or more") if id.starts_with("between-eyes") => ", three-line rule",
+    let rule = match &*reason.threshold {
+        "2 lines or more" => ", two-line rule",
+        "3 lines or more" => ", three-line rule",
         _ => "",
     };
     let basis = match reason.source.basis {

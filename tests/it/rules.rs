@@ -13,6 +13,7 @@ mod alternatives;
 mod broken;
 mod check;
 mod children;
+mod edges;
 mod grading;
 mod local;
 mod nhanes;
