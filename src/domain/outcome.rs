@@ -61,6 +61,19 @@ pub enum Answer {
     Unknown,
 }
 
+code_list! {
+    /// Why a criterion has no answer.
+    Open {
+        NotDone = "not_done", "not done";
+        NotLookedFor = "not_looked_for", "not looked for";
+        NotTestable = "not_testable", "not testable";
+        NotJudged = "not_judged", "not judged";
+        NotApplicable = "not_applicable", "not applicable";
+        NotSettled = "not_settled", "not settled";
+        NotDecided = "not_decided", "not decided by the reading";
+    }
+}
+
 /// Where a number comes from.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Source {
@@ -83,7 +96,7 @@ pub struct Source {
 pub enum Margin {
     /// Nothing to measure (a sign, an unknown).
     None,
-    /// Lines or steps of 0.1 logMAR: positive is on the passing side, zero is at the limit.
+    /// Lines or steps of 0.1 logMAR: positive is on the passing side, zero is the threshold as printed.
     Steps(i32),
     /// Thousandths of a dioptre.
     Diopters(i32),
@@ -152,6 +165,8 @@ pub struct Reason {
     pub criterion: Arc<str>,
     /// What it answered.
     pub answer: Answer,
+    /// Why it has no answer, where it has none.
+    pub open: Open,
     /// Whether an unknown answer makes the outcome incomplete.
     pub required: bool,
     /// The eye that decided it, if one did.
@@ -180,7 +195,8 @@ pub struct Reason {
     pub high_priority: bool,
     /// Whether an answer could make the protocol refer at once.
     pub may_be_at_once: bool,
-    /// The smallest single change that would turn the answer, in words; empty when there is none.
+    /// The smallest single change that would turn the answer (what would refer, for one that passes), in
+    /// words; empty when there is none.
     pub would_change: String,
     /// The same for a chart, line by line; also for an answer that passes.
     pub chart_change: Option<ChartChange>,

@@ -14,6 +14,7 @@ use crate::domain::codes::{AcuityMethod, Attempt, code_list};
 use crate::domain::field::Field;
 use crate::domain::formula::unguarded;
 use crate::domain::readings::{ReadingContext, Readings};
+use crate::domain::text::{nearest, shown};
 
 code_list! {
     /// A column of the results file that says whose row it is, beside the fields of a visit.
@@ -157,14 +158,27 @@ impl<'a> ResultsReader<'a> {
         let header = Place { row: 1, line: 1 };
         let mut problems = Problems::default();
         if self.field_order.is_empty() {
-            problems.push(
-                Problem::of_file(
-                    file,
-                    "no column with a reading",
-                    "a column such as distance_right",
-                )
-                .at(header),
-            );
+            let problem = Problem::of_file(
+                file,
+                "no column with a reading",
+                "a column such as distance_right",
+            )
+            .at(header);
+            // A column that only almost has a reading's name was left alone as an unknown one.
+            let near =
+                self.sheet
+                    .headers()
+                    .iter()
+                    .zip(&self.columns)
+                    .find_map(|(written, meaning)| {
+                        let words = Field::ALL.iter().map(|f| f.word());
+                        let word = nearest(written, words).filter(|_| meaning.is_none())?;
+                        Some(format!("is {} meant as {word}?", shown(written, 40)))
+                    });
+            problems.push(match near {
+                Some(near) => problem.cure(near),
+                None => problem,
+            });
         }
         if has(RowColumn::AgeMonths) && !self.options.takes_age {
             problems.push(

@@ -12,19 +12,21 @@ use chrono::NaiveDate;
 
 use crate::domain::age::{days_after, months_after};
 use crate::domain::outcome::{
-    Answer, ChartChange, DecidedBy, Margin, Outcome, OutcomeKind, Reason, RiskKind, Then, Urgency,
+    Answer, ChartChange, DecidedBy, Margin, Open, Outcome, OutcomeKind, Reason, RiskKind, Then,
+    Urgency,
 };
 use crate::domain::readings::Eye;
 use crate::rules::{Case, RuleSet};
 
 pub(super) use facts::Facts;
-pub(super) use refraction::{largest_passing, meridional};
+pub(super) use refraction::{in_dioptres, largest_passing, meridional};
 pub(super) use set::{Spoken, answer, is_for, pass_line, scope, speak};
 
 /// What one criterion answered, before it is put beside its source.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub(in crate::rules) struct Answered {
     pub answer: Answer,
+    pub open: Open,
     pub eye: Option<Eye>,
     pub reading: String,
     pub margin: Margin,
@@ -41,6 +43,7 @@ impl Answered {
     pub(super) fn new(answer: Answer, reading: impl Into<String>) -> Answered {
         Answered {
             answer,
+            open: Open::NotDecided,
             eye: None,
             reading: reading.into(),
             margin: Margin::None,
@@ -49,6 +52,14 @@ impl Answered {
             chart_change: None,
             by_eye: None,
             not_applicable: None,
+        }
+    }
+
+    /// Has no answer, and says why.
+    pub(super) fn open(why: Open, reading: impl Into<String>) -> Answered {
+        Answered {
+            open: why,
+            ..Answered::new(Answer::Unknown, reading)
         }
     }
 }

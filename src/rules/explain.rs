@@ -7,10 +7,11 @@ use std::fmt::Write;
 
 use crate::domain::age::spoken;
 use crate::domain::outcome::{
-    Answer, Basis, DecidedBy, Outcome, OutcomeKind, Reason, RiskKind, Then, Urgency,
+    Answer, Basis, DecidedBy, Open, Outcome, OutcomeKind, Reason, RiskKind, Then, Urgency,
 };
 use crate::rules::CAUTIONS;
 use crate::rules::evaluate::refers;
+use crate::rules::threshold::split_band;
 
 pub use change::words as would_change;
 pub(in crate::rules) use words::act_words;
@@ -25,8 +26,12 @@ pub struct ReasonLine {
     pub reading: String,
     /// What it answered.
     pub answer: Answer,
+    /// The answer in words; where there is none, why.
+    pub said: &'static str,
     /// The distance to the threshold in words.
     pub margin: String,
+    /// What would turn the answer; empty where nothing is known to.
+    pub change: String,
     /// The threshold as printed.
     pub threshold: String,
     /// Source and basis.
@@ -35,8 +40,8 @@ pub struct ReasonLine {
     pub note: String,
 }
 
-/// Appends the reasons as one cell of text: what refers first, then what is unknown, then what
-/// passes, shortly.
+/// Appends the reasons as one cell of text: what refers first, then what has no answer, then what
+/// passes, shortly. Of a child who could not be tested that stands first.
 pub fn reasons_text(outcome: &Outcome, out: &mut String) {
     let start = out.len();
     let part = |out: &mut String| {
@@ -44,28 +49,27 @@ pub fn reasons_text(outcome: &Outcome, out: &mut String) {
             out.push_str(". ");
         }
     };
+    let decided =
+        |r: &Reason| outcome.decided_by == DecidedBy::NotTestable && r.open == Open::NotTestable;
+    let open = || {
+        outcome
+            .reasons
+            .iter()
+            .filter(|r| r.answer == Answer::Unknown)
+    };
+    for reason in open().filter(|r| decided(r)) {
+        part(out);
+        let mut text = String::new();
+        open_sentence(outcome, reason, &mut text);
+        out.push_str(&capital(&text));
+    }
     for reason in referring(outcome) {
         part(out);
         refer_sentence(reason, out);
     }
-    for reason in outcome
-        .reasons
-        .iter()
-        .filter(|r| r.answer == Answer::Unknown)
-    {
+    for reason in open().filter(|r| !decided(r)) {
         part(out);
-        let _ = write!(
-            out,
-            "unknown: {}, {}{}",
-            criterion_words(&reason.criterion),
-            reason.reading,
-            in_brackets(&reason.remarks)
-        );
-        out.push_str(if could_change(outcome, reason) {
-            " (could change the outcome)"
-        } else {
-            " (would not change the outcome)"
-        });
+        open_sentence(outcome, reason, out);
     }
     for word in outcome
         .unknown
@@ -75,7 +79,7 @@ pub fn reasons_text(outcome: &Outcome, out: &mut String) {
         part(out);
         let _ = write!(
             out,
-            "no criterion for this {word}, or the {word} is unknown"
+            "no criterion for this {word}, or the {word} is not known"
         );
     }
     let mut signs_said: Vec<&str> = Vec::new();
@@ -86,12 +90,36 @@ pub fn reasons_text(outcome: &Outcome, out: &mut String) {
             }
             signs_said.push(&reason.rule_set);
         }
+        if !passes_at_all(outcome, reason) {
+            continue;
+        }
         part(out);
         pass_words(reason, out);
     }
     for note in outcome.qualifiers.iter().chain(&outcome.protocol_notes) {
         part(out);
         out.push_str(note);
+    }
+}
+
+/// Says why a criterion has no answer, and whether one could change the outcome.
+fn open_sentence(outcome: &Outcome, reason: &Reason, out: &mut String) {
+    let _ = write!(
+        out,
+        "{}: {}, {}{} ({})",
+        reason.open.title(),
+        criterion_words(&reason.criterion),
+        reason.reading,
+        in_brackets(&reason.remarks),
+        could_words(outcome, reason)
+    );
+}
+
+fn could_words(outcome: &Outcome, reason: &Reason) -> &'static str {
+    if could_change(outcome, reason) {
+        "could change the outcome"
+    } else {
+        "would not change the outcome"
     }
 }
 
@@ -151,22 +179,44 @@ fn asks(reason: &Reason) -> &'static str {
     }
 }
 
-/// Names a source shortly: "Joint policy 2016, two-line rule (as quoted elsewhere)".
+/// Names a source shortly: "Joint policy 2016, two-line rule (as quoted elsewhere)"; what does not
+/// wait names its own source.
 fn brief_source(reason: &Reason) -> String {
-    let rule = match (&*reason.criterion, &*reason.threshold) {
-        (id, "2 lines or more") if id.starts_with("between-eyes") => ", two-line rule",
-        (id, "3 lines or more") if id.starts_with("between-eyes") => ", three-line rule",
+    let rule = match &*reason.threshold {
+        "2 lines or more" => ", two-line rule",
+        "3 lines or more" => ", three-line rule",
         _ => "",
     };
     let basis = match reason.source.basis {
         Basis::Memory => "from memory",
         basis => basis.title(),
     };
+    if reason.urgency < Urgency::Routine {
+        return format!("{} ({basis})", reason.source.citation);
+    }
     format!("{}{rule} ({basis})", reason.said_by)
 }
 
+/// Says whether a pass is worth saying: where the same chart does not pass in another criterion of the
+/// set, that only a part of it passes says nothing.
+fn passes_at_all(outcome: &Outcome, reason: &Reason) -> bool {
+    let chart = |r: &Reason| {
+        let finding = split_band(&r.criterion).0;
+        ["line", "near"]
+            .into_iter()
+            .find(|f| finding.split('.').next() == Some(f))
+    };
+    chart(reason).is_none_or(|mine| {
+        !outcome.reasons.iter().any(|other| {
+            other.answer != Answer::Pass
+                && other.rule_set == reason.rule_set
+                && chart(other) == Some(mine)
+        })
+    })
+}
+
 fn pass_words(reason: &Reason, out: &mut String) {
-    let finding = criterion_words(&reason.criterion);
+    let finding = criterion_words(split_band(&reason.criterion).0);
     if is_sign(reason) {
         let _ = write!(out, "{}: none seen", words::set_words(&reason.rule_set));
     } else if finding.starts_with("line") {
@@ -176,7 +226,10 @@ fn pass_words(reason: &Reason, out: &mut String) {
     } else if finding.starts_with("between") {
         out.push_str(reason.reading.split(" (").next().unwrap_or_default());
     } else {
-        let _ = write!(out, "{finding} passes ({})", reason.reading);
+        // The finding is not said twice.
+        let reading = reason.reading.strip_prefix(&*finding);
+        let reading = reading.map_or(&*reason.reading, |r| r.trim_start_matches([':', ' ']));
+        let _ = write!(out, "{finding} passes ({reading})");
     }
     out.push_str(&in_brackets(&reason.remarks));
 }
@@ -240,13 +293,14 @@ pub fn short(outcome: &Outcome) -> String {
             } else if outcome.kind == OutcomeKind::Incomplete {
                 let mut missing = outcome.qualifiers.clone();
                 missing.extend(missing_words(outcome));
-                let _ = write!(out, "Not known: {}.", missing.join("; "));
+                let _ = write!(out, "{}.", capital(&missing.join("; ")));
             } else {
                 let mut passes: Vec<String> = Vec::new();
                 for reason in outcome
                     .reasons
                     .iter()
                     .filter(|r| r.answer == Answer::Pass && !is_sign(r))
+                    .filter(|r| passes_at_all(outcome, r))
                 {
                     let mut text = String::new();
                     pass_words(reason, &mut text);
@@ -270,15 +324,19 @@ fn missing_words(outcome: &Outcome) -> Vec<String> {
         .unknown
         .iter()
         .filter(|w| matches!(w.as_str(), "age" | "grade"))
-        .cloned()
+        .map(|word| format!("no criterion for this {word}, or the {word} is not known"))
         .collect();
-    out.extend(
-        outcome
+    for why in Open::ALL {
+        let of_one: Vec<String> = outcome
             .reasons
             .iter()
-            .filter(|r| r.required && r.answer == Answer::Unknown)
-            .map(|r| format!("{} ({})", criterion_words(&r.criterion), r.reading)),
-    );
+            .filter(|r| r.required && r.answer == Answer::Unknown && r.open == *why)
+            .map(|r| format!("{} ({})", criterion_words(&r.criterion), r.reading))
+            .collect();
+        if !of_one.is_empty() {
+            out.push(format!("{}: {}", why.title(), of_one.join("; ")));
+        }
+    }
     out
 }
 
@@ -358,15 +416,7 @@ pub fn table(outcome: &Outcome) -> Vec<ReasonLine> {
             note.push(reason.note.to_string());
         }
         if reason.answer == Answer::Unknown {
-            let could = could_change(outcome, reason);
-            note.push(
-                if could {
-                    "could change the outcome"
-                } else {
-                    "would not change the outcome"
-                }
-                .to_owned(),
-            );
+            note.push(could_words(outcome, reason).to_owned());
         }
         if reason.answer == Answer::Refer && reason.then != Then::Refer {
             note.push(reason.then.in_words());
@@ -386,6 +436,16 @@ pub fn table(outcome: &Outcome) -> Vec<ReasonLine> {
                 reason.reading.clone()
             },
             answer: reason.answer,
+            said: match reason.answer {
+                Answer::Refer => "refers",
+                Answer::Pass => "passes",
+                Answer::Unknown => reason.open.title(),
+            },
+            change: if collapsed {
+                String::new()
+            } else {
+                change::of_reason(reason)
+            },
             margin: margin_words(reason),
             threshold: reason.threshold.to_string(),
             source: if collapsed {
@@ -403,19 +463,15 @@ pub fn table(outcome: &Outcome) -> Vec<ReasonLine> {
 pub fn whole(outcome: &Outcome) -> Vec<String> {
     let mut out = vec![headline(outcome)];
     for row in table(outcome) {
-        let answer = match row.answer {
-            Answer::Refer => "refers",
-            Answer::Pass => "passes",
-            Answer::Unknown => "unknown",
-        };
         out.push(String::new());
-        out.push(format!("{}: {answer}", row.criterion));
+        out.push(format!("{}: {}", row.criterion, row.said));
         out.push(format!("  reading    {}", row.reading));
         if row.threshold != "present" {
             out.push(format!("  threshold  {}", row.threshold));
         }
         for (name, text) in [
             ("margin", row.margin),
+            ("change", row.change),
             ("source", row.source),
             ("note", row.note),
         ] {
@@ -426,7 +482,7 @@ pub fn whole(outcome: &Outcome) -> Vec<String> {
     }
     out.push(String::new());
     if !outcome.unknown.is_empty() {
-        out.push(format!("Unknown     {}", outcome.unknown.join(", ")));
+        out.push(format!("No answer   {}", outcome.unknown.join(", ")));
     }
     if !outcome.risks.is_empty() {
         out.push(format!("Amblyopia risk  {}", risk_words(&outcome.risks)));

@@ -5,6 +5,7 @@ mod criterion;
 mod grading;
 mod protocol;
 mod reader;
+mod source;
 
 use std::sync::Arc;
 
@@ -13,7 +14,7 @@ use toml::de::DeTable;
 
 use crate::domain::acuity::LineCredit;
 use crate::domain::number;
-use crate::domain::outcome::{Basis, Source};
+use crate::domain::outcome::Source;
 use crate::rules::error::RuleError;
 use crate::rules::grading::{Grading, GradingKind};
 use crate::rules::{Applies, Approval, Criterion, Kind, Library, Protocol, RuleSet, threshold};
@@ -48,7 +49,6 @@ const SET_KEYS: &[&str] = &[
     "source",
     "criterion",
 ];
-const SOURCE_KEYS: &[&str] = &["key", "citation", "doi", "url", "basis", "quoted_in"];
 
 /// Loads one file; `local` files must say who approved them. Protocols look up their rule sets in
 /// `library`.
@@ -134,7 +134,7 @@ fn rule_set(
     reader.only(root, SET_KEYS);
     let base = based_on::read(reader, root, local, library);
     let head = head(reader, root, local);
-    let sources = sources(reader, root);
+    let sources = source::all(reader, root);
     let (credit, credit_text, credit_source) = line_credit(reader, root, &sources);
     let set_ages = reader.optional(root, "ages").and_then(|(text, span)| {
         let ages = threshold::ages(&text);
@@ -297,94 +297,6 @@ fn head(reader: &mut Reader<'_>, root: &Section<'_, '_>, local: bool) -> Option<
     })
 }
 
-fn sources(reader: &mut Reader<'_>, root: &Section<'_, '_>) -> Vec<Arc<Source>> {
-    let mut out: Vec<Arc<Source>> = Vec::new();
-    for section in reader.sections(root, "source") {
-        reader.only(&section, SOURCE_KEYS);
-        let key = reader.string(&section, "key");
-        let citation = reader.string(&section, "citation");
-        let basis = reader.string(&section, "basis").and_then(|(word, span)| {
-            reader.word(&word, span, "basis", &Basis::words(), Basis::from_word)
-        });
-        let quoted_in = reader
-            .optional(&section, "quoted_in")
-            .map(|v| v.0)
-            .unwrap_or_default();
-        if basis == Some(Basis::Secondary) && quoted_in.is_empty() {
-            reader.fault(
-                section.span.clone(),
-                "`quoted_in` is missing",
-                "where the number was read",
-                "a secondary source says where it is quoted",
-            );
-        }
-        let locator = reader
-            .optional(&section, "doi")
-            .map(|v| format!("doi {}", v.0))
-            .or_else(|| reader.optional(&section, "url").map(|v| v.0))
-            .unwrap_or_default();
-        // A source with another fault is still known by its key, so that one fault is one error.
-        let Some((key, key_span)) = key else {
-            continue;
-        };
-        let citation = citation.map(|v| v.0).unwrap_or_default();
-        let basis = basis.unwrap_or(Basis::Memory);
-        if out.iter().any(|s| s.key == key) {
-            reader.fault(
-                key_span,
-                format!("source `{key}` stands twice"),
-                "a key of its own",
-                "",
-            );
-            continue;
-        }
-        out.push(Arc::new(Source {
-            key,
-            citation,
-            locator,
-            basis,
-            quoted_in,
-            approval: String::new(),
-        }));
-    }
-    out
-}
-
-fn practice() -> Arc<Source> {
-    Arc::new(Source {
-        key: "practice".into(),
-        citation: "common practice".into(),
-        locator: String::new(),
-        basis: Basis::Practice,
-        quoted_in: String::new(),
-        approval: String::new(),
-    })
-}
-
-fn find_source(
-    reader: &mut Reader<'_>,
-    section: &Section<'_, '_>,
-    key: &str,
-    sources: &[Arc<Source>],
-) -> Option<Arc<Source>> {
-    let (name, span) = reader.string(section, key)?;
-    let found = sources.iter().find(|s| s.key == name).cloned();
-    if found.is_none() {
-        let known = sources
-            .iter()
-            .map(|s| s.key.as_str())
-            .collect::<Vec<_>>()
-            .join(", ");
-        reader.fault(
-            span,
-            format!("no source `{name}` in this file"),
-            format!("one of {known}"),
-            "add a [[source]] with this key",
-        );
-    }
-    found
-}
-
 fn line_credit(
     reader: &mut Reader<'_>,
     root: &Section<'_, '_>,
@@ -394,7 +306,7 @@ fn line_credit(
         return (
             LineCredit::Majority,
             "majority of the line".into(),
-            practice(),
+            source::practice(),
         );
     };
     let credit = if text == "majority" {
@@ -416,7 +328,7 @@ fn line_credit(
             "",
         );
     }
-    let source = find_source(reader, root, "line_credit_source", sources);
+    let source = source::named(reader, root, "line_credit_source", sources);
     (
         credit.unwrap_or(LineCredit::Majority),
         if text == "majority" {
@@ -424,6 +336,6 @@ fn line_credit(
         } else {
             text.into()
         },
-        source.unwrap_or_else(practice),
+        source.unwrap_or_else(source::practice),
     )
 }

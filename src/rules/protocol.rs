@@ -8,7 +8,7 @@ use std::sync::Arc;
 
 use crate::domain::acuity::Line;
 use crate::domain::age::{AgeMonths, Grade};
-use crate::domain::outcome::{Answer, DecidedBy, Margin, Outcome, OutcomeKind};
+use crate::domain::outcome::{Answer, DecidedBy, Margin, Open, Outcome, OutcomeKind};
 use crate::rules::evaluate::{self, settle};
 use crate::rules::{Case, Library, Measure, Protocol, RuleSet};
 
@@ -83,6 +83,7 @@ fn outcome(
         }
         if chart_unjudged && gathered.chart_sets.contains(&spoken.reason.rule_set) {
             spoken.reason.answer = Answer::Unknown;
+            spoken.reason.open = Open::NotJudged;
             spoken.reason.margin = Margin::None;
             spoken.reason.would_change.clear();
             spoken.reason.eye = None;

@@ -143,7 +143,7 @@ pub fn sheet(set: &RuleSet) -> RuleSheet {
         } else {
             String::new()
         },
-        sources: set.sources.iter().map(|s| cited(s)).collect(),
+        sources: all_cited(&set.sources),
         notes,
         approval: set.approval_words().unwrap_or_default(),
     }
@@ -157,16 +157,30 @@ fn column(applies: &Applies, span: Option<(u32, Option<u32>)>) -> String {
 }
 
 fn cited(source: &Source) -> String {
-    let locator = if source.locator.is_empty() {
-        String::new()
-    } else {
-        format!(", {}", source.locator)
-    };
-    format!(
-        "{}{locator}. Basis: {}",
-        source.citation,
-        basis_words(source)
-    )
+    format!("{}. Basis: {}", place(source), basis_words(source))
+}
+
+fn place(source: &Source) -> String {
+    match source.locator.as_str() {
+        "" => source.citation.clone(),
+        locator => format!("{}, {locator}", source.citation),
+    }
+}
+
+/// Cites each publication once, with every basis on which it is taken.
+fn all_cited(sources: &[std::sync::Arc<Source>]) -> Vec<String> {
+    let mut out: Vec<(String, Vec<String>)> = Vec::new();
+    for source in sources {
+        let (place, basis) = (place(source), basis_words(source));
+        match out.iter_mut().find(|(known, _)| *known == place) {
+            Some((_, also)) if also.contains(&basis) => {}
+            Some((_, also)) => also.push(basis),
+            None => out.push((place, vec![basis])),
+        }
+    }
+    out.into_iter()
+        .map(|(place, also)| format!("{place}. Basis: {}", also.join("; in part ")))
+        .collect()
 }
 
 /// Returns the line of a severity or triage table in the list.
@@ -239,7 +253,7 @@ pub fn grading_sheet(grading: &Grading) -> RuleSheet {
         columns: levels.iter().map(title).collect(),
         rows,
         line_credit: String::new(),
-        sources: grading.sources.iter().map(|s| cited(s)).collect(),
+        sources: all_cited(&grading.sources),
         notes,
         approval: grading.local.as_ref().map_or_else(String::new, |a| {
             format!("local, approved by {} on {}", a.by, a.on)

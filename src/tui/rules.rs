@@ -9,6 +9,8 @@ use ratatui::style::Style;
 use ratatui::text::Line;
 use ratatui::widgets::Paragraph;
 
+use std::cell::Cell;
+
 use crate::keys::{Command, Context};
 use crate::tui::app::{Effect, Request, Session};
 use crate::tui::day::Done;
@@ -23,6 +25,8 @@ pub struct Rules {
     pages: Vec<Page>,
     at: usize,
     top: usize,
+    /// How far the sheet on the screen can be scrolled; known once it was drawn.
+    last_top: Cell<usize>,
     /// The kind that is listed; all of them when none.
     kind: Option<&'static str>,
     /// The first of two rule sets to compare.
@@ -59,7 +63,7 @@ impl Rules {
                         .or_else(|| library.grading(&id).map(|_| TABLES))
                         .unwrap_or(PROTOCOLS),
                     comparable: set.is_some(),
-                    superseded: set.is_some_and(|s| !s.status.is_empty() && s.status != "current"),
+                    superseded: set.is_some_and(|s| s.status.starts_with("superseded")),
                     picture: set.map(picture::lines).unwrap_or_default(),
                     id,
                     body,
@@ -70,6 +74,7 @@ impl Rules {
             pages,
             at: 0,
             top: 0,
+            last_top: Cell::new(0),
             kind: None,
             marked: None,
             compared: None,
@@ -167,7 +172,7 @@ impl Rules {
 
     /// Scrolls the sheet.
     fn scroll(&mut self, by: isize) {
-        self.top = self.top.saturating_add_signed(by).min(200);
+        self.top = self.top.saturating_add_signed(by).min(self.last_top.get());
     }
 
     /// Draws list and sheet.
@@ -249,7 +254,8 @@ impl Rules {
                     .flat_map(|l| wrap_under(&safe(l), columns))
                     .collect(),
             };
-            let top = self.top.min(lines.len().saturating_sub(rows));
+            self.last_top.set(lines.len().saturating_sub(rows));
+            let top = self.top.min(self.last_top.get());
             let text: Vec<Line<'_>> = lines
                 .iter()
                 .enumerate()

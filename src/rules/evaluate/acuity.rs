@@ -1,7 +1,7 @@
 //! Acuity criteria: each eye against a line, and the difference between the eyes.
 
 use crate::domain::acuity::{Acuity, Line, LineCredit, LogMar, Notation, Step, StepRange};
-use crate::domain::outcome::{Answer, ChartChange, Margin};
+use crate::domain::outcome::{Answer, ChartChange, Margin, Open};
 use crate::domain::readings::{AcuityResult, Eye, Eyes};
 use crate::rules::{Compare, Criterion, RuleSet, Test};
 
@@ -32,10 +32,19 @@ pub(super) fn each_eye(
     });
     let answers = ranges.map(|range| against(range, limit.value));
     let answer = either_eye(answers);
-    let mut out = Answered::new(answer, both_in_words(eyes));
+    let of = if near { "near, " } else { "" };
+    let mut out = Answered::new(answer, format!("{of}{}", both_in_words(eyes)));
     out.by_eye = Some(answers);
     out.eye = deciding_eye(answers);
-    out.margin = margin(ranges, answers, limit.value, by_letter, letters);
+    if answer == Answer::Unknown {
+        let unanswered = eyes.both().into_iter().zip(answers);
+        out.open = why_open(
+            unanswered
+                .filter(|(_, a)| *a == Answer::Unknown)
+                .map(|(v, _)| v),
+        );
+    }
+    out.margin = margin(ranges, answers, limit.printed(), by_letter, letters);
     for (eye, value) in Eye::BOTH.into_iter().zip(eyes.both()) {
         remarks(
             set.credit,
@@ -110,6 +119,11 @@ impl Limit {
                 1
             },
         })
+    }
+
+    /// Returns the threshold's own line, whether it passes or refers.
+    fn printed(&self) -> i32 {
+        self.value + i32::from(!self.own_line_passes)
     }
 
     /// Returns the worst whole step that passes.
@@ -199,6 +213,21 @@ fn needed_line(line: Line, notation: Notation, shift: i32) -> String {
     }
 }
 
+/// Says why acuities decide nothing.
+fn why_open(values: impl Iterator<Item = Option<AcuityResult>>) -> Open {
+    let values: Vec<Option<AcuityResult>> = values.collect();
+    if values
+        .iter()
+        .any(|v| matches!(v, Some(AcuityResult::NotTestable(_))))
+    {
+        Open::NotTestable
+    } else if values.contains(&None) {
+        Open::NotDone
+    } else {
+        Open::NotDecided
+    }
+}
+
 fn failing(answers: [Answer; 2]) -> Vec<Eye> {
     Eye::BOTH
         .into_iter()
@@ -235,7 +264,19 @@ fn margin(
         .filter(|(_, answer)| *answer == all)
         .filter_map(|(range, _)| range)
         .collect();
-    if all == Answer::Unknown || decided.iter().any(|r| !r.is_on_the_chart()) {
+    let scale = if by_letter {
+        i32::from(letters.max(1)) * 100
+    } else {
+        1
+    };
+    let off_chart = |range: &StepRange| {
+        let in_steps = StepRange {
+            best: range.best.map(|best| best / scale),
+            worst: range.worst,
+        };
+        !in_steps.is_on_the_chart()
+    };
+    if all == Answer::Unknown || decided.iter().any(off_chart) {
         return Margin::None;
     }
 
@@ -315,7 +356,8 @@ pub(super) fn between_eyes(set: &RuleSet, criterion: &Criterion, facts: &Facts<'
             .steps(set.credit, facts.letters, facts.shift)
     });
     let [Some(right), Some(left)] = ranges else {
-        return Answered::new(Answer::Unknown, both_in_words(eyes));
+        let why = why_open(eyes.both().into_iter());
+        return Answered::open(why, both_in_words(eyes));
     };
     let (least, most) = right.difference(left);
     let off_chart = !right.is_on_the_chart() || !left.is_on_the_chart();
@@ -338,7 +380,7 @@ pub(super) fn between_eyes(set: &RuleSet, criterion: &Criterion, facts: &Facts<'
     };
     let mut out = Answered::new(answer, reading);
     if exact {
-        out.margin = Margin::Steps(limit - 1 - least);
+        out.margin = Margin::Steps(limit - least);
     }
     if answer == Answer::Refer && exact {
         out.remarks.push(format!("{} of 0.1 logMAR", steps(least)));

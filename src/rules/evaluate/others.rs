@@ -3,7 +3,7 @@
 use std::fmt::Write;
 
 use crate::domain::codes::{Correction, Cover, PlusLens, Reflex, YesNo};
-use crate::domain::outcome::{Answer, Margin};
+use crate::domain::outcome::{Answer, Margin, Open};
 use crate::domain::readings::{Eye, Hundredths, Sign};
 use crate::rules::{Criterion, Finding, Measure, Test};
 
@@ -41,6 +41,16 @@ pub(super) fn strabismus(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
             );
         }
     }
+    if answer == Answer::Pass {
+        out.would_change = match criterion.test {
+            Test::AnyManifest => "a manifest deviation would not pass".to_owned(),
+            Test::Constant => "a constant deviation would not pass".to_owned(),
+            _ => format!("{} would not pass", criterion.threshold),
+        };
+    }
+    if cover.is_none() && size.is_none() {
+        out.open = Open::NotDone;
+    }
     if answer == Answer::Unknown && manifest {
         out.remarks
             .push("the cover test and the size of the deviation contradict each other".to_owned());
@@ -75,13 +85,39 @@ pub(super) fn millimetres(criterion: &Criterion, facts: &Facts<'_>) -> Answered 
     let mut out = Answered::new(
         either_eye(answers),
         format!(
-            "{}, {}",
+            "{}: {}, {}",
+            criterion.measure.title(),
             eye_words(Eye::Right, &right),
             eye_words(Eye::Left, &left)
         ),
     );
     out.by_eye = Some(answers);
     out.eye = deciding_eye(answers);
+    match out.answer {
+        Answer::Pass => {
+            out.would_change = format!(
+                "{} of {} in either eye would not pass",
+                criterion.measure.title(),
+                criterion.threshold
+            );
+        }
+        Answer::Unknown if worn => out.open = Open::NotJudged,
+        Answer::Unknown => out.open = Open::NotDone,
+        Answer::Refer => {
+            let within = match criterion.test {
+                Test::MillimetresOrLess(limit) => format!("more than {} mm", Hundredths(limit)),
+                Test::MoreThanMillimetres(limit) => format!("{} mm or less", Hundredths(limit)),
+                _ => String::new(),
+            };
+            let whose = out
+                .eye
+                .map_or("both eyes".to_owned(), |e| format!("the {}", e.title()));
+            out.would_change = format!(
+                "{} of {within} in {whose} would not refer",
+                criterion.measure.title()
+            );
+        }
+    }
     out.margin = values
         .into_iter()
         .flatten()
@@ -175,7 +211,10 @@ pub(super) fn present(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
         }
         Answer::Unknown => "not looked for".to_owned(),
     };
-    Answered::new(answer, reading)
+    Answered {
+        open: Open::NotLookedFor,
+        ..Answered::new(answer, reading)
+    }
 }
 
 fn finding_words(finding: Finding, facts: &Facts<'_>) -> String {
@@ -220,14 +259,19 @@ pub(super) fn plus_lens(facts: &Facts<'_>) -> Answered {
         None => Some("whether the child owns glasses is not answered"),
     };
     if let Some(why) = not_applicable {
-        let mut out = Answered::new(Answer::Unknown, format!("not applicable: {why}"));
+        let mut out = Answered::open(Open::NotApplicable, why);
         out.not_applicable = Some(why);
         return out;
     }
     let mut out = match facts.readings.plus_lens {
         Some(PlusLens::Read) => Answered::new(Answer::Refer, PlusLens::Read.title()),
         Some(PlusLens::Blurred) => Answered::new(Answer::Pass, PlusLens::Blurred.title()),
-        None => Answered::new(Answer::Unknown, "plus lens not done"),
+        None => Answered::open(Open::NotDone, "plus lens not done"),
+    };
+    out.would_change = match out.answer {
+        Answer::Pass => "the line read through the lens would not pass".to_owned(),
+        Answer::Refer => "the line blurred by the lens would pass".to_owned(),
+        Answer::Unknown => String::new(),
     };
     if facts.distance_passed.is_none() {
         out.remarks
@@ -243,7 +287,7 @@ pub(super) fn stereo(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
     };
     let (Some(correct), Some(shown)) = (facts.readings.stereo_correct, facts.readings.stereo_shown)
     else {
-        return Answered::new(Answer::Unknown, "stereo not done");
+        return Answered::open(Open::NotDone, "stereo not done");
     };
     let missed = shown.saturating_sub(correct);
     let mut out = Answered::new(
@@ -256,7 +300,7 @@ pub(super) fn stereo(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
         } else {
             Answer::Unknown
         },
-        format!("{correct} of {shown}"),
+        format!("stereo {correct} of {shown}"),
     );
     out.margin = Margin::Count(i32::from(correct) - i32::from(need));
     if shown > of {
@@ -265,6 +309,8 @@ pub(super) fn stereo(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
     }
     if out.answer == Answer::Refer {
         out.would_change = format!("{need} of {of} would pass");
+    } else if out.answer == Answer::Pass {
+        out.would_change = format!("{} would not pass", criterion.threshold);
     }
     out
 }
@@ -272,7 +318,7 @@ pub(super) fn stereo(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
 /// Judges color plates; a criterion that informs never refers.
 pub(super) fn color_plates(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
     let Some(missed) = facts.readings.plates_missed else {
-        return Answered::new(Answer::Unknown, "color plates not done");
+        return Answered::open(Open::NotDone, "color plates not done");
     };
     let reading = match facts.readings.plates_shown {
         Some(shown) => format!("{missed} of {shown} plates missed"),
@@ -285,6 +331,9 @@ pub(super) fn color_plates(criterion: &Criterion, facts: &Facts<'_>) -> Answered
         },
         reading,
     );
+    if missed == 0 && !criterion.informs {
+        out.would_change = format!("{} would not pass", criterion.threshold);
+    }
     if missed > 0 && criterion.informs {
         out.remarks.push(
             "plates missed: information for the family and the school, not an eye referral"

@@ -3,7 +3,7 @@
 use std::fmt::Write;
 
 use crate::domain::codes::YesNo;
-use crate::domain::outcome::{Answer, Margin};
+use crate::domain::outcome::{Answer, Margin, Open};
 use crate::domain::readings::{Eye, InstrumentEye, Readings};
 use crate::domain::refraction::{Axis, Diopters, Power, Range, Refraction};
 use crate::rules::{Criterion, Measure, Metric, Test};
@@ -17,6 +17,23 @@ fn limit(criterion: &Criterion, scale: i32) -> Option<i32> {
         Test::MoreThanDiopters(limit) => Some(limit.saturating_mul(scale)),
         Test::DioptersOrMore(limit) => Some(limit.saturating_mul(scale) - 1),
         _ => None,
+    }
+}
+
+/// Returns the threshold as printed, in thousandths.
+fn printed(criterion: &Criterion) -> i32 {
+    match criterion.test {
+        Test::MoreThanDiopters(v) | Test::DioptersOrMore(v) => v,
+        _ => 0,
+    }
+}
+
+/// Says what does not cross the threshold: "4.00 D or less", "less than 4.00 D".
+fn within(criterion: &Criterion) -> String {
+    let limit = Diopters(printed(criterion)).unsigned();
+    match criterion.test {
+        Test::DioptersOrMore(_) => format!("less than {} D", limit.trim()),
+        _ => format!("{} D or less", limit.trim()),
     }
 }
 
@@ -62,7 +79,8 @@ pub(super) fn each_eye(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
     }
     let eyes = facts.readings.instrument.both();
     let ranges = eyes.map(|eye| quantity(criterion.measure, &eye));
-    let mut answers = ranges.map(|range| against(range, limit));
+    let by_size = ranges.map(|range| against(range, limit));
+    let mut answers = by_size;
     if let Some(beyond) = criterion.axis_beyond {
         for (answer, eye) in answers.iter_mut().zip(&eyes) {
             *answer = with_axis(*answer, eye, beyond);
@@ -71,23 +89,60 @@ pub(super) fn each_eye(criterion: &Criterion, facts: &Facts<'_>) -> Answered {
     let mut out = Answered::new(either_eye(answers), words(criterion.measure, &eyes, ranges));
     out.by_eye = Some(answers);
     out.eye = deciding_eye(answers);
-    out.margin = margin(ranges, answers, limit);
-    if out.answer == Answer::Refer {
-        let passes = Diopters(limit).unsigned();
-        let name = criterion.measure.title();
-        out.would_change = match out.eye {
-            Some(eye) => format!(
-                "{name} of {} D or less in the {} would not refer",
-                passes.trim(),
-                eye.title()
-            ),
-            None => format!(
-                "{name} of {} D or less in both eyes would not refer",
-                passes.trim()
-            ),
-        };
+    // What an axis sets aside has no distance to the threshold.
+    let [right, left] = [0, 1].map(|i| {
+        if answers[i] == by_size[i] {
+            ranges[i]
+        } else {
+            Range::UNKNOWN
+        }
+    });
+    out.margin = margin([right, left], answers, printed(criterion));
+    let name = criterion.measure.title();
+    match out.answer {
+        Answer::Refer => {
+            let whose = out.eye.map_or_else(|| "both eyes".to_owned(), in_the);
+            out.would_change =
+                format!("{name} of {} in {whose} would not refer", within(criterion));
+        }
+        Answer::Pass => {
+            let whose = nearer(ranges).map_or_else(|| "either eye".to_owned(), in_the);
+            let axis = criterion.axis_beyond.map_or_else(String::new, |beyond| {
+                format!(", axis more than {beyond}° from 90 and 180,")
+            });
+            out.would_change = format!(
+                "{name} of {}{axis} in {whose} would not pass",
+                criterion.threshold
+            );
+        }
+        Answer::Unknown => out.open = why_open(&eyes),
     }
     out
+}
+
+fn in_the(eye: Eye) -> String {
+    format!("the {}", eye.title())
+}
+
+/// Returns the eye with the larger value; none where both are alike or one is not bounded.
+fn nearer(ranges: [Range; 2]) -> Option<Eye> {
+    match (ranges[0].high?, ranges[1].high?) {
+        (right, left) if right > left => Some(Eye::Right),
+        (right, left) if left > right => Some(Eye::Left),
+        _ => None,
+    }
+}
+
+/// Says why what an instrument gave decides nothing.
+fn why_open(eyes: &[InstrumentEye; 2]) -> Open {
+    if eyes
+        .iter()
+        .any(|e| e.sphere.is_none() || e.cylinder.is_none())
+    {
+        Open::NotDone
+    } else {
+        Open::NotDecided
+    }
 }
 
 /// Keeps an oblique cylinder and sets one on the main meridians aside.
@@ -129,7 +184,7 @@ fn words(measure: Measure, eyes: &[InstrumentEye; 2], ranges: [Range; 2]) -> Str
                     ..
                 },
             ) => "no reading".to_owned(),
-            (range, _) => in_dioptres(range, measure),
+            (range, _) => in_dioptres(range, measure == Measure::Astigmatism),
         };
         eye_words(eye, &value)
     };
@@ -141,9 +196,10 @@ fn words(measure: Measure, eyes: &[InstrumentEye; 2], ranges: [Range; 2]) -> Str
     )
 }
 
-fn in_dioptres(range: Range, measure: Measure) -> String {
+/// Returns a power that may lie in a range; one that is not above zero is none, unless it is shown.
+pub(in crate::rules) fn in_dioptres(range: Range, zero_shown: bool) -> String {
     let positive = |v: i32| {
-        if v <= 0 && measure != Measure::Astigmatism {
+        if v <= 0 && !zero_shown {
             "none".to_owned()
         } else {
             format!("{} D", Diopters(v).unsigned().trim())
@@ -152,15 +208,25 @@ fn in_dioptres(range: Range, measure: Measure) -> String {
     match (range.low, range.high) {
         (Some(low), Some(high)) if low == high => positive(low),
         (Some(low), Some(high)) => format!("{} to {}", positive(low), positive(high)),
-        (Some(low), None) if low > 0 => format!("{} or more", positive(low)),
+        (Some(low), None) if low > 0 => at_least(low),
         (None, Some(high)) => format!("{} at most", positive(high)),
         _ => "not known".to_owned(),
     }
 }
 
+/// Returns a lower bound in words. Readings are hundredths, so that a bound one thousandth above one is
+/// everything above it.
+fn at_least(low: i32) -> String {
+    if low % 10 == 1 {
+        format!("more than {} D", Diopters(low - 1).unsigned().trim())
+    } else {
+        format!("{} D or more", Diopters(low).unsigned().trim())
+    }
+}
+
 fn through_glasses(facts: &Facts<'_>) -> Option<Answered> {
     (facts.readings.instrument_worn == Some(YesNo::Yes)).then(|| {
-        let mut out = Answered::new(Answer::Unknown, "measured through glasses");
+        let mut out = Answered::open(Open::NotJudged, "measured through glasses");
         out.remarks
             .push("measured through glasses: it says nothing of the eye alone".to_owned());
         out
@@ -197,29 +263,33 @@ pub(super) fn anisometropia(criterion: &Criterion, facts: &Facts<'_>) -> Answere
         answer,
         reading(metric, equivalents, cylinders, along, by_equivalent),
     );
+    let limit = printed(criterion);
     let measured = match metric {
-        Metric::Meridional => along.map(|v| once - v),
+        Metric::Meridional => along.map(|v| limit - v),
         Metric::EquivalentOrCylinder
             if by_equivalent == Answer::Pass && by_cylinder == Answer::Refer =>
         {
-            cylinders.low.map(|v| once - v)
+            cylinders.low.map(|v| limit - v)
         }
         _ => match answer {
             Answer::Refer => equivalents.low,
             Answer::Pass => equivalents.high,
             Answer::Unknown => None,
         }
-        .map(|v| once - (v + 1) / 2),
+        .map(|v| limit - (v + 1) / 2),
     };
     out.margin = measured.map_or(Margin::None, Margin::Diopters);
     if metric == Metric::SphericalEquivalent && by_equivalent == Answer::Pass {
         notes(along, cylinders, once, &mut out.remarks);
     }
-    if answer == Answer::Refer {
-        out.would_change = format!(
-            "a difference of {} D or less would not refer",
-            Diopters(once).unsigned().trim()
-        );
+    match answer {
+        Answer::Refer => {
+            out.would_change = format!("a difference of {} would not refer", within(criterion));
+        }
+        Answer::Pass => {
+            out.would_change = format!("a difference of {} would not pass", criterion.threshold);
+        }
+        Answer::Unknown => out.open = why_open(&[right, left]),
     }
     out
 }
@@ -258,12 +328,7 @@ fn reading(
         (Some(_), Some(high)) if twice.low == twice.high => {
             format!("anisometropia {} D", Diopters(high).unsigned().trim())
         }
-        (Some(low), None) if low > 0 => {
-            format!(
-                "anisometropia {} D or more",
-                Diopters(low).unsigned().trim()
-            )
-        }
+        (Some(low), None) if low > 0 => format!("anisometropia {}", at_least(low)),
         _ => "anisometropia not known".to_owned(),
     };
     if metric == Metric::EquivalentOrCylinder

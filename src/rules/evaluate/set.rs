@@ -4,7 +4,7 @@ use std::sync::Arc;
 
 use crate::domain::acuity::{Line, Step};
 use crate::domain::age::{AgeMonths, Grade};
-use crate::domain::outcome::{Answer, Reason, RiskKind, Urgency};
+use crate::domain::outcome::{Answer, Open, Reason, RiskKind, Urgency};
 use crate::domain::readings::Eye;
 use crate::rules::{Applies, Criterion, Measure, RiskRule, RuleSet, Test};
 
@@ -122,6 +122,7 @@ pub(in crate::rules) fn speak<'s>(set: &'s RuleSet, facts: &Facts<'_>) -> Vec<Sp
             let mut spoken = to_spoken(set, criterion, answered);
             spoken.reason.criterion = Arc::from(list);
             "not looked for".clone_into(&mut spoken.reason.reading);
+            spoken.reason.open = Open::NotLookedFor;
             spoken.reason.note = Arc::from("");
             spoken.reason.urgency = not_looked.as_ref().map_or(spoken.reason.urgency, |s| {
                 s.reason.urgency.min(spoken.reason.urgency)
@@ -175,6 +176,7 @@ fn to_spoken<'s>(set: &'s RuleSet, criterion: &'s Criterion, answered: Answered)
             said_by: Arc::clone(&set.short_title),
             criterion: Arc::clone(&criterion.id),
             answer: answered.answer,
+            open: answered.open,
             required: criterion.required,
             eye: answered.eye,
             reading: answered.reading,

@@ -1,7 +1,7 @@
 //! The smallest change that would turn an outcome.
 
 use crate::domain::acuity::Line;
-use crate::domain::outcome::{Answer, ChartChange, Outcome, OutcomeKind, Reason};
+use crate::domain::outcome::{Answer, ChartChange, Margin, Outcome, OutcomeKind, Reason};
 
 use super::referring;
 
@@ -16,22 +16,58 @@ pub fn words(outcome: &Outcome) -> String {
     }
 }
 
-/// The chart reading that is the fewest steps from failing.
+/// The chart reading that is the fewest steps from failing; without a chart what an instrument or
+/// another test would have to give.
 fn of_a_pass(outcome: &Outcome) -> String {
-    outcome
-        .reasons
-        .iter()
-        .filter(|r| r.answer == Answer::Pass && !r.high_priority)
-        .filter_map(|r| r.chart_change)
-        .min_by_key(|c| c.steps)
-        .map_or_else(String::new, |change| {
-            format!("{} would not pass", chart_words(&change, ""))
+    let passing = || {
+        outcome
+            .reasons
+            .iter()
+            .filter(|r| r.answer == Answer::Pass && !r.high_priority)
+    };
+    let nearest_line = passing()
+        .filter(|r| r.chart_change.is_some())
+        .min_by_key(|r| r.chart_change.map(|c| c.steps));
+    // Dioptres, millimetres and answers do not compare: within a unit the nearest goes first.
+    let distance = |r: &&Reason| match r.margin {
+        Margin::Diopters(n) => (0, n),
+        Margin::PrismDiopters(n) => (1, n),
+        Margin::Millimetres(n) => (2, n),
+        Margin::Count(n) => (3, n),
+        Margin::Steps(_) | Margin::LogMar(_) | Margin::None => (4, 0),
+    };
+    nearest_line
+        .or_else(|| {
+            passing()
+                .filter(|r| !r.would_change.is_empty())
+                .min_by_key(distance)
         })
+        .map_or_else(String::new, of_reason)
+}
+
+/// Returns what would turn the answer of one criterion; empty where nothing is known to.
+pub(super) fn of_reason(reason: &Reason) -> String {
+    match reason.chart_change {
+        Some(change) if reason.answer == Answer::Pass => {
+            format!("{} would not pass", chart_words(&change, ""))
+        }
+        _ => reason.would_change.clone(),
+    }
 }
 
 fn of_a_fail(outcome: &Outcome) -> String {
     let reasons: Vec<&Reason> = referring(outcome).collect();
     if reasons.is_empty() || reasons.iter().any(|r| r.would_change.is_empty()) {
+        return String::new();
+    }
+    // At another distance than the chart's, lines of several criteria are not put together.
+    let unplaced = |r: &&&Reason| {
+        r.chart_change.is_none()
+            && ["line", "near", "between-eyes"]
+                .iter()
+                .any(|f| r.criterion.starts_with(f))
+    };
+    if reasons.iter().filter(unplaced).count() > 1 {
         return String::new();
     }
     // Below what refers there may still be what is screened again.

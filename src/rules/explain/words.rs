@@ -1,7 +1,7 @@
 //! Small words: criteria, margins, sources.
 
 use crate::domain::codes::{History, SignKind};
-use crate::domain::outcome::{Answer, Basis, Margin, Reason, Source};
+use crate::domain::outcome::{Basis, Margin, Reason, Source};
 use crate::domain::readings::Hundredths;
 use crate::domain::refraction::Diopters;
 use crate::rules::threshold::split_band;
@@ -65,7 +65,6 @@ pub fn source_words(source: &Source) -> String {
 
 /// Returns the distance to the threshold in words; empty where there is none.
 pub fn margin_words(reason: &Reason) -> String {
-    let refers = reason.answer == Answer::Refer;
     let (size, unit) = match reason.margin {
         Margin::None => return String::new(),
         Margin::Steps(n) if reason.criterion.starts_with("between-eyes") => (
@@ -76,10 +75,20 @@ pub fn margin_words(reason: &Reason) -> String {
             n,
             format!("{} line{}", n.abs(), if n.abs() == 1 { "" } else { "s" }),
         ),
-        Margin::Diopters(n) => (n, format!("{} D", Diopters(n.abs()).unsigned().trim())),
+        Margin::Diopters(n) => (n, diopters_past(n)),
         Margin::Millimetres(n) => (n, format!("{} mm", Hundredths(n.abs()))),
-        Margin::PrismDiopters(n) => (n, format!("{} prism dioptres", Hundredths(n.abs()))),
-        Margin::Count(n) => (n, format!("{} answers", n.abs())),
+        Margin::PrismDiopters(n) => (
+            n,
+            format!(
+                "{} prism dioptre{}",
+                Hundredths(n.abs()),
+                if n.abs() == 100 { "" } else { "s" }
+            ),
+        ),
+        Margin::Count(n) => (
+            n,
+            format!("{} answer{}", n.abs(), if n.abs() == 1 { "" } else { "s" }),
+        ),
         Margin::LogMar(n) => (
             n,
             format!("{} logMAR", crate::domain::acuity::LogMar(n.abs())),
@@ -87,12 +96,24 @@ pub fn margin_words(reason: &Reason) -> String {
     };
     let line =
         matches!(reason.margin, Margin::Steps(_)) && !reason.criterion.starts_with("between-eyes");
-    match (size, refers) {
-        (0, _) if line => "at the line".to_owned(),
-        (0, _) => "at the limit".to_owned(),
-        (n, _) if n < 0 && line => format!("{unit} short"),
-        (n, _) if n < 0 => format!("{unit} over"),
+    let counted = matches!(reason.margin, Margin::Count(_));
+    match size {
+        0 if line => "at the line".to_owned(),
+        0 => "at the limit".to_owned(),
+        n if n < 0 && (line || counted) => format!("{unit} short"),
+        n if n < 0 => format!("{unit} over"),
         _ => format!("{unit} to spare"),
+    }
+}
+
+/// Returns a distance in dioptres. Readings are hundredths, so that one thousandth past one is all that
+/// lies above it.
+fn diopters_past(margin: i32) -> String {
+    let size = margin.abs();
+    if size % 10 == 1 {
+        format!("more than {} D", Diopters(size - 1).unsigned().trim())
+    } else {
+        format!("{} D", Diopters(size).unsigned().trim())
     }
 }
 

@@ -6,7 +6,8 @@ use crate::domain::acuity::{Acuity, AcuityContext, Line, parse_acuity};
 use crate::domain::codes::{Cover, SignKind};
 use crate::domain::number;
 use crate::domain::readings::{AcuityResult, Eye};
-use crate::domain::refraction::{Diopters, Range};
+use crate::domain::refraction::Range;
+use crate::rules::evaluate::in_dioptres;
 
 use super::facts::Powers;
 use super::{Clinical, Taken, Truth};
@@ -154,11 +155,11 @@ impl Condition {
                 }
             }
             What::OfPower(power, _) => {
-                let [right, left] = facts.eyes().map(|eye| in_words(power.of(&eye)));
+                let [right, left] = facts.eyes().map(|eye| in_dioptres(power.of(&eye), false));
                 format!("{}: right eye {right}, left eye {left}", power.name())
             }
             What::DifferenceOf(power, _) => {
-                format!("difference {}", in_words(power.difference(facts)))
+                format!("difference {}", in_dioptres(power.difference(facts), false))
             }
             What::Equivalents(_) => {
                 let twice = equivalents(facts);
@@ -166,7 +167,10 @@ impl Condition {
                     low: twice.low.map(|v| v / 2),
                     high: twice.high.map(|v| v / 2),
                 };
-                format!("spherical equivalents differ by {}", in_words(half))
+                format!(
+                    "difference of spherical equivalents {}",
+                    in_dioptres(half, true)
+                )
             }
             What::Onset(_, new_squint) => match facts.onset(*new_squint) {
                 Some((low, high)) if low == high => format!("onset {low} months ago"),
@@ -181,22 +185,6 @@ impl Condition {
             }
             What::UnequalOrLost(_) => facts.acuity_words(),
         }
-    }
-}
-
-fn in_words(range: Range) -> String {
-    let power = |v: i32| {
-        if v <= 0 {
-            "none".to_owned()
-        } else {
-            format!("{} D", Diopters(v).unsigned())
-        }
-    };
-    match (range.low, range.high) {
-        (Some(low), Some(high)) if low == high => power(low),
-        (Some(low), _) if low > 0 => format!("{} or more", power(low)),
-        (_, Some(high)) => format!("{} at most", power(high)),
-        _ => "not known".to_owned(),
     }
 }
 

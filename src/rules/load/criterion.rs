@@ -108,7 +108,7 @@ fn load(
         )
     });
     let refer = reader.string(section, "refer");
-    let source = super::find_source(reader, section, "source", sources);
+    let source = super::source::named(reader, section, "source", sources);
     let test = match (measure, &refer) {
         (Some(measure), Some((text, span))) => match threshold::parse(measure, text) {
             Ok(typed) => Some(typed),

@@ -9,7 +9,7 @@ use crate::rules::grading::{
 };
 
 use super::reader::{Reader, Section};
-use super::{criterion, find_source, hash, head, said_by, sources};
+use super::{criterion, hash, head, said_by, source};
 
 const KEYS: &[&str] = &[
     "id",
@@ -53,7 +53,7 @@ pub(super) fn load(
 ) -> Option<Grading> {
     reader.only(root, KEYS);
     let head = head(reader, root, local);
-    let sources = sources(reader, root);
+    let sources = source::all(reader, root);
     let (applies, _) = criterion::applies(reader, root);
     let mut terms = Terms {
         taken: taken(reader, root, &sources),
@@ -144,7 +144,7 @@ fn taken(reader: &mut Reader<'_>, root: &Section<'_, '_>, sources: &[Arc<Source>
         reader.only(&section, &["word", "as", "source"]);
         let word = reader.string(&section, "word");
         let stands_for = reader.string(&section, "as");
-        let source = find_source(reader, &section, "source", sources);
+        let source = source::named(reader, &section, "source", sources);
         let Some((stands_for, span)) = stands_for else {
             continue;
         };
@@ -227,7 +227,7 @@ fn entry(
             "",
         );
     }
-    let source = find_source(reader, section, "source", sources);
+    let source = source::named(reader, section, "source", sources);
     let note = reader
         .optional(section, "note")
         .map(|v| v.0)
@@ -255,7 +255,7 @@ fn windows(
         let (applies, _) = criterion::applies(reader, &section);
         let rank = reader.number(&section, "rank");
         let words = reader.string(&section, "words");
-        let source = find_source(reader, &section, "source", sources);
+        let source = source::named(reader, &section, "source", sources);
         if let (Some(rank), Some((words, _)), Some(source)) = (rank, words, source)
             && applies != Applies::Everyone
         {

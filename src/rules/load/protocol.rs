@@ -11,7 +11,7 @@ use crate::rules::{
 };
 
 use super::reader::{Reader, Section};
-use super::{criterion, hash, head, practice, sources};
+use super::{criterion, hash, head, source};
 
 const KEYS: &[&str] = &[
     "id",
@@ -56,7 +56,7 @@ pub(super) fn load(
 ) -> Option<Protocol> {
     reader.only(root, KEYS);
     let head = head(reader, root, local);
-    let sources = sources(reader, root);
+    let sources = source::all(reader, root);
     let rule_sets = known_sets(reader, root, "rule_sets", library);
     let when_done = known_sets(reader, root, "when_done", library);
     if rule_sets.is_empty() && reader.errors.is_empty() {
@@ -80,9 +80,9 @@ pub(super) fn load(
         found
     });
     let required = required(reader, root);
-    let settings_source =
-        source_or(reader, root, "settings_source", &sources).unwrap_or_else(practice);
-    let first_fail_source = source_or(reader, root, "rescreen_source", &sources)
+    let settings_source = source::named_if_given(reader, root, "settings_source", &sources)
+        .unwrap_or_else(source::practice);
+    let first_fail_source = source::named_if_given(reader, root, "rescreen_source", &sources)
         .unwrap_or_else(|| Arc::clone(&settings_source));
     let first_fail = first_fail(reader, root);
     let exempt = exempt(reader, root);
@@ -185,7 +185,7 @@ pub(super) fn load(
             note: String::new(),
             credit: LineCredit::Majority,
             credit_text: "".into(),
-            credit_source: practice(),
+            credit_source: source::practice(),
             sources: sources.clone(),
             criteria: at_once,
             local: None,
@@ -230,18 +230,6 @@ fn known_sets(
         );
     }
     out
-}
-
-fn source_or(
-    reader: &mut Reader<'_>,
-    root: &Section<'_, '_>,
-    key: &str,
-    sources: &[Arc<Source>],
-) -> Option<Arc<Source>> {
-    root.table
-        .contains_key(key)
-        .then(|| super::find_source(reader, root, key, sources))
-        .flatten()
 }
 
 fn measures(reader: &mut Reader<'_>, section: &Section<'_, '_>, key: &str) -> Vec<Measure> {
@@ -349,7 +337,7 @@ fn not_testable(
     for section in reader.sections(root, "not_testable") {
         reader.only(&section, NOT_TESTABLE_KEYS);
         let (applies, _) = criterion::applies(reader, &section);
-        let source = super::find_source(reader, &section, "source", sources);
+        let source = source::named(reader, &section, "source", sources);
         // Without a number the next try is when the service says.
         let rescreen_months = reader.number(&section, "rescreen_months");
         if let Some(source) = source {

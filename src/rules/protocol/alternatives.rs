@@ -2,7 +2,7 @@
 //! not agree on is unknown.
 
 use crate::domain::field::Field;
-use crate::domain::outcome::{Answer, DecidedBy, Margin, Outcome, OutcomeKind, Reason};
+use crate::domain::outcome::{Answer, DecidedBy, Margin, Open, Outcome, OutcomeKind, Reason};
 use crate::domain::readings::Readings;
 use crate::rules::{Case, Library, Protocol};
 
@@ -67,7 +67,7 @@ fn joined(all: &[Outcome]) -> Outcome {
         return out;
     }
     let kinds: Vec<&str> = OutcomeKind::ALL
-        .into_iter()
+        .iter()
         .filter(|kind| all.iter().any(|o| o.kind == **kind))
         .map(|kind| kind.title())
         .collect();
@@ -112,6 +112,7 @@ fn reasons(all: &[Outcome]) -> Vec<Reason> {
             }
             joined.reading = readings.join("; or ");
             joined.answer = Answer::Unknown;
+            joined.open = Open::NotSettled;
             joined.margin = Margin::None;
             joined.eye = None;
             joined.would_change.clear();

@@ -176,6 +176,22 @@ fn columns_unknown_missing_and_twice() {
     assert_eq!(&*problems[0].expected, "each column once");
     let problems = read("child_id,grade\nA,1\n").expect_err("no reading");
     assert_eq!(problems[0].found.as_str(), "no column with a reading");
+    assert_eq!(problems[0].cure, None);
+    // Unknown columns are left alone here, so that the misspelt one is named beside.
+    let options = Options {
+        pass_through: true,
+        ..Options::default()
+    };
+    let misspelt = b"child_id,distence_right\nA,20/20\n";
+    let text = read_results("r.csv", misspelt, options, None)
+        .expect_err("no reading")
+        .to_string();
+    for part in [
+        "no column with a reading",
+        "is distence_right meant as distance_right?",
+    ] {
+        assert!(text.contains(part), "{text}");
+    }
     let options = Options {
         needs_child: true,
         ..Options::default()

@@ -87,7 +87,8 @@ fn entries(age: u32, text: &str, row: &str) -> Vec<String> {
 /// and 3 D myopic. Group 1 lies within group 2, so that both rows speak.
 #[test]
 fn anisometropia_of_each_kind_at_each_bound() {
-    let cases: [(&str, fn(&str) -> String, [&str; 6]); 3] = [
+    type Readings = fn(&str) -> String;
+    let cases: [(&str, Readings, [&str; 6]); 3] = [
         (
             "anisometropia.hyperopic",
             |d| format!("sphere_right=+{d} cylinder_right=0 sphere_left=0 cylinder_left=0"),
@@ -390,14 +391,14 @@ fn what_a_word_is_taken_as_is_data() {
     assert!(said.1.unwrap().starts_with("onset unknown"));
 
     let faulty = local_form(shipped).replace("as = \"2 lines", "as = \"two lines");
-    let faults = Library::shipped()
+    let refused = Library::shipped()
         .with_local([("local.toml".to_owned(), faulty)])
         .err()
         .unwrap()
         .to_string();
     assert!(
-        faults.contains("`two lines or more between the eyes` is not a condition"),
-        "{faults}"
+        refused.contains("`two lines or more between the eyes` is not a condition"),
+        "{refused}"
     );
 }
 

@@ -2,12 +2,16 @@
 //! with the program on every row. `TWOLINE_SQL_ROWS` sets how many rows (default 3,000; the long
 //! form is 100,000), `TWOLINE_SQL_SEED` the seed, which a failure prints.
 
+mod signs;
+
 use rusqlite::{Connection, params};
 use twoline::domain::acuity::{Acuity, Line, Notation, Step};
 use twoline::domain::age::{AgeMonths, Grade};
-use twoline::domain::readings::{AcuityResult, Readings};
+use twoline::domain::codes::{Cover, YesNo};
+use twoline::domain::outcome::OutcomeKind;
+use twoline::domain::readings::{AcuityResult, Hundredths, Readings};
 use twoline::domain::refraction::{Axis, Diopters, Power};
-use twoline::rules::{Case, Library, judge_rule_set};
+use twoline::rules::{Case, Kind, Library, judge_rule_set};
 
 struct Dice(u64);
 
@@ -17,6 +21,10 @@ impl Dice {
         self.0 ^= self.0 >> 7;
         self.0 ^= self.0 << 17;
         (self.0 >> 16) % sides
+    }
+
+    fn index(&mut self, sides: u64) -> usize {
+        usize::try_from(self.roll(sides)).unwrap()
     }
 }
 
@@ -79,7 +87,8 @@ fn power(dice: &mut Dice, spread: u64) -> (Option<Power>, Option<i64>) {
 
 const COLUMNS: &str = "CREATE TABLE t(id INTEGER PRIMARY KEY, age INT, grade INT,
  rb INT, rw INT, rfb INT, rfw INT, lb INT, lw INT, lfb INT, lfw INT,
- nrb INT, nrw INT, nlb INT, nlw INT, rs INT, rc INT, ra INT, ls INT, lc INT, la INT)";
+ nrb INT, nrw INT, nlb INT, nlw INT, rs INT, rc INT, ra INT, ls INT, lc INT, la INT,
+ cover INT, pd INT, ro INT, lo INT, rm INT, lm INT, worn INT)";
 
 /// The same rows where a line of five with two missed does not count: the next larger one does.
 /// Expert panel 3 of 4 (primary), joint policy 2003 4 of 6 (memory), New Zealand 2 of 3 (secondary).
@@ -112,6 +121,29 @@ fn letters(limit: i64) -> String {
 const TWO_LINES: &str = "(CASE WHEN (rb IS NULL AND rw IS NULL) OR (lb IS NULL AND lw IS NULL) THEN NULL \
  WHEN COALESCE(rb - lw, 0) >= 2 OR COALESCE(lb - rw, 0) >= 2 THEN 1 \
  WHEN MAX(rw - lb, lw - rb) < 2 THEN 0 END)";
+
+/// Strabismus by the cover test (0 no movement, 1 phoria, 2 intermittent, 3 constant) and the size of a
+/// manifest deviation in hundredths; without a limit any manifest one refers. What contradicts itself is
+/// unknown.
+fn strabismus(limit: Option<i64>) -> String {
+    match limit {
+        None => "(CASE WHEN cover >= 2 OR pd > 0 THEN 1 WHEN cover <= 1 OR pd = 0 THEN 0 END)"
+            .to_owned(),
+        Some(limit) => format!(
+            "(CASE WHEN cover = 3 OR pd > {limit} THEN 1 WHEN cover <= 1 AND pd > 0 THEN NULL \
+             WHEN cover <= 1 OR pd <= {limit} THEN 0 END)"
+        ),
+    }
+}
+
+/// Media opacity above 1 mm and a margin reflex distance of 1 mm or less, in hundredths; through glasses
+/// nothing passes.
+fn millimetres(right: &str, left: &str, test: &str) -> String {
+    let eye = |v: &str| {
+        format!("(CASE WHEN {v} {test} THEN 1 WHEN {v} IS NULL OR worn THEN NULL ELSE 0 END)")
+    };
+    either(&eye(right), &eye(left))
+}
 
 /// One band of a set: when it holds, what is required, what is not.
 struct Band {
@@ -178,18 +210,25 @@ fn refraction(when: &'static str, limits: [i64; 4], of_2003: bool) -> Band {
     let oblique = |c: &str, a: &str| {
         format!("(ABS({c}) > 1000 AND MIN({a}, 180 - {a}) > 10 AND ABS({a} - 90) > 10)")
     };
+    // Through glasses the instrument says nothing of the eye alone.
+    let bare = |sql: String| format!("(CASE WHEN worn THEN NULL ELSE {sql} END)");
+    // Manifest beyond 8 prism dioptres, and more than 1 mm; 2003: any manifest, ptosis at 1 mm or less.
+    let mut optional = vec![
+        strabismus((!of_2003).then_some(800)),
+        millimetres("ro", "lo", "> 100"),
+    ];
+    if of_2003 {
+        optional.push(millimetres("rm", "lm", "<= 100"));
+        optional.push(bare(format!(
+            "(CASE WHEN {} OR {} THEN 1 END)",
+            oblique("rc", "ra"),
+            oblique("lc", "la")
+        )));
+    }
     Band {
         when,
-        required: vec![between, plus, cylinder, minus],
-        optional: if of_2003 {
-            vec![format!(
-                "(CASE WHEN {} OR {} THEN 1 END)",
-                oblique("rc", "ra"),
-                oblique("lc", "la")
-            )]
-        } else {
-            Vec::new()
-        },
+        required: [between, plus, cylinder, minus].map(bare).to_vec(),
+        optional,
     }
 }
 
@@ -340,7 +379,42 @@ fn again_sql(by_letter: bool, refer: i64, again: i64) -> String {
 struct Row {
     age: u32,
     grade: &'static str,
+    under_care: bool,
     readings: Readings,
+}
+
+/// A random cover test and size of a manifest deviation, as readings and as the SQL sees them.
+fn alignment(dice: &mut Dice, readings: &mut Readings) -> (Option<i64>, Option<i32>) {
+    const COVERS: [Cover; 4] = [
+        Cover::None,
+        Cover::Phoria,
+        Cover::Intermittent,
+        Cover::Constant,
+    ];
+    // Mostly nothing manifest, so that what else refers is seen as well.
+    let cover = [
+        None,
+        None,
+        Some(0),
+        Some(0),
+        Some(0),
+        Some(1),
+        Some(2),
+        Some(3),
+    ][dice.index(8)];
+    let size = [
+        None,
+        None,
+        None,
+        Some(0),
+        Some(0),
+        Some(400),
+        Some(800),
+        Some(801),
+    ][dice.index(8)];
+    readings.cover = cover.map(|at: usize| COVERS[at]);
+    readings.deviation_pd = size.map(Hundredths);
+    (cover.map(|at| i64::try_from(at).unwrap()), size)
 }
 
 #[allow(clippy::many_single_char_names)]
@@ -350,7 +424,7 @@ fn fill(db: &Connection, rows: u64, dice: &mut Dice) -> Vec<Row> {
     let mut insert = db
         .prepare(&format!(
             "INSERT INTO t VALUES ({})",
-            vec!["?"; 21].join(",")
+            vec!["?"; 28].join(",")
         ))
         .unwrap();
     for id in 0..rows {
@@ -378,6 +452,19 @@ fn fill(db: &Connection, rows: u64, dice: &mut Dice) -> Vec<Row> {
             eye.cylinder = c;
             eye.axis = Axis::new(i64::try_from(a).unwrap());
         }
+        let (cover, size) = alignment(dice, &mut readings);
+        let mut millimetres = [None; 4];
+        for value in &mut millimetres {
+            // Half of the eyes unmeasured; else none to 2 mm, at and about 1 mm too.
+            *value = (dice.roll(2) == 0).then(|| [0, 50, 99, 100, 101, 200][dice.index(6)]);
+        }
+        let [ro, lo, rm, lm] = millimetres;
+        readings.instrument.right.opacity = ro.map(Hundredths);
+        readings.instrument.left.opacity = lo.map(Hundredths);
+        readings.instrument.right.reflex_distance = rm.map(Hundredths);
+        readings.instrument.left.reflex_distance = lm.map(Hundredths);
+        let worn = dice.roll(12) == 0;
+        readings.instrument_worn = worn.then_some(YesNo::Yes);
         insert
             .execute(params![
                 i64::try_from(id).unwrap(),
@@ -400,12 +487,20 @@ fn fill(db: &Connection, rows: u64, dice: &mut Dice) -> Vec<Row> {
                 i64::try_from(ra).unwrap(),
                 lsv,
                 lcv,
-                i64::try_from(la).unwrap()
+                i64::try_from(la).unwrap(),
+                cover,
+                size,
+                ro,
+                lo,
+                rm,
+                lm,
+                worn
             ])
             .unwrap();
         out.push(Row {
             age,
             grade,
+            under_care: false,
             readings,
         });
     }
@@ -439,40 +534,68 @@ fn sql_over_the_same_tables_agrees() {
             .map(|(id, l, refer, again)| (*id, again_sql(*l, *refer, *again))),
     );
     for (id, sql) in sets {
-        let set = Library::shipped().rule_set(id).unwrap();
         let from = if STRICT_SETS.contains(&id) {
             "strict"
         } else {
             "t"
         };
-        let mut query = db
-            .prepare(&format!("SELECT {sql} FROM {from} ORDER BY id"))
-            .unwrap();
-        let words = query
-            .query_map([], |row| row.get::<_, String>(0))
-            .unwrap()
-            .map(Result::unwrap);
-        let mut kinds: Vec<String> = Vec::new();
-        let mut count = 0;
-        for (i, (row, expected)) in filled.iter().zip(words).enumerate() {
-            let mut case = Case::new(&row.readings);
-            case.age = Some(AgeMonths(row.age));
-            case.grade = Grade::parse(row.grade);
-            let outcome = judge_rule_set(set, &case);
-            assert_eq!(
-                outcome.kind.word(),
-                expected,
-                "{id}, row {i}, seed {seed}, age {}, grade {}: {:#?}",
-                row.age,
-                row.grade,
-                row.readings
-            );
-            count += 1;
-            if !kinds.contains(&expected) {
-                kinds.push(expected);
-            }
-        }
-        assert_eq!(count, filled.len(), "{id}");
-        assert!(kinds.len() >= 3, "{id} was not put to the test: {kinds:?}");
+        agree(&db, id, from, &sql, &filled, seed, 3);
     }
+}
+
+/// Judges every row by a rule set and compares it with what the SQL says, of which so many different
+/// outcomes must come up. An outcome is written as `kind urgency days`, the latter two where they are.
+fn agree(
+    db: &Connection,
+    id: &str,
+    from: &str,
+    sql: &str,
+    rows: &[Row],
+    seed: u64,
+    outcomes: usize,
+) {
+    let set = Library::shipped().rule_set(id).unwrap();
+    let mut query = db
+        .prepare(&format!("SELECT {sql} FROM {from} ORDER BY id"))
+        .unwrap();
+    let words = query
+        .query_map([], |row| row.get::<_, String>(0))
+        .unwrap()
+        .map(Result::unwrap);
+    let mut kinds: Vec<String> = Vec::new();
+    let mut count = 0;
+    for (i, (row, expected)) in rows.iter().zip(words).enumerate() {
+        let mut case = Case::new(&row.readings);
+        case.age = Some(AgeMonths(row.age));
+        case.grade = Grade::parse(row.grade);
+        case.under_care = row.under_care;
+        let outcome = judge_rule_set(set, &case);
+        let mut found = outcome.kind.word().to_owned();
+        if set.kind == Kind::Signs && outcome.kind == OutcomeKind::Refer {
+            found = format!(
+                "refer {} {}",
+                outcome.urgency.unwrap().word(),
+                outcome
+                    .act_within_days
+                    .map_or_else(String::new, |d| d.to_string())
+            );
+        }
+        assert_eq!(
+            found.trim(),
+            expected.trim(),
+            "{id}, row {i}, seed {seed}, age {}, grade {}: {:#?}",
+            row.age,
+            row.grade,
+            row.readings
+        );
+        count += 1;
+        if !kinds.contains(&expected) {
+            kinds.push(expected);
+        }
+    }
+    assert_eq!(count, rows.len(), "{id}");
+    assert!(
+        kinds.len() >= outcomes,
+        "{id} was not put to the test: {kinds:?}"
+    );
 }

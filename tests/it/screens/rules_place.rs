@@ -79,6 +79,40 @@ fn kinds_are_listed_one_after_the_other_and_superseded_sets_are_bracketed() {
         .sees("arizona-school");
 }
 
+/// Only what another edition came after is bracketed: a text of its time is not.
+#[test]
+fn a_set_that_nothing_came_after_is_not_bracketed() {
+    for id in ["texas-school", "stereo-random-dot-e", "[instrument-2003]"] {
+        let mut h = Hands::sit();
+        h.press(Key::alt('5'));
+        go_to(&mut h, id);
+    }
+}
+
+/// Scrolling past the end of a sheet is not counted: the first key back moves it at once.
+#[test]
+fn a_sheet_scrolls_to_its_end_and_no_further() {
+    let mut h = Hands::sit();
+    h.press(Key::alt('5'));
+    go_to(&mut h, "preschool-groups");
+    let mut before = String::new();
+    for _ in 0..40 {
+        let now = h.screen();
+        if now == before {
+            break;
+        }
+        before = now;
+        h.key(KeyCode::PageDown);
+    }
+    let end = h.screen();
+    for _ in 0..5 {
+        h.key(KeyCode::PageDown);
+        assert_eq!(h.screen(), end, "the end stays");
+    }
+    h.key(KeyCode::PageUp);
+    assert_ne!(h.screen(), end, "one key back is seen");
+}
+
 /// The list is longer than either screen: it goes along, so that the focus is always seen, and every
 /// entry comes by once, in both directions.
 #[test]

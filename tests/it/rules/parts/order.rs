@@ -303,7 +303,7 @@ fn a_reason_carries_everything() {
     for part in [
         "REFER, routine",
         "1 line short",
-        "2 steps over",
+        "1 step over",
         "from memory: check against the source",
         "A pass does not rule out disease",
         "us-school",
