@@ -377,7 +377,7 @@ fn the_pace_of_today_is_that_of_its_signatures() {
     let mut today = desk.days().unwrap().remove(0);
     let now = twoline::clock::now();
     let later = Moment {
-        utc_ms: now.utc_ms + Duration::from_mins(60).as_millis() as i64,
+        utc_ms: now.utc_ms + Duration::from_hours(1).as_millis() as i64,
         ..now
     };
     let board = desk.board_at(&today, later).unwrap();
