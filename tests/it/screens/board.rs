@@ -169,6 +169,9 @@ fn the_end_of_the_board_is_reached_by_scrolling() {
     let mut h = at(morning(&["1A", "1B", "1C"]));
     h.key(KeyCode::End);
     snapshot("board_end_80x24", &h.screen());
+    let end = h.screen();
+    h.key(KeyCode::PageDown).key(KeyCode::Up);
+    assert_ne!(end, h.screen(), "one line up from the end is seen at once");
     h.key(KeyCode::Home).sees("Seen");
     h.key(KeyCode::PageDown).key(KeyCode::Up).key(KeyCode::Down);
 }
