@@ -22,7 +22,7 @@ use twoline::tui::board::plain;
 use super::desk::{Hands, NOW_MS, ROSTER, day, store};
 use super::drawn::snapshot;
 
-const BOARD: Key = Key::alt('b');
+const BOARD: Key = Key::f(8);
 
 fn info() -> DayInfo {
     DayInfo {
