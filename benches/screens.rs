@@ -15,7 +15,7 @@ use twoline::actions::{Desk, DeskOptions, Kdf, NewDay, NewStore, Secret, init};
 use twoline::domain::acuity::Notation;
 use twoline::domain::codes::AcuityMethod;
 use twoline::keys::Key;
-use twoline::tui::app::{App, Effect, Message};
+use twoline::tui::app::{Answer, App, Effect, Message, Request};
 use twoline::tui::{Clerk, session};
 
 struct Hands {
@@ -126,6 +126,31 @@ fn main() {
         }
     }
     hands.report("finding by typing");
+    board(&mut hands, n);
+}
+
+/// The board of the day: what the store's thread needs for it, and the keys while it is open.
+fn board(hands: &mut Hands, n: usize) {
+    let day = hands.app.day.as_ref().expect("a day").info.clone();
+    let mut took: Vec<Duration> = (0..7)
+        .map(|_| {
+            let start = Instant::now();
+            let answer = hands.clerk.answer(Request::Board((*day).clone()));
+            assert!(matches!(answer, Answer::Board(_)));
+            start.elapsed()
+        })
+        .collect();
+    took.sort();
+    println!(
+        "board of {n} children in the store's thread: median {:.2?}",
+        took[3]
+    );
+    hands.press(Key::alt('b'));
+    hands.frames.clear();
+    for _ in 0..300 {
+        hands.press(Key::plain(KeyCode::Down));
+    }
+    hands.report("scrolling the board");
 }
 
 fn desk(dir: &std::path::Path, n: usize) -> Desk {

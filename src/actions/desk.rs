@@ -15,7 +15,7 @@ use crate::domain::acuity::Notation;
 use crate::domain::age::spoken;
 use crate::rules::Library;
 use crate::store::row::{Screener, Station};
-use crate::store::{Access, Author, Drafts, Reads, Secret, Store};
+use crate::store::{Access, Author, Drafts, Reads, Secret, Store, new_id};
 
 /// How long a writing command waits for another process to let go of the store.
 const WAIT: Duration = Duration::from_secs(5);
@@ -26,6 +26,8 @@ pub struct Desk {
     pub(super) library: Arc<Library>,
     pub(super) today: NaiveDate,
     pub(super) screener: Option<Screener>,
+    /// Where and when entries of the demo are made out to be made.
+    as_if: Option<(Uuid, Moment)>,
 }
 
 /// How a desk is opened.
@@ -58,6 +60,7 @@ impl Desk {
             library: Arc::new(library),
             today: options.today.unwrap_or_else(clock::today),
             screener: None,
+            as_if: None,
         };
         if let Some(name) = &options.screener {
             desk.set_screener(name)?;
@@ -190,8 +193,55 @@ impl Desk {
     pub(super) fn author(&self) -> Author {
         Author {
             screener: self.screener.as_ref().map(|s| s.screener_id),
-            at: clock::now(),
+            at: self.moment(),
         }
+    }
+
+    /// Returns the moment that entries carry.
+    pub(super) fn moment(&self) -> Moment {
+        self.as_if.map_or_else(clock::now, |(_, at)| at)
+    }
+
+    /// Returns the station that entries carry.
+    pub(super) fn here(&self) -> Uuid {
+        self.as_if
+            .map_or_else(|| self.store.station_id(), |(station, _)| station)
+    }
+
+    /// Makes out that what follows is entered at this station and moment, as the demo needs it; none
+    /// goes back to the truth.
+    ///
+    /// # Errors
+    /// Refused in a store that is not the demo.
+    pub fn as_if(&mut self, there: Option<(&str, Moment)>) -> Result<()> {
+        if !self.is_demo() {
+            return Err(ActionError::bad("only the demo has invented stations"));
+        }
+        self.as_if = None;
+        let Some((name, at)) = there else {
+            return Ok(());
+        };
+        let known = self.stations()?.into_values().find(|s| s.name == name);
+        let station = match known {
+            Some(station) => station.station_id,
+            None => self.add_station(name)?,
+        };
+        self.as_if = Some((station, at));
+        Ok(())
+    }
+
+    fn add_station(&mut self, name: &str) -> Result<Uuid> {
+        let station = Station {
+            id: new_id(),
+            station_id: new_id(),
+            name: name.to_owned(),
+            chart_id: None,
+            task: None,
+            masked: None,
+        };
+        let author = self.author();
+        self.store.append(&author, |tx| tx.add(&station))?;
+        Ok(station.station_id)
     }
 
     pub(super) fn screener_names(&self) -> Result<HashMap<Uuid, String>> {

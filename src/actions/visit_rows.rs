@@ -286,7 +286,7 @@ impl Desk {
         {
             return Ok(None);
         }
-        let at = clock::now();
+        let at = self.moment();
         Ok(Some(UrgentAction {
             id: new_id(),
             urgent_id: new_id(),
@@ -338,7 +338,7 @@ impl Desk {
             age_months: child.age.map(|a| i64::from(a.0)),
             grade: child.grade,
             screener_id: self.screener.as_ref().map(|s| s.screener_id),
-            station_id: Some(self.store.station_id()),
+            station_id: Some(self.here()),
             tested_on: day.date,
             entered_on,
             late: entered_on > day.date || entered_on != self.today,

@@ -8,8 +8,9 @@ use super::{DemoVisit, District, generate};
 use crate::actions::{
     Desk, DeskOptions, Kdf, NewDay, NewStore, Result, Secret, SignRequest, init, new_visit_id,
 };
+use crate::clock::{self, Moment};
 use crate::domain::acuity::Notation;
-use crate::domain::codes::AcuityMethod;
+use crate::domain::codes::{AcuityMethod, SignKind};
 
 /// Makes the demo store in an empty folder.
 pub fn populate(dir: &Path, seed: u64, day: NaiveDate) -> Result<Desk> {
@@ -58,14 +59,23 @@ fn sign_day(
     let Some(site) = district.sites.first() else {
         return Ok(());
     };
+    let now = clock::now();
+    let is_today = now.date() == Some(date);
     let day = desk.open_day(NewDay {
         site: site.code.to_owned(),
         date,
         protocol: district.protocol.to_owned(),
         method: AcuityMethod::Threshold,
     })?;
-    for visit in visits {
+    for (i, visit) in visits.iter().enumerate() {
         desk.set_screener(visit.screener)?;
+        if is_today {
+            let at = Moment {
+                utc_ms: now.utc_ms - 1_000 * seconds_ago(visit, visits.len() - i),
+                ..now
+            };
+            desk.as_if(Some((visit.station, at)))?;
+        }
         desk.sign(SignRequest {
             day: day.id,
             child_id: visit.child_id.clone(),
@@ -74,7 +84,23 @@ fn sign_day(
             readings: visit.readings.clone(),
         })?;
     }
-    Ok(())
+    desk.as_if(None)
+}
+
+/// Returns how long ago a visit was entered when so many have come since: a child about every 75
+/// seconds at two tables, a break after the first hour or so, and an emergency not long ago.
+fn seconds_ago(visit: &DemoVisit, since: usize) -> i64 {
+    const BREAK: (usize, i64) = (80, 20 * 60);
+    if visit
+        .readings
+        .signs
+        .as_ref()
+        .is_some_and(|signs| signs.iter().any(|s| s.kind == SignKind::WhitePupil))
+    {
+        return 221;
+    }
+    let since_ms = since as i64;
+    since_ms * 75 + since_ms * 37 % 50 + if since > BREAK.0 { BREAK.1 } else { 0 }
 }
 
 /// Returns a term that holds both days: the half year of the day, widened to the earlier one.

@@ -211,7 +211,7 @@ fn known((texts, glasses, consent, values): &Known) -> (RosterChild, DemoVisit) 
         child_id: child_id.into(),
         attempt: Attempt::First,
         readings,
-        station: "Table 1",
+        station: "east",
         screener: "ND",
     };
     (child, visit)

@@ -24,7 +24,7 @@ pub const SCREENERS: [Screener; 2] = [
     },
 ];
 
-const STATIONS: [&str; 2] = ["Table 1", "Table 2"];
+const STATIONS: [&str; 2] = ["east", "west"];
 
 /// The visits of both days; those of today with the story each was made from.
 pub struct Told {

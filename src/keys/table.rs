@@ -76,7 +76,7 @@ pub const TABLE: &[Binding] = &[
     on(C::Day, K::NextChild, &[Key::ctrl('n')], "", "Brings the next child to come"),
     on(C::Day, K::ShowAll, &[Key::alt('l')], "", "Lists all children of the day, or only those to come"),
     on(C::Day, K::Days, &[Key::alt('d')], "", "Goes back to the list of days"),
-    on(C::Day, K::Board, &[Key::alt('b')], "board", "Shows how the day stands, by class and by station, and when it will end"),
+    on(C::Day, K::Board, &[Key::f(8), Key::alt('b')], "board", "Shows how the day stands, by class and by station, and when it will end"),
     // The day board.
     on(C::Board, K::ListDown, &[DOWN], "scroll", "Scrolls down"),
     on(C::Board, K::ListUp, &[UP], "", "Scrolls up"),
@@ -84,7 +84,7 @@ pub const TABLE: &[Binding] = &[
     on(C::Board, K::PageDown, &[PAGE_DOWN], "", "Scrolls one page down"),
     on(C::Board, K::First, &[HOME], "", "Goes to the top"),
     on(C::Board, K::Last, &[END], "", "Goes to the stations, at the end"),
-    on(C::Board, K::Cancel, &[ESC, Key::alt('b')], "back", "Goes back to the bench"),
+    on(C::Board, K::Cancel, &[ESC, Key::f(8), Key::alt('b')], "back", "Goes back to the bench"),
     // The other places.
     on(C::Days, K::Open, &[ENTER], "open the day", "Opens the day"),
     on(C::Days, K::ListUp, &[UP], "", "Goes one day up"),

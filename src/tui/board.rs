@@ -3,6 +3,7 @@
 pub mod lines;
 mod stations;
 
+use std::cell::{Cell, RefCell};
 use std::collections::HashSet;
 
 use ratatui::Frame;
@@ -36,7 +37,11 @@ const SHARE: i64 = 20;
 pub struct BoardPage {
     shown: bool,
     board: Option<Box<Board>>,
+    /// The board set for a window of so many columns: worked out once, not in each frame.
+    set: RefCell<Option<(usize, Vec<Text>)>>,
     top: usize,
+    /// How far the last frame could be scrolled.
+    furthest: Cell<Option<usize>>,
     /// Whether something was signed since the last board.
     stale: bool,
     asked_ms: Option<i64>,
@@ -110,6 +115,7 @@ impl BoardPage {
             }
         }
         self.board = Some(board);
+        self.set.replace(None);
         said
     }
 
@@ -124,8 +130,12 @@ impl BoardPage {
             Command::Last => isize::MAX,
             _ => 0,
         };
-        let rows = self.board.as_ref().map_or(0, |b| b.classes.len() + 40);
-        self.top = self.top.saturating_add_signed(by).min(rows);
+        let furthest = self.furthest.get().unwrap_or(usize::MAX);
+        self.top = self
+            .top
+            .min(furthest)
+            .saturating_add_signed(by)
+            .min(furthest);
     }
 
     /// Draws the page; returns where the cursor belongs.
@@ -136,16 +146,27 @@ impl BoardPage {
             frame.render_widget(Paragraph::new(words), area);
             return Position::new(area.x, area.y);
         };
-        let rows = usize::from(area.height);
-        let look = Look {
-            columns: usize::from(area.width),
-            pictures: true,
+        let (rows, columns) = (usize::from(area.height), usize::from(area.width));
+        let mut set = self.set.borrow_mut();
+        let (_, all) = match set.take() {
+            Some(kept) if kept.0 == columns => set.insert(kept),
+            _ => set.insert((
+                columns,
+                lines::lines(
+                    board,
+                    Look {
+                        columns,
+                        pictures: true,
+                    },
+                ),
+            )),
         };
-        let all = lines::lines(board, look);
-        let top = self.top.min(all.len().saturating_sub(rows));
+        let furthest = all.len().saturating_sub(rows);
+        self.furthest.set(Some(furthest));
+        let top = self.top.min(furthest);
         let below = all.len().saturating_sub(top + rows);
         let mut shown: Vec<Line<'_>> = all
-            .into_iter()
+            .iter()
             .skip(top)
             .take(rows)
             .map(|text| styled(text, theme))
@@ -162,10 +183,10 @@ impl BoardPage {
     }
 }
 
-fn styled(text: Text, theme: Theme) -> Line<'static> {
+fn styled(text: &Text, theme: Theme) -> Line<'static> {
     Line::from(
-        text.into_iter()
-            .map(|(meaning, words)| Span::styled(words, style(meaning, theme)))
+        text.iter()
+            .map(|(meaning, words)| Span::styled(words.clone(), style(*meaning, theme)))
             .collect::<Vec<_>>(),
     )
 }

@@ -4,6 +4,7 @@ use chrono::NaiveDate;
 use rusqlite::params;
 use uuid::Uuid;
 
+use super::generic::{LATEST_FIRST, LIVE};
 use super::{Columns, Reads};
 use crate::clock::Moment;
 use crate::domain::age::Grade;
@@ -14,7 +15,7 @@ use crate::store::cell::Value;
 use crate::store::error::Result;
 use crate::store::row::DayKey;
 
-/// A signed visit, with what it was judged on and when it was first signed.
+/// What one station signed of a visit: what it came to there, and when it was first signed.
 #[derive(Debug, Clone, PartialEq, Eq)]
 #[allow(missing_docs)]
 pub struct SignedVisit {
@@ -23,6 +24,7 @@ pub struct SignedVisit {
     pub status: Option<Status>,
     pub kind: OutcomeKind,
     pub decided_by: String,
+    /// Where it was first signed.
     pub station_id: Option<Uuid>,
     /// Grade as it was judged.
     pub grade: Option<Grade>,
@@ -39,7 +41,7 @@ pub struct SignedVisit {
 }
 
 impl Reads<'_> {
-    /// Returns the signed visits of a day.
+    /// Returns the signed visits of a day, each station's part of one by itself.
     pub fn signed_visits(&self, day: &DayKey) -> Result<Vec<SignedVisit>> {
         self.signed_where(
             "v.screened_on = ?1 AND v.site = ?2 AND v.protocol = ?3",
@@ -68,19 +70,25 @@ impl Reads<'_> {
         let has = |fields: &[Field]| {
             let words: Vec<String> = fields.iter().map(|f| format!("'{}'", f.word())).collect();
             format!(
-                "EXISTS (SELECT 1 FROM reading x WHERE x.visit_id = v.visit_id AND x.field IN ({}) \
-                 AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = x.id))",
+                "EXISTS (SELECT 1 FROM reading x WHERE x.visit_id = q.visit_id AND x.field IN ({}) \
+                 AND {LIVE})",
                 words.join(", ")
             )
         };
-        // Of the outcomes of a visit the first one says when it was signed: a bare column beside
-        // min() is that of the row with the smallest value.
+        // Of the outcomes of a part the first one says when and where it was signed: bare columns
+        // beside min() are those of the row with the smallest value. The present one says what it
+        // came to.
         let mut found = self.conn.prepare_cached(&format!(
-            "SELECT v.child_id, v.attempt, v.status, v.kind, v.decided_by, v.station_id, o.grade, \
-             o.age_months, {}, {}, t.offset_minutes, t.tx, min(t.recorded_at_ms) \
-             FROM visit_current v JOIN outcome o ON o.id = v.outcome_id \
-             JOIN outcome p ON p.visit_id = v.visit_id JOIN tx t ON t.tx = p.tx \
-             WHERE {condition} GROUP BY v.visit_id",
+            "SELECT v.child_id, v.attempt, (SELECT x.value FROM reading x \
+             WHERE x.visit_id = q.visit_id AND x.field = '{}' AND {LIVE} LIMIT 1), \
+             o.kind, o.decided_by, p.station_id, o.grade, o.age_months, {}, {}, \
+             f.offset_minutes, f.tx, min(f.recorded_at_ms) \
+             FROM visit_current v JOIN visit_part q ON q.lead = v.visit_id \
+             JOIN outcome o ON o.id = (SELECT x.id FROM outcome x JOIN tx t ON t.tx = x.tx \
+             WHERE x.visit_id = q.visit_id AND {LIVE} ORDER BY {LATEST_FIRST} LIMIT 1) \
+             JOIN outcome p ON p.visit_id = q.visit_id JOIN tx f ON f.tx = p.tx \
+             WHERE {condition} GROUP BY q.visit_id",
+            Field::Status.word(),
             has(&[
                 Field::DistanceRight,
                 Field::DistanceLeft,

@@ -227,7 +227,12 @@ fn classes(board: &Board, look: Look, out: &mut Vec<Text>) {
             head.push_str(column.0);
         }
         out.push(vec![(Meaning::Strong, cut(&head, look.columns))]);
+        let first_table = rest.len() == columns.len();
         for (title, counts) in &board.classes {
+            // Below the first table only classes that have something to say.
+            if !first_table && here.iter().all(|(_, _, of, state)| of(counts, *state) == 0) {
+                continue;
+            }
             out.push(row(title, counts, here, first, Meaning::Plain));
         }
         out.push(row("whole day", &board.whole, here, first, Meaning::Strong));

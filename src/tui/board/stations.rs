@@ -194,7 +194,7 @@ fn word(level: Level, side: Side) -> &'static str {
 pub(super) fn notice(station: &StationRow, compared: &Compared) -> String {
     let (level, side) = compared.passed.unwrap_or((Level::Gentle, Side::Above));
     format!(
-        "{}: {} refer or rescreen than expected; the day board says what to check",
+        "{}: {} refer or rescreen than expected; F8 says what to check",
         safe(&station.name),
         word(level, side)
     )

@@ -103,3 +103,20 @@ fn the_first_day_of_a_protocol_at_one_station_has_nothing_to_compare_with() {
     assert_eq!(board.stations[0].judged, 20);
     assert_eq!(board.stations[0].watch, Watch::Alone);
 }
+
+#[test]
+fn a_store_that_is_protected_has_no_invented_stations() {
+    use twoline::actions::{DeskOptions, Kdf, NewStore, Secret, init};
+    let folder = tempfile::tempdir().expect("a folder");
+    let new = NewStore {
+        programme: "Quillmere".into(),
+        station: "east".into(),
+        notation: twoline::domain::acuity::Notation::Feet,
+        secret: Secret::Passphrase("nine green kettles sing".to_owned().into()),
+        kdf: Kdf::test(),
+    };
+    let (mut desk, _) =
+        init(&folder.path().join("store"), new, &DeskOptions::default()).expect("a store");
+    let there = Some(("west", twoline::clock::now()));
+    assert!(desk.as_if(there).is_err());
+}

@@ -63,3 +63,32 @@ fn any_day_of_the_year() {
         );
     }
 }
+
+/// The demo of today has two stations with a morning behind them: the board has a pace, and both are
+/// compared.
+#[test]
+fn the_morning_has_two_stations_and_a_pace() {
+    use twoline::actions::board::watch::Watch;
+    use twoline::clock;
+    let dir = tempfile::tempdir().expect("a folder");
+    let now = clock::now();
+    let today = now.date().expect("a date");
+    let (mut desk, day) = populated(dir.path(), DEFAULT_SEED, today);
+    let board = desk.board_at(&day, now).expect("a board");
+    let names: Vec<&str> = board.stations.iter().map(|s| s.name.as_str()).collect();
+    assert_eq!(names, ["east", "west"]);
+    for station in &board.stations {
+        let Watch::Compared(compared) = &station.watch else {
+            panic!("{station:?}");
+        };
+        assert!(compared.share.of >= 40, "{compared:?}");
+    }
+    // Two hours after midnight the morning is not yet today's: nothing is said then.
+    if let Some(pace) = board.pace.whole {
+        assert!((20.0..80.0).contains(&pace.an_hour()), "{pace:?}");
+    }
+    assert_eq!(desk.station(), "east");
+    assert_eq!(desk.urgent_open().expect("read").len(), 1);
+    assert!(desk.clock_warning().expect("read").is_none());
+    desk.as_if(None).expect("the demo may");
+}

@@ -22,7 +22,7 @@ use twoline::tui::board::plain;
 use super::desk::{Hands, NOW_MS, ROSTER, day, store};
 use super::drawn::snapshot;
 
-const BOARD: Key = Key::alt('b');
+const BOARD: Key = Key::f(8);
 
 fn info() -> DayInfo {
     DayInfo {
@@ -169,6 +169,9 @@ fn the_end_of_the_board_is_reached_by_scrolling() {
     let mut h = at(morning(&["1A", "1B", "1C"]));
     h.key(KeyCode::End);
     snapshot("board_end_80x24", &h.screen());
+    let end = h.screen();
+    h.key(KeyCode::PageDown).key(KeyCode::Up);
+    assert_ne!(end, h.screen(), "one line up from the end is seen at once");
     h.key(KeyCode::Home).sees("Seen");
     h.key(KeyCode::PageDown).key(KeyCode::Up).key(KeyCode::Down);
 }
@@ -377,7 +380,7 @@ fn the_pace_of_today_is_that_of_its_signatures() {
     let mut today = desk.days().unwrap().remove(0);
     let now = twoline::clock::now();
     let later = Moment {
-        utc_ms: now.utc_ms + Duration::from_mins(60).as_millis() as i64,
+        utc_ms: now.utc_ms + Duration::from_hours(1).as_millis() as i64,
         ..now
     };
     let board = desk.board_at(&today, later).unwrap();
