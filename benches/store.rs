@@ -85,6 +85,7 @@ fn main() {
             attempt: twoline::domain::codes::Attempt::First,
             visit: new_visit_id(),
             readings: readings.clone(),
+            remarks: Vec::new(),
         };
         let start = Instant::now();
         desk.sign(request).expect("signed");

@@ -21,10 +21,12 @@ mod search;
 mod settings;
 mod setup;
 mod sign;
+mod station;
 mod triage;
 mod united;
 mod upkeep;
 mod urgent;
+mod value_history;
 mod views;
 mod visit_rows;
 mod worklist;
@@ -47,8 +49,10 @@ pub use roster::RosterPlan;
 pub use search::SearchIndex;
 pub use settings::SettingView;
 pub use setup::{NewChart, NewStore, init};
+pub use station::{StationChange, StationChart, StationRole};
 pub use triage::{NO_TRIAGE_SET, Said, Standing, whole_reason};
 pub use upkeep::{protected, remove_demo, store_info, writer};
+pub use value_history::ValueEntry;
 pub use views::{
     Before, ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay,
     OpenUrgent, QueueState, SignRequest, Signed, StoredOutcome, Together, Unsettled, UrgentAnswer,

@@ -28,6 +28,7 @@ mod screener;
 mod screens;
 mod setting;
 mod site;
+mod station;
 mod step;
 mod term;
 mod verify;
@@ -101,6 +102,7 @@ enum Command {
     Screener(screener::Screener),
     Setting(setting::Setting),
     Chart(chart::Chart),
+    Station(station::Station),
     Roster(roster::Roster),
     Day(day::Day),
     Record(record::Record),
@@ -150,6 +152,7 @@ pub fn run(args: impl IntoIterator<Item = OsString>) -> Result<(), Failure> {
         Some(Command::Screener(args)) => args.run(global),
         Some(Command::Setting(args)) => args.run(global),
         Some(Command::Chart(args)) => args.run(global),
+        Some(Command::Station(args)) => args.run(global),
         Some(Command::Roster(args)) => args.run(global),
         Some(Command::Day(args)) => args.run(global),
         Some(Command::Record(args)) => args.run(global),

@@ -215,6 +215,8 @@ commands! {
     FormNext = "form-next"; FormPrevious = "form-previous"; CompareSets = "compare";
     OneKind = "one-kind"; Stricter = "stricter"; Milder = "milder"; OtherSet = "other-set";
     PutBack = "put-back"; Tests = "other-tests"; SecondTry = "second-try";
+    Note = "note"; ValueHistory = "value-history"; Discreet = "discreet";
+    Station = "station";
 }
 
 /// One line of the table: what a command is called, where and by which keys.

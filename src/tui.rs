@@ -18,6 +18,7 @@ mod prompt_view;
 mod referrals;
 mod rules;
 mod run;
+mod station;
 mod submit;
 mod tables;
 mod text;

@@ -6,6 +6,7 @@ use uuid::Uuid;
 use super::desk::Desk;
 use super::error::{ActionError, Result};
 use super::views::{DayChild, DayInfo, NewDay, QueueState};
+use crate::domain::acuity::Line;
 use crate::domain::age::AgeMonths;
 use crate::domain::codes::{Attempt, Consent, History, Status, YesNo};
 use crate::domain::outcome::{DecidedBy, OutcomeKind};
@@ -17,11 +18,12 @@ impl Desk {
     /// Returns the screening days, latest first.
     pub fn days(&self) -> Result<Vec<DayInfo>> {
         let names = self.sites()?;
+        let chart = self.chart_lines()?;
         Ok(self
             .read()
             .days()?
             .into_iter()
-            .map(|day| info(day, &names))
+            .map(|day| info(day, &names, &chart))
             .collect())
     }
 
@@ -69,7 +71,7 @@ impl Desk {
                     day.acuity_method.title()
                 )));
             }
-            return Ok(info(day, &sites));
+            return Ok(info(day, &sites, &self.chart_lines()?));
         }
         let term = self.term_on(new.date)?;
         let row = ScreeningDay {
@@ -83,7 +85,7 @@ impl Desk {
         };
         let author = self.author();
         self.store.append(&author, |tx| tx.add(&row))?;
-        Ok(info(row, &sites))
+        Ok(info(row, &sites, &self.chart_lines()?))
     }
 
     /// Returns every child of a day: rescreens and returns that are due first, then by class and
@@ -155,6 +157,15 @@ impl Desk {
             .ok_or_else(|| ActionError::bad("this screening day is not in the store"))
     }
 
+    /// Returns the lines of the chart that hangs at this station.
+    fn chart_lines(&self) -> Result<Vec<Line>> {
+        Ok(self
+            .station_role()?
+            .chart
+            .map(|c| c.lines)
+            .unwrap_or_default())
+    }
+
     /// Returns the day from which earlier visits of the same term count.
     fn earlier_since(&self, day: &DayInfo) -> Result<NaiveDate> {
         Ok(self.term_on(day.date)?.starts_on)
@@ -169,7 +180,7 @@ pub(super) fn key_of(day: &DayInfo) -> DayKey {
     }
 }
 
-fn info(day: ScreeningDay, names: &[(String, String)]) -> DayInfo {
+fn info(day: ScreeningDay, names: &[(String, String)], chart: &[Line]) -> DayInfo {
     let site_name = names
         .iter()
         .find(|(code, _)| *code == day.site)
@@ -181,6 +192,7 @@ fn info(day: ScreeningDay, names: &[(String, String)]) -> DayInfo {
         date: day.screened_on,
         protocol: day.protocol,
         method: day.acuity_method,
+        chart: chart.to_vec(),
     }
 }
 

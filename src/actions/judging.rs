@@ -102,7 +102,7 @@ fn with_roster(child: &DayChild, readings: &Readings) -> Readings {
     readings
 }
 
-fn case<'a>(day: &DayInfo, child: &'a DayChild, readings: &'a Readings) -> Case<'a> {
+fn case<'a>(day: &'a DayInfo, child: &'a DayChild, readings: &'a Readings) -> Case<'a> {
     Case {
         age: child.age,
         grade: child.grade,
@@ -118,6 +118,7 @@ fn case<'a>(day: &DayInfo, child: &'a DayChild, readings: &'a Readings) -> Case<
             glasses_visits: child.glasses_visits,
             not_testable: child.not_testable_before,
         },
+        chart: (!day.chart.is_empty()).then_some(&day.chart),
         failed_before: child.before.as_ref().map_or(&[], |b| &b.failed),
         ..Case::new(readings)
     }

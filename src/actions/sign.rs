@@ -34,7 +34,8 @@ impl Desk {
             .read()
             .visit_on(&request.child_id, &key_of(&day), request.attempt)?;
         let Some(visit) = existing else {
-            let rows = self.new_visit(&day, &child, request.visit, &[readings])?;
+            let mut rows = self.new_visit(&day, &child, request.visit, &[readings])?;
+            rows.remark(&request.remarks);
             self.write_visits(vec![rows])?;
             return self.signed(&day, &request.child_id, request.visit);
         };
@@ -74,7 +75,8 @@ impl Desk {
             .hint("correct the signed value with a reason"));
         }
         tries.push(readings);
-        let rows = self.further_try(&day, &child, visit.visit_id, &tries)?;
+        let mut rows = self.further_try(&day, &child, visit.visit_id, &tries)?;
+        rows.remark(&request.remarks);
         self.write_visits(vec![rows])?;
         self.signed(&day, &request.child_id, visit.visit_id)
     }

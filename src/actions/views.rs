@@ -5,6 +5,7 @@ use uuid::Uuid;
 
 use super::triage::Standing;
 use crate::clock::Moment;
+use crate::domain::acuity::Line;
 use crate::domain::age::{AgeMonths, Grade};
 use crate::domain::codes::{AcuityMethod, Attempt, Consent, History};
 use crate::domain::field::Field;
@@ -26,6 +27,8 @@ pub struct DayInfo {
     pub protocol: String,
     /// How far the chart is read.
     pub method: AcuityMethod,
+    /// Lines of the chart that hangs at this station, from the largest; empty where it is not known.
+    pub chart: Vec<Line>,
 }
 
 /// What is needed to open a screening day.
@@ -199,6 +202,8 @@ pub struct SignRequest {
     pub visit: Uuid,
     /// All readings of the visit.
     pub readings: Readings,
+    /// What was done while entering that must stay visible (eyes swapped), in words.
+    pub remarks: Vec<String>,
 }
 
 /// What was stored.
@@ -235,6 +240,8 @@ pub struct StoredOutcome {
     pub qualifiers: Vec<String>,
     /// The reasons as they were written.
     pub reasons: String,
+    /// What the protocol and the person who entered it noted beside the reasons.
+    pub notes: Vec<String>,
     /// Protocol id.
     pub rule_set: String,
     /// Its edition.

@@ -52,6 +52,17 @@ impl VisitRows {
         }
     }
 
+    /// Notes beside the outcome what was done while entering.
+    pub(super) fn remark(&mut self, remarks: &[String]) {
+        for remark in remarks {
+            let notes = &mut self.outcome.protocol_notes;
+            if !notes.is_empty() {
+                notes.push_str(SEPARATOR);
+            }
+            notes.push_str(remark);
+        }
+    }
+
     /// Adds the entries; a correction that changes nothing adds none.
     pub(super) fn write(self, tx: &mut Tx<'_>) -> crate::store::Result<()> {
         if self.new.is_none() && self.readings.is_empty() && self.edits.is_empty() {
@@ -567,6 +578,7 @@ pub(super) fn stored_outcome(row: &row::Outcome) -> StoredOutcome {
         unknown: list(&row.unknown),
         qualifiers: list(&row.qualifiers),
         reasons: row.reasons.clone(),
+        notes: list(&row.protocol_notes),
         rule_set: row.rule_set.clone(),
         edition: row.edition.clone(),
     }

@@ -60,6 +60,7 @@ impl Record {
             attempt: child.attempt,
             visit: draft.visit_id,
             readings,
+            remarks: Vec::new(),
         })?;
         // The store has it; now the draft may go. Where it cannot, the child is signed all the same.
         if let Err(error) = drafts

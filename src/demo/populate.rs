@@ -82,6 +82,7 @@ fn sign_day(
             attempt: visit.attempt,
             visit: new_visit_id(),
             readings: visit.readings.clone(),
+            remarks: Vec::new(),
         })?;
     }
     desk.as_if(None)

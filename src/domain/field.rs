@@ -50,6 +50,7 @@ code_list! {
         History = "history", "history";
         Testable = "testable", "chart testable";
         NotTestableReason = "not_testable_reason", "why not testable";
+        Note = "note", "note";
     }
 }
 

@@ -13,7 +13,7 @@ use crate::domain::codes::{
 };
 use crate::domain::refraction::{Axis, Power};
 
-pub use text::ReadingContext;
+pub use text::{NOTE_CHARS, ReadingContext};
 
 code_list! {
     /// Why a test could not be done with this child.
@@ -224,6 +224,8 @@ pub struct Readings {
     pub testable: Option<YesNo>,
     /// Why not.
     pub not_testable_reason: Option<NotTestable>,
+    /// What a person wants to be read beside the values: one line, never judged.
+    pub note: Option<String>,
 }
 
 /// A distance as written, in metres or feet.
@@ -242,6 +244,19 @@ impl Distance {
             (self.thousandths * 3048 + 5_000) / 10_000
         } else {
             self.thousandths
+        }
+    }
+
+    /// Makes a distance from millimetres, written in feet or metres.
+    pub fn of_millimetres(millimetres: u32, in_feet: bool) -> Distance {
+        Distance {
+            // A foot is 304.8 mm.
+            thousandths: if in_feet {
+                (millimetres * 10_000 + 1_524) / 3_048
+            } else {
+                millimetres
+            },
+            in_feet,
         }
     }
 

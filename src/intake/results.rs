@@ -271,6 +271,7 @@ impl<'a> ResultsReader<'a> {
         for (i, cell) in self.record.iter().enumerate() {
             let kind = match self.columns[i] {
                 Some(Column::Row(RowColumn::ChildId)) => Kind::Id,
+                Some(Column::Field(Field::Note)) => Kind::Line,
                 Some(_) => Kind::Code,
                 None => Kind::Note,
             };
@@ -306,7 +307,13 @@ impl<'a> ResultsReader<'a> {
                 asked = true;
                 context.critical_line = self.pass_line.and_then(|of| of(row.age, row.grade));
             }
-            if let Err(error) = row.readings.set(*field, cell, context) {
+            // Only a text column has the apostrophe that our own reports put before a formula.
+            let text = if *field == Field::Note {
+                unguarded(cell.trim())
+            } else {
+                cell
+            };
+            if let Err(error) = row.readings.set(*field, text, context) {
                 problems.push(wrong(field.word(), cell, error.expected));
             }
         }

@@ -137,6 +137,7 @@ pub fn field_kind(field: Field) -> Kind {
         | Field::OpacityMmLeft
         | Field::ReflexDistanceMmRight
         | Field::ReflexDistanceMmLeft => Kind::Number,
+        Field::Note => Kind::Text,
         _ => Kind::Code,
     }
 }

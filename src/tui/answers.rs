@@ -97,6 +97,8 @@ impl App {
                 );
                 self.session.screener = Some(name);
             }
+            Answer::Station(role) => return self.station_set(*role),
+            Answer::ValueHistory(field, entries) => self.show_value_history(field, &entries),
             Answer::Refused(refused) => self.refuse(refused),
         }
         Vec::new()
@@ -148,6 +150,9 @@ impl App {
             let _ = write!(words, " ({})", outcome.qualifiers.join("; "));
         }
         let emergency = outcome.urgency == Some(Urgency::Emergency);
+        if self.session.discreet {
+            words = format!("{verb} {who}");
+        }
         self.notice = Some(Notice {
             tone: Tone::Quiet,
             text: words,

@@ -10,7 +10,7 @@ use uuid::Uuid;
 
 use crate::actions::{
     ChildHistory, DayChild, DayInfo, FoundChild, NewChild, NewDay, OpenUrgent, SignRequest, Signed,
-    UrgentAnswer, VisitView, Worklist,
+    StationChange, StationRole, UrgentAnswer, ValueEntry, VisitView, Worklist,
 };
 use crate::domain::acuity::Notation;
 use crate::domain::field::Field;
@@ -31,8 +31,10 @@ use crate::tui::theme::Theme;
 pub struct Session {
     /// Name of the programme.
     pub programme: String,
-    /// Name of the station.
-    pub station: String,
+    /// What this station is set to.
+    pub role: StationRole,
+    /// Whether outcomes, reasons and notes are kept off the screen until asked for.
+    pub discreet: bool,
     /// Whether the data are invented.
     pub demo: bool,
     /// Who holds the store, when it can only be read.
@@ -222,6 +224,10 @@ pub enum Request {
     Compare(String, String),
     /// Changes who is recording.
     Screener(String),
+    /// Changes what this station is set to.
+    SetStation(StationChange),
+    /// Everything that was ever recorded of a field of a visit.
+    ValueHistory(Uuid, Field),
 }
 
 /// Why something could not be done.
@@ -270,6 +276,10 @@ pub enum Answer {
     Compared(Box<crate::tui::rules::Compared>),
     /// Who is recording now.
     Screener(String),
+    /// What this station is set to now.
+    Station(Box<StationRole>),
+    /// Everything that was ever recorded of a field of a visit.
+    ValueHistory(Field, Vec<ValueEntry>),
     /// Something could not be done.
     Refused(Refused),
 }

@@ -3,6 +3,7 @@
 use crate::domain::codes::{Correction, History, Status};
 use crate::domain::field::Field;
 use crate::domain::readings::{Eye, NotTestable};
+use crate::domain::screening_test::ScreeningTest;
 use crate::keys::{self, Command};
 use crate::tui::app::{App, Session, Tone};
 use crate::tui::day::bench::Bench;
@@ -23,6 +24,13 @@ impl App {
             self.say(Tone::Attention, "no child is on the bench");
             return;
         };
+        if command == Command::Why && bench.keeps_back() {
+            self.say(
+                Tone::Attention,
+                "this station is masked: reasons are shown when both eyes are entered",
+            );
+            return;
+        }
         let who = name(&bench.child.family_name, &bench.child.given_name);
         let signed = bench.is_signed();
         if signed
@@ -41,6 +49,7 @@ impl App {
             Command::NotTestable => ask_not_testable(&who, bench),
             Command::NotPresent => ask_not_present(&who),
             Command::Tests => ask_tests(&who),
+            Command::Note => ask_note(&who, bench),
             Command::Signs => Prompt {
                 ask: Ask::Signs,
                 title: format!("{who}: signs seen"),
@@ -267,6 +276,34 @@ impl App {
         }
     }
 
+    /// Asks what this station is set to; Enter on an empty field leaves it as it is.
+    pub(crate) fn ask_station(&mut self) {
+        let role = &self.session.role;
+        let task = role.task.map_or("all", ScreeningTest::word);
+        let masked = if role.masked { "yes" } else { "no" };
+        let chart = role
+            .chart
+            .as_ref()
+            .map_or("none".to_owned(), |c| safe(&c.name));
+        self.prompt = Some(Prompt::form(
+            Ask::Station,
+            format!("station {}", safe(&role.name)),
+            Form::new(&[
+                (
+                    "task",
+                    &format!("now {task}; all, {}", ScreeningTest::words()),
+                    true,
+                ),
+                ("masked", &format!("now {masked}; yes or no"), true),
+                (
+                    "chart",
+                    &format!("now {chart}; the name of a chart, or none"),
+                    true,
+                ),
+            ]),
+        ));
+    }
+
     /// Asks for a new screening day.
     pub(crate) fn ask_new_day(&mut self) {
         let sites = self
@@ -336,6 +373,20 @@ fn ask_tests(who: &str) -> Prompt {
     )
 }
 
+/// The note that stands there is in the field: Enter on it keeps it.
+fn ask_note(who: &str, bench: &Bench) -> Prompt {
+    let fields = [
+        ("note", "one line; it is kept and shown, never judged", true),
+        ("reason", "why the signed note changes", false),
+    ];
+    let shown = if bench.is_signed() { 2 } else { 1 };
+    let mut form = Form::new(&fields[..shown]);
+    if let Some(note) = &bench.readings.note {
+        form.fields[0].input = tui_input::Input::new(note.clone());
+    }
+    Prompt::form(Ask::Note, format!("{who}: note"), form)
+}
+
 fn ask_not_present(who: &str) -> Prompt {
     Prompt::choices(
         Ask::NotPresent,
@@ -373,6 +424,12 @@ fn whole_reason(who: &str, bench: &Bench, session: &Session) -> Prompt {
             outcome.kind.title(),
             safe(&outcome.reasons)
         ));
+        lines.extend(
+            outcome
+                .notes
+                .iter()
+                .map(|note| format!("Noted: {}", safe(note))),
+        );
         lines.push(String::new());
         lines.push("The same readings now:".into());
     }

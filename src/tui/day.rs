@@ -4,6 +4,7 @@
 mod answers;
 pub mod bench;
 pub mod bench_view;
+pub mod doubt;
 pub mod echo;
 pub mod kind;
 pub mod ladder;
@@ -367,7 +368,7 @@ impl Day {
             None if bench.is_signed() => self.next_child(session),
             None => self.sign(session),
             Some(field) => {
-                if !matches!(bench.state(field), State::Invalid { .. }) {
+                if !matches!(bench.state(field), State::Invalid { .. }) && !bench.asks() {
                     bench.advance();
                 }
                 Done::effects(self.keep_draft())
@@ -408,6 +409,9 @@ impl Day {
         };
         if bench.is_signed() {
             return Done::refused("this visit is signed already");
+        }
+        if bench.asks() {
+            return Done::effects(self.keep_draft());
         }
         let request = match bench.to_sign() {
             Ok(request) => request,
@@ -478,17 +482,20 @@ impl Day {
         }
     }
 
-    /// Swaps right and left acuity on the bench.
+    /// Swaps right and left on the bench.
     pub fn swap(&mut self) -> Done {
-        if let Some(bench) = &mut self.bench {
-            bench.swap();
-        }
+        let groups = self.bench.as_mut().map(Bench::swap).unwrap_or_default();
+        let said = if groups.is_empty() {
+            (true, "there is nothing to swap yet".to_owned())
+        } else {
+            (
+                false,
+                "right eye and left eye swapped; Ctrl-Z swaps them back".to_owned(),
+            )
+        };
         Done {
             effects: self.keep_draft(),
-            said: Some((
-                false,
-                "right eye and left eye swapped; Ctrl-Z swaps them back".into(),
-            )),
+            said: Some(said),
         }
     }
 
@@ -525,6 +532,7 @@ impl Day {
             drafts: &self.draft_ids,
             saving: &self.saving,
             focused: self.in_list(),
+            discreet: session.discreet,
         };
         let (x, y) = queue::draw(frame, list, &self.queue, marks, theme);
         let bar: Vec<Line<'_>> = (0..area.height)

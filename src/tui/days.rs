@@ -78,7 +78,7 @@ impl Days {
                 cut(
                     &format!(
                         "  station {} · {}",
-                        safe(&session.station),
+                        safe(&session.role.name),
                         spoken(session.today)
                     ),
                     columns,

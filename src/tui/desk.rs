@@ -106,7 +106,8 @@ pub fn session(
 ) -> Result<App, ActionError> {
     let session = Session {
         programme: desk.programme(),
-        station: desk.station(),
+        role: desk.station_role()?,
+        discreet: false,
         demo: desk.is_demo(),
         read_only: desk.is_read_only(),
         notation: desk.notation(),
@@ -238,6 +239,13 @@ impl Clerk {
                 let comparison = Comparison::new(found(&a)?, found(&b)?, &subjects);
                 Answer::Compared(Box::new(Compared::new(term, comparison, &subjects)))
             }
+            Request::SetStation(change) => {
+                self.desk.set_station(&change)?;
+                Answer::Station(Box::new(self.desk.station_role()?))
+            }
+            Request::ValueHistory(visit, field) => {
+                Answer::ValueHistory(field, self.desk.value_history(visit, field)?)
+            }
             Request::Screener(name) => {
                 self.desk.set_screener(&name)?;
                 Answer::Screener(name)
@@ -246,6 +254,9 @@ impl Clerk {
     }
 
     fn load_day(&self, day: DayInfo) -> Result<Answer, ActionError> {
+        // The station's chart may have changed since the screens were told of the day.
+        let days = self.desk.days()?;
+        let day = days.into_iter().find(|d| d.id == day.id).unwrap_or(day);
         let children = self.desk.day_children(&day)?;
         let day = Arc::new(day);
         let drafts = self.keeper.load(&day);

@@ -235,6 +235,8 @@ pub enum Ask {
     History,
     /// Which test to bring to the bench.
     Tests,
+    /// The note of the visit (with a reason when it was signed).
+    Note,
     /// Which value to correct.
     CorrectWhat,
     /// The new value and the reason.
@@ -255,6 +257,8 @@ pub enum Ask {
     Palette,
     /// Who is recording.
     Screener,
+    /// What this station is set to.
+    Station,
     /// A new screening day.
     NewDay,
     /// Something to read.

@@ -2,13 +2,15 @@
 
 use chrono::NaiveDate;
 
-use crate::actions::{NewChild, NewDay, UrgentAnswer};
+use crate::actions::{NewChild, NewDay, StationChange, UrgentAnswer};
 use crate::domain::age::Grade;
 use crate::domain::codes::{AcuityMethod, Correction, History, SignKind, Status};
 use crate::domain::field::Field;
 use crate::domain::readings::{Eye, Readings, Sign};
+use crate::domain::screening_test::ScreeningTest;
 use crate::keys::Command;
 use crate::tui::app::{App, Effect, Request, Tone};
+use crate::tui::day::bench::{Bench, pairs};
 use crate::tui::day::path::Group;
 use crate::tui::prompt::{Ask, Body, Form, Prompt};
 use crate::tui::text::safe;
@@ -216,11 +218,15 @@ impl App {
                     return Ok(Vec::new());
                 };
                 let get = |f| visit.readings.get(f).unwrap_or_default();
+                let groups = self
+                    .day
+                    .as_ref()
+                    .ok()
+                    .and_then(|d| d.bench.as_ref())
+                    .map(Bench::swap_groups)
+                    .unwrap_or_default();
                 let mut changes = Vec::new();
-                for (right, left) in [
-                    (Field::DistanceRight, Field::DistanceLeft),
-                    (Field::NearRight, Field::NearLeft),
-                ] {
+                for (right, left) in groups.into_iter().flat_map(pairs) {
                     let (r, l) = (get(right), get(left));
                     if r != l {
                         changes.push((right, l));
@@ -235,6 +241,22 @@ impl App {
                     changes,
                     form.value(0).to_owned(),
                 ))
+            }
+            Ask::Note => {
+                let text = form.value(0);
+                let signed = visit.map(|v| v.id);
+                let text = self
+                    .checked(Field::Note, text, &Readings::default())
+                    .map_err(|w| (0, w))?;
+                match (signed, &mut self.day) {
+                    (Some(visit), _) => one(Request::Correct(
+                        visit,
+                        vec![(Field::Note, text)],
+                        form.value(1).to_owned(),
+                    )),
+                    (None, Ok(day)) => Ok(day.put(Field::Note, &text)),
+                    _ => Ok(Vec::new()),
+                }
             }
             Ask::MoveTo => self.move_to(form),
             Ask::Retract => match self.day.as_ref().ok().and_then(|d| d.last_signed.clone()) {
@@ -254,6 +276,9 @@ impl App {
                 }),
             })),
             Ask::NewDay => self.new_day(form),
+            Ask::Station => {
+                station_change(form).map(|change| vec![Effect::ask(Request::SetStation(change))])
+            }
             _ => Ok(Vec::new()),
         }
     }
@@ -397,6 +422,33 @@ impl App {
                 .collect();
         }
     }
+}
+
+/// Reads what a station is set to; an empty field changes nothing.
+fn station_change(form: &Form) -> Result<StationChange, (usize, String)> {
+    let task = match form.value(0) {
+        "" => None,
+        "all" => Some(None),
+        word => Some(Some(ScreeningTest::from_word(word).ok_or_else(|| {
+            (0, format!("expected all, {}", ScreeningTest::words()))
+        })?)),
+    };
+    let masked = match form.value(1) {
+        "" => None,
+        "yes" => Some(true),
+        "no" => Some(false),
+        _ => return Err((1, "expected yes or no".into())),
+    };
+    let chart = match form.value(2) {
+        "" => None,
+        "none" => Some(None),
+        name => Some(Some(name.to_owned())),
+    };
+    Ok(StationChange {
+        task,
+        masked,
+        chart,
+    })
 }
 
 /// Reads an ISO date; empty is unknown.

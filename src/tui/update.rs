@@ -173,6 +173,13 @@ impl App {
     }
 
     fn go(&mut self, place: PlaceName) -> Vec<Effect> {
+        if self.session.role.masked && matches!(place, PlaceName::Children | PlaceName::Referrals) {
+            self.say(
+                Tone::Attention,
+                "this station is masked: it shows no child's history and nobody's telephone",
+            );
+            return Vec::new();
+        }
         let mut effects = self
             .day
             .as_mut()
@@ -195,6 +202,21 @@ impl App {
             return Vec::new();
         }
         match command {
+            Command::Discreet => {
+                self.session.discreet = !self.session.discreet;
+                let words = if self.session.discreet {
+                    "outcomes, reasons and notes are not shown; Alt-i shows them again"
+                } else {
+                    "outcomes, reasons and notes are shown"
+                };
+                self.say(Tone::Quiet, words);
+                return Vec::new();
+            }
+            Command::Station => {
+                self.ask_station();
+                return Vec::new();
+            }
+            Command::ValueHistory => return self.ask_value_history(),
             Command::OpenDay => {
                 self.ask_new_day();
                 return Vec::new();
@@ -220,6 +242,7 @@ impl App {
             | Command::Why
             | Command::Signs
             | Command::Tests
+            | Command::Note
             | Command::Move
             | Command::Correct => {
                 self.ask_about_child(command);

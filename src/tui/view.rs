@@ -285,7 +285,7 @@ impl App {
             && let Some(bench) = &day.bench
         {
             let room = usize::from(area.height).saturating_sub(lines.len());
-            lines.extend(verdict::lines(bench, columns, room, theme));
+            lines.extend(verdict::lines(bench, &self.session, columns, room));
         }
         frame.render_widget(Paragraph::new(lines), area);
     }

@@ -132,6 +132,7 @@ pub fn sign(
         attempt: child.attempt,
         visit: new_visit_id(),
         readings: readings(values),
+        remarks: Vec::new(),
     })
     .expect("signed")
 }
@@ -457,6 +458,7 @@ fn a_retry_of_the_same_signature_writes_nothing() {
             (Field::DistanceRight, "20/20"),
             (Field::DistanceLeft, "20/20"),
         ]),
+        remarks: Vec::new(),
     };
     let first = desk.sign(request.clone()).expect("signed");
     assert_eq!(desk.sign(request.clone()).expect("the same"), first);

@@ -125,6 +125,10 @@ impl Readings {
             }
             Field::Testable => code!(self.testable, YesNo),
             Field::NotTestableReason => code!(self.not_testable_reason, NotTestable),
+            Field::Note => {
+                self.note = optional(text, note)
+                    .map_err(|()| wrong(format!("one line of at most {NOTE_CHARS} characters")))?;
+            }
         }
         Ok(None)
     }
@@ -241,6 +245,7 @@ impl Readings {
             }
             Field::Testable => self.testable.map(|v| v.word().to_owned()),
             Field::NotTestableReason => self.not_testable_reason.map(|v| v.word().to_owned()),
+            Field::Note => self.note.clone(),
         }
     }
 
@@ -259,6 +264,14 @@ fn optional<T>(text: &str, parse: impl FnOnce(&str) -> Option<T>) -> Result<Opti
     } else {
         parse(text).map(Some).ok_or(())
     }
+}
+
+/// Characters of a note (practice: it is read in one look, and is no place for a second record).
+pub const NOTE_CHARS: usize = 500;
+
+fn note(text: &str) -> Option<String> {
+    (text.chars().count() <= NOTE_CHARS && !text.chars().any(char::is_control))
+        .then(|| text.to_owned())
 }
 
 fn count(text: &str, low: i64, high: i64) -> Option<u8> {

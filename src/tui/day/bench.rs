@@ -2,17 +2,21 @@
 
 mod edit;
 
+pub use edit::pairs;
+
 use std::sync::Arc;
 
 use uuid::Uuid;
 
-use crate::actions::{DayChild, DayInfo, SignRequest, VisitView};
-use crate::domain::acuity::Notation;
+use crate::actions::{DayChild, DayInfo, SignRequest, StationRole, VisitView};
+use crate::domain::acuity::{Line, Notation};
 use crate::domain::codes::{Correction, Status};
 use crate::domain::field::Field;
 use crate::domain::outcome::{Outcome, Urgency};
-use crate::domain::readings::{ReadingContext, Readings};
+use crate::domain::readings::{Distance, Eyes, ReadingContext, Readings};
+use crate::domain::screening_test::ScreeningTest;
 use crate::tui::app::Session;
+use crate::tui::day::doubt::{self, Doubt};
 use crate::tui::day::path::{Group, Plan};
 use crate::tui::judging::{self, Draft, Library, PassLine};
 
@@ -69,8 +73,22 @@ pub struct Bench {
     pub earlier: Vec<Readings>,
     raws: Raws,
     states: Vec<(Field, State)>,
-    undo: Vec<(Raws, Spot)>,
+    undo: Vec<Before>,
+    /// Tests whose right and left were swapped since the child came to the bench.
+    swapped: Vec<Group>,
+    /// What was asked about already.
+    asked: Vec<Doubt>,
+    /// What is asked now.
+    asking: Option<Doubt>,
     given: Given,
+}
+
+/// What an edit changes: for undoing it.
+#[derive(Debug, Clone)]
+struct Before {
+    raws: Raws,
+    at: Spot,
+    swapped: Vec<Group>,
 }
 
 /// What a bench held at one moment.
@@ -88,6 +106,7 @@ struct Given {
     day: Arc<DayInfo>,
     library: Arc<Library>,
     bare: Notation,
+    role: StationRole,
 }
 
 impl Bench {
@@ -102,9 +121,13 @@ impl Bench {
             day: Arc::clone(day),
             library: Arc::clone(&session.library),
             bare: session.notation,
+            role: session.role.clone(),
         };
         let tests = judging::bench_tests(&given.library, day, &child);
-        let plan = Plan::new(&tests, None, child.wears_glasses != Some(false));
+        let mut plan = Plan::new(&tests, given.role.task, child.wears_glasses != Some(false));
+        if given.role.chart.is_some() {
+            plan.with_chart();
+        }
         let pass_line = judging::pass_line_for(&given.library, day, &child);
         let readings = Readings::default();
         let outcome = judging::preview(&given.library, day, &child, &readings);
@@ -114,6 +137,9 @@ impl Bench {
             raws: Vec::new(),
             states: Vec::new(),
             undo: Vec::new(),
+            swapped: Vec::new(),
+            asked: Vec::new(),
+            asking: None,
             signed: None,
             earlier: Vec::new(),
             child,
@@ -126,6 +152,7 @@ impl Bench {
         };
         if let Some(draft) = draft {
             bench.raws = entered_before(draft);
+            bench.swapped = swapped_before(draft);
         }
         bench.judge();
         bench.at = draft
@@ -201,6 +228,11 @@ impl Bench {
                 .iter()
                 .filter(|(_, raw)| !raw.is_empty())
                 .map(|(f, raw)| (f.word().to_owned(), raw.clone()))
+                .chain(
+                    self.swapped
+                        .iter()
+                        .map(|g| (SWAPPED.to_owned(), g.title().to_owned())),
+                )
                 .collect(),
             cursor: self.field().map_or("sign", Field::word).to_owned(),
         }
@@ -220,8 +252,47 @@ impl Bench {
 
     // --- judging -----------------------------------------------------------------------------
 
+    /// Returns the question that stands open, if one does.
+    pub fn asking(&self) -> Option<&Doubt> {
+        self.asking.as_ref()
+    }
+
+    /// Asks once about a rare value of the field that has the focus, or on the line that signs about
+    /// any; says whether it asks. An emergency is never held up.
+    pub fn asks(&mut self) -> bool {
+        let here = self.field();
+        self.asking = doubt::doubts(&self.readings, &self.child)
+            .into_iter()
+            .filter(|d| here.is_none_or(|field| d.fields.contains(&field)))
+            .find(|d| !self.asked.contains(d))
+            .filter(|_| !self.is_emergency() && !self.is_signed());
+        if let Some(doubt) = &self.asking {
+            self.asked.push(doubt.clone());
+            if let (None, Some(last)) = (here, doubt.fields.last()) {
+                self.at = Spot::Field(*last);
+            }
+        }
+        self.asking.is_some()
+    }
+
+    /// Returns in words what was swapped since the child came to the bench.
+    pub fn swapped_words(&self) -> Vec<String> {
+        self.swapped
+            .iter()
+            .map(|g| format!("{SWAP_TRAIL}: {}", g.title()))
+            .collect()
+    }
+
+    /// Says whether right and left were swapped, as the bench or the signature knows.
+    pub fn was_swapped(&self) -> bool {
+        let signed = self.signed.as_ref().and_then(|v| v.outcome.as_ref());
+        !self.swapped.is_empty()
+            || signed.is_some_and(|o| o.notes.iter().any(|note| note.starts_with(SWAP_TRAIL)))
+    }
+
     /// Reads all fields again and asks the rules.
     pub fn judge(&mut self) {
+        self.asking = None;
         if let Some(visit) = &self.signed {
             self.readings = visit.readings.clone();
             self.raws = self.readings.recorded();
@@ -231,6 +302,7 @@ impl Bench {
             correction: self.roster_correction(),
             ..Readings::default()
         };
+        self.chart_at_the_station(&mut readings);
         let context = ReadingContext {
             bare: Some(self.given.bare),
             critical_line: self.pass_line.as_ref().map(|p| p.line),
@@ -265,6 +337,62 @@ impl Bench {
             &self.child,
             together.as_ref().unwrap_or(&self.readings),
         );
+    }
+
+    /// The station's chart says how many letters a line has and, beside another distance, what its
+    /// own is. What a person typed wins.
+    fn chart_at_the_station(&self, readings: &mut Readings) {
+        let Some(chart) = &self.given.role.chart else {
+            return;
+        };
+        if chart.letters_per_line != USUAL_LETTERS {
+            readings.letters_per_line = Some(chart.letters_per_line);
+        }
+        let used_in_feet = !self.raw(Field::UsedDistanceFt).is_empty();
+        let used = used_in_feet || !self.raw(Field::UsedDistanceM).is_empty();
+        let typed = [Field::ChartDistanceFt, Field::ChartDistanceM]
+            .iter()
+            .any(|f| !self.raw(*f).is_empty());
+        if used && !typed {
+            readings.chart_distance =
+                Some(Distance::of_millimetres(chart.distance_mm, used_in_feet));
+        }
+    }
+
+    /// Returns the one test of this station, where it has one.
+    pub fn task(&self) -> Option<ScreeningTest> {
+        self.given.role.task
+    }
+
+    /// Returns the lines of the station's chart, from the largest; empty where it is not known.
+    pub fn chart(&self) -> &[Line] {
+        &self.given.day.chart
+    }
+
+    /// Says whether outcome and pass line are kept back: the station is masked and one eye is still
+    /// to be entered.
+    pub fn keeps_back(&self) -> bool {
+        self.given.role.masked && !self.is_signed() && !self.is_complete()
+    }
+
+    /// Says whether both eyes of the test are entered, or that there is nothing to wait for.
+    fn is_complete(&self) -> bool {
+        let r = &self.readings;
+        let both = |eyes: [bool; 2]| eyes == [true, true];
+        let instrument = both(
+            r.instrument
+                .both()
+                .map(|eye| eye.sphere.is_some() || eye.result.is_some()),
+        );
+        let distance = both(r.distance.both().map(|eye| eye.is_some()));
+        let task = match self.given.role.task {
+            None | Some(ScreeningTest::Distance) => distance || instrument,
+            Some(ScreeningTest::Instrument) => instrument,
+            Some(ScreeningTest::Near) => both(r.near.both().map(|eye| eye.is_some())),
+            Some(ScreeningTest::RedReflex) => both(r.red_reflex.both().map(|eye| eye.is_some())),
+            Some(test) => test.fields().iter().any(|f| r.get(*f).is_some()),
+        };
+        task || self.status().is_some() || self.is_emergency()
     }
 
     /// Lists the fields of the path again; the focus stays where it is, or goes to the line that signs.
@@ -325,6 +453,7 @@ impl Bench {
         self.earlier.push(visit.readings);
         self.visit = draft.map_or(id, |d| d.visit);
         self.raws = draft.map_or_else(Vec::new, entered_before);
+        self.swapped = draft.map_or_else(Vec::new, swapped_before);
         self.undo.clear();
         self.at = Spot::Sign;
         self.judge();
@@ -357,7 +486,8 @@ impl Bench {
 
     /// Says whether signing will state "no signs seen".
     pub fn will_state_no_signs(&self) -> bool {
-        self.readings.signs.is_none()
+        self.task().is_none()
+            && self.readings.signs.is_none()
             && self.status().is_none()
             && self.earlier.iter().all(|t| t.signs.is_none())
     }
@@ -393,6 +523,10 @@ impl Bench {
                 format!("{}: expected {}", error.field.title(), error.expected),
             ));
         }
+        if readings.distance == Eyes::default() && self.raw(Field::LettersPerLine).is_empty() {
+            // Nothing was read from the station's chart.
+            readings.letters_per_line = None;
+        }
         if self.will_state_no_signs() {
             readings.signs = Some(Vec::new());
         }
@@ -405,8 +539,27 @@ impl Bench {
             attempt: self.child.attempt,
             visit: self.visit,
             readings,
+            remarks: self.swapped_words(),
         })
     }
+}
+
+/// Letters on a line where nothing else is said.
+const USUAL_LETTERS: u8 = 5;
+
+/// What a signature says of eyes that were swapped before it.
+const SWAP_TRAIL: &str = "right and left swapped before signing";
+
+/// The word under which a draft keeps what was swapped.
+const SWAPPED: &str = "swapped";
+
+fn swapped_before(draft: &Draft) -> Vec<Group> {
+    draft
+        .fields
+        .iter()
+        .filter(|(word, _)| word == SWAPPED)
+        .filter_map(|(_, title)| Group::ALL.into_iter().find(|g| g.title() == title))
+        .collect()
 }
 
 /// Returns what was typed into a draft.

@@ -9,12 +9,13 @@ use ratatui::text::{Line, Span};
 use ratatui::widgets::Paragraph;
 
 use crate::domain::field::Field;
+use crate::domain::screening_test::ScreeningTest;
 use crate::tui::app::Session;
 use crate::tui::day::bench::{Bench, Spot};
 use crate::tui::day::kind::{self, Kind};
 use crate::tui::day::path::Group;
 use crate::tui::day::{echo, ladder};
-use crate::tui::text::{cut, fit, width};
+use crate::tui::text::{cut, fit, safe, width};
 use crate::tui::theme::Theme;
 
 use cells::cell;
@@ -30,6 +31,8 @@ enum Row {
     Pair(Field, Field),
     /// The distance acuity of a try before this one.
     Earlier(usize),
+    /// The note, written in a question of its own.
+    Note,
     Sign,
 }
 
@@ -46,6 +49,9 @@ fn rows(bench: &Bench) -> Vec<Row> {
                 out.extend((0..bench.earlier.len()).map(Row::Earlier));
             }
         }
+    }
+    if bench.readings.note.is_some() {
+        out.push(Row::Note);
     }
     out.push(Row::Sign);
     out
@@ -90,7 +96,7 @@ pub fn draw(
     let mut cursor = Position::new(area.x, area.y);
     for row in view.visible(&rows) {
         let y = area.y + lines.len() as u16;
-        let (line, x) = row_line(row, bench, column, columns, focused, theme);
+        let (line, x) = row_line(row, bench, session, column, columns, focused);
         if has_focus(row, bench) {
             cursor = Position::new(area.x + x.min(columns.saturating_sub(1)) as u16, y);
         }
@@ -103,20 +109,12 @@ pub fn draw(
         height: area.height - used as u16,
         ..area
     };
-    if rest.height > 0 {
-        let line = if focused {
-            echo::line(bench, theme)
-        } else {
-            Line::default()
-        };
-        let indented = Line::from(
-            std::iter::once(Span::raw(fit("", LABEL)))
-                .chain(line.spans.into_iter().map(|s| s.patch_style(line.style)))
-                .collect::<Vec<_>>(),
-        );
-        frame.render_widget(Paragraph::new(indented), Rect { height: 1, ..rest });
-        rest.y += 1;
-        rest.height -= 1;
+    for line in under_the_fields(bench, focused, theme) {
+        if rest.height > 0 {
+            frame.render_widget(Paragraph::new(line), Rect { height: 1, ..rest });
+            rest.y += 1;
+            rest.height -= 1;
+        }
     }
     lower(
         frame,
@@ -192,6 +190,21 @@ fn choice_count(bench: &Bench) -> usize {
     }
 }
 
+/// What the field understood; or the question that stands open, over the width of the labels too,
+/// with the limit from which it is asked.
+fn under_the_fields(bench: &Bench, focused: bool, theme: Theme) -> Vec<Line<'static>> {
+    if !focused {
+        return vec![Line::default()];
+    }
+    let line = echo::line(bench, theme);
+    if let Some(doubt) = bench.asking() {
+        return vec![line, Line::styled(doubt.limit.clone(), theme.muted())];
+    }
+    let indent = std::iter::once(Span::raw(fit("", LABEL)));
+    let spans = line.spans.into_iter().map(|s| s.patch_style(line.style));
+    vec![Line::from(indent.chain(spans).collect::<Vec<_>>())]
+}
+
 /// Draws the ladder, and the choices of a field that has some.
 fn lower(
     frame: &mut Frame<'_>,
@@ -213,10 +226,13 @@ fn lower(
     } else {
         Vec::new()
     };
+    let quiet = bench.keeps_back() || session.discreet;
     let ladder = ladder::Ladder {
         eyes: bench.readings.distance,
-        pass: bench.pass_line.as_ref(),
+        pass: bench.pass_line.as_ref().filter(|_| !quiet),
         notation: session.notation,
+        chart: bench.chart(),
+        quiet,
     };
     let shows_ladder = bench.path.contains(&Field::DistanceRight)
         && bench
@@ -295,13 +311,23 @@ fn choice_lines(bench: &Bench, columns: usize, rows: usize, theme: Theme) -> Vec
 fn row_line(
     row: Row,
     bench: &Bench,
+    session: &Session,
     column: usize,
     columns: usize,
     focused: bool,
-    theme: Theme,
 ) -> (Line<'static>, usize) {
+    let theme = session.theme;
     match row {
-        Row::Sign => sign_line(bench, columns, focused, theme),
+        Row::Sign => sign_line(bench, session, columns, focused),
+        Row::Note => {
+            let note = match bench.readings.note.as_deref() {
+                Some(_) if session.discreet => "there is one; F7 shows it",
+                note => note.unwrap_or_default(),
+            };
+            let text = cut(&safe(note), columns.saturating_sub(LABEL));
+            let label = Span::raw(fit("note", LABEL));
+            (Line::from(vec![label, Span::raw(text)]), 0)
+        }
         Row::Earlier(n) => (earlier_line(bench, n, column, theme), 0),
         Row::One(field) => {
             let here = focused && bench.field() == Some(field);
@@ -384,7 +410,13 @@ fn label_span(field: Field, here: bool, theme: Theme) -> Span<'static> {
 }
 
 /// The line that signs says what will be stored.
-fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Line<'static>, usize) {
+fn sign_line(
+    bench: &Bench,
+    session: &Session,
+    columns: usize,
+    focused: bool,
+) -> (Line<'static>, usize) {
+    let theme = session.theme;
     let here = focused && bench.at == Spot::Sign;
     let label = Span::styled(
         fit("sign", LABEL),
@@ -421,6 +453,11 @@ fn sign_line(bench: &Bench, columns: usize, focused: bool, theme: Theme) -> (Lin
     };
     let mut words = match bench.status() {
         Some(status) => format!("{verb}: {}", status.title()),
+        None if bench.task().is_some() => {
+            let task = bench.task().map_or("", ScreeningTest::title);
+            format!("{verb}: part of the visit, {task}")
+        }
+        None if bench.keeps_back() || session.discreet => verb.to_owned(),
         None => format!("{verb}: {}", bench.outcome.kind.title()),
     };
     if bench.will_state_no_signs() {

@@ -12,6 +12,14 @@ use crate::tui::theme::Theme;
 
 /// Returns the line under the fields.
 pub fn line(bench: &Bench, theme: Theme) -> Line<'static> {
+    if let Some(doubt) = bench.asking() {
+        let keys = if doubt.fields.is_empty() {
+            "Enter: yes"
+        } else {
+            "Enter: yes, F6 swaps"
+        };
+        return Line::styled(safe(&format!("{} {keys}", doubt.words)), theme.attention());
+    }
     let Some(field) = bench.field() else {
         return Line::default();
     };

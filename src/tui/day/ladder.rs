@@ -68,11 +68,18 @@ pub struct Ladder<'a> {
     pub pass: Option<&'a PassLine>,
     /// How lines are written.
     pub notation: Notation,
+    /// Lines of the chart in use; empty where it is not known.
+    pub chart: &'a [ChartLine],
+    /// Whether nothing may show what the eyes come to.
+    pub quiet: bool,
 }
 
 impl Ladder<'_> {
     /// Returns the smallest possible gap between the eyes in steps.
     fn gap(&self) -> i32 {
+        if self.quiet {
+            return 0;
+        }
         let range = |r: Option<AcuityResult>| r?.acuity()?.steps(LineCredit::Majority, 5, 0);
         match (range(self.eyes.right), range(self.eyes.left)) {
             (Some(right), Some(left)) if right.is_on_the_chart() && left.is_on_the_chart() => {
@@ -80,6 +87,17 @@ impl Ladder<'_> {
             }
             _ => 0,
         }
+    }
+
+    /// Returns how a step is called on the chart in use.
+    fn called(&self, step: i32) -> String {
+        self.chart
+            .iter()
+            .find(|line| line.step().0 == step)
+            .map_or_else(
+                || ChartLine::at(Step(step), self.notation).to_string(),
+                ToString::to_string,
+            )
     }
 
     /// Returns the rungs to draw in so many rows: those with something on them first, then around.
@@ -126,7 +144,7 @@ impl Ladder<'_> {
             (a.min(b), a.max(b))
         });
         let label = (top..=bottom)
-            .map(|s| width(&ChartLine::at(Step(s), self.notation).to_string()))
+            .map(|s| width(&self.called(s)))
             .fold(6, usize::max);
         let columns = columns.saturating_sub(label + 16);
         (top..=bottom)
@@ -187,7 +205,7 @@ impl Ladder<'_> {
         let line = if step > COARSEST {
             "off".to_owned()
         } else {
-            ChartLine::at(Step(step), self.notation).to_string()
+            self.called(step)
         };
         let mut spans = vec![
             Span::styled(format!(" {} ", fit(&line, label)), quiet),

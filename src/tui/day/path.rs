@@ -172,6 +172,14 @@ fn has_row(field: Field, readings: &Readings, notation: Notation) -> bool {
     }
 }
 
+/// What a known chart answers by itself.
+fn of_the_chart(field: Field) -> bool {
+    matches!(
+        field,
+        F::LettersPerLine | F::ChartDistanceFt | F::ChartDistanceM
+    )
+}
+
 /// Says whether only Tab goes to a field: what most visits leave empty does not cost each one a key.
 fn by_tab_alone(field: Field) -> bool {
     matches!(
@@ -192,6 +200,8 @@ pub struct Plan {
     offered: Vec<Group>,
     opened: Vec<Group>,
     instrument: bool,
+    /// Whether the chart's own distance is known.
+    chart_known: bool,
 }
 
 impl Plan {
@@ -216,6 +226,11 @@ impl Plan {
                 .extend([Group::Glasses, Group::History, Group::Signs]);
         }
         plan
+    }
+
+    /// Leaves out what the station's chart answers.
+    pub fn with_chart(&mut self) {
+        self.chart_known = true;
     }
 
     /// Brings a group to the bench.
@@ -264,7 +279,10 @@ impl Plan {
             .into_iter()
             .flat_map(|group| group.fields().iter().map(move |field| (group, *field)))
             .filter(|(group, field)| {
-                filled(*field) || (self.shows(*group) && has_row(*field, readings, notation))
+                filled(*field)
+                    || (self.shows(*group)
+                        && has_row(*field, readings, notation)
+                        && !(self.chart_known && of_the_chart(*field)))
             })
             .map(|(_, field)| field)
             .collect()

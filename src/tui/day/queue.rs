@@ -386,6 +386,8 @@ pub struct QueueMarks<'a> {
     pub saving: &'a HashSet<String>,
     /// Whether the list has the focus.
     pub focused: bool,
+    /// Whether outcomes are not shown.
+    pub discreet: bool,
 }
 
 /// Draws the list and returns where the cursor belongs, if the list has the focus.
@@ -527,6 +529,9 @@ fn child_line(
 fn state_word(child: &DayChild, marks: QueueMarks<'_>, theme: Theme) -> (&'static str, Style) {
     if marks.saving.contains(&child.child_id) {
         return ("saving…", theme.muted());
+    }
+    if marks.discreet && child.state != QueueState::ToCome {
+        return ("seen", theme.muted());
     }
     if child.waits_for_second_try() {
         let word = if marks.drafts.contains(&child.child_id) {

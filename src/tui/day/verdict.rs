@@ -6,13 +6,15 @@ use ratatui::text::{Line, Span};
 
 use crate::domain::age::spoken;
 use crate::domain::outcome::OutcomeKind;
+use crate::tui::app::Session;
 use crate::tui::day::bench::{Bench, State};
 use crate::tui::judging::explain;
 use crate::tui::text::{safe, wrap};
 use crate::tui::theme::Theme;
 
 /// Returns the lines under the bench, at most so many.
-pub fn lines(bench: &Bench, columns: usize, rows: usize, theme: Theme) -> Vec<Line<'static>> {
+pub fn lines(bench: &Bench, session: &Session, columns: usize, rows: usize) -> Vec<Line<'static>> {
+    let theme = session.theme;
     if let Some((field, State::Invalid { expected })) =
         bench.field().map(|field| (field, bench.state(field)))
     {
@@ -31,11 +33,32 @@ pub fn lines(bench: &Bench, columns: usize, rows: usize, theme: Theme) -> Vec<Li
         out.truncate(rows);
         return out;
     }
+    let kept_back = if session.discreet && !bench.is_blank() {
+        Some("Outcome, reasons and notes are not shown. F4 shows them once, Alt-i always.")
+    } else if bench.keeps_back() {
+        Some("The outcome stands here when both eyes are entered: this station is masked.")
+    } else {
+        None
+    };
+    if let Some(words) = kept_back {
+        return flow("", theme.muted(), words, columns, rows, theme);
+    }
     if let Some(visit) = &bench.signed {
         return signed_lines(bench, visit, columns, rows, theme);
     }
     let nothing_yet = bench.is_blank() && bench.outcome.kind == OutcomeKind::Incomplete;
-    let (headline, style, rest) = if nothing_yet {
+    let (headline, style, rest) = if let Some(task) = bench.task() {
+        (
+            String::new(),
+            theme.muted(),
+            format!(
+                "Part of the visit: this station does {} alone. {} {}",
+                task.title(),
+                safe(&explain::headline(&bench.outcome)),
+                safe(&explain::short(&bench.outcome))
+            ),
+        )
+    } else if nothing_yet {
         (
             String::new(),
             theme.muted(),

@@ -66,6 +66,10 @@ fn samples(field: Field) -> (&'static [&'static str], &'static [&'static str]) {
         Field::DeviationPd => (&["0", "8", "12.5"], &["-8", "201", "8pd"]),
         Field::DeviatingEye => (&["right", "left", "alternating"], &["both", "OD"]),
         Field::DeviationDirection => (&["in", "out", "up", "down"], &["inward"]),
+        Field::Note => (
+            &["shy; tried after recess", "=not run", "王さんは眼鏡"],
+            &["two\nlines", "a bell\u{7}"],
+        ),
         Field::RedReflexRight | Field::RedReflexLeft => (
             &["normal", "absent", "white", "dull", "dark_spot", "unequal"],
             &["red"],

@@ -32,6 +32,7 @@ fn info() -> DayInfo {
         date: day(),
         protocol: "us-school".into(),
         method: AcuityMethod::Threshold,
+        chart: Vec::new(),
     }
 }
 
@@ -352,6 +353,7 @@ fn the_sums_agree_with_the_roster() {
             child_id: format!("Q-{i}"),
             attempt: Attempt::First,
             visit: new_visit_id(),
+            remarks: Vec::new(),
             readings,
         });
         let board = desk.board(&day).unwrap();

@@ -214,12 +214,9 @@ fn esc_in_a_question_leaves_the_bench_as_it_was() {
 #[test]
 fn the_other_places_show_what_is_known() {
     let mut h = Hands::sit();
-    h.typed("200")
-        .enter()
-        .typed("20")
-        .enter()
-        .enter()
-        .sees("saved Okafor, Ada: refer");
+    h.typed("200").enter().typed("20").enter();
+    h.sees("10 lines between the eyes").enter().enter();
+    h.sees("saved Okafor, Ada: refer");
     h.press(Key::alt('3')).sees("Okafor");
     h.press(Key::alt('4')).misses("reading…");
     h.press(Key::alt('5'))

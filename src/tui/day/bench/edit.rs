@@ -1,14 +1,22 @@
 //! Typing into the bench, and moving about on it.
 
-use super::{Bench, Checkpoint, Spot, State};
+use super::{Before, Bench, Checkpoint, Spot, State};
 use crate::domain::acuity::{Line, Step};
 use crate::domain::codes::AcuityMethod;
 use crate::domain::field::Field;
 use crate::tui::day::kind::{self, AcuityOf, Kind};
+use crate::tui::day::path::Group;
+
+/// The arrows go down to 20/200; what is worse is typed.
+const COARSEST_BY_ARROW: i32 = 10;
 
 impl Bench {
     pub(super) fn remember(&mut self) {
-        self.undo.push((self.raws.clone(), self.at));
+        self.undo.push(Before {
+            raws: self.raws.clone(),
+            at: self.at,
+            swapped: self.swapped.clone(),
+        });
         if self.undo.len() > 200 {
             self.undo.remove(0);
         }
@@ -16,11 +24,12 @@ impl Bench {
 
     /// Undoes the last edit; false when there is none.
     pub fn undo(&mut self) -> bool {
-        let Some((raws, at)) = self.undo.pop() else {
+        let Some(before) = self.undo.pop() else {
             return false;
         };
-        self.raws = raws;
-        self.at = at;
+        self.raws = before.raws;
+        self.at = before.at;
+        self.swapped = before.swapped;
         self.judge();
         true
     }
@@ -210,8 +219,7 @@ impl Bench {
         };
         match kind::kind(field) {
             Kind::Acuity => {
-                let step = self.ladder_step(field, better);
-                let line = Line::at(step, self.given.bare);
+                let line = self.ladder_line(field, better);
                 self.put(field, &line.to_string());
             }
             Kind::Choice(choices) => {
@@ -236,8 +244,10 @@ impl Bench {
         }
     }
 
-    /// The first arrow starts from the pass line: down stands on it, up on the line above it.
-    fn ladder_step(&self, field: Field, better: bool) -> Step {
+    /// The first arrow starts from the pass line: down stands on it, up on the line above it. Where
+    /// the chart is known the arrows go along its own lines. A masked station begins at the line that
+    /// every chart has, so that the first arrow tells nothing.
+    fn ladder_line(&self, field: Field, better: bool) -> Line {
         let here = match self.state(field) {
             State::Valid { .. } => self
                 .readings
@@ -245,29 +255,64 @@ impl Bench {
                 .and_then(|r| r.acuity()?.line()),
             _ => None,
         };
-        let step = if let Some(line) = here {
-            line.step().0 + if better { -1 } else { 1 }
-        } else {
-            let pass = self.pass_line.as_ref().map_or(0, |p| p.line.step().0);
-            if better { pass - 1 } else { pass }
+        let pass = self.pass_line.as_ref().filter(|_| !self.keeps_back());
+        let start = pass.map_or(0, |p| p.line.step().0);
+        let step = match here {
+            Some(line) => line.step().0 + if better { -1 } else { 1 },
+            None if better => start - 1,
+            None => start,
         };
-        Step(step.clamp(Step::FINEST.0, 10))
+        let step = step.clamp(Step::FINEST.0, COARSEST_BY_ARROW);
+        let mut lines: Vec<Line> = self.chart().to_vec();
+        lines.sort_by_key(|l| l.step());
+        let on_chart = if better {
+            lines.iter().rfind(|l| l.step().0 <= step).or(lines.first())
+        } else {
+            lines.iter().find(|l| l.step().0 >= step).or(lines.last())
+        };
+        on_chart
+            .copied()
+            .unwrap_or_else(|| Line::at(Step(step), self.given.bare))
     }
 
-    /// Swaps right and left acuity.
-    pub fn swap(&mut self) {
+    /// Swaps right and left of the test that has the focus, or that is asked about; elsewhere of both
+    /// acuities. Returns the tests that were swapped; each leaves its trail with the signature.
+    pub fn swap(&mut self) -> Vec<Group> {
+        let groups: Vec<Group> = self
+            .swap_groups()
+            .into_iter()
+            .filter(|g| g.fields().iter().any(|f| !self.raw(*f).is_empty()))
+            .collect();
+        if groups.is_empty() {
+            return groups;
+        }
         self.remember();
-        for (right, left) in [
-            (Field::DistanceRight, Field::DistanceLeft),
-            (Field::NearRight, Field::NearLeft),
-        ] {
-            let (r, l) = (self.raw(right).to_owned(), self.raw(left).to_owned());
-            if !(r.is_empty() && l.is_empty()) {
+        for group in &groups {
+            for (right, left) in pairs(*group) {
+                let (r, l) = (self.raw(right).to_owned(), self.raw(left).to_owned());
                 self.write(right, &l);
                 self.write(left, &r);
             }
+            match self.swapped.iter().position(|g| g == group) {
+                Some(i) => drop(self.swapped.remove(i)),
+                None => self.swapped.push(*group),
+            }
         }
         self.judge();
+        groups
+    }
+
+    /// Returns the tests that a swap is about.
+    pub fn swap_groups(&self) -> Vec<Group> {
+        let about = self
+            .asking
+            .as_ref()
+            .and_then(|d| d.fields.first().copied())
+            .or(self.field());
+        match about.and_then(Group::of) {
+            Some(group) if pairs(group).next().is_some() => vec![group],
+            _ => vec![Group::Distance, Group::Near],
+        }
     }
 
     /// Goes where Enter leads after the field that has the focus: through the rest of its test, then
@@ -340,4 +385,12 @@ impl Bench {
             self.judge();
         }
     }
+}
+
+/// Returns the pairs of fields, right and left, of a test.
+pub fn pairs(group: Group) -> impl Iterator<Item = (Field, Field)> {
+    group
+        .fields()
+        .iter()
+        .filter_map(|f| kind::pair(*f).filter(|(right, _)| right == f))
 }

@@ -69,6 +69,9 @@ fn standing(bench: &Bench, theme: Theme) -> Vec<Span<'static>> {
     } else if let Some(due) = child.due_on {
         add(format!("return due {}", spoken(due)), theme.attention());
     }
+    if bench.was_swapped() {
+        add("eyes swapped".into(), theme.attention());
+    }
     if child.consent == Some(Consent::No) {
         add("no consent".into(), theme.refer());
     }
