@@ -333,6 +333,9 @@ pub struct FoundChild {
     pub site: String,
     /// Class.
     pub class: String,
+    /// What was found where it is not the name as it was typed: id, class, the end of a telephone
+    /// number, or a name like it.
+    pub why: String,
 }
 
 /// A child added at the table.
