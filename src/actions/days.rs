@@ -1,5 +1,7 @@
 //! Screening days and their queues.
 
+use std::collections::HashMap;
+
 use chrono::{Months, NaiveDate};
 use uuid::Uuid;
 
@@ -9,6 +11,7 @@ use super::views::{DayChild, DayInfo, NewDay, QueueState};
 use crate::domain::age::AgeMonths;
 use crate::domain::codes::{Attempt, Consent, History, Status, YesNo};
 use crate::domain::outcome::{DecidedBy, OutcomeKind};
+use crate::domain::school_calendar::SchoolCalendar;
 use crate::store::new_id;
 use crate::store::read::{DayChild as StoredChild, VisitNow};
 use crate::store::row::{DayKey, ScreeningDay};
@@ -17,11 +20,12 @@ impl Desk {
     /// Returns the screening days, latest first.
     pub fn days(&self) -> Result<Vec<DayInfo>> {
         let names = self.sites()?;
+        let calendars = self.calendars()?;
         Ok(self
             .read()
             .days()?
             .into_iter()
-            .map(|day| info(day, &names))
+            .map(|day| info(day, &names, &calendars))
             .collect())
     }
 
@@ -69,7 +73,7 @@ impl Desk {
                     day.acuity_method.title()
                 )));
             }
-            return Ok(info(day, &sites));
+            return Ok(info(day, &sites, &self.calendars()?));
         }
         let term = self.term_on(new.date)?;
         let row = ScreeningDay {
@@ -83,7 +87,7 @@ impl Desk {
         };
         let author = self.author();
         self.store.append(&author, |tx| tx.add(&row))?;
-        Ok(info(row, &sites))
+        Ok(info(row, &sites, &self.calendars()?))
     }
 
     /// Returns every child of a day: rescreens and returns that are due first, then by class and
@@ -169,13 +173,21 @@ pub(super) fn key_of(day: &DayInfo) -> DayKey {
     }
 }
 
-fn info(day: ScreeningDay, names: &[(String, String)]) -> DayInfo {
+fn info(
+    day: ScreeningDay,
+    names: &[(String, String)],
+    calendars: &HashMap<String, SchoolCalendar>,
+) -> DayInfo {
     let site_name = names
         .iter()
         .find(|(code, _)| *code == day.site)
         .map_or_else(|| day.site.clone(), |(_, name)| name.clone());
     DayInfo {
         id: day.id,
+        calendar: calendars
+            .get(&day.site)
+            .or_else(|| calendars.get(""))
+            .map(|calendar| calendar.clone().of(&*site_name)),
         site: day.site,
         site_name,
         date: day.screened_on,

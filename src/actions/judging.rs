@@ -102,13 +102,14 @@ fn with_roster(child: &DayChild, readings: &Readings) -> Readings {
     readings
 }
 
-fn case<'a>(day: &DayInfo, child: &'a DayChild, readings: &'a Readings) -> Case<'a> {
+fn case<'a>(day: &'a DayInfo, child: &'a DayChild, readings: &'a Readings) -> Case<'a> {
     Case {
         age: child.age,
         grade: child.grade,
         on: Some(day.date),
         attempt: child.attempt,
         method: Some(day.method),
+        calendar: day.calendar.as_ref(),
         consent: child.consent,
         under_care: child.under_care
             || readings.status == Some(Status::UnderCare)

@@ -10,6 +10,7 @@ use crate::domain::codes::{AcuityMethod, Attempt, Consent, History};
 use crate::domain::field::Field;
 use crate::domain::outcome::{Outcome, OutcomeKind, RiskKind, Urgency};
 use crate::domain::readings::Readings;
+use crate::domain::school_calendar::SchoolCalendar;
 
 /// A screening day: one site, one date, one protocol.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -26,6 +27,8 @@ pub struct DayInfo {
     pub protocol: String,
     /// How far the chart is read.
     pub method: AcuityMethod,
+    /// Days on which school is held, where they are known.
+    pub calendar: Option<SchoolCalendar>,
 }
 
 /// What is needed to open a screening day.

@@ -1,6 +1,7 @@
 //! Tests of `actions`: a desk on a store of its own, as a nurse would use it.
 
 mod board;
+mod calendar;
 mod late;
 mod later_visits;
 mod rosters;
