@@ -316,6 +316,7 @@ mod tests {
             date: "2026-10-14".parse().expect("a date"),
             protocol: "us-school".into(),
             method: crate::domain::codes::AcuityMethod::Threshold,
+            calendar: None,
         }
     }
 

@@ -356,7 +356,7 @@ impl Desk {
     }
 
     /// Says whether what is entered now is entered after the day, or under another date than today's.
-    fn is_late(&self, day: &DayInfo) -> bool {
+    pub(super) fn is_late(&self, day: &DayInfo) -> bool {
         let entered_on = clock::today();
         entered_on > day.date || entered_on != self.today
     }

@@ -32,6 +32,7 @@ fn info() -> DayInfo {
         date: day(),
         protocol: "us-school".into(),
         method: AcuityMethod::Threshold,
+        calendar: None,
     }
 }
 
