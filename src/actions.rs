@@ -4,6 +4,7 @@
 //! screens and the command line ask it and tell it things; neither sees a table.
 
 pub mod board;
+mod calendar;
 mod children;
 pub mod compare;
 mod days;
@@ -37,6 +38,7 @@ pub use crate::store::{
     Damage, Draft, DraftDay, Drafts, ExpectedHead, Head, Info, Kdf, Put, RecoveryKey, Secret,
     Verified,
 };
+pub use calendar::{CalendarChange, CalendarView};
 pub use desk::{Desk, DeskOptions};
 pub use error::{ActionError, Kind, Result};
 pub use follow_up::{

@@ -317,6 +317,7 @@ mod tests {
             protocol: "us-school".into(),
             method: crate::domain::codes::AcuityMethod::Threshold,
             chart: Vec::new(),
+            calendar: None,
         }
     }
 

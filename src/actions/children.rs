@@ -8,7 +8,7 @@ use super::days::key_of;
 use super::desk::Desk;
 use super::error::{ActionError, Result};
 use super::judging::known;
-use super::search::SearchIndex;
+use super::search::{Indexed, SearchIndex};
 use super::triage::Standing;
 use super::united::unsettled;
 use super::views::{
@@ -73,19 +73,25 @@ impl Desk {
         self.day_child(day, &child_id)
     }
 
-    /// Returns an index to find any child of the store by typing.
+    /// Returns an index to find any child of the store by typing; at a masked station telephone
+    /// numbers are not in it.
     pub fn search_index(&self) -> Result<SearchIndex> {
+        let masked = self.is_masked();
         let children = self
             .read()
             .find_index()?
             .into_iter()
-            .map(|row| FoundChild {
-                child_id: row.child_id,
-                family_name: row.family_name,
-                given_name: row.given_name,
-                dob: row.dob,
-                site: row.site.unwrap_or_default(),
-                class: row.class.unwrap_or_default(),
+            .map(|row| Indexed {
+                phone: row.guardian_phone.filter(|_| !masked).unwrap_or_default(),
+                child: FoundChild {
+                    child_id: row.child_id,
+                    family_name: row.family_name,
+                    given_name: row.given_name,
+                    dob: row.dob,
+                    site: row.site.unwrap_or_default(),
+                    class: row.class.unwrap_or_default(),
+                    why: String::new(),
+                },
             })
             .collect();
         Ok(SearchIndex::new(children))
@@ -132,8 +138,10 @@ impl Desk {
         fact("known condition", now.known_condition.clone());
         fact("language", now.language.clone());
         fact("history", now.history.clone());
-        fact("guardian", now.guardian_name.clone());
-        fact("telephone", now.guardian_phone.clone());
+        if !self.is_masked() {
+            fact("guardian", now.guardian_name.clone());
+            fact("telephone", now.guardian_phone.clone());
+        }
         fact("notes", now.notes.clone());
         if now.provisional {
             fact("id", Some("provisional: match to the roster".to_owned()));
@@ -212,7 +220,7 @@ impl Desk {
                 .and_then(|id| stations.get(&id).map(|s| s.name.clone()))
                 .unwrap_or_default(),
             entered,
-            late: outcome.is_some_and(|o| o.row.late),
+            late: record.outcomes.first().is_some_and(|o| o.row.late),
             corrections,
             standing,
         })

@@ -1,5 +1,7 @@
 //! Screening days and their queues.
 
+use std::collections::HashMap;
+
 use chrono::{Months, NaiveDate};
 use uuid::Uuid;
 
@@ -10,6 +12,7 @@ use crate::domain::acuity::Line;
 use crate::domain::age::AgeMonths;
 use crate::domain::codes::{Attempt, Consent, History, Status, YesNo};
 use crate::domain::outcome::{DecidedBy, OutcomeKind};
+use crate::domain::school_calendar::SchoolCalendar;
 use crate::store::new_id;
 use crate::store::read::{DayChild as StoredChild, VisitNow};
 use crate::store::row::{DayKey, ScreeningDay};
@@ -19,11 +22,12 @@ impl Desk {
     pub fn days(&self) -> Result<Vec<DayInfo>> {
         let names = self.sites()?;
         let chart = self.chart_lines()?;
+        let calendars = self.calendars()?;
         Ok(self
             .read()
             .days()?
             .into_iter()
-            .map(|day| info(day, &names, &chart))
+            .map(|day| info(day, &names, &calendars, &chart))
             .collect())
     }
 
@@ -71,7 +75,7 @@ impl Desk {
                     day.acuity_method.title()
                 )));
             }
-            return Ok(info(day, &sites, &self.chart_lines()?));
+            return Ok(info(day, &sites, &self.calendars()?, &self.chart_lines()?));
         }
         let term = self.term_on(new.date)?;
         let row = ScreeningDay {
@@ -85,7 +89,7 @@ impl Desk {
         };
         let author = self.author();
         self.store.append(&author, |tx| tx.add(&row))?;
-        Ok(info(row, &sites, &self.chart_lines()?))
+        Ok(info(row, &sites, &self.calendars()?, &self.chart_lines()?))
     }
 
     /// Returns every child of a day: rescreens and returns that are due first, then by class and
@@ -180,13 +184,22 @@ pub(super) fn key_of(day: &DayInfo) -> DayKey {
     }
 }
 
-fn info(day: ScreeningDay, names: &[(String, String)], chart: &[Line]) -> DayInfo {
+fn info(
+    day: ScreeningDay,
+    names: &[(String, String)],
+    calendars: &HashMap<String, SchoolCalendar>,
+    chart: &[Line],
+) -> DayInfo {
     let site_name = names
         .iter()
         .find(|(code, _)| *code == day.site)
         .map_or_else(|| day.site.clone(), |(_, name)| name.clone());
     DayInfo {
         id: day.id,
+        calendar: calendars
+            .get(&day.site)
+            .or_else(|| calendars.get(""))
+            .map(|calendar| calendar.clone().of(&*site_name)),
         site: day.site,
         site_name,
         date: day.screened_on,

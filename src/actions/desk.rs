@@ -88,6 +88,14 @@ impl Desk {
             .unwrap_or_default()
     }
 
+    /// Says whether this station is masked: no contact data there, no history.
+    pub fn is_masked(&self) -> bool {
+        self.stations()
+            .ok()
+            .and_then(|all| all.get(&self.store.station_id()).and_then(|s| s.masked))
+            .unwrap_or(false)
+    }
+
     /// Says whether this is the demo, which nothing protects.
     pub fn is_demo(&self) -> bool {
         !self.store.key_info().protected

@@ -109,6 +109,7 @@ fn case<'a>(day: &'a DayInfo, child: &'a DayChild, readings: &'a Readings) -> Ca
         on: Some(day.date),
         attempt: child.attempt,
         method: Some(day.method),
+        calendar: day.calendar.as_ref(),
         consent: child.consent,
         under_care: child.under_care
             || readings.status == Some(Status::UnderCare)

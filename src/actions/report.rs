@@ -81,6 +81,7 @@ impl Desk {
                     .or(row.age);
                 row.grade = signed.grade.or(row.grade);
                 row.tested_on = Some(signed.tested_on);
+                row.entered_late = signed.late;
                 row.screener = signed
                     .screener_id
                     .and_then(|id| screeners.get(&id).cloned())

@@ -142,6 +142,9 @@ impl Desk {
         }
         let there = new_id();
         let mut rows = self.new_visit(&day, &to, there, &self.tries(visit)?)?;
+        if let Some(signed) = self.read().outcomes(visit)?.first() {
+            rows.entered_late(signed.late);
+        }
         let open = self.read().urgent_open()?;
         if let Some(line) = open.iter().find(|u| u.raised.visit_id == Some(visit)) {
             rows.raised_at(&line.raised);

@@ -11,6 +11,7 @@ use crate::domain::codes::{AcuityMethod, Attempt, Consent, History};
 use crate::domain::field::Field;
 use crate::domain::outcome::{Outcome, OutcomeKind, RiskKind, Urgency};
 use crate::domain::readings::Readings;
+use crate::domain::school_calendar::SchoolCalendar;
 
 /// A screening day: one site, one date, one protocol.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -29,6 +30,8 @@ pub struct DayInfo {
     pub method: AcuityMethod,
     /// Lines of the chart that hangs at this station, from the largest; empty where it is not known.
     pub chart: Vec<Line>,
+    /// Days on which school is held, where they are known.
+    pub calendar: Option<SchoolCalendar>,
 }
 
 /// What is needed to open a screening day.
@@ -340,6 +343,9 @@ pub struct FoundChild {
     pub site: String,
     /// Class.
     pub class: String,
+    /// What was found where it is not the name as it was typed: id, class, the end of a telephone
+    /// number, or a name like it.
+    pub why: String,
 }
 
 /// A child added at the table.

@@ -63,6 +63,11 @@ impl VisitRows {
         }
     }
 
+    /// Keeps the word whether the visit was entered late, where it is only moved.
+    pub(super) fn entered_late(&mut self, late: bool) {
+        self.outcome.late = late;
+    }
+
     /// Adds the entries; a correction that changes nothing adds none.
     pub(super) fn write(self, tx: &mut Tx<'_>) -> crate::store::Result<()> {
         if self.new.is_none() && self.readings.is_empty() && self.edits.is_empty() {
@@ -181,7 +186,7 @@ impl Desk {
                 .map(|last| reading_rows(visit, tries.len() as i64, last))
                 .unwrap_or_default(),
             edits: Vec::new(),
-            outcome: self.outcome_row(visit, day, child, &outcome),
+            outcome: self.outcome_row(visit, day, child, &outcome, self.is_late(day)),
             raise: self.emergency(visit, child, &readings, &outcome)?,
             rules: self.rules_used(day),
             reason: Some("another try of the same visit".to_owned()),
@@ -254,12 +259,17 @@ impl Desk {
         let outcome = self
             .judged_together(&day, &child, &after)?
             .ok_or_else(|| no_protocol(&day))?;
+        // A correction on a later day does not make the visit itself a late one.
+        let late = match self.read().outcomes(now.visit_id)?.first() {
+            Some(signed) => signed.late,
+            None => self.is_late(&day),
+        };
         Ok(VisitRows {
             visit: now.visit_id,
             new: None,
             readings: Vec::new(),
             edits,
-            outcome: self.outcome_row(now.visit_id, &day, &child, &outcome),
+            outcome: self.outcome_row(now.visit_id, &day, &child, &outcome, late),
             raise: self.emergency(now.visit_id, &child, &readings, &outcome)?,
             rules: self.rules_used(&day),
             reason: Some(reason),
@@ -319,10 +329,10 @@ impl Desk {
         day: &DayInfo,
         child: &DayChild,
         outcome: &Outcome,
+        late: bool,
     ) -> row::Outcome {
         let mut reasons = String::new();
         explain::reasons_text(outcome, &mut reasons);
-        let entered_on = clock::today();
         row::Outcome {
             id: new_id(),
             visit_id: visit,
@@ -351,9 +361,15 @@ impl Desk {
             screener_id: self.screener.as_ref().map(|s| s.screener_id),
             station_id: Some(self.here()),
             tested_on: day.date,
-            entered_on,
-            late: entered_on > day.date || entered_on != self.today,
+            entered_on: clock::today(),
+            late,
         }
+    }
+
+    /// Says whether what is entered now is entered after the day, or under another date than today's.
+    pub(super) fn is_late(&self, day: &DayInfo) -> bool {
+        let entered_on = clock::today();
+        entered_on > day.date || entered_on != self.today
     }
 
     /// Returns the texts that this day's outcomes are made with: the protocol's and its rule sets'.

@@ -20,9 +20,9 @@ pub(super) struct Child {
 
 #[derive(Debug, Subcommand)]
 enum Command {
-    /// Find children by name or id
+    /// Find children by any part of a name, id, class or the end of a telephone number
     Find {
-        /// Part of a name or an id
+        /// Parts of names, an id, a class, or the last digits of the guardian's telephone number
         text: String,
     },
     /// Show the whole history of a child with every correction
@@ -55,6 +55,7 @@ impl Child {
                             born(c.dob),
                             clean(&c.site),
                             clean(&c.class),
+                            clean(&c.why),
                         ]
                     })
                     .collect();

@@ -2,6 +2,11 @@
 
 use chrono::{Datelike, Days, NaiveDate, Weekday};
 
+use crate::domain::text::shown;
+
+/// Longest holiday that is believed, in days: a range that is longer is a wrong year.
+const LONGEST_HOLIDAY: i64 = 120;
+
 /// The days of the week as they are written, Monday first.
 const WORDS: [&str; 7] = ["mon", "tue", "wed", "thu", "fri", "sat", "sun"];
 
@@ -10,6 +15,8 @@ const WORDS: [&str; 7] = ["mon", "tue", "wed", "thu", "fri", "sat", "sun"];
 pub struct SchoolCalendar {
     held: [bool; 7],
     holidays: Vec<(NaiveDate, NaiveDate)>,
+    /// Whose it is; empty where nobody said.
+    of: String,
 }
 
 impl Default for SchoolCalendar {
@@ -18,6 +25,7 @@ impl Default for SchoolCalendar {
         SchoolCalendar {
             held: [true, true, true, true, true, false, false],
             holidays: Vec::new(),
+            of: String::new(),
         }
     }
 }
@@ -31,14 +39,100 @@ impl SchoolCalendar {
         }
         SchoolCalendar {
             held,
-            holidays: Vec::new(),
+            ..SchoolCalendar::default()
         }
+    }
+
+    /// Reads the days of the week on which school is held: `mon-fri`, `sun-thu`, `mon,wed,fri`.
+    ///
+    /// # Errors
+    /// What was found and what is expected.
+    pub fn parse_days(text: &str) -> Result<Vec<Weekday>, String> {
+        let wrong = || {
+            format!(
+                "found {:?}, expected days such as mon-fri or mon,tue,thu",
+                shown(text, 60)
+            )
+        };
+        let day = |word: &str| {
+            let word = word.trim().to_lowercase();
+            let found = WORDS.iter().position(|short| *short == word);
+            found.ok_or_else(wrong)
+        };
+        let mut held = Vec::new();
+        for part in text.split(',') {
+            let (first, last) = part.split_once('-').unwrap_or((part, part));
+            let (mut at, last) = (day(first)?, day(last)?);
+            held.push(at);
+            while at != last {
+                at = (at + 1) % 7;
+                held.push(at);
+            }
+        }
+        Ok((0u8..7)
+            .filter(|at| held.contains(&usize::from(*at)))
+            .filter_map(|at| Weekday::try_from(at).ok())
+            .collect())
+    }
+
+    /// Reads a day or days without school: `2026-12-25`, `2026-11-26..2026-11-27`.
+    ///
+    /// # Errors
+    /// What was found and what is expected.
+    pub fn parse_holiday(text: &str) -> Result<(NaiveDate, NaiveDate), String> {
+        let wrong = |expected: &str| format!("found {:?}, expected {expected}", shown(text, 60));
+        let (first, last) = text.split_once("..").unwrap_or((text, text));
+        let date = |text: &str| {
+            text.trim()
+                .parse::<NaiveDate>()
+                .map_err(|_| wrong("a date or two, such as 2026-12-25 or 2026-11-26..2026-11-27"))
+        };
+        let (first, last) = (date(first)?, date(last)?);
+        if last < first {
+            return Err(wrong("the first day before the last"));
+        }
+        if (last - first).num_days() >= LONGEST_HOLIDAY {
+            return Err(wrong("at most 120 days: is the year right?"));
+        }
+        Ok((first, last))
+    }
+
+    /// Returns the holidays, first and last day of each, in order.
+    pub fn holidays(&self) -> &[(NaiveDate, NaiveDate)] {
+        &self.holidays
+    }
+
+    /// Says whose calendar it is.
+    #[must_use]
+    pub fn of(mut self, site: impl Into<String>) -> SchoolCalendar {
+        self.of = site.into();
+        self
+    }
+
+    /// Names the calendar: "school calendar of Quillmere East".
+    pub fn name(&self) -> String {
+        if self.of.is_empty() {
+            "school calendar".to_owned()
+        } else {
+            format!("school calendar of {}", self.of)
+        }
+    }
+
+    /// Takes a holiday away that was added with these days.
+    #[must_use]
+    pub fn without_holiday(mut self, first: NaiveDate, last: NaiveDate) -> SchoolCalendar {
+        self.holidays.retain(|known| *known != (first, last));
+        self
     }
 
     /// Adds a holiday, first and last day included, in whichever order they are given.
     #[must_use]
     pub fn with_holiday(mut self, first: NaiveDate, last: NaiveDate) -> SchoolCalendar {
-        self.holidays.push((first.min(last), first.max(last)));
+        let days = (first.min(last), first.max(last));
+        if !self.holidays.contains(&days) {
+            self.holidays.push(days);
+            self.holidays.sort_unstable();
+        }
         self
     }
 
@@ -60,7 +154,7 @@ impl SchoolCalendar {
         }
         let mut calendar = SchoolCalendar {
             held: std::array::from_fn(|day| held.contains(&day)),
-            holidays: Vec::new(),
+            ..SchoolCalendar::default()
         };
         for part in parts(&[';'], holidays) {
             let (first, last) = part.split_once("..").unwrap_or((&part, &part));
@@ -154,6 +248,38 @@ mod tests {
         assert_eq!(after(&autumn, 7), Some(date("2026-10-23")));
         assert_eq!(after(&autumn, 8), Some(date("2026-11-02")));
         assert_eq!(after(&autumn, 30), Some(date("2026-12-02")));
+    }
+
+    #[test]
+    fn calendars_are_read_as_they_are_written() {
+        let text = ("mon,tue,wed,thu,fri", "2026-11-26..2026-11-27;2026-12-25");
+        let calendar = SchoolCalendar::parse(text.0, text.1).unwrap();
+        assert_eq!(calendar.days_held_text(), text.0);
+        assert_eq!(calendar.holidays_text(), text.1);
+        assert!(!calendar.is_held(date("2026-11-27")) && calendar.is_held(date("2026-11-30")));
+        let weeks =
+            |text| SchoolCalendar::on(&SchoolCalendar::parse_days(text).unwrap()).days_held_text();
+        assert_eq!(weeks("Mon-Fri"), "mon,tue,wed,thu,fri");
+        assert_eq!(weeks("sun-thu"), "mon,tue,wed,thu,sun");
+        assert_eq!(weeks("wed, mon"), "mon,wed");
+        for wrong in ["", "monday", "mon-", "mon..fri"] {
+            assert!(SchoolCalendar::parse_days(wrong).is_err(), "{wrong}");
+        }
+        for wrong in [
+            "",
+            "26 Nov",
+            "2026-11-27..2026-11-26",
+            "2026-11-26..2062-11-27",
+        ] {
+            let error = SchoolCalendar::parse_holiday(wrong).unwrap_err();
+            assert!(error.contains("expected"), "{error}");
+        }
+        assert_eq!(
+            calendar.clone().of("Quillmere East").name(),
+            "school calendar of Quillmere East"
+        );
+        let fewer = calendar.without_holiday(date("2026-12-25"), date("2026-12-25"));
+        assert_eq!(fewer.holidays_text(), "2026-11-26..2026-11-27");
     }
 
     #[test]

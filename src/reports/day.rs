@@ -64,8 +64,10 @@ pub struct DayReportRow {
     pub station: String,
     /// When it was entered, as an ISO instant.
     pub entered_at: String,
-    /// The day the child was tested, where it was entered later.
+    /// The day the child was tested.
     pub tested_on: Option<NaiveDate>,
+    /// Whether it was entered later than that.
+    pub entered_late: bool,
 }
 
 /// The state of the store that a report was made from.
@@ -90,7 +92,7 @@ const BEFORE: [(&str, Kind); 10] = [
     ("attempt", Kind::Code),
 ];
 
-const AFTER: [(&str, Kind); 17] = [
+const AFTER: [(&str, Kind); 18] = [
     ("outcome", Kind::Code),
     ("outcome_note", Kind::Text),
     ("urgency", Kind::Code),
@@ -106,6 +108,7 @@ const AFTER: [(&str, Kind); 17] = [
     ("station", Kind::Text),
     ("entered_at", Kind::Date),
     ("tested_on", Kind::Date),
+    ("entered_late", Kind::Code),
     // Always the last two, so that a report can be told from the store it came from.
     ("store_head", Kind::Code),
     ("store_entries", Kind::Number),
@@ -207,6 +210,7 @@ fn write_row<W: Write>(
     table.cell(&row.station)?;
     table.cell(&row.entered_at)?;
     table.cell(&text(row.tested_on))?;
+    table.cell(if row.entered_late { "yes" } else { "" })?;
     table.cell(&state.head)?;
     table.cell(entries)?;
     table.end_row()

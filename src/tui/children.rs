@@ -105,7 +105,10 @@ impl Children {
         ])];
         match &self.found {
             None => lines.push(Line::styled(
-                cut(" a name, part of one, or an id", columns),
+                cut(
+                    " parts of names, an id, a class, or the last 3 digits or more of the guardian's phone",
+                    columns,
+                ),
                 theme.muted(),
             )),
             Some(found) if found.is_empty() => {
@@ -118,21 +121,24 @@ impl Children {
                     .saturating_sub(room / 2)
                     .min(found.len().saturating_sub(room));
                 for (i, child) in found.iter().enumerate().skip(top).take(room) {
-                    let born = child
-                        .dob
-                        .map_or_else(|| "birth date unknown".into(), spoken);
+                    let born = child.dob.map_or_else(|| "no birth date".into(), spoken);
+                    let why = if child.why.is_empty() {
+                        String::new()
+                    } else {
+                        format!("  by {}", safe(&child.why))
+                    };
                     let (left, right) = ends(
                         &format!(
-                            " {} {}",
+                            " {} {}{why}",
                             if i == self.at { "▸" } else { " " },
                             name(&child.family_name, &child.given_name)
                         ),
                         &format!(
                             "{} {} {} {}",
                             fit(&safe(&child.child_id), 12),
-                            fit(&safe(&child.site), 12),
+                            fit(&safe(&child.site), 8),
                             fit(&safe(&child.class), 6),
-                            fit(&born, 18)
+                            fit(&born, 13)
                         ),
                         columns.saturating_sub(1),
                     );
@@ -263,10 +269,10 @@ fn visit_lines(visit: &VisitView, columns: usize, theme: Theme, out: &mut Vec<Li
         Span::styled(fit(&word, 23), style),
         Span::raw(cut(
             &format!(
-                "{}, {}{}",
+                "{}{}, {}",
+                if visit.late { "late, " } else { "" },
                 safe(&visit.screener),
-                safe(&visit.station),
-                if visit.late { ", entered late" } else { "" }
+                safe(&visit.station)
             ),
             columns.saturating_sub(61),
         )),

@@ -1,6 +1,8 @@
 //! Tests of `actions`: a desk on a store of its own, as a nurse would use it.
 
 mod board;
+mod calendar;
+mod late;
 mod later_visits;
 mod rosters;
 mod worklist;
@@ -512,7 +514,7 @@ fn a_child_added_at_the_table_is_next() {
         ..new
     };
     assert!(desk.add_child(&unborn, &day).is_err(), "born after the day");
-    let mut index = desk.search_index().expect("index");
+    let index = desk.search_index().expect("index");
     assert_eq!(index.find("vega", 5)[0].child_id, added.child_id);
 }
 

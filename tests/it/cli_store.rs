@@ -8,6 +8,7 @@ mod demo;
 mod files;
 mod follow_up;
 mod lock;
+mod programme;
 mod terminal;
 mod whole_day;
 

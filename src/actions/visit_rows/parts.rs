@@ -48,7 +48,7 @@ impl Desk {
                 })
                 .collect(),
             edits: Vec::new(),
-            outcome: self.outcome_row(part, day, child, &outcome),
+            outcome: self.outcome_row(part, day, child, &outcome, self.is_late(day)),
             raise: self.emergency(whole, child, &readings, &outcome)?,
             rules: self.rules_used(day),
             reason: None,

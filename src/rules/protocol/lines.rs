@@ -201,13 +201,13 @@ fn working_days(case: &Case<'_>, days: u32) -> Decision {
     let plain = SchoolCalendar::default();
     let calendar = case.calendar.unwrap_or(&plain);
     let counted = match case.calendar {
-        Some(_) => "counted on the school calendar",
-        None => "counted Monday to Friday: no school calendar with holidays is known",
+        Some(calendar) => calendar.name(),
+        None => "Monday to Friday: no school calendar with holidays is known".to_owned(),
     };
     Decision::new(OutcomeKind::Rescreen, DecidedBy::Criterion)
         .due(case.on.and_then(|on| calendar.days_after(on, days)))
         .note(format!(
-            "a first fail is rescreened within {days} working days, then referred ({counted})"
+            "a first fail is rescreened within {days} working days, {counted}; then referred"
         ))
 }
 

@@ -286,6 +286,11 @@ impl Reads<'_> {
             .next())
     }
 
+    /// Returns the school days of every site that has a row of its own, and of all others (site '').
+    pub fn school_calendars(&self) -> Result<Vec<Calendar>> {
+        self.all()
+    }
+
     /// Returns the pairs of ids that a person found to be one child.
     pub fn same_children(&self) -> Result<Vec<SameChild>> {
         self.all()

@@ -94,6 +94,9 @@ fn signed_lines(
     if let Some(act) = outcome.act_by {
         let _ = write!(headline, ", act by {}", spoken(act));
     }
+    if visit.late {
+        headline.push_str(", entered late");
+    }
     let mut rest = String::new();
     if let Some(now) = &visit.now {
         let _ = write!(rest, "Now it would be {}. ", safe(now));

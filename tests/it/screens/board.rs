@@ -33,6 +33,7 @@ fn info() -> DayInfo {
         protocol: "us-school".into(),
         method: AcuityMethod::Threshold,
         chart: Vec::new(),
+        calendar: None,
     }
 }
 

@@ -289,3 +289,29 @@ fn a_find_has_the_children_to_come_first() {
         .enter()
         .sees("OYELARAN, Tunde");
 }
+
+/// Why a hit matched stands beside it where it is not the name; twins are told apart on the line.
+#[test]
+fn a_find_says_what_matched_and_tells_namesakes_apart() {
+    let roster = "\
+child_id,family_name,given_name,dob,grade,class,site,guardian_phone
+Q-1,Okafor,Ada,2020-09-01,1,1B,QE,555-0190
+Q-2,Okafor,Ada,2019-02-11,2,2A,QE,555-0191
+Q-3,Okafor,Adaeze,2020-09-01,1,1B,QE,555-0190
+Q-4,Petit,Léa,,1,1C,QE,555-4190
+";
+    let mut h = Hands::sit_at(roster, twoline::domain::codes::AcuityMethod::Threshold);
+    h.press(Key::alt('2')).typed("okafor");
+    insta::assert_snapshot!("children_namesakes_80x24", h.screen());
+    h.key(KeyCode::Esc)
+        .typed("190")
+        .sees("Petit, Léa  by phone ends 190")
+        .sees("no birth date");
+    insta::assert_snapshot!("children_phone_120x36", h.screen_at(120, 36));
+    h.key(KeyCode::Esc)
+        .typed("okofor ad")
+        .sees("Okafor, Ada  by a name like okofor");
+    h.key(KeyCode::Esc)
+        .typed("2a")
+        .sees("Okafor, Ada  by class");
+}
