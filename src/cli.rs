@@ -16,8 +16,10 @@ mod init;
 mod judge;
 mod keys;
 mod later;
+mod packet;
 mod record;
 mod report;
+mod restore;
 mod results;
 mod roster;
 mod rules;
@@ -108,6 +110,8 @@ enum Command {
     Report(report::Report),
     Verify(verify::Verify),
     Backup(backup::Backup),
+    Restore(restore::Restore),
+    Packet(packet::Packet),
     Keys(keys::Keys),
     #[command(flatten)]
     Later(later::Later),
@@ -153,6 +157,8 @@ pub fn run(args: impl IntoIterator<Item = OsString>) -> Result<(), Failure> {
         Some(Command::Report(args)) => args.run(global),
         Some(Command::Verify(args)) => args.run(global),
         Some(Command::Backup(args)) => args.run(global),
+        Some(Command::Restore(args)) => args.run(global),
+        Some(Command::Packet(args)) => args.run(global),
         Some(Command::Keys(args)) => args.run(global),
         Some(Command::Later(args)) => args.run(global),
     }

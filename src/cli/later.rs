@@ -15,10 +15,6 @@ pub(super) enum Later {
     Exam(Anything),
     #[command(hide = true)]
     Letters(Anything),
-    #[command(hide = true)]
-    Packet(Anything),
-    #[command(hide = true)]
-    Restore(Anything),
 }
 
 /// Whatever else was written.
@@ -35,8 +31,6 @@ impl Later {
             Later::Step(_) => "step",
             Later::Exam(_) => "exam",
             Later::Letters(_) => "letters",
-            Later::Packet(_) => "packet",
-            Later::Restore(_) => "restore",
         };
         Err(
             Failure::bad_input(format!("{name} is not part of this version"))

@@ -3,6 +3,7 @@
 mod board;
 mod later_visits;
 mod rosters;
+mod stations;
 mod worklist;
 
 use chrono::NaiveDate;

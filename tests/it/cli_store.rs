@@ -7,6 +7,7 @@ mod children;
 mod demo;
 mod files;
 mod lock;
+mod packets;
 mod terminal;
 mod whole_day;
 
