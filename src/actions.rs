@@ -13,6 +13,7 @@ mod error;
 mod follow_up;
 pub mod judge;
 mod judging;
+mod packets;
 mod report;
 mod rescreen;
 mod results;
@@ -35,8 +36,8 @@ mod worklist;
 pub use crate::rules::{CAUTIONS, Library, PassLine, RuleSet, explain, pass_line_of_set, show};
 pub use crate::store::new_id as new_visit_id;
 pub use crate::store::{
-    Damage, Draft, DraftDay, Drafts, ExpectedHead, Head, Info, Kdf, Put, RecoveryKey, Secret,
-    Verified,
+    Damage, Draft, DraftDay, Drafts, ExpectedHead, ForJoin, Fork, Head, Info, Kdf, Merged,
+    PacketInfo, Put, RecoveryKey, Secret, Verified,
 };
 pub use calendar::{CalendarChange, CalendarView};
 pub use desk::{Desk, DeskOptions};
@@ -45,6 +46,7 @@ pub use follow_up::{
     ExamKept, LetterChoice, Printed, PrintedLetter, ReferralDetails, ReferralView, StepView,
 };
 pub use judging::{BenchTests, bench_tests, correction_from_roster, known, pass_line_for, preview};
+pub use packets::{join, packet_info, restore};
 pub use report::Report;
 pub use results::{Different, PlannedVisit, ResultsPlan};
 pub use roster::RosterPlan;

@@ -16,11 +16,12 @@ mod exam;
 mod init;
 mod judge;
 mod keys;
-mod later;
 mod letters;
+mod packet;
 mod record;
 mod refer;
 mod report;
+mod restore;
 mod results;
 mod roster;
 mod rules;
@@ -118,9 +119,9 @@ enum Command {
     Letters(letters::Letters),
     Verify(verify::Verify),
     Backup(backup::Backup),
+    Restore(restore::Restore),
+    Packet(packet::Packet),
     Keys(keys::Keys),
-    #[command(flatten)]
-    Later(later::Later),
 }
 
 /// Parses the arguments and runs the command.
@@ -168,7 +169,8 @@ pub fn run(args: impl IntoIterator<Item = OsString>) -> Result<(), Failure> {
         Some(Command::Letters(args)) => args.run(global),
         Some(Command::Verify(args)) => args.run(global),
         Some(Command::Backup(args)) => args.run(global),
+        Some(Command::Restore(args)) => args.run(global),
+        Some(Command::Packet(args)) => args.run(global),
         Some(Command::Keys(args)) => args.run(global),
-        Some(Command::Later(args)) => args.run(global),
     }
 }

@@ -17,8 +17,10 @@ pub mod key;
 pub mod ledger;
 mod lock;
 mod open;
+mod packet;
 mod project;
 pub mod read;
+mod restore;
 pub mod row;
 mod schema;
 mod upgrade;
@@ -39,6 +41,7 @@ pub use error::{Error, ErrorKind, Result};
 pub use key::{Info, Kdf, RecoveryKey, Secret};
 pub use ledger::{ExpectedHead, Head};
 pub use lock::Holder;
+pub use packet::{ForJoin, Fork, Merged, PacketInfo, info as packet_info};
 pub use read::Reads;
 pub use row::{DayKey, Row};
 pub use verify::{Damage, Verified};
@@ -56,6 +59,21 @@ pub struct New {
     /// How bare acuities are read and shown: `feet` or `metres`.
     pub notation: String,
     /// What opens it.
+    pub secret: Secret,
+    /// How dear a guess is made.
+    pub kdf: Kdf,
+}
+
+/// What a store is made with that joins a programme.
+#[derive(Debug)]
+pub struct Joining<'a> {
+    /// A packet for joining.
+    pub packet: &'a Path,
+    /// What opens it.
+    pub packet_secret: &'a Secret,
+    /// Name of this station.
+    pub station: String,
+    /// What opens the new store.
     pub secret: Secret,
     /// How dear a guess is made.
     pub kdf: Kdf,

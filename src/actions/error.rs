@@ -72,6 +72,7 @@ impl From<crate::store::Error> for ActionError {
             | ErrorKind::Refused
             | ErrorKind::Missing
             | ErrorKind::NotAStore
+            | ErrorKind::NotAPacket
             | ErrorKind::Exists => Kind::BadInput,
             _ => Kind::Failed,
         };

@@ -215,7 +215,7 @@ impl Desk {
 }
 
 /// Returns a name without spaces around it; it must have something to show.
-fn named(what: &str, text: &str) -> Result<String> {
+pub(super) fn named(what: &str, text: &str) -> Result<String> {
     let text = text.trim();
     if text.is_empty() || text.chars().any(crate::domain::text::is_unsafe) {
         return Err(ActionError::bad(format!(

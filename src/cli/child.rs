@@ -5,7 +5,7 @@ use clap::{Args, Subcommand};
 use super::output::{aligned, clean, print_clean};
 use super::record::{outcome_lines, recorded_lines};
 use super::{Failure, Global, open};
-use crate::actions::{ChildHistory, CorrectionView, VisitView};
+use crate::actions::{ChildHistory, CorrectionView, FoundChild, VisitView};
 use crate::clock::Moment;
 
 /// How many hits are listed.
@@ -30,12 +30,51 @@ enum Command {
         /// Child id
         id: String,
     },
+    /// Say that two ids are one child; without ids, list who is probably one
+    ///
+    /// A child who was added at two tables has two ids. The visits of both stay where they were
+    /// recorded.
+    Same {
+        /// The id to go on with
+        #[arg(requires = "same")]
+        stays: Option<String>,
+        /// The other id of the same child
+        same: Option<String>,
+    },
 }
 
 impl Child {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
+        if let Command::Same {
+            stays: Some(stays),
+            same: Some(same),
+        } = &self.command
+        {
+            open::to_sign(global)?.same_child(stays, same)?;
+            return print_clean(&[format!("{same} is the same child as {stays}")]);
+        }
         let desk = open::to_read(global)?;
         match &self.command {
+            Command::Same { .. } => {
+                let pairs = desk.probably_same()?;
+                if pairs.is_empty() {
+                    return print_clean(&["nobody seems to be here under two ids".to_owned()]);
+                }
+                let one = |c: &FoundChild| format!("{} ({})", c.child_id, born(c.dob));
+                let rows: Vec<Vec<String>> = pairs
+                    .iter()
+                    .map(|(a, b)| {
+                        vec![
+                            clean(&format!("{}, {}", a.family_name, a.given_name)),
+                            clean(&one(a)),
+                            clean(&one(b)),
+                        ]
+                    })
+                    .collect();
+                let mut lines = aligned(&rows);
+                lines.push("if two are one child: twoline child same ID OTHER-ID".to_owned());
+                print_clean(&lines)
+            }
             Command::Find { text } => {
                 let mut found = desk.search_index()?.find(text, LISTED + 1);
                 if found.is_empty() {
@@ -136,6 +175,15 @@ fn visit_lines(visit: &VisitView) -> Vec<String> {
         lines.push("  judged:".to_owned());
     }
     lines.extend(recorded_lines(&visit.readings));
+    for differs in &visit.unsettled {
+        lines.push(format!(
+            "  in conflict: {} is {}; settle it: twoline correct {} {}=VALUE --reason TEXT",
+            differs.field.title(),
+            differs.values.join(" or "),
+            visit.id,
+            differs.field.word()
+        ));
+    }
     if let Some(signed) = &visit.outcome {
         match &visit.now {
             Some(now) => lines.push(format!("  signed as {}, now {now}", signed.headline())),

@@ -1,14 +1,16 @@
 //! `twoline init`: makes a store.
 
 use std::io::{IsTerminal, Write, stderr, stdin};
+use std::path::{Path, PathBuf};
 
 use clap::Args;
 use zeroize::Zeroizing;
 
 use super::open::{ask_hidden, folder, from_file, options};
-use super::output::{clean, print_lines, say};
+use super::output::{busy, clean, print_lines, say};
+use super::packet::PacketPassphrase;
 use super::{Failure, Global};
-use crate::actions::{Kdf, NewStore, RecoveryKey, Secret, init};
+use crate::actions::{Desk, Kdf, NewStore, RecoveryKey, Secret, init, join, packet_info};
 use crate::domain::acuity::Notation;
 
 /// Make a store
@@ -18,28 +20,29 @@ use crate::domain::acuity::Notation;
 #[derive(Debug, Args)]
 pub(super) struct Init {
     /// Name of the programme
-    #[arg(long, value_name = "NAME")]
-    programme: String,
+    #[arg(long, value_name = "NAME", required_unless_present = "join")]
+    programme: Option<String>,
     /// Name of this table or laptop
     #[arg(long, value_name = "NAME")]
     station: String,
     /// What a bare acuity number stands under: 40 is 20/40, or 12 is 6/12
     #[arg(long, value_parser = ["feet", "metres"], default_value = "feet")]
     notation: String,
-    /// Join the programme of a packet (not part of this version)
-    #[arg(long, value_name = "PACKET", hide = true)]
-    join: Option<String>,
+    /// Join the programme of a packet that was written with --for-join
+    #[arg(long, value_name = "PACKET", conflicts_with_all = ["programme", "notation"])]
+    join: Option<PathBuf>,
+    #[command(flatten)]
+    packet_passphrase: PacketPassphrase,
 }
 
 impl Init {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
-        if self.join.is_some() {
-            return Err(Failure::bad_input("--join is not part of this version")
-                .hint("without it init makes a programme of its own"));
-        }
         let dir = folder(global)?;
+        if let Some(packet) = &self.join {
+            return self.join(global, &dir, packet);
+        }
         let new = NewStore {
-            programme: self.programme.clone(),
+            programme: self.programme.clone().unwrap_or_default(),
             station: self.station.clone(),
             notation: if self.notation == "metres" {
                 Notation::Metres
@@ -50,22 +53,61 @@ impl Init {
             kdf: Kdf::Calibrated,
         };
         let (desk, recovery) = init(&dir, new, &options(global))?;
-        let mut lines = vec![format!(
-            "made the store of {}, station {}, in {}",
-            clean(&desk.programme()),
-            clean(&desk.station()),
-            clean(&dir.to_string_lossy())
-        )];
-        if let Some(key) = &recovery {
-            lines.extend([
-                "recovery key, shown this once; write it down and keep it away from this computer:"
-                    .to_owned(),
-                format!("  {}", &*key.grouped()),
-            ]);
-        }
-        print_lines(&lines)?;
-        recovery.as_ref().map_or(Ok(()), typed_back)
+        made(&desk, &dir, recovery.as_ref(), Vec::new())
     }
+
+    fn join(&self, global: &Global, dir: &Path, packet: &Path) -> Result<(), Failure> {
+        let info = packet_info(packet)?;
+        let (packet_secret, secret) = if info.protected {
+            let packet_secret = if info.joinable {
+                self.packet_passphrase.of_packet()?
+            } else {
+                Secret::None
+            };
+            (packet_secret, chosen(global)?)
+        } else {
+            (Secret::None, Secret::None)
+        };
+        let (desk, recovery, merged) = busy("reading the packet", || {
+            join(
+                dir,
+                packet,
+                &packet_secret,
+                (&self.station, secret, Kdf::Calibrated),
+                &options(global),
+            )
+        })?;
+        let mut lines = vec![format!("{} entries came with the packet", merged.entries)];
+        if !info.protected {
+            lines.push("demo: not protected".to_owned());
+        }
+        made(&desk, dir, recovery.as_ref(), lines)
+    }
+}
+
+/// Says what was made, and shows the recovery key once.
+fn made(
+    desk: &Desk,
+    dir: &Path,
+    recovery: Option<&RecoveryKey>,
+    more: Vec<String>,
+) -> Result<(), Failure> {
+    let mut lines = vec![format!(
+        "made the store of {}, station {}, in {}",
+        clean(&desk.programme()),
+        clean(&desk.station()),
+        clean(&dir.to_string_lossy())
+    )];
+    lines.extend(more);
+    if let Some(key) = recovery {
+        lines.extend([
+            "recovery key, shown this once; write it down and keep it away from this computer:"
+                .to_owned(),
+            format!("  {}", &*key.grouped()),
+        ]);
+    }
+    print_lines(&lines)?;
+    recovery.map_or(Ok(()), typed_back)
 }
 
 /// Returns the chosen passphrase: from the file, or typed twice.

@@ -101,15 +101,19 @@ fn found(global: &Global) -> Result<(PathBuf, Secret), Failure> {
             "make one with twoline init, try twoline demo, or name its folder with --store DIR",
         ));
     };
-    let secret = if info.protected {
-        secret(
-            global,
-            &format!("Passphrase of {}: ", clean(&info.programme)),
-        )?
-    } else {
-        Secret::None
-    };
+    let secret = secret_of(global, &info)?;
     Ok((dir, secret))
+}
+
+/// Returns what opens a store: from the passphrase file, or asked for; nothing where nothing protects it.
+pub(super) fn secret_of(global: &Global, info: &actions::Info) -> Result<Secret, Failure> {
+    if !info.protected {
+        return Ok(Secret::None);
+    }
+    secret(
+        global,
+        &format!("Passphrase of {}: ", clean(&info.programme)),
+    )
 }
 
 /// Returns the secret from the passphrase file, or asks for it on the terminal.

@@ -1,10 +1,11 @@
 //! Chains: each belongs to one installation of one store.
 
-use rusqlite::params;
+use rusqlite::{Connection, params};
 use uuid::Uuid;
 
 use super::cell::Value;
 use super::error::{Error, ErrorKind, Result};
+use super::key::RawKey;
 use super::row::Chain;
 use super::{Author, Store, new_id, write};
 
@@ -35,14 +36,7 @@ impl Store {
         if !self.is_writable() {
             return Err(Error::read_only(&self.dir));
         }
-        let follows: (i64, Vec<u8>) = self
-            .conn
-            .query_row(
-                "SELECT seq, tx_hash FROM chain_current WHERE chain = ?1",
-                [self.chain.cell()],
-                |r| Ok((r.get(0)?, r.get(1)?)),
-            )
-            .map_err(|_| Error::new(ErrorKind::Damaged, "this store's own chain is not in it"))?;
+        let follows = tip(&self.conn, self.chain)?;
         let chain = new_id();
         let old = self.chain;
         write::append(&mut self.conn, chain, author, |tx| {
@@ -61,9 +55,19 @@ impl Store {
     }
 }
 
+/// Returns the end of a store's own chain: its number and hash.
+pub(super) fn tip(conn: &Connection, chain: Uuid) -> Result<(i64, Vec<u8>)> {
+    conn.query_row(
+        "SELECT seq, tx_hash FROM chain_current WHERE chain = ?1",
+        [chain.cell()],
+        |r| Ok((r.get(0)?, r.get(1)?)),
+    )
+    .map_err(|_| Error::new(ErrorKind::Damaged, "this store's own chain is not in it"))
+}
+
 impl write::Tx<'_> {
     /// Notes which chain this installation writes.
-    fn write_here(&self, chain: Uuid) -> Result<()> {
+    pub(super) fn write_here(&self, chain: Uuid) -> Result<()> {
         self.conn()
             .execute("UPDATE here SET chain = ?1", params![chain.cell()])?;
         Ok(())
@@ -75,10 +79,16 @@ impl write::Tx<'_> {
         programme: Uuid,
         station: Uuid,
         chain: Uuid,
+        packet_key: &RawKey,
     ) -> Result<()> {
         self.conn().execute(
-            "INSERT INTO here (one, programme, station, chain) VALUES (1, ?1, ?2, ?3)",
-            params![programme.cell(), station.cell(), chain.cell()],
+            "INSERT INTO here (one, programme, station, chain, packet_key) VALUES (1, ?1, ?2, ?3, ?4)",
+            params![
+                programme.cell(),
+                station.cell(),
+                chain.cell(),
+                &packet_key[..]
+            ],
         )?;
         Ok(())
     }

@@ -15,6 +15,8 @@ pub type Result<T> = std::result::Result<T, Error>;
 pub enum ErrorKind {
     /// There is no store in the folder.
     NotAStore,
+    /// A file is not a packet.
+    NotAPacket,
     /// There is one already.
     Exists,
     /// The passphrase or recovery key does not open it.

@@ -52,6 +52,16 @@ pub(super) fn private_file(path: &Path) -> Result<File> {
     Ok(file)
 }
 
+/// Makes a new file, or empties one, that only its owner can read where the disk knows of owners.
+pub(super) fn new_file(path: &Path) -> Result<File> {
+    options()
+        .write(true)
+        .create(true)
+        .truncate(true)
+        .open(path)
+        .map_err(|e| Error::file(path, "write", e))
+}
+
 /// Writes a file aside, syncs it and renames it into place, so that it is whole or as it was.
 pub(super) fn write_whole(path: &Path, bytes: &[u8]) -> Result<()> {
     let aside = path.with_extension(format!("{}.new", std::process::id()));

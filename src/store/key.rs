@@ -19,7 +19,7 @@ use zeroize::{Zeroize, Zeroizing};
 
 use super::error::{Error, ErrorKind, Result};
 use super::ledger::{hex, unhex};
-use super::{Store, files};
+use super::{ForJoin, Store, files};
 
 pub use passphrase::check as check_passphrase;
 pub use recovery::RecoveryKey;
@@ -232,6 +232,31 @@ impl KeyFile {
         Ok((file, recovery))
     }
 
+    /// Makes what opens a packet: nothing for its own programme, which has the key, and for others
+    /// what `join` says.
+    pub(super) fn for_packet(of: &Info, join: &ForJoin, key: &RawKey) -> Result<KeyFile> {
+        let nothing = KeyFile {
+            format: FORMAT.to_owned(),
+            version: VERSION,
+            programme: of.programme.clone(),
+            programme_id: of.programme_id.to_string(),
+            store_id: super::new_id().to_string(),
+            slot: Vec::new(),
+        };
+        let ForJoin::With(secret, kdf) = join else {
+            return Ok(nothing);
+        };
+        let (mut file, _) = KeyFile::make(&of.programme, of.programme_id, secret, *kdf, key)?;
+        // Nobody keeps a recovery key of a packet.
+        file.slot.retain(|slot| slot.kind != "recovery");
+        Ok(file)
+    }
+
+    /// Says whether any secret opens it.
+    pub(super) fn opens(&self) -> bool {
+        !self.slot.is_empty()
+    }
+
     pub(super) fn read(dir: &Path) -> Result<KeyFile> {
         let path = dir.join(FILE);
         let text = std::fs::read_to_string(&path).map_err(|e| match e.kind() {
@@ -364,7 +389,7 @@ impl KeyFile {
     }
 }
 
-fn raw(bytes: &[u8]) -> Result<RawKey> {
+pub(super) fn raw(bytes: &[u8]) -> Result<RawKey> {
     let mut key = Zeroizing::new([0; 32]);
     if bytes.len() != key.len() {
         return Err(broken("a key has a wrong length"));

@@ -10,7 +10,10 @@ use super::error::{Error, ErrorKind, Result};
 use super::key::{KeyFile, RawKey, RecoveryKey, Secret};
 use super::ledger::hex;
 use super::row::{Chain, Programme, Setting, Station};
-use super::{Access, Author, New, Store, files, lock, new_id, project, schema, upgrade, write};
+use super::{
+    Access, Author, Joining, Kdf, Merged, New, Store, files, lock, new_id, packet, project, schema,
+    upgrade, write,
+};
 
 /// Name of the database.
 pub(super) const FILE: &str = "store.db";
@@ -22,6 +25,8 @@ pub(super) enum For {
     Entries,
     /// Reading only.
     Reading,
+    /// Reading a packet, beside the store itself: less memory.
+    Packet,
     /// Drafts: a power loss may cost the last second.
     Drafts,
 }
@@ -29,7 +34,7 @@ pub(super) enum For {
 /// Opens a keyed connection, with the pragmas in the order they must have.
 pub(super) fn connect(path: &Path, key: &RawKey, purpose: For) -> Result<Connection> {
     let flags = OpenFlags::SQLITE_OPEN_NO_MUTEX
-        | if purpose == For::Reading {
+        | if matches!(purpose, For::Reading | For::Packet) {
             OpenFlags::SQLITE_OPEN_READ_ONLY
         } else {
             files::private_file(path)?;
@@ -53,17 +58,22 @@ fn keyed(conn: &Connection, key: &RawKey, purpose: For) -> rusqlite::Result<()> 
     ] {
         pragma(conn, one)?;
     }
-    if purpose != For::Reading {
+    if matches!(purpose, For::Entries | For::Drafts) {
         pragma(conn, "journal_mode = WAL")?;
     }
     pragma(
         conn,
         match purpose {
             For::Drafts => "synchronous = NORMAL",
-            For::Entries | For::Reading => "synchronous = FULL",
+            For::Entries | For::Reading | For::Packet => "synchronous = FULL",
         },
     )?;
-    pragma(conn, "cache_size = -65536")?;
+    let cache = if purpose == For::Packet {
+        "cache_size = -8192"
+    } else {
+        "cache_size = -65536"
+    };
+    pragma(conn, cache)?;
     // A large import leaves no large log behind.
     pragma(conn, "journal_size_limit = 67108864")?;
     conn.busy_timeout(std::time::Duration::from_secs(5))?;
@@ -108,14 +118,22 @@ fn refuse_taken(dir: &Path) -> Result<()> {
 }
 
 /// The first entries of a store.
-struct First {
-    programme: Programme,
+struct First<'a> {
+    programme_id: Uuid,
+    /// None where a packet brings it.
+    programme: Option<(Programme, Setting)>,
     station: Station,
-    notation: Setting,
+    /// What is taken over before anything else, and the key of packets.
+    packet: Option<(&'a Path, &'a Secret)>,
 }
 
-impl First {
-    fn make(&self, dir: &Path, raw_key: &RawKey, file: &KeyFile) -> Result<Store> {
+impl First<'_> {
+    fn make(
+        &self,
+        dir: &Path,
+        raw_key: &RawKey,
+        file: &KeyFile,
+    ) -> Result<(Store, Option<Merged>)> {
         files::private_dir(dir)?;
         files::refuse_network(dir)?;
         let lock = lock::take(dir, std::time::Duration::ZERO)?;
@@ -128,32 +146,41 @@ impl First {
                 let _ = std::fs::remove_file(dir.join(name));
             }
         }
-        let (conn, chain) = made?;
-        Ok(Store {
+        let (conn, chain, merged) = made?;
+        let store = Store {
             conn,
             dir: dir.to_owned(),
             info: file.info()?,
             raw_key: raw_key.clone(),
             lock: Some(lock),
-            programme: self.programme.programme_id,
+            programme: self.programme_id,
             station: self.station.station_id,
             chain,
-        })
+        };
+        Ok((store, merged))
     }
 
     /// Writes the database and then the key file, which makes it a store.
-    fn fill(&self, dir: &Path, raw_key: &RawKey, file: &KeyFile) -> Result<(Connection, Uuid)> {
+    fn fill(
+        &self,
+        dir: &Path,
+        raw_key: &RawKey,
+        file: &KeyFile,
+    ) -> Result<(Connection, Uuid, Option<Merged>)> {
         let mut conn = connect(&dir.join(FILE), raw_key, For::Entries)?;
         pragma(
             &conn,
             &format!("application_id = {}", schema::APPLICATION_ID),
         )?;
         schema::migrate(&mut conn, |_| Ok(()))?;
-        let (programme, station, chain) = (
-            self.programme.programme_id,
-            self.station.station_id,
-            new_id(),
-        );
+        let (packet_key, merged) = match self.packet {
+            None => (packet::new_key()?, None),
+            Some((from, secret)) => {
+                let (key, merged) = packet::begin_with(&mut conn, dir, from, secret)?;
+                (key, Some(merged))
+            }
+        };
+        let (station, chain) = (self.station.station_id, new_id());
         let author = Author {
             screener: None,
             at: crate::clock::now(),
@@ -167,14 +194,51 @@ impl First {
                 follows_seq: None,
                 follows_hash: None,
             })?;
-            tx.add(&self.programme)?;
+            if let Some((programme, _)) = &self.programme {
+                tx.add(programme)?;
+            }
             tx.add(&self.station)?;
-            tx.add(&self.notation)?;
-            tx.write_first_here(programme, station, chain)
+            if let Some((_, notation)) = &self.programme {
+                tx.add(notation)?;
+            }
+            tx.write_first_here(self.programme_id, station, chain, &packet_key)
         })?;
         // The key file last: a folder without one is no store.
         file.write(dir)?;
-        Ok((conn, chain))
+        Ok((conn, chain, merged))
+    }
+}
+
+impl First<'_> {
+    /// Makes the key and the store.
+    fn begin(
+        &self,
+        dir: &Path,
+        programme: &str,
+        secret: &Secret,
+        kdf: Kdf,
+    ) -> Result<(Store, Option<RecoveryKey>, Option<Merged>)> {
+        let raw_key = super::key::random::<32>()?;
+        // Refuses a weak passphrase before anything is made.
+        let (file, recovery) = KeyFile::make(programme, self.programme_id, secret, kdf, &raw_key)?;
+        let stood = dir.exists();
+        let made = self.make(dir, &raw_key, &file);
+        if made.is_err() && !stood {
+            // Stays where another process has put something in it.
+            let _ = std::fs::remove_dir(dir);
+        }
+        made.map(|(store, merged)| (store, recovery, merged))
+    }
+}
+
+fn new_station(name: String) -> Station {
+    Station {
+        id: new_id(),
+        station_id: new_id(),
+        name,
+        chart_id: None,
+        task: None,
+        masked: None,
     }
 }
 
@@ -194,36 +258,50 @@ impl Store {
             kdf,
         } = new;
         let programme_id = programme_id.unwrap_or_else(new_id);
-        let raw_key = super::key::random::<32>()?;
-        // Refuses a weak passphrase before anything is made.
-        let (file, recovery) = KeyFile::make(&programme, programme_id, &secret, kdf, &raw_key)?;
         let first = First {
-            programme: Programme {
-                id: new_id(),
-                programme_id,
-                name: programme,
-            },
-            station: Station {
-                id: new_id(),
-                station_id: new_id(),
-                name: station,
-                chart_id: None,
-                task: None,
-                masked: None,
-            },
-            notation: Setting {
-                id: new_id(),
-                name: "notation".to_owned(),
-                value: notation,
-            },
+            programme_id,
+            programme: Some((
+                Programme {
+                    id: new_id(),
+                    programme_id,
+                    name: programme.clone(),
+                },
+                Setting {
+                    id: new_id(),
+                    name: "notation".to_owned(),
+                    value: notation,
+                },
+            )),
+            station: new_station(station),
+            packet: None,
         };
-        let stood = dir.exists();
-        let made = first.make(dir, &raw_key, &file);
-        if made.is_err() && !stood {
-            // Stays where another process has put something in it.
-            let _ = std::fs::remove_dir(dir);
+        let (store, recovery, _) = first.begin(dir, &programme, &secret, kdf)?;
+        Ok((store, recovery))
+    }
+
+    /// Makes a store of a packet: a further station of its programme, with all that the packet holds.
+    ///
+    /// Returns the recovery key, to be printed once, where the store is protected.
+    pub fn join(dir: &Path, new: Joining<'_>) -> Result<(Store, Option<RecoveryKey>, Merged)> {
+        files::keep_private();
+        refuse_taken(dir)?;
+        let info = packet::info(new.packet)?;
+        if !info.joinable {
+            return Err(Error::new(
+                ErrorKind::Refused,
+                "no new store can be made of this packet: it is for stores that joined already",
+            )
+            .with_hint("write one for joining: twoline packet write FILE --for-join"));
         }
-        made.map(|store| (store, recovery))
+        let first = First {
+            programme_id: info.programme_id,
+            programme: None,
+            station: new_station(new.station),
+            packet: Some((new.packet, new.packet_secret)),
+        };
+        let (store, recovery, merged) = first.begin(dir, &info.programme, &new.secret, new.kdf)?;
+        let merged = merged.ok_or_else(|| Error::new(ErrorKind::Engine, "no packet was read"))?;
+        Ok((store, recovery, merged))
     }
 
     /// Opens a store.

@@ -255,14 +255,14 @@ pub(super) fn visits(conn: &Connection, touched: &BTreeSet<Uuid>) -> Result<()> 
 }
 
 /// Moves a chain from one transaction (none at its start) to the next; where another followed it
-/// already this is a second end.
+/// already this is a second end. Returns whether it is.
 pub(super) fn chain(
     conn: &Connection,
     chain: Uuid,
     prev: Option<&[u8]>,
     next: (i64, &[u8]),
     entries: i64,
-) -> Result<()> {
+) -> Result<bool> {
     let (seq, hash) = next;
     let moved = conn
         .prepare_cached(
@@ -270,11 +270,15 @@ pub(super) fn chain(
              WHERE chain = ?1 AND tx_hash = ?2",
         )?
         .execute(params![chain.cell(), prev, seq, hash, entries])?;
+    let mut forked = false;
     if moved == 0 {
+        forked = conn
+            .prepare_cached("SELECT EXISTS (SELECT 1 FROM chain_current WHERE chain = ?1)")?
+            .query_row([chain.cell()], |r| r.get(0))?;
         conn.prepare_cached(
             "INSERT INTO chain_current (chain, seq, tx_hash, entries) VALUES (?1, ?2, ?3, ?4)",
         )?
         .execute(params![chain.cell(), seq, hash, entries])?;
     }
-    Ok(())
+    Ok(forked)
 }

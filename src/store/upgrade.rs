@@ -9,7 +9,7 @@ use super::backup::{copy_database, copy_key_file};
 use super::error::{Error, ErrorKind, Result};
 use super::key::RawKey;
 use super::open::{FILE, For, connect};
-use super::{files, schema, verify};
+use super::{files, packet, schema, verify};
 
 /// Says what to do about an older store that was opened for reading only.
 pub(super) fn must_be_written(version: usize) -> Error {
@@ -35,7 +35,12 @@ pub(super) fn run(dir: &Path, conn: &mut Connection, key: &RawKey, from: usize) 
         let _ = fs::remove_dir_all(&copy);
     }
     made?;
+    let packet_key = packet::new_key()?;
     schema::migrate(conn, |conn| {
+        conn.execute(
+            "UPDATE here SET packet_key = coalesce(packet_key, ?1)",
+            [&packet_key[..]],
+        )?;
         verify::uncommitted(conn)?;
         Ok(())
     })

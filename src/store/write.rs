@@ -91,11 +91,28 @@ pub(super) fn append<T>(
     write: impl FnOnce(&mut Tx<'_>) -> Result<T>,
 ) -> Result<T> {
     let sql = conn.transaction_with_behavior(TransactionBehavior::Immediate)?;
+    let (value, sealed) = written(&sql, chain, author, write)?;
+    let Some((seq, tx_hash)) = sealed else {
+        return Ok(value);
+    };
+    let committed = sql.commit();
+    confirmed(conn, committed, chain, seq, &tx_hash)?;
+    Ok(value)
+}
+
+/// Writes a transaction of a chain without committing it; returns its number and hash, unless nothing
+/// was added.
+pub(super) fn written<T>(
+    sql: &Connection,
+    chain: Uuid,
+    author: &Author,
+    write: impl FnOnce(&mut Tx<'_>) -> Result<T>,
+) -> Result<(T, Option<(i64, ledger::Hash)>)> {
     let mut tx = Tx {
         number: sql
             .prepare_cached("SELECT coalesce(max(tx), 0) + 1 FROM tx")?
             .query_one([], |r| r.get(0))?,
-        conn: &sql,
+        conn: sql,
         author: *author,
         rows: TxRows::default(),
         salts: Salts {
@@ -108,16 +125,25 @@ pub(super) fn append<T>(
     };
     let value = write(&mut tx)?;
     if tx.rows.count() == 0 {
-        return Ok(value);
+        return Ok((value, None));
     }
-    let (seq, tx_hash) = tx.seal(chain)?;
-    drop(tx);
-    let Err(error) = sql.commit() else {
-        return Ok(value);
+    let sealed = tx.seal(chain)?;
+    Ok((value, Some(sealed)))
+}
+
+/// Says whether a commit was kept: the engine may or may not have, so look, never assume.
+pub(super) fn confirmed(
+    conn: &Connection,
+    committed: rusqlite::Result<()>,
+    chain: Uuid,
+    seq: i64,
+    tx_hash: &[u8],
+) -> Result<()> {
+    let Err(error) = committed else {
+        return Ok(());
     };
-    // The engine may or may not have kept it: look, never assume.
-    if found(conn, chain, seq, &tx_hash) {
-        return Ok(value);
+    if found(conn, chain, seq, tx_hash) {
+        return Ok(());
     }
     Err(match error.sqlite_error_code() {
         Some(rusqlite::ErrorCode::DiskFull) => Error::not_saved_disk_full(),
@@ -125,7 +151,7 @@ pub(super) fn append<T>(
     })
 }
 
-fn found(conn: &Connection, chain: Uuid, seq: i64, tx_hash: &ledger::Hash) -> bool {
+fn found(conn: &Connection, chain: Uuid, seq: i64, tx_hash: &[u8]) -> bool {
     if !conn.is_autocommit() {
         let _ = conn.execute_batch("ROLLBACK");
     }
@@ -133,7 +159,7 @@ fn found(conn: &Connection, chain: Uuid, seq: i64, tx_hash: &ledger::Hash) -> bo
         && conn
             .query_row(
                 "SELECT tx_hash = ?3 FROM tx WHERE chain = ?1 AND seq = ?2",
-                params![chain.cell(), seq, &tx_hash[..]],
+                params![chain.cell(), seq, tx_hash],
                 |r| r.get(0),
             )
             .unwrap_or(false)

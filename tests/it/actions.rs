@@ -5,6 +5,7 @@ mod calendar;
 mod late;
 mod later_visits;
 mod rosters;
+mod stations;
 mod worklist;
 
 use chrono::NaiveDate;

@@ -9,6 +9,7 @@ mod files;
 mod follow_up;
 mod lock;
 mod programme;
+mod packets;
 mod terminal;
 mod whole_day;
 

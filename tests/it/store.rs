@@ -7,6 +7,7 @@ mod key;
 mod ledger;
 mod older;
 mod open;
+mod packets;
 mod random;
 mod reads;
 mod support;

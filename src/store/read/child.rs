@@ -110,6 +110,24 @@ impl Reads<'_> {
             .transpose()
     }
 
+    /// Returns pairs of children with the same folded name, at least one of them added at a table.
+    pub fn same_names_as_provisional(&self) -> Result<Vec<(ChildNow, ChildNow)>> {
+        let mut found = self.conn.prepare_cached(&format!(
+            "SELECT {CHILD_NOW}, {} FROM child_current c JOIN child_current d ON d.search = c.search \
+             WHERE d.provisional AND c.child_id <> d.child_id \
+             AND (NOT c.provisional OR c.child_id < d.child_id) \
+             ORDER BY c.search, c.child_id, d.child_id",
+            CHILD_NOW.replace("c.", "d.")
+        ))?;
+        let mut rows = found.query([])?;
+        let mut out = Vec::new();
+        while let Some(row) = rows.next()? {
+            let c = &mut Columns::of(row, "child_current");
+            out.push((ChildNow::take(c)?, ChildNow::take(c)?));
+        }
+        Ok(out)
+    }
+
     /// Returns a child with everything ever recorded of it.
     pub fn child_history(&self, child_id: &str) -> Result<Option<ChildHistory>> {
         let Some(now) = self.child(child_id)? else {

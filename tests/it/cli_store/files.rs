@@ -345,7 +345,7 @@ fn what_is_refused_leaves_the_head_as_it_was() {
                 "--join",
                 "packet",
             ],
-            "not part of this version",
+            "cannot be used with",
         ),
         (vec!["verify", "--head", "xyz"], "not a head"),
     ] {
