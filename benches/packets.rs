@@ -196,6 +196,7 @@ fn signed(desk: &mut Desk, children: std::ops::Range<usize>, readings: &Readings
             attempt: Attempt::First,
             visit: new_visit_id(),
             readings: readings.clone(),
+            remarks: Vec::new(),
         };
         desk.sign(request).expect("signed");
     }

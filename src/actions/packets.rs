@@ -116,5 +116,6 @@ fn found(child: ChildNow) -> FoundChild {
         dob: child.dob,
         site: child.site.unwrap_or_default(),
         class: child.class.unwrap_or_default(),
+        why: String::new(),
     }
 }

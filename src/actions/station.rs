@@ -47,7 +47,7 @@ pub struct StationChange {
 impl Desk {
     /// Returns what this station is set to.
     pub fn station_role(&self) -> Result<StationRole> {
-        let Some(station) = self.here()? else {
+        let Some(station) = self.this_station()? else {
             return Ok(StationRole::default());
         };
         let charts = self.read().charts()?;
@@ -72,7 +72,7 @@ impl Desk {
     /// # Errors
     /// Bad input for a chart that the programme does not have.
     pub fn set_station(&mut self, change: &StationChange) -> Result<Put> {
-        let Some(mut station) = self.here()? else {
+        let Some(mut station) = self.this_station()? else {
             return Err(ActionError::failed("this store does not know its station"));
         };
         if let Some(task) = change.task {
@@ -94,7 +94,7 @@ impl Desk {
             .append(&author, |tx| tx.put(station, "station set"))?)
     }
 
-    fn here(&self) -> Result<Option<Station>> {
+    fn this_station(&self) -> Result<Option<Station>> {
         Ok(self.stations()?.remove(&self.store.station_id()))
     }
 

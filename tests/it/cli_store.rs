@@ -8,8 +8,8 @@ mod demo;
 mod files;
 mod follow_up;
 mod lock;
-mod programme;
 mod packets;
+mod programme;
 mod terminal;
 mod whole_day;
 
