@@ -47,7 +47,7 @@ fn main() {
         ours.as_secs_f64() / base.as_secs_f64()
     );
 
-    let mut index = timed("search index", || desk.search_index().expect("an index"));
+    let index = timed("search index", || desk.search_index().expect("an index"));
     for typed in ["a", "oka", "okafor 12", "q-000", "bao okafr"] {
         let start = Instant::now();
         let hits = index.find(typed, 12).len();

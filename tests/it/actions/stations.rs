@@ -123,6 +123,7 @@ impl Stations {
             attempt: Attempt::First,
             visit: new_visit_id(),
             readings,
+            remarks: Vec::new(),
         };
         self.desks[at].sign(request).is_ok()
     }
