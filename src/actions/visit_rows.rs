@@ -1,6 +1,7 @@
 //! The entries that a signature, a further try or a correction consists of.
 
 mod parts;
+mod tries;
 
 use uuid::Uuid;
 
@@ -12,13 +13,15 @@ use crate::clock;
 use crate::domain::codes::AcuityMethod;
 use crate::domain::field::{Field, FieldError};
 use crate::domain::outcome::{Outcome, RiskKind, Urgency};
-use crate::domain::readings::{AcuityResult, Eyes, ReadingContext, Readings};
+use crate::domain::readings::{ReadingContext, Readings};
 use crate::rules::explain;
 use crate::store::read::ReadingNow;
 use crate::store::row::{self, Reading, RuleSetUsed, UrgentAction, Visit};
 use crate::store::{Row, Tx, new_id};
 
 use parts::edits_of;
+pub use tries::judged;
+pub(super) use tries::tries_of;
 
 /// What separates list items in a stored cell.
 const SEPARATOR: &str = ";";
@@ -488,72 +491,6 @@ pub(super) fn take_back(tx: &mut Tx<'_>, visit: Uuid, reason: &str) -> crate::st
         tx.supersede::<Visit>(&visits, None, reason)?;
     }
     Ok(())
-}
-
-/// Returns the tries of a visit, oldest first; values that differ are left out.
-pub(super) fn tries_of(readings: &[ReadingNow]) -> Result<Vec<Readings>> {
-    let count = readings.iter().map(|r| r.try_no).max().unwrap_or(0);
-    let mut tries = vec![Readings::default(); count as usize];
-    let mut sorted: Vec<&ReadingNow> = readings.iter().filter(|r| !r.conflict).collect();
-    // Letters and method decide what an acuity means: the field list has them first.
-    sorted.sort_by_key(|r| r.field);
-    for reading in sorted {
-        let place = usize::try_from(reading.try_no - 1).unwrap_or(0);
-        tries[place]
-            .set(reading.field, &reading.value, ReadingContext::default())
-            .map_err(|e| ActionError::failed(format!("a stored value cannot be read: {e}")))?;
-    }
-    Ok(tries)
-}
-
-/// Returns what is judged of several tries: the distance acuity of the latest complete try, else the
-/// latest that each eye read, and the latest of everything else.
-pub fn judged(tries: &[Readings]) -> Readings {
-    let Some(last) = tries.last() else {
-        return Readings::default();
-    };
-    let mut out = Readings::default();
-    for readings in tries {
-        for (field, value) in readings.recorded() {
-            // Canonical text of a typed value reads back to that value.
-            let _ = out.set(field, &value, ReadingContext::default());
-        }
-    }
-    let complete = |r: &&Readings| {
-        r.distance
-            .both()
-            .iter()
-            .all(|eye| matches!(eye, Some(AcuityResult::Read(_))))
-    };
-    let whole = tries.iter().rev().find(complete);
-    let chart = whole.unwrap_or(last);
-    Readings {
-        // A try of one eye does not undo what the other eye read before it.
-        distance: whole.map_or_else(
-            || Eyes {
-                right: latest_read(tries, |eyes| eyes.right),
-                left: latest_read(tries, |eyes| eyes.left),
-            },
-            |whole| whole.distance,
-        ),
-        distance_both: chart.distance_both,
-        testable: chart.testable,
-        not_testable_reason: chart.not_testable_reason,
-        ..out
-    }
-}
-
-/// Returns the latest acuity that an eye read, else the latest word about it.
-fn latest_read(
-    tries: &[Readings],
-    eye: impl Fn(Eyes<Option<AcuityResult>>) -> Option<AcuityResult>,
-) -> Option<AcuityResult> {
-    let results: Vec<AcuityResult> = tries.iter().rev().filter_map(|r| eye(r.distance)).collect();
-    results
-        .iter()
-        .find(|result| matches!(result, AcuityResult::Read(_)))
-        .or(results.first())
-        .copied()
 }
 
 fn emergency_words(readings: &Readings, outcome: &Outcome) -> String {

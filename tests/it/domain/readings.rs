@@ -5,6 +5,7 @@ use twoline::domain::acuity::{Line, Notation, Step};
 use twoline::domain::codes::{History, SignKind};
 use twoline::domain::field::Field;
 use twoline::domain::readings::{ReadingContext, Readings};
+use twoline::domain::text::shown;
 
 const PLAIN: ReadingContext = ReadingContext {
     bare: None,
@@ -126,7 +127,7 @@ fn every_field_in_and_out() {
                 let why = readings
                     .set(field, bad, PLAIN)
                     .expect_err(&format!("{}={bad}", field.word()));
-                assert_eq!((why.field, why.found.as_str()), (field, *bad));
+                assert_eq!((why.field, why.found), (field, shown(bad, 40)));
                 assert!(!why.expected.is_empty());
                 assert_eq!(
                     readings.get(field).as_deref(),

@@ -112,7 +112,7 @@ fn a_field_of_five_megabytes_is_refused_and_not_shown() {
 
 #[test]
 fn rows_and_lines_differ_below_a_cell_with_a_line_break() {
-    let bytes = b"child_id,note,distance_right\r\nA,\"two\r\nlines\",20/20\r\n\r\nB,,hello\r\n";
+    let bytes = b"child_id,remark,distance_right\r\nA,\"two\r\nlines\",20/20\r\n\r\nB,,hello\r\n";
     let options = Options {
         pass_through: true,
         ..Options::default()

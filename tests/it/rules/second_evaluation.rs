@@ -2,6 +2,7 @@
 //! with the program on every row. `TWOLINE_SQL_ROWS` sets how many rows (default 3,000; the long
 //! form is 100,000), `TWOLINE_SQL_SEED` the seed, which a failure prints.
 
+mod dice;
 mod signs;
 
 use rusqlite::{Connection, params};
@@ -13,20 +14,7 @@ use twoline::domain::readings::{AcuityResult, Hundredths, Readings};
 use twoline::domain::refraction::{Axis, Diopters, Power};
 use twoline::rules::{Case, Kind, Library, judge_rule_set};
 
-struct Dice(u64);
-
-impl Dice {
-    fn roll(&mut self, sides: u64) -> u64 {
-        self.0 ^= self.0 << 13;
-        self.0 ^= self.0 >> 7;
-        self.0 ^= self.0 << 17;
-        (self.0 >> 16) % sides
-    }
-
-    fn index(&mut self, sides: u64) -> usize {
-        usize::try_from(self.roll(sides)).unwrap()
-    }
-}
+use dice::Dice;
 
 /// An acuity as the SQL sees it: best and worst step, best and worst fifth of a thousandth of logMAR.
 type Bounds = (Option<i64>, Option<i64>, Option<i64>, Option<i64>);

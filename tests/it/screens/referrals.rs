@@ -46,5 +46,8 @@ fn the_whole_reason_shows_the_band() {
         h.key(KeyCode::Down);
     }
     h.sees("clinic band (South Australia, acuity): within 30 days, acuity");
+    for _ in 0..30 {
+        h.key(KeyCode::Down);
+    }
     h.sees("on presenting acuity; the band means best-corrected");
 }

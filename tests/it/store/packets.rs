@@ -300,7 +300,11 @@ fn a_forged_packet_is_refused() {
     let error = refused(&mut west, &file);
     assert_eq!(error.kind(), ErrorKind::Newer);
     assert!(error.hint().unwrap().contains("newer twoline"));
-    forge(&header.replace("schema = 3", "schema = 99"), database);
+    let schema = header
+        .lines()
+        .find(|line| line.starts_with("schema = "))
+        .unwrap();
+    forge(&header.replace(schema, "schema = 99"), database);
     assert_eq!(refused(&mut west, &file).kind(), ErrorKind::Newer);
 
     // Another programme's database under this programme's header.
