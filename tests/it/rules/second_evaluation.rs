@@ -8,7 +8,7 @@ mod signs;
 use rusqlite::{Connection, params};
 use twoline::domain::acuity::{Acuity, Line, Notation, Step};
 use twoline::domain::age::{AgeMonths, Grade};
-use twoline::domain::codes::{Cover, YesNo};
+use twoline::domain::codes::YesNo;
 use twoline::domain::outcome::OutcomeKind;
 use twoline::domain::readings::{AcuityResult, Hundredths, Readings};
 use twoline::domain::refraction::{Axis, Diopters, Power};
@@ -371,40 +371,6 @@ struct Row {
     readings: Readings,
 }
 
-/// A random cover test and size of a manifest deviation, as readings and as the SQL sees them.
-fn alignment(dice: &mut Dice, readings: &mut Readings) -> (Option<i64>, Option<i32>) {
-    const COVERS: [Cover; 4] = [
-        Cover::None,
-        Cover::Phoria,
-        Cover::Intermittent,
-        Cover::Constant,
-    ];
-    // Mostly nothing manifest, so that what else refers is seen as well.
-    let cover = [
-        None,
-        None,
-        Some(0),
-        Some(0),
-        Some(0),
-        Some(1),
-        Some(2),
-        Some(3),
-    ][dice.index(8)];
-    let size = [
-        None,
-        None,
-        None,
-        Some(0),
-        Some(0),
-        Some(400),
-        Some(800),
-        Some(801),
-    ][dice.index(8)];
-    readings.cover = cover.map(|at: usize| COVERS[at]);
-    readings.deviation_pd = size.map(Hundredths);
-    (cover.map(|at| i64::try_from(at).unwrap()), size)
-}
-
 #[allow(clippy::many_single_char_names)]
 fn fill(db: &Connection, rows: u64, dice: &mut Dice) -> Vec<Row> {
     const GRADES: [(&str, i64); 5] = [("PK", -1), ("KG", 0), ("01", 1), ("06", 6), ("12", 12)];
@@ -440,7 +406,7 @@ fn fill(db: &Connection, rows: u64, dice: &mut Dice) -> Vec<Row> {
             eye.cylinder = c;
             eye.axis = Axis::new(i64::try_from(a).unwrap());
         }
-        let (cover, size) = alignment(dice, &mut readings);
+        let (cover, size) = signs::alignment(dice, &mut readings);
         let mut millimetres = [None; 4];
         for value in &mut millimetres {
             // Half of the eyes unmeasured; else none to 2 mm, at and about 1 mm too.
@@ -550,8 +516,9 @@ fn agree(
         .query_map([], |row| row.get::<_, String>(0))
         .unwrap()
         .map(Result::unwrap);
+    let words: Vec<String> = words.collect();
+    assert_eq!(words.len(), rows.len(), "{id}");
     let mut kinds: Vec<String> = Vec::new();
-    let mut count = 0;
     for (i, (row, expected)) in rows.iter().zip(words).enumerate() {
         let mut case = Case::new(&row.readings);
         case.age = Some(AgeMonths(row.age));
@@ -576,12 +543,10 @@ fn agree(
             row.grade,
             row.readings
         );
-        count += 1;
         if !kinds.contains(&expected) {
             kinds.push(expected);
         }
     }
-    assert_eq!(count, rows.len(), "{id}");
     assert!(
         kinds.len() >= outcomes,
         "{id} was not put to the test: {kinds:?}"

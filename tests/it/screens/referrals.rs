@@ -42,7 +42,10 @@ fn the_worklist_says_why_a_child_stands_where_it_stands() {
 fn the_whole_reason_shows_the_band() {
     let mut h = with_referrals();
     h.scan("Q-10482").press(Key::f(4));
-    for _ in 0..30 {
+    for _ in 0..60 {
+        if h.screen().contains("the band means best-corrected") {
+            break;
+        }
         h.key(KeyCode::Down);
     }
     h.sees("clinic band (South Australia, acuity): within 30 days, acuity");

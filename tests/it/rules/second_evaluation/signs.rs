@@ -1,10 +1,10 @@
 //! Signs, history and the other tests, a second time in SQL.
 
 use rusqlite::{Connection, params_from_iter, types::Value};
-use twoline::domain::codes::{Correction, History, PlusLens, Reflex, SignKind};
-use twoline::domain::readings::{Readings, Sign};
+use twoline::domain::codes::{Correction, Cover, History, PlusLens, Reflex, SignKind};
+use twoline::domain::readings::{Hundredths, Readings, Sign};
 
-use super::{Dice, Row, agree, alignment, env, strabismus};
+use super::{Dice, Row, agree, env, strabismus};
 
 /// Reflexes in the order of their numbers in the SQL: 0 normal to 5 unequal.
 const REFLEXES: [Reflex; 6] = [
@@ -102,6 +102,40 @@ fn cover_test() -> String {
         strabismus(None),
         days("routine", "")
     )
+}
+
+/// A random cover test and size of a manifest deviation, as readings and as the SQL sees them.
+pub(super) fn alignment(dice: &mut Dice, readings: &mut Readings) -> (Option<i64>, Option<i32>) {
+    const COVERS: [Cover; 4] = [
+        Cover::None,
+        Cover::Phoria,
+        Cover::Intermittent,
+        Cover::Constant,
+    ];
+    // Mostly nothing manifest, so that what else refers is seen as well.
+    let cover = [
+        None,
+        None,
+        Some(0),
+        Some(0),
+        Some(0),
+        Some(1),
+        Some(2),
+        Some(3),
+    ][dice.index(8)];
+    let size = [
+        None,
+        None,
+        None,
+        Some(0),
+        Some(0),
+        Some(400),
+        Some(800),
+        Some(801),
+    ][dice.index(8)];
+    readings.cover = cover.map(|at: usize| COVERS[at]);
+    readings.deviation_pd = size.map(Hundredths);
+    (cover.map(|at| i64::try_from(at).unwrap()), size)
 }
 
 fn fill(db: &Connection, rows: u64, dice: &mut Dice) -> Vec<Row> {
