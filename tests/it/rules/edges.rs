@@ -161,6 +161,13 @@ fn one_eye_while_the_other_is_open() {
     // Nothing was looked for, or what would go with it was not.
     let outcome = child(72, "").by_set("red-reflex");
     assert_eq!(reason(&outcome, "white").reading, "not looked for");
+    // A list nobody filled in is one open point, not one for each thing that could be on it.
+    for (set, list) in [("direct-referral", "history"), ("urgent-signs", "signs")] {
+        let outcome = child(50, "").by_set(set);
+        let open: Vec<&str> = outcome.reasons.iter().map(|r| &*r.criterion).collect();
+        assert!(open.contains(&list) && open.len() < 3, "{open:?}");
+        assert_eq!(reason(&outcome, list).reading, "not looked for");
+    }
     let outcome = child(72, "signs=new_squint").by_set("urgent-signs");
     assert_eq!(
         reason(&outcome, "new_squint.lost_reflex").reading,
