@@ -184,7 +184,7 @@ fn sign(desk: &mut Desk, children: std::ops::Range<usize>) {
 }
 
 fn sign_more(desk: &mut Desk, children: std::ops::Range<usize>) {
-    signed(desk, children, &readings(&[(Field::PlusLens, "pass")]));
+    signed(desk, children, &readings(&[(Field::PlusLens, "blurred")]));
 }
 
 fn signed(desk: &mut Desk, children: std::ops::Range<usize>, readings: &Readings) {

@@ -59,8 +59,8 @@ pub use upkeep::{protected, remove_demo, store_info, writer};
 pub use value_history::ValueEntry;
 pub use views::{
     Before, ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, NewDay,
-    OpenUrgent, QueueState, SignRequest, Signed, StoredOutcome, Together, Unsettled, UrgentAnswer,
-    VisitView,
+    OpenUrgent, QueueState, SignRequest, Signature, Signed, StoredOutcome, Together, Unsettled,
+    UrgentAnswer, VisitView,
 };
 pub use visit_rows::judged;
 pub use worklist::{DueBack, ORDER, Referred, Worklist, due_words};

@@ -12,7 +12,7 @@ use super::search::{Indexed, SearchIndex};
 use super::triage::Standing;
 use super::united::unsettled;
 use super::views::{
-    ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, VisitView,
+    ChildHistory, CorrectionView, DayChild, DayInfo, FoundChild, NewChild, Signature, VisitView,
 };
 use super::visit_rows::{judged, stored_outcome, tries_of};
 use crate::clock::Moment;
@@ -203,6 +203,10 @@ impl Desk {
                 .map(|o| explain::headline(&o));
         }
         let stations = self.stations()?;
+        let station_name = |id: Option<Uuid>| {
+            id.and_then(|id| stations.get(&id).map(|s| s.name.clone()))
+                .unwrap_or_default()
+        };
         Ok(VisitView {
             id: record.now.visit_id,
             day: day.map_or_else(Uuid::nil, |d| d.id),
@@ -214,11 +218,19 @@ impl Desk {
             outcome: outcome.map(|o| stored_outcome(&o.row)),
             now,
             unsettled: unsettled(&present),
+            signatures: record
+                .outcomes
+                .iter()
+                .filter(|o| !o.superseded)
+                .map(|o| Signature {
+                    kind: o.row.kind,
+                    screener: named(o.row.screener_id),
+                    station: station_name(o.row.station_id),
+                    at: o.at,
+                })
+                .collect(),
             screener: named(outcome.and_then(|o| o.row.screener_id)),
-            station: outcome
-                .and_then(|o| o.row.station_id)
-                .and_then(|id| stations.get(&id).map(|s| s.name.clone()))
-                .unwrap_or_default(),
+            station: station_name(outcome.and_then(|o| o.row.station_id)),
             entered,
             late: record.outcomes.first().is_some_and(|o| o.row.late),
             corrections,

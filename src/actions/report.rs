@@ -52,6 +52,11 @@ impl Desk {
                 ..DayReportRow::default()
             };
             if let Some(visit) = &stored.visit {
+                if let Some(together) = self.together(visit)? {
+                    row.outcome_now = Some(together.now.kind);
+                    row.in_conflict = together.unsettled.iter().map(|u| u.field).collect();
+                    row.in_conflict.dedup();
+                }
                 row.attempt = Some(visit.attempt);
                 row.readings = judged(&tries_of(&stored.readings)?);
             }

@@ -146,7 +146,9 @@ impl Desk {
             rows.entered_late(signed.late);
         }
         let open = self.read().urgent_open()?;
-        if let Some(line) = open.iter().find(|u| u.raised.visit_id == Some(visit)) {
+        let parts = self.read().parts_of(visit)?;
+        let of_visit = |id: Option<Uuid>| id.is_some_and(|id| parts.contains(&id));
+        if let Some(line) = open.iter().find(|u| of_visit(u.raised.visit_id)) {
             rows.raised_at(&line.raised);
         }
         let author = self.author();

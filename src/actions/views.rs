@@ -274,6 +274,8 @@ pub struct VisitView {
     pub now: Option<String>,
     /// Values that differ between the parts of the visit; they are left out of the readings.
     pub unsettled: Vec<Unsettled>,
+    /// Every signature that stands, oldest first: one for each station's part.
+    pub signatures: Vec<Signature>,
     /// Who signed.
     pub screener: String,
     /// Where.
@@ -286,6 +288,19 @@ pub struct VisitView {
     pub corrections: Vec<CorrectionView>,
     /// How serious and how soon it is, as judged now.
     pub standing: Standing,
+}
+
+/// What one station signed.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Signature {
+    /// What it came to there.
+    pub kind: OutcomeKind,
+    /// Who signed.
+    pub screener: String,
+    /// Where.
+    pub station: String,
+    /// When.
+    pub at: Moment,
 }
 
 /// One correction, for people.

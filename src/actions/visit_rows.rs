@@ -302,11 +302,12 @@ impl Desk {
         }
         let signs = emergency_words(readings, outcome);
         let read = self.read();
+        let parts = read.parts_of(visit)?;
         if read.urgent_of(visit)?.iter().any(|u| u.signs == signs)
             || read
                 .urgent_open()?
                 .iter()
-                .any(|u| u.raised.visit_id == Some(visit))
+                .any(|u| u.raised.visit_id.is_some_and(|id| parts.contains(&id)))
         {
             return Ok(None);
         }
@@ -472,8 +473,9 @@ pub(super) fn take_back(tx: &mut Tx<'_>, visit: Uuid, reason: &str) -> crate::st
     for outcome in outcomes {
         tx.supersede::<row::Outcome>(&[outcome], None, reason)?;
     }
+    let parts = tx.read().parts_of(visit)?;
     for urgent in tx.read().urgent_open()? {
-        if urgent.raised.visit_id == Some(visit) {
+        if urgent.raised.visit_id.is_some_and(|id| parts.contains(&id)) {
             tx.supersede::<UrgentAction>(&[urgent.raised.id], None, reason)?;
         }
     }

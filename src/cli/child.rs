@@ -198,6 +198,17 @@ fn visit_lines(visit: &VisitView) -> Vec<String> {
     } else {
         &visit.screener
     };
+    if visit.signatures.len() > 1 {
+        for signature in &visit.signatures {
+            lines.push(format!(
+                "  signed as {} {} by {}, station {}",
+                signature.kind.title(),
+                at(signature.at),
+                signature.screener,
+                signature.station
+            ));
+        }
+    }
     lines.push(format!(
         "  entered {} by {who}, station {}{}",
         at(visit.entered),

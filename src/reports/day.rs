@@ -68,6 +68,10 @@ pub struct DayReportRow {
     pub tested_on: Option<NaiveDate>,
     /// Whether it was entered later than that.
     pub entered_late: bool,
+    /// What the readings of several stations say now; nothing where one signature stands.
+    pub outcome_now: Option<OutcomeKind>,
+    /// The fields with values that nobody has settled; they count as not known.
+    pub in_conflict: Vec<Field>,
 }
 
 /// The state of the store that a report was made from.
@@ -92,7 +96,7 @@ const BEFORE: [(&str, Kind); 10] = [
     ("attempt", Kind::Code),
 ];
 
-const AFTER: [(&str, Kind); 18] = [
+const AFTER: [(&str, Kind); 20] = [
     ("outcome", Kind::Code),
     ("outcome_note", Kind::Text),
     ("urgency", Kind::Code),
@@ -109,6 +113,8 @@ const AFTER: [(&str, Kind); 18] = [
     ("entered_at", Kind::Date),
     ("tested_on", Kind::Date),
     ("entered_late", Kind::Code),
+    ("outcome_now", Kind::Code),
+    ("in_conflict", Kind::Code),
     // Always the last two, so that a report can be told from the store it came from.
     ("store_head", Kind::Code),
     ("store_entries", Kind::Number),
@@ -211,6 +217,9 @@ fn write_row<W: Write>(
     table.cell(&row.entered_at)?;
     table.cell(&text(row.tested_on))?;
     table.cell(if row.entered_late { "yes" } else { "" })?;
+    let in_conflict: Vec<&str> = row.in_conflict.iter().map(|f| f.word()).collect();
+    table.cell(word(row.outcome_now.map(OutcomeKind::word)))?;
+    table.cell(&in_conflict.join(";"))?;
     table.cell(&state.head)?;
     table.cell(entries)?;
     table.end_row()

@@ -162,6 +162,20 @@ impl Reads<'_> {
             .pop())
     }
 
+    /// Returns the ids under which a visit was recorded, its own among them.
+    pub fn parts_of(&self, visit_id: Uuid) -> Result<Vec<Uuid>> {
+        let mut found = self.conn.prepare_cached(
+            "SELECT ?1 UNION SELECT q.visit_id FROM visit_part p \
+             JOIN visit_part q ON q.lead = p.lead WHERE p.visit_id = ?1",
+        )?;
+        let mut rows = found.query([visit_id.cell()])?;
+        let mut out = Vec::new();
+        while let Some(row) = rows.next()? {
+            out.extend(Uuid::from_stored(row.get_ref(0)?));
+        }
+        Ok(out)
+    }
+
     /// Returns the visits of a child as they are now, earliest day first.
     pub fn visits_now(&self, child_id: &str) -> Result<Vec<VisitNow>> {
         self.visits_where("v.child_id = ?1", params![child_id])

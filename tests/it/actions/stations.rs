@@ -200,6 +200,21 @@ fn two_stations_record_one_visit() {
             Some("20/20")
         );
         assert_eq!(visit.readings.get(Field::Signs).as_deref(), Some("none"));
+        let mut signed: Vec<&str> = visit.signatures.iter().map(|s| &*s.station).collect();
+        signed.sort_unstable();
+        assert_eq!(signed, ["east", "west"]);
+        let report = s.report(at);
+        let mut rows = csv::Reader::from_reader(report.as_bytes());
+        let row: std::collections::HashMap<String, String> = rows
+            .deserialize()
+            .map(|row| row.expect("CSV"))
+            .find(|row: &std::collections::HashMap<String, String>| row["child_id"] == "Q-1")
+            .expect("a row");
+        assert_eq!(
+            (&*row["outcome"], &*row["outcome_now"]),
+            ("incomplete", "pass")
+        );
+        assert_eq!(row["in_conflict"], "");
         s.desks[at].verify(None, |_, _| {}).expect("whole");
     }
 }
@@ -431,4 +446,28 @@ fn any_order_of_packets_ends_in_the_same_report() {
     if std::env::var("TWOLINE_SEED").is_err() {
         assert!(differed > 0, "no seed came to a conflict");
     }
+}
+
+/// An emergency that one station saw is everybody's, and taking the visit back takes its line back.
+#[test]
+fn an_emergency_of_another_station_runs_here_too() {
+    let mut s = Stations::new(&["east", "west"]);
+    assert!(s.sign(0, "Q-1", CHART));
+    let seen = [
+        (Field::CorrectionWorn, "none"),
+        (Field::Signs, "white_pupil:left"),
+    ];
+    assert!(s.sign(1, "Q-1", &seen));
+    let packet = s.packet(1);
+    s.read(0, &packet);
+    assert_eq!(s.desks[0].urgent_open().expect("read").len(), 1);
+    let child = s.child(0, "Q-1");
+    assert_eq!(child.state, QueueState::Signed(OutcomeKind::Refer));
+    let visit = s.visit(0, "Q-1");
+    s.desks[0]
+        .retract(visit.id, "another child")
+        .expect("taken back");
+    assert!(s.desks[0].urgent_open().expect("read").is_empty());
+    assert_eq!(s.child(0, "Q-1").state, QueueState::ToCome);
+    s.desks[0].verify(None, |_, _| {}).expect("whole");
 }

@@ -40,6 +40,8 @@ fn row() -> DayReportRow {
         risks: vec![RiskKind::InterocularDifference, RiskKind::Anisometropic],
         criteria: vec!["set/a".into(), "set/b".into()],
         reasons: "-2.50 D is more than the limit".into(),
+        outcome_now: Some(OutcomeKind::Refer),
+        in_conflict: vec![Field::NearRight, Field::Signs],
         ..DayReportRow::default()
     }
 }
@@ -80,6 +82,10 @@ fn numbers_are_exact_and_text_is_guarded() {
     assert_eq!(
         (of("outcome"), of("urgency"), of("dob")),
         ("rescreen", "", "")
+    );
+    assert_eq!(
+        (of("outcome_now"), of("in_conflict")),
+        ("refer", "near_right;signs")
     );
     let tail: Vec<&str> = cells
         .iter()
