@@ -112,6 +112,34 @@ pub(super) fn set_aside(path: &Path) -> Result<()> {
     Ok(())
 }
 
+/// Removes what a killed process left half written in a folder: `PREFIX` with its number and `.partial`.
+pub(super) fn sweep(dir: &Path, prefix: &str) {
+    let Ok(found) = fs::read_dir(dir) else {
+        return;
+    };
+    for entry in found.flatten() {
+        let name = entry.file_name();
+        let of = name
+            .to_str()
+            .and_then(|name| name.strip_prefix(prefix)?.split_once(".partial"))
+            .and_then(|(pid, _)| pid.parse::<i32>().ok());
+        if of.is_some_and(|pid| !is_running(pid)) {
+            let _ = fs::remove_file(entry.path());
+        }
+    }
+}
+
+#[cfg(unix)]
+fn is_running(pid: i32) -> bool {
+    rustix::process::Pid::from_raw(pid)
+        .is_none_or(|pid| rustix::process::test_kill_process(pid) != Err(rustix::io::Errno::SRCH))
+}
+
+#[cfg(not(unix))]
+fn is_running(_pid: i32) -> bool {
+    true
+}
+
 /// Syncs one file.
 pub(super) fn sync(path: &Path) -> Result<()> {
     File::open(path)

@@ -110,6 +110,10 @@ impl Store {
         };
         let access = KeyFile::for_packet(&self.info, join, &key)?;
         let station = self.read().station(self.station)?;
+        files::sweep(&self.dir, "packet-");
+        let folder = to.parent().filter(|folder| !folder.as_os_str().is_empty());
+        let named = to.file_name().unwrap_or_default().to_string_lossy();
+        files::sweep(folder.unwrap_or(Path::new(".")), &format!("{named}."));
         let database = Aside::new(
             self.dir
                 .join(format!("packet-{}.partial", std::process::id())),
@@ -252,6 +256,7 @@ impl Packet {
             return Err(Error::newer(header.schema as i64, schema::NEWEST)
                 .with_hint("read it with the newer twoline that wrote it; nothing was taken"));
         }
+        files::sweep(dir, "packet-");
         let key = key(&header.access)?;
         let database = Aside::new(dir.join(format!("packet-{}.partial", std::process::id())));
         header.extract(from, &mut rest, &database.0)?;

@@ -1,5 +1,7 @@
 //! Two laptops and a stick, through the real program.
 
+use std::fmt::Write as _;
+
 use super::{Bench, Ran};
 
 const EAST: &str = "nine green kettles sing";
@@ -196,4 +198,70 @@ fn unprotected_stations_join_without_a_passphrase() {
     assert_eq!(bench.ok(&["report", "day"]), west(&["report", "day"]));
     let out = bench.ok(&["child", "same"]);
     assert!(out.contains("nobody seems"), "{out}");
+}
+
+/// A reading process is killed at random moments: all of the packet is there, or none of it.
+#[test]
+#[allow(clippy::print_stdout)]
+fn a_killed_reading_took_all_or_nothing() {
+    let number = |name: &str, otherwise: u64| {
+        let set = std::env::var(name).ok().and_then(|n| n.parse().ok());
+        set.unwrap_or(otherwise)
+    };
+    let (kills, mut seed) = (number("TWOLINE_KILLS", 5), number("TWOLINE_SEED", 11));
+    println!("seed: TWOLINE_SEED={seed}, {kills} kills");
+    let bench = Bench::with_children();
+    bench.ok(&["packet", "write", "start"]);
+    let mut roster = super::ROSTER.to_owned();
+    for i in 0..1500 {
+        let _ = writeln!(roster, "R-{i:05},Okafor{i},Ada,2020-09-01,1,QE,1B,yes,no");
+    }
+    bench.write("roster.csv", roster);
+    bench.ok(&["roster", "add", "roster.csv", "--yes"]);
+    bench.ok(&["packet", "write", "large"]);
+    let west = |args: &[&str]| {
+        let mut command = bench.command(args);
+        command.env("TWOLINE_STORE", bench.path("west"));
+        command
+    };
+    let run = |args: &[&str]| {
+        let ran = Ran::from(west(args).output().expect("the program runs"));
+        assert_eq!(ran.code, 0, "{}{}", ran.out, ran.err);
+        ran.out
+    };
+    run(&["init", "--join", "start", "--station", "west"]);
+    let before = run(&["verify"]);
+    let copy = |from: &str, to: &str| {
+        let _ = std::fs::remove_dir_all(bench.path(to));
+        std::fs::create_dir(bench.path(to)).expect("a folder");
+        for name in ["store.db", "store.key"] {
+            std::fs::copy(bench.path(from).join(name), bench.path(to).join(name)).expect("copied");
+        }
+    };
+    copy("west", "kept");
+    run(&["packet", "read", "large"]);
+    let after = run(&["verify"]);
+    assert_ne!(before, after);
+    for _ in 0..kills {
+        copy("kept", "west");
+        let mut child = west(&["packet", "read", "large"])
+            .stdout(std::process::Stdio::null())
+            .stderr(std::process::Stdio::null())
+            .spawn()
+            .expect("the program");
+        seed = seed.wrapping_mul(6_364_136_223_846_793_005).wrapping_add(1);
+        std::thread::sleep(std::time::Duration::from_millis((seed >> 33) % 1200));
+        child.kill().expect("killed");
+        child.wait().expect("gone");
+        let now = run(&["verify"]);
+        assert!(now == before || now == after, "{now}");
+        run(&["packet", "read", "large"]);
+        assert_eq!(run(&["verify"]), after);
+        let left = std::fs::read_dir(bench.path("west")).expect("a folder");
+        let left: Vec<_> = left.map(|e| e.expect("a name").file_name()).collect();
+        assert!(
+            !left.iter().any(|n| n.to_string_lossy().contains("partial")),
+            "{left:?}"
+        );
+    }
 }

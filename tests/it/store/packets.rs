@@ -4,7 +4,9 @@ use std::fs;
 use std::path::{Path, PathBuf};
 
 use tempfile::TempDir;
-use twoline::store::{ErrorKind, ForJoin, Fork, Joining, Kdf, Secret, Store, packet_info};
+use twoline::store::{
+    ErrorKind, ExpectedHead, ForJoin, Fork, Joining, Kdf, Secret, Store, packet_info,
+};
 use zeroize::Zeroizing;
 
 use super::support::*;
@@ -95,11 +97,15 @@ fn a_store_joins_and_exchanges() {
         (merged.transactions, merged.entries, merged.children),
         (1, 1, 1)
     );
+    let before = east.head().unwrap();
     // The first transaction of west, and the child.
     let merged = read(&mut east, &from_west);
     assert_eq!((merged.transactions, merged.entries), (2, 3));
     assert_eq!(east.head().unwrap(), west.head().unwrap());
     assert_eq!(merged.head, east.head().unwrap());
+    // A head printed before the merge is still found in this store's own past.
+    let printed = ExpectedHead::parse(&before.to_string()).unwrap();
+    east.verify(Some(&printed), |_, _| {}).unwrap();
     for store in [&east, &west] {
         store.verify(None, |_, _| {}).unwrap();
         assert!(store.read().child("Q-8").unwrap().is_some());
