@@ -1,10 +1,12 @@
 //! Several laptops, one programme: packets, joining, restoring, and children who are one.
 
+use std::collections::BTreeMap;
 use std::path::Path;
 
 use super::desk::{Desk, DeskOptions};
 use super::error::{ActionError, Result};
 use super::setup::named;
+use super::united::unsettled;
 use super::views::FoundChild;
 use crate::clock;
 use crate::store::read::ChildNow;
@@ -65,6 +67,39 @@ impl Desk {
     pub fn read_packet(&mut self, from: &Path, progress: impl FnMut(u64, u64)) -> Result<Merged> {
         let author = self.author();
         Ok(self.store.read_packet(from, &author, progress)?)
+    }
+
+    /// Returns in words what differs between stations and nobody has settled, a line each.
+    ///
+    /// Of readings none counts until one is chosen; of anything else the latest stands meanwhile.
+    pub fn in_conflict(&self) -> Result<Vec<String>> {
+        let mut lines = Vec::new();
+        for (child, visit) in self.read().several()? {
+            for differs in unsettled(&self.read().readings(visit.visit_id)?) {
+                lines.push(format!(
+                    "{}, {} ({}), {}: {} is {}",
+                    child.family_name,
+                    child.given_name,
+                    child.child_id,
+                    visit.screened_on,
+                    differs.field.title(),
+                    differs.values.join(" or ")
+                ));
+            }
+        }
+        let mut others: BTreeMap<&str, usize> = BTreeMap::new();
+        for conflict in self.read().conflicts()? {
+            if conflict.table != "reading" {
+                *others.entry(conflict.table).or_default() += 1;
+            }
+        }
+        for (table, n) in others {
+            lines.push(format!(
+                "{}: {n} said differently by two stations; the latest stands, saying it again settles it",
+                table.replace('_', " ")
+            ));
+        }
+        Ok(lines)
     }
 
     /// Returns pairs of children who are probably one: at least one was added at a table, the names

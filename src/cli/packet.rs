@@ -7,9 +7,12 @@ use indicatif::{ProgressBar, ProgressStyle};
 use zeroize::Zeroizing;
 
 use super::open::ask_hidden;
-use super::output::{busy, clean, print_lines};
+use super::output::{busy, clean, print_clean, print_lines};
 use super::{Failure, Global, open};
 use crate::actions::{ForJoin, Kdf, Merged, Secret, packet_info};
+
+/// How many conflicts are listed after reading.
+const LISTED: usize = 20;
 
 /// Exchange what was recorded with other laptops of the programme
 #[derive(Debug, Args)]
@@ -39,6 +42,8 @@ enum Command {
         #[arg(required = true)]
         files: Vec<PathBuf>,
     },
+    /// List what stations recorded differently and nobody has settled
+    Conflicts,
     /// Show what a packet says of itself
     Show {
         /// The file
@@ -131,6 +136,17 @@ impl Packet {
                     lines.extend(brought(&merged));
                     print_lines(&lines)?;
                 }
+                let differs = desk.in_conflict()?;
+                let mut lines: Vec<String> = differs.iter().take(LISTED).cloned().collect();
+                if differs.len() > LISTED {
+                    lines.push(format!(
+                        "… {} more: twoline packet conflicts",
+                        differs.len() - LISTED
+                    ));
+                }
+                if !lines.is_empty() {
+                    print_clean(&lines)?;
+                }
                 let same = desk.probably_same()?.len();
                 if same > 0 {
                     print_lines(&[format!(
@@ -138,6 +154,13 @@ impl Packet {
                     )])?;
                 }
                 Ok(())
+            }
+            Command::Conflicts => {
+                let differs = open::to_read(global)?.in_conflict()?;
+                if differs.is_empty() {
+                    return print_lines(&["no value is in conflict".to_owned()]);
+                }
+                print_clean(&differs)
             }
             Command::Show { file } => {
                 let info = packet_info(file)?;
@@ -188,7 +211,7 @@ pub(super) fn brought(merged: &Merged) -> Vec<String> {
             "values"
         };
         lines.push(format!(
-            "{} {values} in conflict: twoline child show ID names them, twoline correct settles one",
+            "{} {values} in conflict; settle each with twoline correct:",
             merged.conflicts
         ));
     }

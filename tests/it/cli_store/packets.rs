@@ -112,6 +112,9 @@ fn two_laptops_share_a_day_under_passphrases() {
     let out = ok("east", &["packet", "read", "west.packet"]);
     assert!(out.contains("2 new visits from west"), "{out}");
     assert!(out.contains("1 value in conflict"), "{out}");
+    let differs = "Okafor, Ada (Q-2), 2026-10-14: distance acuity, left eye is 20/20 or 20/63";
+    assert!(out.contains(differs), "{out}");
+    assert!(ok("east", &["packet", "conflicts"]).contains(differs));
     let out = ok("east", &["packet", "read", "west.packet"]);
     assert!(out.contains("nothing new"), "{out}");
     let ran = at("west", &["packet", "write", "west.packet"]);
@@ -146,6 +149,7 @@ fn two_laptops_share_a_day_under_passphrases() {
         "{out}"
     );
 
+    assert!(ok("east", &["packet", "conflicts"]).contains("no value is in conflict"));
     ok("east", &["packet", "write", "east.packet"]);
     let out = ok("west", &["packet", "read", "east.packet"]);
     assert!(!out.contains("conflict"), "{out}");
