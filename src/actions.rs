@@ -6,6 +6,7 @@
 pub mod board;
 mod calendar;
 mod children;
+mod comfort;
 pub mod compare;
 mod days;
 mod desk;

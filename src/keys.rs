@@ -172,6 +172,8 @@ contexts! {
     Signs = "choosing signs", [Everywhere];
     /// In a question with fields to type into.
     Form = "a question with fields", [Everywhere];
+    /// On the locked screen.
+    Locked = "the locked screen", [Everywhere];
     /// In a page to read.
     Page = "a page to read", [Everywhere];
     /// Always.
@@ -216,7 +218,7 @@ commands! {
     OneKind = "one-kind"; Stricter = "stricter"; Milder = "milder"; OtherSet = "other-set";
     PutBack = "put-back"; Tests = "other-tests"; SecondTry = "second-try";
     Note = "note"; ValueHistory = "value-history"; Discreet = "discreet";
-    Station = "station";
+    Station = "station"; Lock = "lock"; DayPin = "set-day-pin"; Theme = "theme";
 }
 
 /// One line of the table: what a command is called, where and by which keys.
@@ -255,18 +257,28 @@ pub fn foot(context: Context) -> Vec<(String, &'static str)> {
         .collect()
 }
 
-/// Returns what the palette offers from a context: every command that can run there.
-pub fn palette(context: Context) -> Vec<&'static Binding> {
-    let live = context.stack();
+/// Returns what the palette offers: the commands that need no cursor, each once, with where it works.
+pub fn palette() -> Vec<&'static Binding> {
+    let mut seen = Vec::new();
     TABLE
         .iter()
         .filter(|b| {
             matches!(
                 b.context,
                 Context::Day | Context::Places | Context::Everywhere | Context::Days
-            ) && live.contains(&b.context)
+            )
         })
-        .filter(|b| b.command != Command::Palette)
+        .filter(|b| {
+            !matches!(
+                b.command,
+                Command::Palette | Command::Open | Command::ListUp | Command::ListDown
+            )
+        })
+        .filter(|b| {
+            let new = !seen.contains(&b.command);
+            seen.push(b.command);
+            new
+        })
         .collect()
 }
 

@@ -18,6 +18,7 @@ pub mod ledger;
 mod lock;
 mod open;
 mod packet;
+mod preferences;
 mod project;
 pub mod read;
 mod restore;

@@ -99,7 +99,14 @@ impl App {
             }
             Answer::Station(role) => return self.station_set(*role),
             Answer::ValueHistory(field, entries) => self.show_value_history(field, &entries),
-            Answer::Refused(refused) => self.refuse(refused),
+            Answer::Unlocked(why_not) => return self.unlocked(why_not),
+            Answer::Preferred(what, value) => {
+                self.say(
+                    Tone::Quiet,
+                    format!("{what} {value}, kept for this installation"),
+                );
+            }
+            Answer::DraftsNotWritten(refused) | Answer::Refused(refused) => self.refuse(refused),
         }
         Vec::new()
     }

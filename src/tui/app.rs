@@ -3,6 +3,7 @@
 //! A key press becomes a [`Message`]; [`App::update`] changes the state and returns [`Effect`]s,
 //! without any I/O; the run loop carries the effects out and brings the answers back as messages.
 
+use std::collections::VecDeque;
 use std::sync::Arc;
 
 use chrono::NaiveDate;
@@ -19,12 +20,14 @@ use crate::tui::board::BoardPage;
 use crate::tui::children::Children;
 use crate::tui::day::Day;
 use crate::tui::days::Days;
+use crate::tui::gate::{Lock, Typed};
 use crate::tui::judging::{Draft, Library};
 use crate::tui::prompt::Prompt;
 use crate::tui::referrals::Referrals;
 use crate::tui::rules::Rules;
 use crate::tui::tables::Table;
 use crate::tui::theme::Theme;
+use crate::tui::waiting::Asked;
 
 /// What stays the same while the screens are open, and the clock.
 #[derive(Debug, Clone)]
@@ -57,6 +60,10 @@ pub struct Session {
     pub triage: Vec<String>,
     /// Styles.
     pub theme: Theme,
+    /// Whether colors may be used at all.
+    pub color: bool,
+    /// Minutes without a key after which the screen is locked; 0 never.
+    pub idle_minutes: u32,
     /// Makes the id of a visit.
     pub new_id: fn() -> Uuid,
     /// The clock on the wall in milliseconds since 1970, as of the last message.
@@ -149,6 +156,10 @@ pub struct App {
     pub notice: Option<Notice>,
     /// Emergencies that wait for the word who was told.
     pub urgent: Vec<OpenUrgent>,
+    /// The lock, and what opens it.
+    pub lock: Lock,
+    /// What the store was asked and has not answered, in that order.
+    pub(crate) asked: VecDeque<Asked>,
 }
 
 /// Something that happened.
@@ -164,6 +175,8 @@ pub enum Message {
     Answer(Answer),
     /// A signal asks to leave.
     Leave,
+    /// A signal asks to give the terminal back.
+    Suspend,
 }
 
 /// What the run loop carries out.
@@ -228,6 +241,10 @@ pub enum Request {
     SetStation(StationChange),
     /// Everything that was ever recorded of a field of a visit.
     ValueHistory(Uuid, Field),
+    /// Checks a passphrase at the lock.
+    Unlock(Typed),
+    /// Keeps a preference of this installation: its name and its value.
+    Prefer(&'static str, String),
 }
 
 /// Why something could not be done.
@@ -280,6 +297,12 @@ pub enum Answer {
     Station(Box<StationRole>),
     /// Everything that was ever recorded of a field of a visit.
     ValueHistory(Field, Vec<ValueEntry>),
+    /// The passphrase opens the lock, or why not.
+    Unlocked(Option<String>),
+    /// A preference is kept: its name and its value.
+    Preferred(&'static str, String),
+    /// Drafts could not be written.
+    DraftsNotWritten(Refused),
     /// Something could not be done.
     Refused(Refused),
 }
@@ -306,6 +329,8 @@ impl App {
             prompt: None,
             notice: None,
             urgent,
+            lock: Lock::default(),
+            asked: VecDeque::new(),
             session,
         }
     }
@@ -328,6 +353,9 @@ impl App {
 
     /// Returns the context of the next key.
     pub fn context(&self) -> Context {
+        if self.lock.stands() {
+            return Context::Locked;
+        }
         if let Some(prompt) = &self.prompt {
             return prompt.context();
         }

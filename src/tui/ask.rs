@@ -214,29 +214,6 @@ impl App {
         ));
     }
 
-    /// Opens the palette.
-    pub(crate) fn ask_palette(&mut self) {
-        let mut choices = listed(keys::palette(self.context()).into_iter().map(|b| {
-            let keys = keys::keys_text(b);
-            (
-                '\0',
-                format!(
-                    "{} {} {}",
-                    crate::tui::text::fit(b.command.name(), 14),
-                    crate::tui::text::fit(if keys == "palette" { "" } else { &keys }, 10),
-                    b.help
-                ),
-                b.command.name(),
-            )
-        }));
-        choices.find = Some(String::new());
-        self.prompt = Some(Prompt::choices(
-            Ask::Palette,
-            "palette: type words, Enter runs",
-            choices,
-        ));
-    }
-
     /// Opens the page of all keys.
     pub(crate) fn ask_help(&mut self) {
         let mut lines = Vec::new();

@@ -7,10 +7,14 @@ use crate::actions::{self, ActionError, DayInfo, Desk, DraftDay, Drafts, SearchI
 use crate::tui::app::{Answer, App, Refused, Request, Session};
 use crate::tui::judging::Draft;
 use crate::tui::rules::Compared;
-use crate::tui::theme::Theme;
+use crate::tui::theme::{Theme, ThemeName};
 
 /// How many children a find shows.
 const FOUND: usize = 200;
+
+/// Minutes without a key after which the screen is locked, where the installation says nothing
+/// (basis: practice).
+const IDLE_MINUTES: u32 = 10;
 
 /// Answers the screens' requests at a desk.
 pub struct Clerk {
@@ -118,7 +122,18 @@ pub fn session(
         today: desk.today(),
         library: desk.library(),
         triage: desk.triage_sets(),
-        theme: Theme::new(color),
+        theme: if color {
+            desk.preference("theme")
+                .and_then(|word| ThemeName::from_word(&word))
+                .map_or_else(|| Theme::new(true), Theme::named)
+        } else {
+            Theme::new(false)
+        },
+        color,
+        idle_minutes: desk
+            .preference("idle_minutes")
+            .and_then(|text| text.parse().ok())
+            .unwrap_or(IDLE_MINUTES),
         new_id: actions::new_visit_id,
         now_ms,
         offset_minutes,
@@ -249,6 +264,15 @@ impl Clerk {
             Request::Screener(name) => {
                 self.desk.set_screener(&name)?;
                 Answer::Screener(name)
+            }
+            Request::Unlock(typed) => Answer::Unlocked(match self.desk.opens_with(typed.text()) {
+                Ok(true) => None,
+                Ok(false) => Some("that does not open this store; try again".into()),
+                Err(error) => Some(error.message),
+            }),
+            Request::Prefer(name, value) => {
+                self.desk.set_preference(name, &value)?;
+                Answer::Preferred(name, value)
             }
         })
     }

@@ -15,6 +15,10 @@ pub struct Choice {
     pub label: String,
     /// The word that the asker gets back.
     pub word: String,
+    /// What finds it beside its words, exactly (its keys, written together: `f7`, `ctrlz`).
+    pub keys: Vec<String>,
+    /// Whether it is shown but cannot be done now.
+    pub idle: bool,
 }
 
 /// Which eye a choice is about.
@@ -79,13 +83,25 @@ impl Choices {
             .split_whitespace()
             .map(crate::domain::text::folded)
             .collect();
-        self.items
-            .iter()
+        let joined: String = words
+            .concat()
+            .chars()
+            .filter(|c| *c != '-' && *c != '+')
+            .collect();
+        // Who types a key wants what stands on it, first.
+        let (mut first, rest): (Vec<&Choice>, Vec<&Choice>) =
+            self.items.iter().partition(|c| c.keys.contains(&joined));
+        let start = words.join(" ");
+        let (named, other): (Vec<&Choice>, Vec<&Choice>) = rest
+            .into_iter()
             .filter(|c| {
                 let label = crate::domain::text::folded(&c.label);
                 words.iter().all(|w| label.contains(w.as_str()))
             })
-            .collect()
+            .partition(|c| crate::domain::text::folded(&c.label).starts_with(&start));
+        first.extend(named);
+        first.extend(other);
+        first
     }
 
     /// Moves the cursor.
@@ -255,6 +271,8 @@ pub enum Ask {
     Told(crate::actions::OpenUrgent),
     /// Which command.
     Palette,
+    /// Which colors.
+    Theme,
     /// Who is recording.
     Screener,
     /// What this station is set to.
@@ -326,6 +344,8 @@ pub fn listed<L: Into<String>, W: Into<String>>(
                 key,
                 label: label.into(),
                 word: word.into(),
+                keys: Vec::new(),
+                idle: false,
             })
             .collect(),
     )

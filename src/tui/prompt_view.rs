@@ -130,7 +130,11 @@ impl Sheet {
                 ),
                 Span::styled(
                     cut(&choice.label, columns.saturating_sub(6)),
-                    if here { theme.strong() } else { Style::new() },
+                    match (here, choice.idle) {
+                        (true, _) => theme.strong(),
+                        (_, true) => theme.muted(),
+                        _ => Style::new(),
+                    },
                 ),
             ]));
         }

@@ -25,18 +25,26 @@ use crate::clock;
 use crate::keys::Key;
 use crate::tui::app::{Answer, App, Effect, Message, Request};
 use crate::tui::desk::{Clerk, Keeper, session};
+use crate::tui::theme::{Theme, ThemeName};
 
 /// How the screens are shown.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub struct Options {
-    /// Whether colors are used; `NO_COLOR` turns them off.
+    /// Whether colors are used; `NO_COLOR`, or a terminal without colors, turns them off.
     pub color: bool,
+    /// The theme, where another than the kept one is wanted.
+    pub theme: Option<ThemeName>,
 }
 
 impl Default for Options {
     fn default() -> Self {
+        let asked_not_to = std::env::var_os("NO_COLOR").is_some_and(|v| !v.is_empty());
+        let cannot = std::env::var("TERM").is_ok_and(|term| {
+            ["dumb", "vt100", "vt102", "vt220", "xterm-mono"].contains(&term.as_str())
+        });
         Options {
-            color: std::env::var_os("NO_COLOR").is_none_or(|v| v.is_empty()),
+            color: !asked_not_to && !cannot,
+            theme: None,
         }
     }
 }
@@ -65,6 +73,9 @@ const BRIEF: Duration = Duration::from_millis(8);
 pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     let now = clock::now();
     let mut app = session(&desk, options.color, now.utc_ms, now.offset_minutes)?;
+    if let Some(theme) = options.theme.filter(|_| options.color) {
+        app.session.theme = Theme::named(theme);
+    }
     let (to_store, jobs) = channel();
     let (answers, from_store) = channel();
     let clerk = Clerk::new(desk);
@@ -75,16 +86,23 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     let store = thread::Builder::new()
         .name("store".into())
         .spawn(move || serve(clerk, &jobs, &answers))?;
-    let leave = Arc::new(AtomicBool::new(false));
+    let signals = Signals::default();
     let mut handlers = Vec::new();
     for signal in [
         signal_hook::consts::SIGTERM,
         signal_hook::consts::SIGHUP,
         signal_hook::consts::SIGINT,
     ] {
-        handlers.push(signal_hook::flag::register(signal, Arc::clone(&leave))?);
+        handlers.push(signal_hook::flag::register(
+            signal,
+            Arc::clone(&signals.leave),
+        )?);
     }
-    let watch = Watch::begin(keeper.clone(), Arc::clone(&leave))?;
+    handlers.push(signal_hook::flag::register(
+        signal_hook::consts::SIGTSTP,
+        Arc::clone(&signals.suspend),
+    )?);
+    let watch = Watch::begin(keeper.clone(), Arc::clone(&signals.leave))?;
     let result = Screen::open().and_then(|mut screen| {
         let mut wires = Wires {
             to_store: to_store.clone(),
@@ -92,7 +110,7 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
             keeper,
             waiting: 0,
         };
-        let result = event_loop(&mut app, &mut screen, &mut wires, &leave);
+        let result = event_loop(&mut app, &mut screen, &mut wires, &signals);
         if result.is_err() {
             // Whatever happened, what was typed is kept.
             let effects = app.update(Message::Leave);
@@ -110,6 +128,13 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     result
 }
 
+/// What signals ask for.
+#[derive(Debug, Default)]
+struct Signals {
+    leave: Arc<AtomicBool>,
+    suspend: Arc<AtomicBool>,
+}
+
 /// Something for the store's thread.
 enum Job {
     Ask(Box<Request>),
@@ -122,7 +147,7 @@ fn serve(mut clerk: Clerk, jobs: &Receiver<Job>, answers: &Sender<Answer>) {
             Job::Ask(request) => clerk.answer(*request),
             Job::Flush => match clerk.keeper().flush() {
                 Ok(()) => continue,
-                Err(refused) => Answer::Refused(refused),
+                Err(refused) => Answer::DraftsNotWritten(refused),
             },
         };
         if answers.send(answer).is_err() {
@@ -204,7 +229,7 @@ fn event_loop(
     app: &mut App,
     screen: &mut Screen,
     wires: &mut Wires,
-    leave: &AtomicBool,
+    signals: &Signals,
 ) -> Result<(), Error> {
     wires.carry_out(app.start())?;
     let mut place = app.at;
@@ -227,15 +252,21 @@ fn event_loop(
             }
         }
         messages.extend(wires.answers());
-        if leave.load(Ordering::Relaxed) {
+        if signals.leave.load(Ordering::Relaxed) {
             messages.push(Message::Leave);
         }
+        if signals.suspend.swap(false, Ordering::Relaxed) {
+            messages.push(Message::Suspend);
+        }
         let now = clock::now();
-        // The running line of an emergency counts seconds, the clock at the foot minutes.
-        let tick = if app.urgent.is_empty() { 60_000 } else { 1_000 };
+        // The running line of an emergency and a slow disk count seconds, the clock at the foot
+        // minutes.
+        let counts = !app.urgent.is_empty() || app.is_waiting();
+        let tick = if counts { 1_000 } else { 60_000 };
         stale = !messages.is_empty() || now.utc_ms / tick != app.session.now_ms / tick;
         app.session.now_ms = now.utc_ms;
         app.session.offset_minutes = now.offset_minutes;
+        stale |= app.is_idle();
         for message in messages.into_iter().chain([Message::Tick]) {
             match wires.carry_out(app.update(message))? {
                 Next::GoOn => {}

@@ -84,10 +84,8 @@ impl App {
                 }
                 Vec::new()
             }
-            Ask::Palette => match Command::ALL.iter().find(|c| c.name() == word) {
-                Some(command) => self.run(*command),
-                None => Vec::new(),
-            },
+            Ask::Palette => self.run_named(word),
+            Ask::Theme => self.set_theme(word),
             Ask::Screener => vec![Effect::ask(Request::Screener(word.to_owned()))],
             _ => Vec::new(),
         }

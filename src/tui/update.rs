@@ -3,7 +3,7 @@
 use tui_input::InputRequest;
 
 use crate::keys::{self, Command, Context, Key};
-use crate::tui::app::{App, Effect, Message, PlaceName, Request, Tone};
+use crate::tui::app::{Answer, App, Effect, Message, PlaceName, Request, Tone};
 use crate::tui::day::bench::Bench;
 use crate::tui::day::{Day, Done};
 use crate::tui::days::Days;
@@ -12,13 +12,40 @@ use crate::tui::prompt::{Ask, Body};
 impl App {
     /// Takes a message. No I/O happens here.
     pub fn update(&mut self, message: Message) -> Vec<Effect> {
-        match message {
-            Message::Key(key) => self.key(key),
-            Message::Paste(text) => self.paste(&text),
+        let effects = match message {
+            // Nobody was there for long: whoever comes finds the lock, and the key goes nowhere.
+            Message::Key(_) | Message::Paste(_) | Message::Tick if self.is_idle() => {
+                self.lock_now()
+            }
             Message::Tick => self.tick(),
-            Message::Answer(answer) => self.answer(answer),
+            Message::Key(key) => {
+                self.touched();
+                if self.lock.stands() {
+                    self.gate_key(key)
+                } else {
+                    self.key(key)
+                }
+            }
+            Message::Paste(text) => {
+                self.touched();
+                if self.lock.stands() {
+                    self.gate_paste(&text);
+                    Vec::new()
+                } else {
+                    self.paste(&text)
+                }
+            }
+            Message::Answer(answer) => {
+                if !matches!(answer, Answer::DraftsNotWritten(_)) {
+                    self.asked.pop_front();
+                }
+                self.answer(answer)
+            }
+            Message::Suspend => self.run(Command::Suspend),
             Message::Leave => self.leave(),
-        }
+        };
+        self.note_asked(&effects);
+        effects
     }
 
     /// The clock moved on: a day board that is due is asked for.
@@ -29,7 +56,7 @@ impl App {
         }
     }
 
-    fn leave(&mut self) -> Vec<Effect> {
+    pub(crate) fn leave(&mut self) -> Vec<Effect> {
         let mut effects = self
             .day
             .as_mut()
@@ -146,13 +173,13 @@ impl App {
             Command::Quit => return self.leave(),
             Command::Redraw => return vec![Effect::Redraw],
             Command::Suspend => {
-                let mut effects = self
-                    .day
-                    .as_mut()
-                    .map_or_else(|_| Vec::new(), Day::keep_draft);
-                effects.extend([Effect::FlushDrafts, Effect::Suspend]);
+                let mut effects = self.lock_now();
+                effects.push(Effect::Suspend);
                 return effects;
             }
+            Command::Lock => return self.lock_now(),
+            Command::DayPin => self.ask_pin(),
+            Command::Theme => self.ask_theme(),
             Command::Help => self.ask_help(),
             Command::Palette => self.ask_palette(),
             Command::Screener => self.ask_screener(),
@@ -172,7 +199,11 @@ impl App {
         Vec::new()
     }
 
-    fn go(&mut self, place: PlaceName) -> Vec<Effect> {
+    pub(crate) fn go(&mut self, place: PlaceName) -> Vec<Effect> {
+        if self.lock.is_day_only() && place != PlaceName::Day {
+            self.ask_for_place(place);
+            return Vec::new();
+        }
         if self.session.role.masked && matches!(place, PlaceName::Children | PlaceName::Referrals) {
             self.say(
                 Tone::Attention,

@@ -3,6 +3,7 @@
 
 use ratatui::Frame;
 use ratatui::layout::{Position, Rect};
+use ratatui::style::Color;
 use ratatui::text::{Line, Span};
 use ratatui::widgets::{Clear, Paragraph};
 
@@ -35,8 +36,14 @@ impl App {
     /// Draws everything.
     pub fn draw(&self, frame: &mut Frame<'_>) {
         let area = frame.area();
+        if self.lock.stands() {
+            self.draw_gate(frame);
+            self.paint(frame);
+            return;
+        }
         if area.width < SMALLEST.0 || area.height < SMALLEST.1 {
             draw_too_small(frame, area);
+            self.paint(frame);
             return;
         }
         let urgent_rows = self.urgent_rows();
@@ -117,6 +124,23 @@ impl App {
             cursor.y.min(area.bottom().saturating_sub(1)),
         ));
         settle_rtl(frame.buffer_mut());
+        self.paint(frame);
+    }
+
+    /// Gives letters and ground a color where nothing else was said.
+    fn paint(&self, frame: &mut Frame<'_>) {
+        let ground = self.session.theme.ground();
+        let (Some(letters), Some(under)) = (ground.fg, ground.bg) else {
+            return;
+        };
+        for cell in &mut frame.buffer_mut().content {
+            if cell.fg == Color::Reset {
+                cell.fg = letters;
+            }
+            if cell.bg == Color::Reset {
+                cell.bg = under;
+            }
+        }
     }
 
     fn draw_head(&self, frame: &mut Frame<'_>, area: Rect) {
@@ -223,7 +247,21 @@ impl App {
             Span::styled(mark, theme.attention()),
             Span::styled("──", theme.muted()),
         ];
-        if lower && let Some(notice) = self.notice.as_ref().filter(|n| n.tone != Tone::Error) {
+        if lower && let Some((tone, words)) = self.waiting_words() {
+            let style = if tone == Tone::Attention {
+                theme.attention()
+            } else {
+                theme.strong()
+            };
+            let text = cut(&safe(&words), columns.saturating_sub(6));
+            let rest = columns.saturating_sub(width(&text) + 4);
+            spans = vec![
+                Span::styled("── ", theme.muted()),
+                Span::styled(text, style),
+                Span::styled(format!(" {}", "─".repeat(rest)), theme.muted()),
+            ];
+        } else if lower && let Some(notice) = self.notice.as_ref().filter(|n| n.tone != Tone::Error)
+        {
             let style = if notice.tone == Tone::Attention {
                 theme.attention()
             } else {

@@ -4,6 +4,7 @@
 
 mod bench;
 mod board;
+mod comfort;
 mod desk;
 mod drawn;
 mod every_test;

@@ -28,6 +28,7 @@ fn one_key_saves_an_emergency_and_another_than_the_one_that_chose_it() {
 #[test]
 fn the_line_runs_in_every_place_until_it_is_answered() {
     let mut h = Hands::sit();
+    h.app.session.idle_minutes = 0;
     white_pupil(&mut h);
     h.typed("f");
     let since = h.app.urgent[0].since.utc_ms;
