@@ -54,6 +54,8 @@ pub use failure::Failure;
 pub struct Cli {
     #[command(flatten)]
     global: Global,
+    #[command(flatten)]
+    how: screens::How,
     #[command(subcommand)]
     command: Option<Command>,
 }
@@ -145,7 +147,7 @@ pub fn run(args: impl IntoIterator<Item = OsString>) -> Result<(), Failure> {
         signal_hook::flag::register_conditional_shutdown(SIGINT, 130, always)?;
     }
     match &cli.command {
-        None => screens::run(global),
+        None => screens::run(global, &cli.how),
         Some(Command::Demo(args)) => args.run(global),
         Some(Command::Init(args)) => args.run(global),
         Some(Command::Site(args)) => args.run(global),

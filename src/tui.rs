@@ -14,6 +14,7 @@ mod days;
 mod desk;
 mod gate;
 mod judging;
+mod linear;
 mod palette;
 mod prompt;
 mod prompt_view;

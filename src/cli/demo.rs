@@ -24,6 +24,8 @@ pub(super) struct Demo {
     /// Make the data and do not open the screens
     #[arg(long)]
     no_screens: bool,
+    #[command(flatten)]
+    how: screens::How,
 }
 
 impl Demo {
@@ -50,7 +52,7 @@ impl Demo {
             Some(_) => again(global, &dir)?,
         };
         if !self.no_screens {
-            return screens::show(desk);
+            return screens::show(desk, &self.how);
         }
         print_lines(&[
             format!("demo: not protected, invented data, {}", desk.today()),

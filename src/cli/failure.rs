@@ -1,8 +1,9 @@
 //! How a command ends when it does not end well.
 
 use std::fmt;
-use std::io;
+use std::io::{self, Write as _};
 
+use super::output::{error_width, folded_under};
 use crate::actions::judge::JudgeError;
 use crate::actions::rulebook::{RuleFileError, UnknownRule};
 use crate::actions::{ActionError, Damage, Kind};
@@ -75,17 +76,48 @@ impl Failure {
     }
 }
 
+impl Failure {
+    /// Returns the text in lines of at most `columns`, broken between words; the problems of a file
+    /// keep their lines.
+    pub fn in_columns(&self, columns: Option<usize>) -> String {
+        let mut lines: Vec<String> = Vec::new();
+        if !self.details.is_empty() {
+            lines.push(self.details.trim_end().to_owned());
+        }
+        let told = [
+            ("error: ", Some(&self.message)),
+            ("hint: ", self.hint.as_ref()),
+        ];
+        for (label, text) in told {
+            let Some(text) = text.filter(|t| !t.is_empty()) else {
+                continue;
+            };
+            let mut label = label.to_owned();
+            for line in text.lines() {
+                match columns {
+                    Some(columns) => lines.extend(folded_under(&label, line, columns)),
+                    None => lines.push(format!("{label}{line}")),
+                }
+                label = String::new();
+            }
+        }
+        let mut out = lines.join("\n");
+        out.push('\n');
+        out
+    }
+
+    /// Writes it to standard error, as wide as the terminal there.
+    pub fn print(&self) {
+        // Nothing can be done about a standard error that is closed.
+        let _ = io::stderr()
+            .lock()
+            .write_all(self.in_columns(error_width()).as_bytes());
+    }
+}
+
 impl fmt::Display for Failure {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
-        if !self.details.is_empty() {
-            writeln!(f, "{}", self.details.trim_end())?;
-        }
-        if !self.message.is_empty() {
-            writeln!(f, "error: {}", self.message)?;
-        }
-        self.hint
-            .as_ref()
-            .map_or(Ok(()), |hint| writeln!(f, "hint: {hint}"))
+        f.write_str(&self.in_columns(None))
     }
 }
 
@@ -173,5 +205,33 @@ fn safe(text: &str) -> String {
 impl From<io::Error> for Failure {
     fn from(error: io::Error) -> Self {
         Failure::failed(error.to_string())
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+
+    #[test]
+    fn a_message_breaks_between_words_at_the_width_of_the_terminal() {
+        let failure =
+            Failure::bad_input("the clock of this computer is three days behind the newest entry")
+                .hint("set the clock, then start again; nothing was written meanwhile")
+                .details(
+                    &"roster.csv:3: a line of its own that stays as it is, however long it may be",
+                );
+        let text = failure.in_columns(Some(40));
+        let mut lines = text.lines();
+        assert!(lines.next().is_some_and(|l| l.len() > 40));
+        for line in lines {
+            assert!(line.len() <= 40, "{line}");
+        }
+        let words = |text: &str| {
+            text.split_whitespace()
+                .map(str::to_owned)
+                .collect::<Vec<_>>()
+        };
+        assert_eq!(words(&text), words(&failure.to_string()));
+        assert_eq!(failure.to_string().lines().count(), 3);
     }
 }

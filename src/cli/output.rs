@@ -37,7 +37,11 @@ pub(super) fn clean(line: &str) -> String {
 
 /// Writes a line to standard error; nothing can be done when that is closed.
 pub(super) fn say(line: &str) {
-    let _ = writeln!(io::stderr().lock(), "{line}");
+    let lines = match error_width() {
+        Some(columns) => folded_under("", line, columns),
+        None => vec![line.to_owned()],
+    };
+    let _ = writeln!(io::stderr().lock(), "{}", lines.join("\n"));
 }
 
 /// Shows that work goes on, on standard error and only where that is a terminal, until it is done.
@@ -100,6 +104,45 @@ fn folded(text: &str, indent: &str, width: usize) -> Vec<String> {
         }
     }
     lines
+}
+
+/// Returns the columns of the terminal on standard output, 80 where there is none.
+pub(super) fn width() -> usize {
+    columns_of(&io::stdout()).unwrap_or(80)
+}
+
+/// Returns the columns of the terminal on standard error; nothing where there is none.
+pub(super) fn error_width() -> Option<usize> {
+    columns_of(&io::stderr())
+}
+
+fn columns_of(stream: &impl IsTerminal) -> Option<usize> {
+    if !stream.is_terminal() {
+        return None;
+    }
+    crossterm::terminal::size()
+        .ok()
+        .map(|(columns, _)| usize::from(columns).max(20))
+}
+
+/// Returns a text behind a label in lines of at most `columns`, the later ones set in under the first.
+pub(super) fn folded_under(label: &str, text: &str, columns: usize) -> Vec<String> {
+    let lead = label.width();
+    let mut lines = folded(text, "", columns.saturating_sub(lead).max(10));
+    if lines.is_empty() {
+        lines.push(String::new());
+    }
+    lines
+        .into_iter()
+        .enumerate()
+        .map(|(i, line)| {
+            if i == 0 {
+                format!("{label}{line}")
+            } else {
+                format!("{}{line}", " ".repeat(lead))
+            }
+        })
+        .collect()
 }
 
 /// Returns rows of cells as lines with aligned columns.

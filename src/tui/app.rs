@@ -60,6 +60,8 @@ pub struct Session {
     pub triage: Vec<String>,
     /// Styles.
     pub theme: Theme,
+    /// Whether everything is shown as plain lines for a screen reader.
+    pub linear: bool,
     /// Whether colors may be used at all.
     pub color: bool,
     /// Minutes without a key after which the screen is locked; 0 never.

@@ -129,6 +129,7 @@ pub fn session(
         } else {
             Theme::new(false)
         },
+        linear: false,
         color,
         idle_minutes: desk
             .preference("idle_minutes")

@@ -34,6 +34,8 @@ pub struct Options {
     pub color: bool,
     /// The theme, where another than the kept one is wanted.
     pub theme: Option<ThemeName>,
+    /// Whether everything is shown as plain lines for a screen reader.
+    pub linear: bool,
 }
 
 impl Default for Options {
@@ -45,6 +47,7 @@ impl Default for Options {
         Options {
             color: !asked_not_to && !cannot,
             theme: None,
+            linear: false,
         }
     }
 }
@@ -76,6 +79,7 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     if let Some(theme) = options.theme.filter(|_| options.color) {
         app.session.theme = Theme::named(theme);
     }
+    app.session.linear = options.linear;
     let (to_store, jobs) = channel();
     let (answers, from_store) = channel();
     let clerk = Clerk::new(desk);
@@ -261,7 +265,8 @@ fn event_loop(
         let now = clock::now();
         // The running line of an emergency and a slow disk count seconds, the clock at the foot
         // minutes.
-        let counts = !app.urgent.is_empty() || app.is_waiting();
+        // A screen reader would speak each second.
+        let counts = !app.session.linear && (!app.urgent.is_empty() || app.is_waiting());
         let tick = if counts { 1_000 } else { 60_000 };
         stale = !messages.is_empty() || now.utc_ms / tick != app.session.now_ms / tick;
         app.session.now_ms = now.utc_ms;

@@ -247,12 +247,11 @@ mod tests {
         const CUBE: [u8; 6] = [0, 95, 135, 175, 215, 255];
         assert!(index >= 16, "{index} is the terminal's own color");
         let grey = |n: u8| 8 + 10 * n;
-        let values = match index {
-            232.. => [grey(index - 232); 3],
-            _ => {
-                let n = index - 16;
-                [n / 36, n / 6 % 6, n % 6].map(|i| CUBE[usize::from(i)])
-            }
+        let values = if index >= 232 {
+            [grey(index - 232); 3]
+        } else {
+            let n = index - 16;
+            [n / 36, n / 6 % 6, n % 6].map(|i| CUBE[usize::from(i)])
         };
         values.map(|v| f64::from(v) / 255.0)
     }

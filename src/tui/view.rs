@@ -36,6 +36,11 @@ impl App {
     /// Draws everything.
     pub fn draw(&self, frame: &mut Frame<'_>) {
         let area = frame.area();
+        if self.session.linear {
+            self.draw_linear(frame);
+            self.paint(frame);
+            return;
+        }
         if self.lock.stands() {
             self.draw_gate(frame);
             self.paint(frame);
@@ -284,7 +289,7 @@ impl App {
         frame.render_widget(Paragraph::new(Line::from(spans)), area);
     }
 
-    fn draw_place(&self, frame: &mut Frame<'_>, area: Rect) -> Position {
+    pub(crate) fn draw_place(&self, frame: &mut Frame<'_>, area: Rect) -> Position {
         match (self.at, &self.day) {
             (PlaceName::Day, Ok(_)) if self.board.is_shown() => {
                 self.board.draw(frame, area, &self.session)

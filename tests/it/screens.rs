@@ -9,6 +9,7 @@ mod desk;
 mod drawn;
 mod every_test;
 mod keystrokes;
+mod linear;
 mod people;
 mod rare_values;
 mod referrals;

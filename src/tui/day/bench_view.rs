@@ -1,7 +1,7 @@
 //! Draws the bench: who it is, the fields with right and left side by side, the ladder.
 
-mod cells;
-mod head;
+pub mod cells;
+pub mod head;
 
 use ratatui::Frame;
 use ratatui::layout::{Position, Rect};

@@ -472,8 +472,19 @@ fn a_head_that_is_not_the_stores_fails() {
 #[test]
 fn the_key_table_is_the_one_of_the_screens() {
     let out = Bench::empty().ok(&["keys"]);
-    assert_eq!(out.lines().count(), 1 + twoline::keys::rows().len());
-    assert!(out.starts_with("where "), "{out}");
+    for [place, keys, command, _] in twoline::keys::rows() {
+        assert!(out.lines().any(|l| l == place), "{place}\n{out}");
+        assert!(
+            out.contains(&keys) && out.contains(&format!("({command})")),
+            "{out}"
+        );
+    }
+    assert!(out.lines().all(|l| l.chars().count() <= 80), "{out}");
+    let card = Bench::empty().ok(&["keys", "--format", "html"]);
+    assert!(
+        card.starts_with("<!DOCTYPE html>") && card.contains("@page"),
+        "{card}"
+    );
 }
 
 #[test]

@@ -17,8 +17,8 @@ const PASSPHRASE: &str = "nine green kettles sing";
 
 /// A desk at a store that a passphrase protects, on a day that has begun.
 fn protected() -> Hands {
-    let (plain, folder) = store(super::desk::ROSTER, AcuityMethod::Threshold);
-    drop(plain);
+    let (unused, folder) = store(super::desk::ROSTER, AcuityMethod::Threshold);
+    drop(unused);
     let options = DeskOptions {
         today: Some(day()),
         ..DeskOptions::default()
@@ -82,7 +82,10 @@ fn a_lock_shows_nothing_of_a_child_and_keeps_what_was_typed() {
     h.press(Key::ctrl('x'));
     is_locked(&h);
     // Keys, a scan, a paste and function keys at the lock reach nothing behind it.
-    h.scan("Q-10488").paste("777/7").press(Key::f(10)).typed("99");
+    h.scan("Q-10488")
+        .paste("777/7")
+        .press(Key::f(10))
+        .typed("99");
     is_locked(&h);
     h.press(Key::ctrl('u')).typed(PASSPHRASE);
     assert!(!h.screen().contains(PASSPHRASE));

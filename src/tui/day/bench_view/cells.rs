@@ -11,7 +11,7 @@ use crate::tui::text::safe;
 use crate::tui::theme::Theme;
 
 /// Returns what stands in a field.
-pub(super) fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, Style) {
+pub fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, Style) {
     let raw = bench.raw(field);
     let plain = Style::new();
     if here && matches!(kind::kind(field), Kind::Acuity | Kind::Text) && !raw.starts_with("NT:") {

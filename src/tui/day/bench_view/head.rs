@@ -51,7 +51,7 @@ pub(super) fn lines(bench: &Bench, columns: usize, theme: Theme) -> Vec<Line<'st
 }
 
 /// Returns what is to be known before testing: id, rescreen, consent, care, history.
-fn standing(bench: &Bench, theme: Theme) -> Vec<Span<'static>> {
+pub fn standing(bench: &Bench, theme: Theme) -> Vec<Span<'static>> {
     let child = &bench.child;
     let mut spans = vec![Span::styled(safe(&child.child_id), theme.muted())];
     let mut add = |text: String, style| {
