@@ -218,7 +218,7 @@ commands! {
     OneKind = "one-kind"; Stricter = "stricter"; Milder = "milder"; OtherSet = "other-set";
     PutBack = "put-back"; Tests = "other-tests"; SecondTry = "second-try";
     Note = "note"; ValueHistory = "value-history"; Discreet = "discreet";
-    Station = "station"; Lock = "lock"; DayPin = "set-day-pin"; Theme = "theme";
+    Station = "station"; Lock = "lock"; DayPin = "set-day-pin"; Theme = "theme"; Tour = "tour";
 }
 
 /// One line of the table: what a command is called, where and by which keys.

@@ -26,6 +26,7 @@ mod submit;
 mod tables;
 mod text;
 mod theme;
+mod tour;
 mod update;
 pub mod view;
 mod waiting;

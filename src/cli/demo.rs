@@ -24,6 +24,9 @@ pub(super) struct Demo {
     /// Make the data and do not open the screens
     #[arg(long)]
     no_screens: bool,
+    /// Begin with the tour, which leads through the screens in five minutes
+    #[arg(long)]
+    tour: bool,
     #[command(flatten)]
     how: screens::How,
 }
@@ -52,7 +55,7 @@ impl Demo {
             Some(_) => again(global, &dir)?,
         };
         if !self.no_screens {
-            return screens::show(desk, &self.how);
+            return screens::show(desk, &self.how, self.tour);
         }
         print_lines(&[
             format!("demo: not protected, invented data, {}", desk.today()),

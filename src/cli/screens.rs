@@ -40,13 +40,20 @@ fn theme(word: &str) -> Result<tui::ThemeName, String> {
 /// the screens then say.
 pub(super) fn run(global: &Global, how: &How) -> Result<(), Failure> {
     needs_terminal()?;
-    show(open::to_write_or_read(global)?, how)
+    show(open::to_write_or_read(global)?, how, false)
 }
 
 /// Shows an open store.
-pub(super) fn show(desk: Desk, how: &How) -> Result<(), Failure> {
+pub(super) fn show(desk: Desk, how: &How, tour: bool) -> Result<(), Failure> {
     needs_terminal()?;
-    tui::run(desk, how.options()).map_err(|error| match error {
+    tui::run(
+        desk,
+        tui::Options {
+            tour,
+            ..how.options()
+        },
+    )
+    .map_err(|error| match error {
         tui::Error::Store(error) => error.into(),
         other => Failure::failed(other.to_string()),
     })

@@ -167,6 +167,7 @@ pub const TABLE: &[Binding] = &[
     on(C::Places, K::Lock, &[Key::ctrl('x')], "", "Locks the screen; drafts are saved"),
     on(C::Places, K::DayPin, &[], "", "Sets a day PIN of six digits, which opens Day alone after a lock"),
     on(C::Places, K::Theme, &[], "", "Changes the colors: light, dark, contrast or plain"),
+    on(C::Places, K::Tour, &[Key::alt('g')], "", "Begins the tour of the demo, or leaves it"),
     on(C::Places, K::Redraw, &[Key::ctrl('l')], "", "Draws the whole screen anew"),
     on(C::Everywhere, K::Quit, &[Key::ctrl('q'), Key::ctrl('c')], "", "Leaves; drafts are kept"),
 ];

@@ -165,6 +165,11 @@ impl App {
             text: words,
             hint: signed.head.clone(),
         });
+        if verb == "saved"
+            && let Some(tour) = &mut self.tour
+        {
+            tour.signed(outcome.kind);
+        }
         let urgent_now = emergency || self.urgent.iter().any(|u| u.visit == signed.visit);
         let mut effects = match &mut self.day {
             Ok(day) => day.signed(signed),

@@ -27,6 +27,7 @@ use crate::tui::referrals::Referrals;
 use crate::tui::rules::Rules;
 use crate::tui::tables::Table;
 use crate::tui::theme::Theme;
+use crate::tui::tour::Tour;
 use crate::tui::waiting::Asked;
 
 /// What stays the same while the screens are open, and the clock.
@@ -160,6 +161,8 @@ pub struct App {
     pub urgent: Vec<OpenUrgent>,
     /// The lock, and what opens it.
     pub lock: Lock,
+    /// The tour, where somebody takes it.
+    pub tour: Option<Tour>,
     /// What the store was asked and has not answered, in that order.
     pub(crate) asked: VecDeque<Asked>,
 }
@@ -332,6 +335,7 @@ impl App {
             notice: None,
             urgent,
             lock: Lock::default(),
+            tour: None,
             asked: VecDeque::new(),
             session,
         }

@@ -140,6 +140,10 @@ impl App {
             ));
         }
         out.say(self.heading());
+        if let Some(tour) = &self.tour {
+            let line = tour.line().replace('↑', "Up");
+            out.say(format!("{line}. Alt-g leaves the tour."));
+        }
         match &self.prompt {
             Some(prompt) => out.take(self.read_prompt(prompt, rows)),
             None => out.take(self.read_place(rows)),

@@ -109,6 +109,7 @@ impl App {
                 Some("no screener is entered yet".into())
             }
             K::DayPin if self.lock.is_day_only() => Some("the passphrase first".into()),
+            K::Tour if !self.session.demo => Some("only in the demo".into()),
             K::Theme if !self.session.color => Some("colors are off: NO_COLOR".into()),
             _ => None,
         }

@@ -36,6 +36,8 @@ pub struct Options {
     pub theme: Option<ThemeName>,
     /// Whether everything is shown as plain lines for a screen reader.
     pub linear: bool,
+    /// Whether the tour of the demo begins.
+    pub tour: bool,
 }
 
 impl Default for Options {
@@ -48,6 +50,7 @@ impl Default for Options {
             color: !asked_not_to && !cannot,
             theme: None,
             linear: false,
+            tour: false,
         }
     }
 }
@@ -80,6 +83,9 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
         app.session.theme = Theme::named(theme);
     }
     app.session.linear = options.linear;
+    if options.tour {
+        app.begin_tour();
+    }
     let (to_store, jobs) = channel();
     let (answers, from_store) = channel();
     let clerk = Clerk::new(desk);

@@ -45,6 +45,7 @@ impl App {
             Message::Leave => self.leave(),
         };
         self.note_asked(&effects);
+        self.tour_on();
         effects
     }
 
@@ -169,7 +170,11 @@ impl App {
 
     /// Carries out a command.
     pub(crate) fn run(&mut self, command: Command) -> Vec<Effect> {
+        if let Some(tour) = &mut self.tour {
+            tour.ran(command);
+        }
         match command {
+            Command::Tour => self.toggle_tour(),
             Command::Quit => return self.leave(),
             Command::Redraw => return vec![Effect::Redraw],
             Command::Suspend => {

@@ -73,7 +73,8 @@ impl App {
         };
         let notice_rows =
             u16::from(self.notice.as_ref().is_some_and(|n| n.tone == Tone::Error)) * 2;
-        let body = take(area.height - 3 - urgent_rows - verdict_rows - notice_rows);
+        let tour_rows = u16::from(self.tour.is_some());
+        let body = take(area.height - 3 - urgent_rows - verdict_rows - notice_rows - tour_rows);
         let lower_rule = Rect {
             y: body.bottom(),
             height: 1,
@@ -99,7 +100,7 @@ impl App {
         };
         let verdict_area = Rect {
             y: lower_rule.bottom(),
-            height: foot.y.saturating_sub(lower_rule.bottom()),
+            height: (foot.y - tour_rows).saturating_sub(lower_rule.bottom()),
             ..verdict_area
         };
 
@@ -110,12 +111,13 @@ impl App {
         self.draw_rule(frame, lower_rule, true);
         self.draw_verdict(frame, verdict_area);
         self.draw_foot(frame, foot);
+        self.draw_tour(frame, foot);
         let cursor = match &self.prompt {
             Some(prompt) => {
-                let limit = area.height - 2 - urgent_rows - 4;
+                let limit = area.height - 2 - urgent_rows - tour_rows - 4;
                 let rows = prompt_view::height(prompt, area.width).min(limit);
                 let place = Rect {
-                    y: foot.y - rows,
+                    y: foot.y - tour_rows - rows,
                     height: rows,
                     ..area
                 };
@@ -331,6 +333,28 @@ impl App {
             lines.extend(verdict::lines(bench, &self.session, columns, room));
         }
         frame.render_widget(Paragraph::new(lines), area);
+    }
+
+    /// The step of the tour, in the line above the foot.
+    fn draw_tour(&self, frame: &mut Frame<'_>, foot: Rect) {
+        let Some(tour) = &self.tour else {
+            return;
+        };
+        let theme = self.session.theme;
+        let (left, right) = ends(
+            &format!(" {}", tour.line()),
+            "Alt-g leaves ",
+            usize::from(foot.width),
+        );
+        let line = Line::from(vec![
+            Span::styled(left, theme.focus()),
+            Span::styled(right, theme.muted()),
+        ]);
+        let place = Rect {
+            y: foot.y - 1,
+            ..foot
+        };
+        frame.render_widget(Paragraph::new(line), place);
     }
 
     /// The keys of the context; the whole list is always last and always there.

@@ -6,18 +6,18 @@ use std::time::{Duration, Instant};
 
 use portable_pty::{Child, CommandBuilder, MasterPty, PtySize, native_pty_system};
 
-struct Terminal {
-    master: Box<dyn MasterPty>,
-    writer: Box<dyn Write + Send>,
-    child: Box<dyn Child + Send + Sync>,
-    screen: Arc<Mutex<vt100::Parser>>,
+pub(super) struct Terminal {
+    pub(super) master: Box<dyn MasterPty>,
+    pub(super) writer: Box<dyn Write + Send>,
+    pub(super) child: Box<dyn Child + Send + Sync>,
+    pub(super) screen: Arc<Mutex<vt100::Parser>>,
 }
 
-fn cells(n: u16) -> std::num::NonZero<u16> {
+pub(super) fn cells(n: u16) -> std::num::NonZero<u16> {
     std::num::NonZero::new(n).unwrap()
 }
 
-fn size(columns: u16, rows: u16) -> PtySize {
+pub(super) fn size(columns: u16, rows: u16) -> PtySize {
     PtySize {
         rows,
         cols: columns,
@@ -27,7 +27,7 @@ fn size(columns: u16, rows: u16) -> PtySize {
 }
 
 impl Terminal {
-    fn open(store: &std::path::Path) -> Terminal {
+    pub(super) fn open(store: &std::path::Path) -> Terminal {
         let pair = native_pty_system().openpty(size(80, 24)).unwrap();
         let mut command = CommandBuilder::new(env!("CARGO_BIN_EXE_twoline"));
         command.args(["--store", store.to_str().unwrap(), "demo"]);
@@ -54,12 +54,12 @@ impl Terminal {
         }
     }
 
-    fn contents(&self) -> String {
+    pub(super) fn contents(&self) -> String {
         self.screen.lock().unwrap().screen().contents()
     }
 
     #[track_caller]
-    fn wait_for(&self, text: &str) {
+    pub(super) fn wait_for(&self, text: &str) {
         let until = Instant::now() + Duration::from_mins(1);
         while Instant::now() < until {
             if self.contents().contains(text) {
@@ -70,9 +70,14 @@ impl Terminal {
         panic!("not on the screen: {text}\n{}", self.contents());
     }
 
-    fn send(&mut self, text: &str) {
+    /// Types without waiting, as a script does.
+    pub(super) fn type_in(&mut self, text: &str) {
         self.writer.write_all(text.as_bytes()).unwrap();
         self.writer.flush().unwrap();
+    }
+
+    pub(super) fn send(&mut self, text: &str) {
+        self.type_in(text);
         std::thread::sleep(Duration::from_millis(120));
     }
 }
