@@ -71,7 +71,7 @@ pub const TABLE: &[Binding] = &[
     on(C::Day, K::Correct, &[Key::ctrl('e'), Key::alt('c')], "correct", "Corrects a signed value, with the reason"),
     on(C::Day, K::Tests, &[Key::f(12), Key::alt('t')], "", "Brings another test to the bench, or goes to it"),
     on(C::Day, K::SecondTry, &[Key::alt('r')], "", "Enters a second try of a child who was not testable; both tries stay"),
-    on(C::Day, K::Note, &[Key::alt('o')], "note", "Writes one line of note for the visit; it is kept and shown, never judged"),
+    on(C::Day, K::Note, &[Key::f(7), Key::alt('o')], "note", "Writes one line of note for the visit; it is kept and shown, never judged"),
     on(C::Day, K::ValueHistory, &[Key::alt('v')], "", "Shows every value that the field under the cursor had: who, when and why"),
     on(C::Day, K::Discreet, &[Key::alt('i')], "", "Keeps outcomes, reasons and notes off the screen, or shows them again"),
     on(C::Day, K::Station, &[], "", "Sets the one test of this station, whether it is masked, and its chart"),

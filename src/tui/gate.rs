@@ -352,7 +352,7 @@ impl App {
         lines.push(title);
         lines.push(safe(&format!(
             "{} · station {}",
-            self.session.programme, self.session.station
+            self.session.programme, self.session.role.name
         )));
         let at = lines.len();
         lines.push(format!("{question}: {dots}"));

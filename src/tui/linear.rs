@@ -14,8 +14,8 @@ use crate::domain::codes::SignKind;
 use crate::keys;
 use crate::tui::app::{App, PlaceName, Tone};
 use crate::tui::day::bench::{Bench, Spot, State};
-use crate::tui::day::bench_view::cells::cell;
 use crate::tui::day::bench_view::value_words;
+use crate::tui::day::bench_view::{self, cells::cell};
 use crate::tui::day::kind::{self, Kind};
 use crate::tui::day::verdict;
 use crate::tui::prompt::{Body, Prompt, SignMarks};
@@ -218,7 +218,8 @@ impl App {
                 .filter(|text| !text.is_empty())
                 .collect();
         out.say(standing.join(", "));
-        if let Some(pass) = &bench.pass_line {
+        let quiet = bench.keeps_back() || self.session.discreet;
+        if let Some(pass) = bench.pass_line.as_ref().filter(|_| !quiet) {
             out.say(format!("{} {}", pass.line, pass.words));
         }
         for field in &bench.path {
@@ -272,18 +273,22 @@ impl App {
                 out.say(format!("choices: {}", offered.join("; ")));
             }
         }
-        let sign = if bench.is_signed() {
-            "sign: this visit is signed".to_owned()
-        } else {
-            format!("sign: Enter signs: {}", bench.outcome.kind.title())
-        };
+        if let Some(note) = &bench.readings.note {
+            out.say(if self.session.discreet {
+                "note: there is one".to_owned()
+            } else {
+                format!("note: {}", safe(note))
+            });
+        }
+        let (line, _) = bench_view::sign_line(bench, &self.session, usize::from(WIDE), true);
+        let sign = clean(&line.to_string()).replacen(", ", ": ", 1);
         if bench.at == Spot::Sign {
             out.say_here(sign, 0);
         } else {
             out.say("sign");
         }
         let at = (out.at, out.column);
-        for line in verdict::lines(bench, usize::from(WIDE), 12, self.session.theme) {
+        for line in verdict::lines(bench, &self.session, usize::from(WIDE), 12) {
             out.say(clean(&line.to_string()));
         }
         (out.at, out.column) = at;

@@ -13,7 +13,7 @@ const STEPS: [&str; 10] = [
     "find a child: Esc, three letters of a name, Enter",
     "two eyes on the ladder: ↑ Enter, then ↑ Enter",
     "Enter until it signs; the next child comes by itself",
-    "a child who does not pass: 100 for one eye, then sign",
+    "a child who does not pass: 50 for both eyes, then sign",
     "F4 shows the whole reason with its source; Esc closes",
     "an eye that cannot be tested: F2 and a reason",
     "a child who is not here: F3, then a",

@@ -410,7 +410,7 @@ fn label_span(field: Field, here: bool, theme: Theme) -> Span<'static> {
 }
 
 /// The line that signs says what will be stored.
-fn sign_line(
+pub fn sign_line(
     bench: &Bench,
     session: &Session,
     columns: usize,

@@ -49,7 +49,7 @@ fn a_child_is_entered_by_listening() {
     );
     h.typed("2").enter();
     let (lines, focused) = read(&h, 80, 24);
-    assert_eq!(focused, "sign: Enter signs: rescreen");
+    assert_eq!(focused, "sign: Enter signs: rescreen, no signs seen");
     assert!(lines.iter().any(|l| l.contains("RESCREEN by 28 Oct 2026")));
     h.enter();
     // What changed stands in the first row, in every place and at every height.

@@ -40,7 +40,7 @@ fn each_step_waits_until_it_is_done() {
     // A child who passes is not what the step asks for.
     h.typed("n").typed("20").enter().typed("20").enter().enter();
     at(&mut h, 4);
-    h.typed("100").enter().typed("20").enter().enter();
+    h.typed("50").enter().typed("50").enter().enter();
     at(&mut h, 5);
     h.press(Key::f(4)).sees("the whole reason");
     at(&mut h, 6);
