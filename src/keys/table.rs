@@ -135,7 +135,7 @@ pub const TABLE: &[Binding] = &[
     on(C::Signs, K::Toggle, &[Key::char(' ')], "mark", "Marks or unmarks the sign"),
     on(C::Signs, K::SideRight, &[Key::char('r')], "right eye", "Marks the sign in the right eye"),
     on(C::Signs, K::SideLeft, &[Key::char('l')], "left eye", "Marks the sign in the left eye"),
-    on(C::Signs, K::SideBoth, &[Key::char('b')], "both", "Marks the sign in both eyes"),
+    on(C::Signs, K::SideBoth, &[Key::char('b')], "", "Marks the sign in both eyes"),
     on(C::Signs, K::NoneSeen, &[Key::char('n')], "none seen", "Says that somebody looked and saw none"),
     on(C::Signs, K::ChoiceUp, &[UP], "", "Goes to the sign before"),
     on(C::Signs, K::ChoiceDown, &[DOWN], "", "Goes to the next sign"),

@@ -61,8 +61,6 @@ pub struct Session {
     pub triage: Vec<String>,
     /// Styles.
     pub theme: Theme,
-    /// Whether everything is shown as plain lines for a screen reader.
-    pub linear: bool,
     /// Whether colors may be used at all.
     pub color: bool,
     /// Minutes without a key after which the screen is locked; 0 never.
@@ -159,6 +157,8 @@ pub struct App {
     pub notice: Option<Notice>,
     /// Emergencies that wait for the word who was told.
     pub urgent: Vec<OpenUrgent>,
+    /// Whether everything is shown as plain lines for a screen reader.
+    pub linear: bool,
     /// The lock, and what opens it.
     pub lock: Lock,
     /// The tour, where somebody takes it.
@@ -334,6 +334,7 @@ impl App {
             prompt: None,
             notice: None,
             urgent,
+            linear: false,
             lock: Lock::default(),
             tour: None,
             asked: VecDeque::new(),

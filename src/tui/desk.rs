@@ -129,7 +129,6 @@ pub fn session(
         } else {
             Theme::new(false)
         },
-        linear: false,
         color,
         idle_minutes: desk
             .preference("idle_minutes")

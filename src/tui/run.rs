@@ -82,7 +82,7 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     if let Some(theme) = options.theme.filter(|_| options.color) {
         app.session.theme = Theme::named(theme);
     }
-    app.session.linear = options.linear;
+    app.linear = options.linear;
     if options.tour {
         app.begin_tour();
     }
@@ -272,7 +272,7 @@ fn event_loop(
         // The running line of an emergency and a slow disk count seconds, the clock at the foot
         // minutes.
         // A screen reader would speak each second.
-        let counts = !app.session.linear && (!app.urgent.is_empty() || app.is_waiting());
+        let counts = !app.linear && (!app.urgent.is_empty() || app.is_waiting());
         let tick = if counts { 1_000 } else { 60_000 };
         stale = !messages.is_empty() || now.utc_ms / tick != app.session.now_ms / tick;
         app.session.now_ms = now.utc_ms;
@@ -352,4 +352,29 @@ fn take() -> io::Result<()> {
 fn give_back() -> io::Result<()> {
     disable_raw_mode()?;
     execute!(io::stdout(), DisableBracketedPaste, LeaveAlternateScreen)
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crossterm::event::{KeyCode, KeyEvent, KeyModifiers, MouseEvent, MouseEventKind};
+
+    #[test]
+    fn a_repeat_is_a_press_and_a_release_or_the_mouse_is_nothing() {
+        let event = |kind| {
+            let key = KeyEvent::new_with_kind(KeyCode::Char('2'), KeyModifiers::NONE, kind);
+            message_of(Event::Key(key))
+        };
+        for kind in [KeyEventKind::Press, KeyEventKind::Repeat] {
+            assert!(matches!(event(kind), Some(Message::Key(key)) if key == Key::char('2')));
+        }
+        assert!(event(KeyEventKind::Release).is_none());
+        let mouse = MouseEvent {
+            kind: MouseEventKind::Moved,
+            column: 1,
+            row: 1,
+            modifiers: KeyModifiers::NONE,
+        };
+        assert!(message_of(Event::Mouse(mouse)).is_none());
+    }
 }

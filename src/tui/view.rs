@@ -36,7 +36,7 @@ impl App {
     /// Draws everything.
     pub fn draw(&self, frame: &mut Frame<'_>) {
         let area = frame.area();
-        if self.session.linear {
+        if self.linear {
             self.draw_linear(frame);
             self.paint(frame);
             return;
@@ -363,7 +363,7 @@ impl App {
         let columns = usize::from(area.width);
         let words = keys::foot(self.context());
         let (last, first) = match words.split_last() {
-            Some((last, first)) if last.1 == "keys" => (Some(last), first),
+            Some((last, first)) if matches!(last.1, "keys" | "back") => (Some(last), first),
             _ => (None, words.as_slice()),
         };
         let reserved = last.map_or(0, |(k, w)| width(k) + w.len() + 4);

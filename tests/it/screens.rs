@@ -15,6 +15,7 @@ mod people;
 mod rare_values;
 mod referrals;
 mod rules_place;
+mod sizes;
 mod stations;
 mod storms;
 mod terminal;

@@ -142,49 +142,6 @@ fn a_critical_line_day_and_an_emergency() {
 }
 
 #[test]
-fn no_size_crashes_anything() {
-    let mut screens: Vec<Hands> = Vec::new();
-    for keys in [
-        vec![],
-        vec![Key::f(2)],
-        vec![Key::f(4)],
-        vec![Key::f(5)],
-        vec![Key::f(11)],
-        vec![Key::f(10)],
-        vec![Key::char('?')],
-        vec![Key::ctrl('p')],
-        vec![Key::alt('2')],
-        vec![Key::alt('3')],
-        vec![Key::alt('4')],
-        vec![Key::alt('5')],
-        vec![Key::alt('d')],
-        vec![Key::alt('b')],
-    ] {
-        let mut h = begun();
-        for key in keys {
-            h.press(key);
-        }
-        screens.push(h);
-    }
-    let mut urgent = begun();
-    urgent.press(Key::f(5));
-    for _ in 0..3 {
-        urgent.key(KeyCode::Down);
-    }
-    urgent.typed("l").enter().typed("f").press(Key::f(9));
-    screens.push(urgent);
-    for (i, h) in screens.iter().enumerate() {
-        for columns in (1..=250).step_by(7).chain([79, 80, 81]) {
-            for rows in (1..=70).step_by(5).chain([23, 24, 25]) {
-                if (columns + rows + i as u16).is_multiple_of(3) {
-                    let _ = h.screen_at(columns, rows);
-                }
-            }
-        }
-    }
-}
-
-#[test]
 fn names_of_every_script_keep_the_rule_in_its_column() {
     let h = Hands::sit();
     let screen = h.screen();

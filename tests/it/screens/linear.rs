@@ -9,7 +9,7 @@ use super::desk::Hands;
 
 fn linear() -> Hands {
     let mut h = Hands::sit();
-    h.app.session.linear = true;
+    h.app.linear = true;
     h
 }
 

@@ -102,9 +102,9 @@ fn naughty_names_go_from_roster_to_screens_to_report_and_back() {
         let (columns, rows) = sizes[i % sizes.len()];
         assert_eq!(unsafe_char(&h, columns, rows), None, "{id} on the bench");
         if i.is_multiple_of(8) {
-            h.app.session.linear = true;
+            h.app.linear = true;
             assert_eq!(unsafe_char(&h, columns, rows), None, "{id} in plain lines");
-            h.app.session.linear = false;
+            h.app.linear = false;
             h.typed("20").enter().typed("25").enter().enter();
             assert_eq!(unsafe_char(&h, columns, rows), None, "{id} saved");
             h.press(Key::alt('2'));

@@ -1,6 +1,8 @@
 //! The real program in a real terminal under bad weather: a class typed from a script, a storm of
 //! resizes, a flood of paste, signals at random moments, a panic.
 
+#![allow(clippy::print_stdout)]
+
 use std::io::Write as _;
 use std::time::{Duration, Instant};
 

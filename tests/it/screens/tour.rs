@@ -15,9 +15,9 @@ fn at(h: &mut Hands, step: usize) {
         assert!(lines[usize::from(rows) - 2].contains(&words), "{screen}");
         assert!(screen.contains("Alt-g leaves"), "{screen}");
     }
-    h.app.session.linear = true;
+    h.app.linear = true;
     assert!(h.screen().contains(&words), "{}", h.screen());
-    h.app.session.linear = false;
+    h.app.linear = false;
 }
 
 #[test]
