@@ -362,7 +362,8 @@ fn flat(height: u16, list_only: bool, draw: impl FnOnce(&mut Frame<'_>, Rect) ->
 /// Adds the words of one row between two columns; pictures and empty rows are left out.
 fn put(out: &mut Read, buffer: &Buffer, (from, to): (u16, u16), y: u16, at: Position) {
     let row = text_of(buffer, from, to, y);
-    if row.contains('┤') {
+    // A rung of the ladder repeats what the fields say; the bar of a station stands beside figures.
+    if row.contains('┤') && !row.contains('├') {
         return;
     }
     let line = clean(&row);
@@ -399,6 +400,7 @@ fn clean(row: &str) -> String {
     let plain: String = row
         .chars()
         .map(|c| match c {
+            '▸' => '▸',
             '\u{2500}'..='\u{25FF}' | '\u{200E}' | '\u{200F}' => ' ',
             other => other,
         })
@@ -411,6 +413,7 @@ fn clean(row: &str) -> String {
             "·" => "none".to_owned(),
             "✓" => "chosen".to_owned(),
             part => part
+                .replace("▸ ", "here: ")
                 .replace("✓ ", "chosen: ")
                 .replace(" · ", ", ")
                 .replace(" → ", " to ")
@@ -464,6 +467,7 @@ mod tests {
             "17 Nov 2026, first, right eye 20/40, left eye 20/32, rescreen, late"
         );
         assert_eq!(clean(" west   ·   4"), "west, none, 4");
+        assert_eq!(clean(" ▸ Sands, Oliver   1C"), "here: Sands, Oliver, 1C");
         // A middle initial stays what it is.
         assert_eq!(clean("Vance L Sands"), "Vance L Sands");
     }

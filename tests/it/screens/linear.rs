@@ -92,6 +92,12 @@ fn every_place_and_question_is_read_out_in_plain_lines() {
     see("add_child", &h);
     h.key(KeyCode::Esc).press(Key::ctrl('p')).typed("swap");
     see("palette", &h);
+    h.key(KeyCode::Esc).press(Key::f(8));
+    let station = read(&h, 80, 60).0;
+    assert!(
+        station.iter().any(|l| l.starts_with("east, 1")),
+        "each station has its line: {station:?}"
+    );
     h.key(KeyCode::Esc)
         .press(Key::alt('2'))
         .typed("okafor")
