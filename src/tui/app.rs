@@ -335,7 +335,7 @@ impl App {
             notice: None,
             urgent,
             linear: false,
-            lock: Lock::default(),
+            lock: Lock::open(session.now_ms),
             tour: None,
             asked: VecDeque::new(),
             session,

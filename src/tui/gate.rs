@@ -113,10 +113,18 @@ pub struct Lock {
     pin: Option<Typed>,
     wrong: u8,
     day_only: bool,
-    last_key_ms: Option<i64>,
+    last_key_ms: i64,
 }
 
 impl Lock {
+    /// Makes an open lock; the time without a key counts from now.
+    pub fn open(now_ms: i64) -> Lock {
+        Lock {
+            last_key_ms: now_ms,
+            ..Lock::default()
+        }
+    }
+
     /// Says whether the question stands, so that nothing else is drawn and typed into.
     pub fn stands(&self) -> bool {
         self.gate.is_some()
@@ -131,7 +139,7 @@ impl Lock {
 impl App {
     /// Says whether nobody has pressed a key for so long that the screen is to be locked.
     pub fn is_idle(&self) -> bool {
-        let since = self.session.now_ms - self.lock.last_key_ms.unwrap_or(self.session.now_ms);
+        let since = self.session.now_ms - self.lock.last_key_ms;
         self.session.idle_minutes > 0
             && !matches!(&self.lock.gate, Some(g) if g.purpose == Purpose::Locked)
             && since >= i64::from(self.session.idle_minutes) * 60_000
@@ -139,7 +147,7 @@ impl App {
 
     /// Notes that somebody is there.
     pub(crate) fn touched(&mut self) {
-        self.lock.last_key_ms = Some(self.session.now_ms);
+        self.lock.last_key_ms = self.session.now_ms;
     }
 
     /// Locks the screen; what was typed is written first.

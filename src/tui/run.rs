@@ -281,7 +281,12 @@ fn event_loop(
         for message in messages.into_iter().chain([Message::Tick]) {
             match wires.carry_out(app.update(message))? {
                 Next::GoOn => {}
-                Next::Suspend => screen.suspend()?,
+                Next::Suspend => {
+                    // Every thread stands still then: what was typed is written before. What went
+                    // wrong is told by the flush that the lock asked for.
+                    let _ = wires.keeper.flush();
+                    screen.suspend()?;
+                }
                 Next::Redraw => screen.redraw()?,
                 Next::End => return Ok(()),
             }

@@ -188,7 +188,10 @@ fn five_wrong_pins_need_the_passphrase() {
 #[test]
 fn it_locks_when_nobody_presses_a_key_and_the_next_key_goes_nowhere() {
     let mut h = Hands::sit();
-    h.typed("20");
+    h.app.session.now_ms += 10 * 60_000;
+    h.app.update(Message::Tick);
+    is_locked(&h);
+    h.enter().typed("20");
     h.app.session.now_ms += 9 * 60_000;
     h.app.update(Message::Tick);
     assert!(h.screen().contains("OKAFOR"));
