@@ -25,6 +25,7 @@ use crate::store::row::{Referral, StepEntry};
 
 pub use exam::ExamKept;
 pub use letters::{LetterChoice, Printed, PrintedLetter};
+pub(super) use steps::out_of_date;
 
 /// A referral with everything that was done about it.
 #[derive(Debug, Clone, PartialEq)]

@@ -7,6 +7,7 @@ use uuid::Uuid;
 
 use super::desk::Desk;
 use super::error::{ActionError, Result};
+use super::follow_up::out_of_date;
 use super::judging::{pass_line_for, preview};
 use super::views::{DayChild, DayInfo, StoredOutcome};
 use crate::clock;
@@ -449,6 +450,7 @@ fn replace_outcome(
     reason: &str,
 ) -> crate::store::Result<()> {
     let old = tx.read().outcomes(visit)?;
+    out_of_date(tx, visit, &old, Some(&new))?;
     let (same, other): (Vec<_>, Vec<_>) = old.into_iter().partition(|o| {
         o.visit_id == new.visit_id && o.rule_set == new.rule_set && o.edition == new.edition
     });
@@ -469,7 +471,9 @@ pub(super) fn take_back(tx: &mut Tx<'_>, visit: Uuid, reason: &str) -> crate::st
     for reading in readings {
         tx.supersede::<Reading>(&[reading], None, reason)?;
     }
-    let outcomes: Vec<Uuid> = tx.read().outcomes(visit)?.iter().map(Row::id).collect();
+    let outcomes = tx.read().outcomes(visit)?;
+    out_of_date(tx, visit, &outcomes, None)?;
+    let outcomes: Vec<Uuid> = outcomes.iter().map(Row::id).collect();
     for outcome in outcomes {
         tx.supersede::<row::Outcome>(&[outcome], None, reason)?;
     }

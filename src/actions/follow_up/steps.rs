@@ -1,13 +1,15 @@
 //! One thing that was done about a referral.
 
+use chrono::NaiveDate;
 use uuid::Uuid;
 
 use super::super::desk::Desk;
 use super::super::error::{ActionError, Result};
 use super::{ReferralView, closed_words};
-use crate::domain::referral::{Step, StepKind};
-use crate::store::new_id;
-use crate::store::row::StepEntry;
+use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::domain::referral::{LetterKind, Step, StepKind};
+use crate::store::row::{Outcome, StepEntry};
+use crate::store::{Tx, new_id};
 
 impl Desk {
     /// Enters a step of a referral.
@@ -63,27 +65,38 @@ impl Desk {
     }
 
     pub(super) fn step_row(&self, referral: Uuid, child_id: &str, step: Step) -> StepEntry {
-        StepEntry {
-            id: new_id(),
-            step_id: new_id(),
-            referral_id: referral,
-            child_id: child_id.to_owned(),
-            kind: step.kind,
-            done_on: step.on,
-            done_at: step.at,
-            channel: step.channel,
-            language: step.language,
-            result: step.result,
-            letter: step.letter,
-            due_on: step.due_on,
-            worn: step.worn,
-            evidence: step.evidence,
-            closing: step.closing,
-            whom: step.whom,
-            note: step.note,
-            screener_id: self.screener.as_ref().map(|s| s.screener_id),
-            entered_on: self.today,
-        }
+        let screener = self.screener.as_ref().map(|s| s.screener_id);
+        step_entry(referral, child_id, step, screener, self.today)
+    }
+}
+
+fn step_entry(
+    referral: Uuid,
+    child_id: &str,
+    step: Step,
+    screener: Option<Uuid>,
+    entered_on: NaiveDate,
+) -> StepEntry {
+    StepEntry {
+        id: new_id(),
+        step_id: new_id(),
+        referral_id: referral,
+        child_id: child_id.to_owned(),
+        kind: step.kind,
+        done_on: step.on,
+        done_at: step.at,
+        channel: step.channel,
+        language: step.language,
+        result: step.result,
+        letter: step.letter,
+        due_on: step.due_on,
+        worn: step.worn,
+        evidence: step.evidence,
+        closing: step.closing,
+        whom: step.whom,
+        note: step.note,
+        screener_id: screener,
+        entered_on,
     }
 }
 
@@ -104,4 +117,54 @@ pub(super) fn step_of(entry: &StepEntry) -> Step {
         whom: entry.whom.clone(),
         note: entry.note.clone(),
     }
+}
+
+/// Adds the step "letter out of date" where an outcome that a letter told of is replaced by another
+/// one, or taken back; it names both.
+pub(in crate::actions) fn out_of_date(
+    tx: &mut Tx<'_>,
+    visit: Uuid,
+    was: &[Outcome],
+    now: Option<&Outcome>,
+) -> crate::store::Result<()> {
+    let told = |o: &Outcome| (o.kind, o.urgency, o.act_by, o.criteria.clone());
+    let Some(old) = was.first() else {
+        return Ok(());
+    };
+    if now.is_some_and(|new| told(new) == told(old)) {
+        return Ok(());
+    }
+    let Some(record) = tx.read().referral(visit)? else {
+        return Ok(());
+    };
+    let told_of = |s: &StepEntry| {
+        matches!(s.kind, StepKind::LetterPrinted | StepKind::LetterSent)
+            && matches!(
+                s.letter,
+                Some(LetterKind::Referral | LetterKind::Urgent | LetterKind::Second)
+            )
+    };
+    let Some(letter) = record.steps.iter().rev().find(|s| told_of(s)) else {
+        return Ok(());
+    };
+    let today = tx.author().at.date().unwrap_or(letter.done_on);
+    let step = Step {
+        note: format!(
+            "was {}, now {}",
+            outcome_words(old),
+            now.map_or_else(|| "taken back".to_owned(), outcome_words)
+        ),
+        ..Step::new(StepKind::LetterOutOfDate, today)
+    };
+    let screener = tx.author().screener;
+    let row = step_entry(visit, &letter.child_id, step, screener, today);
+    tx.add(&row)
+}
+
+fn outcome_words(outcome: &Outcome) -> String {
+    let words = [
+        Some(outcome.kind).map(OutcomeKind::title),
+        outcome.urgency.map(Urgency::title),
+    ];
+    words.into_iter().flatten().collect::<Vec<_>>().join(", ")
 }

@@ -290,3 +290,38 @@ fn an_urgent_letter_is_never_in_a_batch() {
     bench.ok(&["letters", "-o", "two.html", "--child", "Q-4"]);
     assert!(bench.read("two.html").contains("R. Moss"));
 }
+
+#[test]
+fn a_corrected_outcome_makes_its_letter_out_of_date() {
+    let bench = referred();
+    bench.ok(&["letters", "-o", "due.html"]);
+    bench.ok(&[
+        "step",
+        "Q-2",
+        "letter_sent",
+        "--letter",
+        "referral",
+        "--by",
+        "post",
+    ]);
+    // Another value with the same outcome leaves the letter as it is.
+    bench.ok(&["correct", "Q-2", "note=shy at first", "--reason", "seen"]);
+    assert!(!bench.ok(&["refer", "show", "Q-2"]).contains("out of date"));
+    bench.ok(&[
+        "correct",
+        "Q-2",
+        "distance_left=20/25",
+        "--reason",
+        "typed the wrong row",
+    ]);
+    let out = bench.ok(&["refer", "show", "Q-2"]);
+    assert!(
+        out.contains("letter out of date: was refer, routine, now pass"),
+        "{out}"
+    );
+    assert!(
+        out.contains("the outcome has been corrected since: now pass"),
+        "{out}"
+    );
+    bench.ok(&["verify"]);
+}
