@@ -176,6 +176,9 @@ impl Step {
     /// Returns the step in words, without its date: `call, no answer (telephone, Spanish)`.
     pub fn in_words(&self) -> String {
         let mut words = match (self.kind, self.letter, self.closing) {
+            (StepKind::LetterPrinted, Some(LetterKind::ExamForm), _) => {
+                "exam report form printed".to_owned()
+            }
             (StepKind::LetterPrinted, Some(letter), _) => {
                 format!("{} letter printed", letter.title())
             }

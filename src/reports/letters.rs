@@ -69,6 +69,18 @@ pub enum FoundValue {
     NotDone,
 }
 
+/// Why a child is referred, as far as a family is told.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub enum Because {
+    /// A test was not passed, or something was seen.
+    #[default]
+    NotPassed,
+    /// What is known of the child or the family, whatever the chart says.
+    History,
+    /// The tests could not be done well.
+    NotTested,
+}
+
 /// One letter.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Letter {
@@ -86,6 +98,8 @@ pub struct Letter {
     pub site: String,
     /// When the child was screened.
     pub tested_on: NaiveDate,
+    /// Why the child is referred.
+    pub because: Because,
     /// What was tested.
     pub found: Vec<Found>,
     /// Glasses or contact lenses during the test, where it was noted.

@@ -1,12 +1,14 @@
 //! Letters: every kind in every language, a programme's own files, and what is wrong with them.
 
+mod printed;
+
 use chrono::NaiveDate;
 use twoline::domain::codes::Correction;
 use twoline::domain::form_code::FormCode;
 use twoline::domain::referral::LetterKind;
 use twoline::domain::screening_test::ScreeningTest;
 use twoline::reports::letters::{
-    Found, FoundValue, FoundValues, Letter, Letters, Messages, Sender,
+    Because, Found, FoundValue, FoundValues, Letter, Letters, Messages, Sender,
 };
 
 fn day(text: &str) -> NaiveDate {
@@ -45,6 +47,7 @@ fn letter(kind: LetterKind, language: &str) -> Letter {
                 values: FoundValues::Together(FoundValue::NotDone),
             },
         ],
+        because: Because::NotPassed,
         correction: Some(Correction::LeftAtHome),
         by: Some(day("2026-10-28")),
         wrote_on: Some(day("2026-10-15")),

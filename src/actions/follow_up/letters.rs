@@ -9,11 +9,11 @@ use super::super::error::{ActionError, Result};
 use super::super::visit_rows::{judged, tries_of};
 use super::{ReferralView, code_of};
 use crate::domain::codes::{Cover, PlusLens, Reflex, YesNo};
-use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::domain::outcome::{DecidedBy, OutcomeKind, Urgency};
 use crate::domain::readings::{AcuityResult, Eyes, InstrumentEye, Readings};
 use crate::domain::referral::{ContactResult, LetterKind, NextKind, Step, StepKind};
 use crate::domain::screening_test::ScreeningTest;
-use crate::reports::letters::{Found, FoundValue, FoundValues, Letter, Letters, Sender};
+use crate::reports::letters::{Because, Found, FoundValue, FoundValues, Letter, Letters, Sender};
 use crate::store::read::{ChildNow, VisitNow};
 
 /// Which letters are wanted.
@@ -201,7 +201,7 @@ impl Desk {
             }
         }
         for (child, visit) in read.due()?.into_iter().filter(|(c, _)| here(c)) {
-            let glasses = visit.decided_by.as_deref() == Some("glasses");
+            let glasses = decided(&visit) == Some(DecidedBy::GlassesNotWorn);
             let kind = match visit.kind {
                 Some(OutcomeKind::Rescreen) => LetterKind::Rescreen,
                 _ if glasses => LetterKind::GlassesAtHome,
@@ -329,6 +329,15 @@ impl Desk {
                 |v| v.screened_on,
             ),
             correction: readings.correction,
+            because: match wanted.visit.as_ref().map(decided) {
+                Some(Some(DecidedBy::DirectReferral)) => Because::History,
+                Some(Some(
+                    DecidedBy::NotTestable | DecidedBy::GlassesNeverAvailable | DecidedBy::Missing,
+                )) => Because::NotTested,
+                Some(_) => Because::NotPassed,
+                // Opened by hand: the reason is the nurse's, not a test's.
+                None => Because::History,
+            },
             found: found(&readings),
             by: wanted.referral.as_ref().map_or_else(
                 || wanted.visit.as_ref().and_then(|v| v.due_on),
@@ -427,6 +436,10 @@ fn reached(step: &Step, child: &ChildNow) -> String {
     } else {
         step.whom.clone()
     }
+}
+
+fn decided(visit: &VisitNow) -> Option<DecidedBy> {
+    DecidedBy::from_word(visit.decided_by.as_deref()?)
 }
 
 fn outcome_words(visit: &VisitNow) -> String {

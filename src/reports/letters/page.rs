@@ -11,7 +11,7 @@ use qrcode::render::svg;
 
 use super::error::LetterError;
 use super::messages::{Language, Messages};
-use super::{Found, FoundValue, FoundValues, Letter, Sender};
+use super::{Because, Found, FoundValue, FoundValues, Letter, Sender};
 use crate::domain::codes::Correction;
 use crate::domain::form_code::FormCode;
 use crate::domain::referral::LetterKind;
@@ -40,7 +40,7 @@ const SHIPPED: [(&str, &str); 12] = [
 ];
 
 /// What a template may use, beside `t(message, …)`.
-const FIELDS: [&str; 24] = [
+const FIELDS: [&str; 25] = [
     "kind",
     "title",
     "child",
@@ -48,6 +48,7 @@ const FIELDS: [&str; 24] = [
     "class",
     "site",
     "tested_on",
+    "result",
     "found",
     "test",
     "values",
@@ -171,6 +172,11 @@ impl Letters {
             tested_on => spoken(Some(letter.tested_on))?,
             found => letter.found.iter().map(|f| found(f, language)).collect::<Vec<_>>(),
             worn => worn(letter.correction),
+            result => match letter.because {
+                Because::NotPassed => "result-referral",
+                Because::History => "result-history",
+                Because::NotTested => "result-untested",
+            },
             by => spoken(letter.by)?,
             wrote_on => spoken(letter.wrote_on)?,
             call => match &letter.call {

@@ -57,6 +57,8 @@ glasses-unknown = We did not note whether glasses were worn.
 # Referral
 title-referral = Your child needs an eye examination
 result-referral = { $child } did not pass. { $child } needs a full examination by an eye doctor.
+result-history = We tested { $child }. Because of what is known of { $child }'s health or family, we advise a full examination by an eye doctor, whatever the chart says.
+result-untested = We could not test { $child } well. { $child } needs a full examination by an eye doctor.
 why-heading = Why it matters
 why = Many children who do not see well with one eye do not notice it. Found early, most of these problems can be treated. Found late, sight can be lost for good.
 what-to-do = What to do

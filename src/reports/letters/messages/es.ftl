@@ -53,6 +53,8 @@ glasses-unknown = No anotamos si llevaba lentes.
 
 title-referral = Su hijo o hija necesita un examen de los ojos
 result-referral = { $child } no pasó la prueba. { $child } necesita un examen completo con un oculista.
+result-history = Revisamos a { $child }. Por lo que se sabe de la salud o la familia de { $child }, aconsejamos un examen completo con un oculista, diga lo que diga la prueba de letras.
+result-untested = No pudimos revisar bien a { $child }. { $child } necesita un examen completo con un oculista.
 why-heading = Por qué es importante
 why = Muchos niños que ven mal con un ojo no se dan cuenta. Si se descubre temprano, casi siempre se puede tratar. Si se descubre tarde, la vista puede perderse para siempre.
 what-to-do = Qué hacer

@@ -53,6 +53,8 @@ glasses-unknown = Chúng tôi không ghi lại em có đeo kính hay không.
 
 title-referral = Con của quý vị cần được khám mắt
 result-referral = { $child } không đạt. { $child } cần được bác sĩ mắt khám đầy đủ.
+result-history = Chúng tôi đã kiểm tra { $child }. Vì những gì đã biết về sức khỏe hoặc gia đình của { $child }, chúng tôi khuyên nên khám đầy đủ với bác sĩ mắt, dù kết quả bảng chữ thế nào.
+result-untested = Chúng tôi không kiểm tra được { $child } đầy đủ. { $child } cần được bác sĩ mắt khám đầy đủ.
 why-heading = Vì sao điều này quan trọng
 why = Nhiều em nhìn kém một mắt mà không biết. Nếu phát hiện sớm, phần lớn có thể chữa được. Nếu phát hiện muộn, có thể mất thị lực vĩnh viễn.
 what-to-do = Cần làm gì
