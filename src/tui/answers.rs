@@ -2,7 +2,7 @@
 
 use std::fmt::Write as _;
 
-use crate::actions::{DayChild, QueueState, Signed};
+use crate::actions::{DayChild, OpenUrgent, QueueState, Signed};
 use crate::domain::age::spoken;
 use crate::domain::outcome::Urgency;
 use crate::tui::app::{Answer, App, Effect, Notice, Refused, Request, Tone};
@@ -80,8 +80,17 @@ impl App {
                 }
             }
             Answer::Urgent(urgent) => {
-                if urgent.len() < self.urgent.len() {
-                    self.say(Tone::Quiet, "saved: who was told of the emergency");
+                let open = |u: &OpenUrgent| urgent.iter().any(|v| v.visit == u.visit);
+                let told: Vec<String> = self
+                    .urgent
+                    .iter()
+                    .filter(|u| !open(u))
+                    .map(|u| crate::tui::text::safe(&u.name))
+                    .collect();
+                if !told.is_empty() {
+                    let words =
+                        format!("saved: who was told of the emergency, {}", told.join("; "));
+                    self.say(Tone::Quiet, words);
                 }
                 self.urgent = urgent;
             }

@@ -250,6 +250,8 @@ pub enum Request {
     Unlock(Typed),
     /// Keeps a preference of this installation: its name and its value.
     Prefer(&'static str, String),
+    /// Settles a value that differs between the parts of a visit, with the reason.
+    Settle(Uuid, Field, String, String),
 }
 
 /// Why something could not be done.

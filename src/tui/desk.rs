@@ -258,6 +258,9 @@ impl Clerk {
                 self.desk.set_station(&change)?;
                 Answer::Station(Box::new(self.desk.station_role()?))
             }
+            Request::Settle(visit, field, value, reason) => {
+                Answer::Corrected(Box::new(self.desk.settle(visit, field, &value, &reason)?))
+            }
             Request::ValueHistory(visit, field) => {
                 Answer::ValueHistory(field, self.desk.value_history(visit, field)?)
             }

@@ -253,6 +253,10 @@ pub enum Ask {
     Tests,
     /// The note of the visit (with a reason when it was signed).
     Note,
+    /// Which of the values that differ between stations stands.
+    Settle(crate::domain::field::Field),
+    /// Why it stands.
+    SettleWhy(crate::domain::field::Field, String),
     /// Which value to correct.
     CorrectWhat,
     /// The new value and the reason.

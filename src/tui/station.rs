@@ -1,11 +1,11 @@
 //! What this station is set to, and the history of one value.
 
-use crate::actions::{StationRole, ValueEntry};
+use crate::actions::{StationRole, Unsettled, ValueEntry};
 use crate::domain::age::spoken;
 use crate::domain::field::Field;
 use crate::domain::screening_test::ScreeningTest;
 use crate::tui::app::{App, Effect, Request, Tone};
-use crate::tui::prompt::Prompt;
+use crate::tui::prompt::{Ask, Form, Prompt, listed};
 use crate::tui::text::{name, safe};
 
 impl App {
@@ -54,6 +54,34 @@ impl App {
         };
         self.say(Tone::Attention, words);
         Vec::new()
+    }
+
+    /// Asks which of the values that differ between stations stands; says whether there are any.
+    pub(crate) fn ask_settle(&mut self) -> bool {
+        let bench = self.day.as_ref().ok().and_then(|d| d.bench.as_ref());
+        let differing = bench.and_then(|b| b.unsettled(b.field()?));
+        let Some(Unsettled { field, values, .. }) = differing.cloned() else {
+            return false;
+        };
+        let choices = listed(values.into_iter().zip('1'..='9').map(|(value, key)| {
+            let label = format!("use this one: {}", safe(&value));
+            (key, label, value)
+        }));
+        self.prompt = Some(Prompt::choices(
+            Ask::Settle(field),
+            format!("{}: the stations differ, which stands?", field.title()),
+            choices,
+        ));
+        true
+    }
+
+    /// Asks for the reason of a choice between stations.
+    pub(crate) fn ask_settle_why(&mut self, field: Field, value: &str) {
+        self.prompt = Some(Prompt::form(
+            Ask::SettleWhy(field, value.to_owned()),
+            format!("{}: {} stands", field.title(), safe(value)),
+            Form::new(&[("reason", "asked at the other station", false)]),
+        ));
     }
 
     /// Shows every value that a field had.

@@ -86,6 +86,10 @@ impl App {
             }
             Ask::Palette => self.run_named(word),
             Ask::Theme => self.set_theme(word),
+            Ask::Settle(field) => {
+                self.ask_settle_why(*field, word);
+                Vec::new()
+            }
             Ask::Screener => vec![Effect::ask(Request::Screener(word.to_owned()))],
             _ => Vec::new(),
         }
@@ -256,6 +260,15 @@ impl App {
                     _ => Ok(Vec::new()),
                 }
             }
+            Ask::SettleWhy(field, value) => match visit {
+                Some(visit) => one(Request::Settle(
+                    visit.id,
+                    *field,
+                    value.clone(),
+                    form.value(0).to_owned(),
+                )),
+                None => Ok(Vec::new()),
+            },
             Ask::MoveTo => self.move_to(form),
             Ask::Retract => match self.day.as_ref().ok().and_then(|d| d.last_signed.clone()) {
                 Some((visit, _, _)) => one(Request::Retract(visit, form.value(0).to_owned())),

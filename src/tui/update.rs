@@ -294,6 +294,9 @@ impl App {
 
     fn run_on_day(&mut self, command: Command) -> Vec<Effect> {
         let in_list = self.context() == Context::List;
+        if command == Command::Accept && !in_list && self.ask_settle() {
+            return Vec::new();
+        }
         let now_ms = self.session.now_ms;
         let Ok(day) = &mut self.day else {
             return Vec::new();

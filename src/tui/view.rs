@@ -211,11 +211,15 @@ impl App {
                 } else {
                     format!(" ({})", safe(&u.class))
                 };
+                let what = if self.session.discreet {
+                    "see F9".to_owned()
+                } else {
+                    safe(&u.what)
+                };
                 let text = format!(
-                    " ██ EMERGENCY {}  {}{class}: {}",
+                    " ██ EMERGENCY {}  {}{class}: {what}",
                     elapsed(self.session.now_ms - u.since.utc_ms),
                     safe(&u.name),
-                    safe(&u.what)
                 );
                 Line::styled(crate::tui::text::fit(&text, columns), theme.emergency())
             })

@@ -3,7 +3,9 @@
 #![allow(clippy::unwrap_used, clippy::panic)]
 
 mod bench;
+mod bench_drawn;
 mod board;
+mod budgets;
 mod comfort;
 mod desk;
 mod drawn;

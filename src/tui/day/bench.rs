@@ -6,11 +6,12 @@ pub use edit::pairs;
 
 use std::sync::Arc;
 
+use chrono::NaiveDate;
 use uuid::Uuid;
 
-use crate::actions::{DayChild, DayInfo, SignRequest, StationRole, VisitView};
+use crate::actions::{DayChild, DayInfo, SignRequest, StationRole, Unsettled, VisitView};
 use crate::domain::acuity::{Line, Notation};
-use crate::domain::codes::{Correction, Status};
+use crate::domain::codes::{Attempt, Correction, Status};
 use crate::domain::field::Field;
 use crate::domain::outcome::{Outcome, Urgency};
 use crate::domain::readings::{Distance, Eyes, ReadingContext, Readings};
@@ -324,7 +325,7 @@ impl Bench {
         }
         self.readings = readings;
         self.plan
-            .offer_instrument(self.readings.chart_not_testable());
+            .offer_instrument(self.readings.chart_not_testable() && self.signed.is_none());
         self.arrange();
         let together = (!self.is_signed() && !self.earlier.is_empty()).then(|| {
             let mut tries = self.earlier.clone();
@@ -398,7 +399,11 @@ impl Bench {
     /// Lists the fields of the path again; the focus stays where it is, or goes to the line that signs.
     fn arrange(&mut self) {
         self.path = self.plan.fields(
-            |field| !matches!(self.state(field), State::Empty) || self.at == Spot::Field(field),
+            |field| {
+                self.unsettled(field).is_some()
+                    || !matches!(self.state(field), State::Empty)
+                    || self.at == Spot::Field(field)
+            },
             &self.readings,
             self.given.bare,
         );
@@ -432,6 +437,27 @@ impl Bench {
         self.undo.clear();
         self.at = Spot::Sign;
         self.judge();
+    }
+
+    /// Returns the values of a field that differ between the parts of the signed visit.
+    pub fn unsettled(&self, field: Field) -> Option<&Unsettled> {
+        let visit = self.signed.as_ref()?;
+        visit.unsettled.iter().find(|u| u.field == field)
+    }
+
+    /// Returns what carries over from the visit before into an empty field of a rescreen: its text
+    /// and date. A test that was touched today is done again, whole.
+    pub fn carried(&self, field: Field) -> Option<(String, NaiveDate)> {
+        let before = self.child.before.as_ref()?;
+        let text = before.passed.get(field)?;
+        let test = ScreeningTest::ALL
+            .iter()
+            .find(|t| t.fields().contains(&field))?;
+        let touched = test
+            .fields()
+            .iter()
+            .any(|f| self.readings.get(*f).is_some());
+        (!touched && self.child.attempt == Attempt::Rescreen).then_some((text, before.on))
     }
 
     /// Says whether the signed visit may be followed by another try on the same day.

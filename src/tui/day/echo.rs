@@ -53,7 +53,7 @@ fn hint(field: Field) -> Option<&'static str> {
         F::AxisRight | F::AxisLeft => "1 to 180; empty beside no cylinder",
         F::StereoCorrect => "how many were answered correctly",
         F::StereoShown => "how many were shown",
-        F::PlatesMissed => "how many were missed, demonstration not counted",
+        F::PlatesMissed => "how many were missed",
         F::PlatesShown => "how many were shown",
         F::DeviationPd => "size in prism dioptres, if it was measured",
         F::ChartDistanceFt | F::ChartDistanceM => "the distance the chart is made for",

@@ -84,7 +84,16 @@ fn signed_lines(
     let Some(outcome) = &visit.outcome else {
         return flow("SIGNED", theme.strong(), "", columns, rows, theme);
     };
-    let mut headline = format!("signed: {}", outcome.kind.title().to_uppercase());
+    // The parts of several stations: what stands is what all of them say now.
+    let parts = bench
+        .child
+        .together
+        .as_ref()
+        .and_then(crate::actions::Together::words);
+    let mut headline = parts.as_ref().map_or_else(
+        || format!("signed: {}", outcome.kind.title().to_uppercase()),
+        |words| safe(words),
+    );
     if !outcome.qualifiers.is_empty() {
         let _ = write!(headline, " ({})", outcome.qualifiers.join("; "));
     }
@@ -98,7 +107,9 @@ fn signed_lines(
         headline.push_str(", entered late");
     }
     let mut rest = String::new();
-    if let Some(now) = &visit.now {
+    if !visit.unsettled.is_empty() {
+        rest.push_str("Enter on a value that differs chooses the one that stands. ");
+    } else if let Some(now) = visit.now.as_ref().filter(|_| parts.is_none()) {
         let _ = write!(rest, "Now it would be {}. ", safe(now));
     }
     rest.push_str(&safe(&outcome.reasons));

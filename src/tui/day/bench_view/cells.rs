@@ -2,6 +2,7 @@
 
 use ratatui::style::Style;
 
+use crate::domain::age::spoken;
 use crate::domain::codes::{Correction, History};
 use crate::domain::field::Field;
 use crate::domain::readings::Readings;
@@ -19,6 +20,13 @@ pub fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, S
         return (format!("{}{rest}", safe(raw)), theme.focus());
     }
     let focus = |style| if here { theme.focus() } else { style };
+    if let Some(differing) = bench.unsettled(field) {
+        let words: Vec<String> = differing.values.iter().map(|v| safe(v)).collect();
+        return (
+            format!("{} ?", words.join(" or ")),
+            focus(theme.attention()),
+        );
+    }
     match bench.state(field) {
         State::Invalid { .. } => (format!("{} ?", safe(raw)), theme.error()),
         State::Empty => match field {
@@ -33,7 +41,17 @@ pub fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, S
             Field::Signs if bench.will_state_no_signs() => {
                 ("none seen, said on signing".into(), focus(theme.muted()))
             }
+            Field::Signs if bench.earlier.iter().any(|t| t.signs.is_some()) => {
+                ("as in the try before".into(), focus(theme.muted()))
+            }
             Field::Signs => ("not looked for".into(), focus(theme.muted())),
+            _ if bench.carried(field).is_some() && !here => {
+                let carried = bench.carried(field);
+                let words = carried.map_or(String::new(), |(text, on)| {
+                    format!("{} on {}", safe(&text), spoken(on))
+                });
+                (words, theme.muted())
+            }
             _ if here => ("____".into(), theme.focus()),
             _ => ("·".into(), theme.muted()),
         },
