@@ -14,9 +14,12 @@ const SIZES: [(u16, u16); 4] = [(80, 24), (100, 30), (120, 36), (200, 60)];
 
 fn drawn(state: &str, h: &Hands) {
     for (columns, rows) in SIZES {
+        let screen = h.screen_at(columns, rows);
+        // The foot line has pictures of its own; here it would change with every new key.
+        let lines: Vec<&str> = screen.lines().take(usize::from(rows) - 1).collect();
         snapshot(
             &format!("bench_{state}_{columns}x{rows}"),
-            &h.screen_at(columns, rows),
+            &lines.join("\n"),
         );
     }
 }
