@@ -71,7 +71,7 @@ pub(super) fn carried_over(child: &DayChild, readings: &Readings) -> Option<(Rea
     let mut out = readings.clone();
     let mut carried = Vec::new();
     for test in ScreeningTest::ALL {
-        let touched = test.fields().iter().any(|f| readings.get(*f).is_some());
+        let touched = test.is_touched(readings);
         let known = test
             .fields()
             .iter()

@@ -2,6 +2,7 @@
 
 use crate::domain::codes::code_list;
 use crate::domain::field::Field;
+use crate::domain::readings::Readings;
 
 code_list! {
     /// One test of a screening.
@@ -18,6 +19,25 @@ code_list! {
 }
 
 impl ScreeningTest {
+    /// Says whether anything was found by this test; how the chart is read and which chart hangs there
+    /// is known before anybody looks at it.
+    pub fn is_touched(self, readings: &Readings) -> bool {
+        self.fields()
+            .iter()
+            .filter(|f| {
+                !matches!(
+                    f,
+                    Field::AcuityMethod
+                        | Field::LettersPerLine
+                        | Field::ChartDistanceM
+                        | Field::ChartDistanceFt
+                        | Field::UsedDistanceM
+                        | Field::UsedDistanceFt
+                )
+            })
+            .any(|f| readings.get(*f).is_some())
+    }
+
     /// Returns the fields that record it, both eyes.
     pub fn fields(self) -> &'static [Field] {
         match self {
@@ -68,5 +88,26 @@ impl ScreeningTest {
                 Field::ReflexDistanceMmLeft,
             ],
         }
+    }
+}
+
+#[cfg(test)]
+mod tests {
+    use super::*;
+    use crate::domain::readings::ReadingContext;
+
+    // The screens set the day's method and the station's chart before anything is read: a distance
+    // acuity that passed before must still carry over then.
+    #[test]
+    fn the_days_method_and_the_chart_touch_no_test() {
+        let mut readings = Readings::default();
+        let mut set = |field, text: &str| readings.set(field, text, ReadingContext::default());
+        assert!(set(Field::AcuityMethod, "threshold").is_ok());
+        assert!(set(Field::LettersPerLine, "4").is_ok());
+        assert!(!ScreeningTest::Distance.is_touched(&readings));
+        let mut set = |field, text: &str| readings.set(field, text, ReadingContext::default());
+        assert!(set(Field::DistanceLeft, "NT").is_ok());
+        assert!(ScreeningTest::Distance.is_touched(&readings));
+        assert!(!ScreeningTest::Near.is_touched(&readings));
     }
 }

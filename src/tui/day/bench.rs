@@ -450,14 +450,11 @@ impl Bench {
     pub fn carried(&self, field: Field) -> Option<(String, NaiveDate)> {
         let before = self.child.before.as_ref()?;
         let text = before.passed.get(field)?;
-        let test = ScreeningTest::ALL
+        let whole = ScreeningTest::ALL
             .iter()
             .find(|t| t.fields().contains(&field))?;
-        let touched = test
-            .fields()
-            .iter()
-            .any(|f| self.readings.get(*f).is_some());
-        (!touched && self.child.attempt == Attempt::Rescreen).then_some((text, before.on))
+        (!whole.is_touched(&self.readings) && self.child.attempt == Attempt::Rescreen)
+            .then_some((text, before.on))
     }
 
     /// Says whether the signed visit may be followed by another try on the same day.
