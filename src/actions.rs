@@ -44,7 +44,8 @@ pub use calendar::{CalendarChange, CalendarView};
 pub use desk::{Desk, DeskOptions};
 pub use error::{ActionError, Kind, Result};
 pub use follow_up::{
-    ExamKept, LetterChoice, Printed, PrintedLetter, ReferralDetails, ReferralView, StepView,
+    ExamKept, ExamPlan, LetterChoice, PlannedExam, Printed, PrintedLetter, ReferralDetails,
+    ReferralView, StepView,
 };
 pub use judging::{BenchTests, bench_tests, correction_from_roster, known, pass_line_for, preview};
 pub use packets::{join, packet_info, restore};

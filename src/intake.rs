@@ -2,11 +2,12 @@
 //!
 //! A file goes through four steps: its bytes are [read in](mod@file), recognised as UTF-8 text, checked
 //! against RFC 4180 ([`quoting`]) and read by the columns of its header ([`sheet`]). Then
-//! [`roster`] and [`results`] give each cell its type. Whatever is wrong is a [`Problem`] that
+//! [`roster`], [`results`] and [`exams`] give each cell its type. Whatever is wrong is a [`Problem`] that
 //! names file, row, column, what was found and what was expected.
 
 pub mod cells;
 pub mod encoding;
+pub mod exams;
 pub mod file;
 pub mod problem;
 pub mod quoting;

@@ -1,6 +1,7 @@
 //! Referrals: what each is, what was done, what is next.
 
 mod exam;
+mod exam_file;
 mod letters;
 mod steps;
 
@@ -24,6 +25,7 @@ use crate::store::read::ReferralRecord;
 use crate::store::row::{Referral, StepEntry};
 
 pub use exam::ExamKept;
+pub use exam_file::{ExamPlan, PlannedExam};
 pub use letters::{LetterChoice, Printed, PrintedLetter};
 pub(super) use steps::out_of_date;
 
@@ -224,18 +226,12 @@ impl Desk {
     /// Bad input with the near codes, or with the child's referrals where there are several.
     pub fn find_referral(&self, text: &str) -> Result<ReferralView> {
         let list = self.referral_list()?;
-        let named = |r: &ReferralView| {
-            format!(
-                "{} {}, {} ({})",
-                r.code, r.family_name, r.given_name, r.child_id
-            )
-        };
         let pick = |mut found: Vec<ReferralView>, none: ActionError| match found.len() {
             0 => Err(none),
             1 => Ok(found.swap_remove(0)),
             _ => Err(
                 ActionError::bad(format!("{} referrals fit {text:?}", found.len()))
-                    .hint(found.iter().map(named).collect::<Vec<_>>().join("; ")),
+                    .hint(found.iter().map(with_code).collect::<Vec<_>>().join("; ")),
             ),
         };
         match FormCode::parse(text) {
@@ -246,12 +242,7 @@ impl Desk {
                 ),
             ),
             Err(error @ FormCodeError::Check { .. }) => {
-                let near = FormCode::near(text);
-                let fit: Vec<String> = list
-                    .iter()
-                    .filter(|r| near.contains(&r.code))
-                    .map(named)
-                    .collect();
+                let fit = near_words(&list, text);
                 let error = ActionError::bad(error.to_string());
                 Err(if fit.is_empty() {
                     error.hint("no referral has a code near it; read it out once more")
@@ -454,6 +445,22 @@ impl Desk {
             site: child.site.unwrap_or_default(),
         })
     }
+}
+
+/// Returns the referrals whose code is one slip away from what was written, in words.
+fn near_words(list: &[ReferralView], written: &str) -> Vec<String> {
+    let near = FormCode::near(written);
+    list.iter()
+        .filter(|r| near.contains(&r.code))
+        .map(with_code)
+        .collect()
+}
+
+fn with_code(r: &ReferralView) -> String {
+    format!(
+        "{} {}, {} ({})",
+        r.code, r.family_name, r.given_name, r.child_id
+    )
 }
 
 /// Says whether a record is a referral, and not only a visit about which a notice went out.

@@ -5,6 +5,7 @@
 mod board;
 mod children;
 mod demo;
+mod exam_files;
 mod files;
 mod follow_up;
 mod lock;

@@ -2,6 +2,7 @@
 
 mod bytes;
 mod day_report;
+mod exams;
 mod never_panics;
 mod quoting;
 mod results;

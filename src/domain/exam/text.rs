@@ -220,17 +220,35 @@ pub fn contradictions(
     if report.received_on.is_some_and(|received| received > today) {
         say(E::ReceivedOn, format!("a date not after today ({today})"));
     }
-    for (with, axes) in [
-        (With::Best, [E::AxisRight, E::AxisLeft]),
-        (With::Prescribed, [E::GlassesAxisRight, E::GlassesAxisLeft]),
+    for (with, fields) in [
+        (
+            With::Best,
+            [
+                (E::CylinderRight, E::AxisRight),
+                (E::CylinderLeft, E::AxisLeft),
+            ],
+        ),
+        (
+            With::Prescribed,
+            [
+                (E::GlassesCylinderRight, E::GlassesAxisRight),
+                (E::GlassesCylinderLeft, E::GlassesAxisLeft),
+            ],
+        ),
     ] {
-        for (eye, field) in report.measured(with).instrument.both().iter().zip(axes) {
-            let cylinder = eye.cylinder.is_some_and(|c| c.written().0 != 0);
-            if cylinder && eye.axis.is_none() {
-                say(
-                    field,
-                    "an axis from 1 to 180, since there is a cylinder".into(),
-                );
+        let eyes = report.measured(with).instrument.both();
+        for (eye, (cylinder, axis)) in eyes.iter().zip(fields) {
+            match (eye.cylinder, eye.axis) {
+                (Some(power), None) if power.written().0 != 0 => {
+                    say(
+                        axis,
+                        "an axis from 1 to 180, since there is a cylinder".into(),
+                    );
+                }
+                (None, Some(_)) => {
+                    say(cylinder, "a cylinder, since there is an axis".into());
+                }
+                _ => {}
             }
         }
     }

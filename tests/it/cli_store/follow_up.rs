@@ -7,7 +7,7 @@
 use super::Bench;
 
 /// A day on which Okafor, Ada was referred: her third line between the eyes refers at once.
-fn referred() -> Bench {
+pub(super) fn referred() -> Bench {
     let bench = Bench::on_a_day("us-school", "threshold");
     let out = bench.ok(&[
         "record",
@@ -23,7 +23,7 @@ fn referred() -> Bench {
 }
 
 impl Bench {
-    fn on(&self, date: &str, args: &[&str]) -> String {
+    pub(super) fn on(&self, date: &str, args: &[&str]) -> String {
         let mut command = std::process::Command::new(env!("CARGO_BIN_EXE_twoline"));
         let out = command
             .current_dir(self.folder.path())
@@ -42,7 +42,7 @@ impl Bench {
     }
 }
 
-fn code_in(text: &str) -> String {
+pub(super) fn code_in(text: &str) -> String {
     let at = text.find("code ").expect("a code") + 5;
     text[at..]
         .lines()
