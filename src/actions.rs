@@ -10,6 +10,7 @@ mod comfort;
 pub mod compare;
 mod days;
 mod desk;
+mod door;
 mod error;
 mod follow_up;
 pub mod judge;
@@ -23,6 +24,7 @@ pub mod rulebook;
 mod search;
 mod settings;
 mod setup;
+mod sheet;
 mod sign;
 mod station;
 mod triage;
@@ -42,6 +44,7 @@ pub use crate::store::{
 };
 pub use calendar::{CalendarChange, CalendarView};
 pub use desk::{Desk, DeskOptions};
+pub use door::{AtTheDoor, Door};
 pub use error::{ActionError, Kind, Result};
 pub use follow_up::{
     ExamKept, ExamPlan, LetterChoice, PlannedExam, Printed, PrintedLetter, ReferralDetails,
@@ -55,6 +58,7 @@ pub use roster::RosterPlan;
 pub use search::SearchIndex;
 pub use settings::SettingView;
 pub use setup::{NewChart, NewStore, init};
+pub use sheet::SheetRequest;
 pub use station::{StationChange, StationChart, StationRole};
 pub use triage::{NO_TRIAGE_SET, Said, Standing, whole_reason};
 pub use upkeep::{protected, remove_demo, store_info, writer};

@@ -2,5 +2,8 @@
 
 pub mod csv;
 pub mod day;
+pub mod door;
+pub mod html;
 pub mod letters;
 pub mod referrals;
+pub mod sheet;

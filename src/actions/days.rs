@@ -171,7 +171,7 @@ impl Desk {
     }
 
     /// Returns the day from which earlier visits of the same term count.
-    fn earlier_since(&self, day: &DayInfo) -> Result<NaiveDate> {
+    pub(super) fn earlier_since(&self, day: &DayInfo) -> Result<NaiveDate> {
         Ok(self.term_on(day.date)?.starts_on)
     }
 }

@@ -28,6 +28,7 @@ pub struct Desk {
     pub(super) screener: Option<Screener>,
     /// Where and when entries of the demo are made out to be made.
     as_if: Option<(Uuid, Moment)>,
+    rules_refused: Option<String>,
 }
 
 /// How a desk is opened.
@@ -39,6 +40,8 @@ pub struct DeskOptions {
     pub screener: Option<String>,
     /// Whether nothing will be written.
     pub read_only: bool,
+    /// Whether the shipped rules do where a rule file of the store is wrong: nothing is judged.
+    pub judges_nothing: bool,
 }
 
 impl Desk {
@@ -54,13 +57,19 @@ impl Desk {
 
     /// Sits down at a store that is open already.
     pub fn around(store: Store, options: &DeskOptions) -> Result<Desk> {
-        let library = library_of(store.dir())?;
+        let (library, rules_refused) = match library_of(store.dir()) {
+            Err(refused) if options.judges_nothing => {
+                (Library::shipped().clone(), Some(refused.message))
+            }
+            library => (library?, None),
+        };
         let mut desk = Desk {
             store,
             library: Arc::new(library),
             today: options.today.unwrap_or_else(clock::today),
             screener: None,
             as_if: None,
+            rules_refused,
         };
         if let Some(name) = &options.screener {
             desk.set_screener(name)?;
@@ -133,6 +142,11 @@ impl Desk {
     /// Returns the rule library: what is shipped and the programme's own files.
     pub fn library(&self) -> Arc<Library> {
         Arc::clone(&self.library)
+    }
+
+    /// Returns why the store's own rule files were left out, where nothing is judged.
+    pub fn rules_refused(&self) -> Option<&str> {
+        self.rules_refused.as_deref()
     }
 
     /// Returns who records.

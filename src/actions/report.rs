@@ -125,7 +125,7 @@ impl Desk {
 
     /// Returns the protocol of a day with its rule sets, and what else outcomes of the day were
     /// signed with: an edition that has been replaced since.
-    fn rule_sets_of(
+    pub(super) fn rule_sets_of(
         &self,
         day: &DayInfo,
         signed_with: BTreeSet<(String, String, String)>,

@@ -23,6 +23,8 @@ pub struct ResultsPlan {
     pub new: Vec<PlannedVisit>,
     /// How many visits have the same values already.
     pub unchanged: usize,
+    /// How many rows have nothing entered, as on a class list that is partly filled in.
+    pub empty: usize,
     /// Visits signed with other values: refused unless they are corrected with a reason.
     pub different: Vec<Different>,
 }
@@ -64,6 +66,7 @@ impl Desk {
         };
         let options = Options {
             needs_child: true,
+            takes_names: true,
             day: Some(day.date),
             bare: Some(self.notation()),
             method: Some(day.method),
@@ -74,6 +77,7 @@ impl Desk {
             day: day.clone(),
             new: Vec::new(),
             unchanged: 0,
+            empty: 0,
             different: Vec::new(),
         };
         let mut problems = Problems::default();
@@ -119,6 +123,12 @@ impl Desk {
                 &found.to_string(),
                 format!("{born}, as the roster says"),
             );
+        }
+        let recorded = row.readings.recorded();
+        // The method is the day's, whatever else a row says.
+        if recorded.iter().all(|(f, _)| *f == Field::AcuityMethod) {
+            plan.empty += 1;
+            return Ok(Ok(()));
         }
         let child = self.day_child(day, &row.child_id)?;
         // A row that does not say which visit it is means the one that is due.

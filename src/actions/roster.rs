@@ -18,6 +18,8 @@ pub struct RosterPlan {
     pub term: String,
     /// The children of the file.
     pub roster: Roster,
+    /// The day from which ages are counted.
+    pub today: chrono::NaiveDate,
     /// What the store knows of the same sites.
     pub known: Vec<RosterChild>,
     /// What is new, changed, unchanged and gone.
@@ -103,6 +105,7 @@ impl Desk {
         let update = RosterUpdate::compare(&known, &roster.children);
         Ok(RosterPlan {
             term: term.code,
+            today: self.today,
             roster,
             known,
             update,

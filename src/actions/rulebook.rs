@@ -85,7 +85,14 @@ pub fn library_with(files: &[PathBuf]) -> Result<Library, RuleFileError> {
 fn texts_of(files: &[PathBuf]) -> Result<Vec<(String, String)>, RuleFileError> {
     let mut texts = Vec::new();
     for path in files {
-        let text = std::fs::read_to_string(path).map_err(|error| unreadable(path, error))?;
+        // A pipe would be waited for without end.
+        let is_file = std::fs::metadata(path).is_ok_and(|m| m.is_file());
+        let text = if is_file {
+            std::fs::read_to_string(path)
+        } else {
+            Err(std::io::Error::other("it is not an ordinary file"))
+        };
+        let text = text.map_err(|error| unreadable(path, error))?;
         texts.push((file_name(path), text));
     }
     Ok(texts)

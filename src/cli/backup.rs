@@ -16,7 +16,7 @@ pub(super) struct Backup {
 
 impl Backup {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
-        let desk = open::to_read(global)?;
+        let desk = open::to_read_without_rules(global)?;
         let head = busy("copying and verifying", || desk.backup(&self.to))?;
         print_lines(&[
             format!(

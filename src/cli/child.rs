@@ -53,7 +53,10 @@ impl Child {
             open::to_sign(global)?.same_child(stays, same)?;
             return print_clean(&[format!("{same} is the same child as {stays}")]);
         }
-        let desk = open::to_read(global)?;
+        let desk = match &self.command {
+            Command::Find { .. } => open::to_read_without_rules(global)?,
+            Command::Show { .. } | Command::Same { .. } => open::to_read(global)?,
+        };
         match &self.command {
             Command::Same { .. } => {
                 let pairs = desk.probably_same()?;

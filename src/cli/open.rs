@@ -70,6 +70,30 @@ pub(super) fn to_read(global: &Global) -> Result<Desk, Failure> {
     Ok(desk)
 }
 
+/// Opens the store for reading what no rule is asked for; a wrong rule file of the store is said and
+/// left out.
+pub(super) fn to_read_without_rules(global: &Global) -> Result<Desk, Failure> {
+    let (dir, secret) = found(global)?;
+    let options = DeskOptions {
+        judges_nothing: true,
+        ..options(global)
+    };
+    let writer = actions::writer(&dir)?;
+    let desk = Desk::open_to_read(&dir, &secret, &options)?;
+    if let Some(who) = writer {
+        say(&format!("note: read as it was saved last; {}", clean(&who)));
+    }
+    if let Some(why) = desk.rules_refused() {
+        for line in why.lines() {
+            say(&clean(line));
+        }
+        say(
+            "note: nothing is judged here, so the store's rule files are left out; other commands wait until they are right",
+        );
+    }
+    Ok(desk)
+}
+
 /// Opens the store for writing, or only for reading while another process writes it.
 pub(super) fn to_write_or_read(global: &Global) -> Result<Desk, Failure> {
     let (dir, secret) = found(global)?;

@@ -8,7 +8,10 @@ use clap::{Args, Subcommand};
 use super::output::{clean, print_bytes, print_clean, say};
 use super::values::{WhichDay, title};
 use super::{Failure, Global, open, write};
-use crate::actions::Report as Made;
+use crate::actions::{Report as Made, SheetRequest};
+
+/// Blank rows that one sheet has at most.
+const MOST_BLANK: usize = 500;
 use crate::tui::board::plain;
 
 /// Write reports
@@ -28,6 +31,32 @@ enum Command {
         to: To,
         /// Form of the file
         #[arg(long, value_parser = ["csv"], default_value = "csv")]
+        format: String,
+    },
+    /// Who is eligible on a screening day: to screen, due, opted out, under care, examined, moved
+    Children {
+        #[command(flatten)]
+        day: WhichDay,
+        #[command(flatten)]
+        to: To,
+        /// Form of the file: a table, or a page that prints
+        #[arg(long, value_parser = ["csv", "html"], default_value = "csv")]
+        format: String,
+    },
+    /// Class lists with blank boxes and blank forms for paper, or a table to fill in and read back
+    Sheet {
+        #[command(flatten)]
+        day: WhichDay,
+        /// One class only
+        #[arg(long, value_name = "CLASS")]
+        class: Option<String>,
+        /// Rows of blank forms for children who are not on the roster
+        #[arg(long, value_name = "N", default_value_t = 8)]
+        blank: usize,
+        #[command(flatten)]
+        to: To,
+        /// Form of the file: pages that print, or a table for results add
+        #[arg(long, value_parser = ["html", "csv"], default_value = "html")]
         format: String,
     },
     /// This term's referrals in the order in which they should be seen to, with the reason
@@ -94,6 +123,28 @@ impl Report {
             Command::Day { day, to, .. } => {
                 let day = day.of(&desk)?;
                 let report = desk.day_report(&day, to.exact)?;
+                to.write(&report, &format!("children of {}", title(&day)))
+            }
+            Command::Children { day, to, format } => {
+                let day = day.of(&desk)?;
+                let report = desk.door_report(&day, format == "html", to.exact)?;
+                to.write(&report, &format!("children of {}", title(&day)))
+            }
+            Command::Sheet {
+                day,
+                class,
+                blank,
+                to,
+                format,
+            } => {
+                let day = day.of(&desk)?;
+                let request = SheetRequest {
+                    class: class.clone(),
+                    blank: (*blank).min(MOST_BLANK),
+                    html: format == "html",
+                    exact: to.exact,
+                };
+                let report = desk.sheet(&day, &request)?;
                 to.write(&report, &format!("children of {}", title(&day)))
             }
             Command::Referrals { to, format } => {

@@ -94,6 +94,9 @@ fn plan_lines(plan: &ResultsPlan) -> Vec<String> {
             plan.different.len()
         ),
     ];
+    if plan.empty > 0 {
+        lines.push(format!("{} rows with nothing entered", plan.empty));
+    }
     listed(
         &mut lines,
         "signed with other values",

@@ -2,11 +2,13 @@
 
 use std::path::{Path, PathBuf};
 
+use chrono::NaiveDate;
 use clap::{Args, Subcommand};
 
 use super::output::{busy, clean, confirmed, print_clean, print_lines};
 use super::{Failure, Global, open};
 use crate::actions::RosterPlan;
+use crate::domain::age::AgeMonths;
 use crate::domain::roster::RosterChild;
 
 /// How many of a kind are listed one by one; the others are counted.
@@ -83,6 +85,16 @@ pub(super) fn read(file: &Path) -> Result<(String, Vec<u8>), Failure> {
     Ok((name, bytes))
 }
 
+/// Older than this a birth year is asked about, not refused (common practice: a mistyped year).
+const GROWN_MONTHS: u32 = 25 * 12;
+
+fn is_grown(child: &RosterChild, today: NaiveDate) -> bool {
+    child
+        .dob
+        .and_then(|born| AgeMonths::between(born, today))
+        .is_some_and(|age| age.0 > GROWN_MONTHS)
+}
+
 /// Returns what a roster would change, and who is to be looked at.
 fn plan_lines(plan: &RosterPlan) -> Vec<String> {
     let RosterPlan {
@@ -114,6 +126,23 @@ fn plan_lines(plan: &RosterPlan) -> Vec<String> {
         "birth date unknown",
         &roster.without_dob,
         |at| named(&children[*at]),
+    );
+    let today = plan.today;
+    let grown: Vec<usize> = (0..children.len())
+        .filter(|at| is_grown(&children[*at], today))
+        .collect();
+    listed(
+        &mut lines,
+        "older than 25 years, is the birth year right?",
+        &grown,
+        |at| {
+            let born = children[*at].dob.map(|d| d.to_string());
+            format!(
+                "{}, born {}",
+                named(&children[*at]),
+                born.unwrap_or_default()
+            )
+        },
     );
     listed(&mut lines, "grade unknown", &roster.without_grade, |at| {
         named(&children[*at])

@@ -18,7 +18,7 @@ pub(super) struct Verify {
 impl Verify {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
         let expected = self.head.as_deref().map(expected).transpose()?;
-        let desk = open::to_read(global)?;
+        let desk = open::to_read_without_rules(global)?;
         // Drawn on standard error, and only where that is a terminal.
         let bar = ProgressBar::new(0);
         if let Ok(style) = ProgressStyle::with_template("{pos} of {len} entries {wide_bar} {eta}") {

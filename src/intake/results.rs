@@ -35,7 +35,12 @@ pub enum Column {
     Row(RowColumn),
     /// A value of the visit.
     Field(Field),
+    /// A name or class, for the person who fills in a class list; not read.
+    Name,
 }
+
+/// Columns of a class list that are there for people.
+const NAMES: [&str; 3] = ["family_name", "given_name", "class"];
 
 /// How a results file is read.
 #[derive(Debug, Clone, Copy, Default)]
@@ -49,6 +54,8 @@ pub struct Options {
     pub takes_repeats: bool,
     /// Whether unknown columns are left alone.
     pub pass_through: bool,
+    /// Whether names and class may stand beside the id, as on a class list.
+    pub takes_names: bool,
     /// The screening day of rows that do not say one.
     pub day: Option<NaiveDate>,
     /// What a bare `40` or `12` is the denominator of.
@@ -126,14 +133,18 @@ impl<'a> ResultsReader<'a> {
         } else {
             &[]
         };
-        let columns = sheet.columns(&known(), required, options.pass_through)?;
+        let mut known = known();
+        if options.takes_names {
+            known.extend(NAMES.map(|word| (word, Column::Name)));
+        }
+        let columns = sheet.columns(&known, required, options.pass_through)?;
         let mut row_order = Vec::new();
         let mut field_order = Vec::new();
         for (i, column) in columns.iter().enumerate() {
             match column {
                 Some(Column::Row(c)) => row_order.push((i, *c)),
                 Some(Column::Field(f)) => field_order.push((i, *f)),
-                None => {}
+                Some(Column::Name) | None => {}
             }
         }
         field_order.sort_by_key(|(_, field)| *field);

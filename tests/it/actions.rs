@@ -2,6 +2,7 @@
 
 mod board;
 mod calendar;
+mod door;
 mod late;
 mod later_visits;
 mod rosters;

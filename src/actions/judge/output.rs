@@ -41,7 +41,7 @@ fn kinds(reader: &ResultsReader<'_>) -> Vec<Kind> {
             Some(Column::Row(RowColumn::AgeMonths)) => Kind::Number,
             Some(Column::Row(RowColumn::Grade | RowColumn::Attempt)) => Kind::Code,
             Some(Column::Field(field)) => field_kind(*field),
-            None => Kind::HandedThrough,
+            Some(Column::Name) | None => Kind::HandedThrough,
         })
         .collect()
 }

@@ -107,3 +107,54 @@ fn settings_name_the_triage_sets_and_the_worklist_follows() {
             .contains("no clinic bands")
     );
 }
+
+/// What asks no rule works beside a broken rule file and says so; what judges does not.
+#[test]
+fn a_broken_rule_file_stops_what_judges_and_nothing_else() {
+    let bench = Bench::with_children();
+    std::fs::create_dir_all(bench.path("store/rules")).expect("a folder");
+    bench.write("store/rules/broken.toml", "id = ");
+    assert_eq!(bench.run(&["child", "show", "Q-1"]).code, 2);
+    for works in [
+        &["verify"][..],
+        &["child", "find", "okafor"],
+        &["backup", "copy"],
+    ] {
+        let ran = bench.run(works);
+        assert_eq!(ran.code, 0, "{works:?}: {}", ran.err);
+        assert!(
+            ran.err.contains("broken.toml") && ran.err.contains("left out"),
+            "{}",
+            ran.err
+        );
+    }
+}
+
+/// A pipe in the rules folder is refused, not waited for.
+#[cfg(unix)]
+#[test]
+fn a_pipe_in_the_rules_folder_is_refused() {
+    let bench = Bench::with_children();
+    std::fs::create_dir_all(bench.path("store/rules")).expect("a folder");
+    let made = std::process::Command::new("mkfifo")
+        .arg(bench.path("store/rules/pipe.toml"))
+        .status();
+    assert!(made.is_ok_and(|s| s.success()));
+    let ran = bench.run(&["child", "show", "Q-1"]);
+    assert_eq!(ran.code, 2);
+    assert!(ran.err.contains("not an ordinary file"), "{}", ran.err);
+}
+
+/// A birth year that makes a child older than 25 years is pointed out and taken.
+#[test]
+fn a_birth_year_long_ago_is_asked_about() {
+    let bench = Bench::with_children();
+    bench.write(
+        "old.csv",
+        "child_id,family_name,given_name,dob,grade,site\nQ-90,Moss,Tilda,1990-03-02,1,QE\n",
+    );
+    let ran = bench.run(&["roster", "add", "old.csv", "--dry-run"]);
+    assert_eq!(ran.code, 0, "{}", ran.err);
+    let said = format!("{}{}", ran.out, ran.err);
+    assert!(said.contains("older than 25 years"), "{said}");
+}
