@@ -228,7 +228,7 @@ pub(super) fn whole(desk: &Desk, referral: &ReferralView) -> Result<Vec<String>,
         }
         match referral.confirmed(desk.group_of(referral)) {
             Confirmed::Yes(why) => {
-                lines.extend(wrapped(&format!("confirmed: {}", why.join("; ")), "  "))
+                lines.extend(wrapped(&format!("confirmed: {}", why.join("; ")), "  "));
             }
             Confirmed::No => lines.push("nothing was confirmed".to_owned()),
             Confirmed::NotKnown => {

@@ -14,8 +14,8 @@ use crate::domain::referral::{
 
 /// Enter what was done about a referral
 ///
-/// KIND is letter_printed, letter_sent, letter_returned, call, message, appointment, no_show,
-/// report_received, glasses_seen, wear_checked, assigned, note, closed or reopened.
+/// KIND is `letter_printed`, `letter_sent`, `letter_returned`, call, message, appointment, `no_show`,
+/// `report_received`, `glasses_seen`, `wear_checked`, assigned, note, closed or reopened.
 #[derive(Debug, Args)]
 pub(super) struct Step {
     /// Code of the referral, or the child's id
@@ -29,13 +29,13 @@ pub(super) struct Step {
     /// Time of day
     #[arg(long, value_name = "HH:MM", value_parser = |s: &str| NaiveTime::parse_from_str(s, "%H:%M").map_err(|_| "expected a time such as 14:05".to_owned()))]
     at: Option<NaiveTime>,
-    /// By which way: childs_bag, post, telephone, text, email, in_person
+    /// By which way: `childs_bag`, post, telephone, text, email, `in_person`
     #[arg(long, value_parser = |s: &str| code(s, Channel::from_word, Channel::words))]
     by: Option<Channel>,
     /// In which language
     #[arg(long, value_name = "LANGUAGE")]
     language: Option<String>,
-    /// How a call or message ended: reached, no_answer, message_left, wrong_number, call_again
+    /// How a call or message ended: reached, `no_answer`, `message_left`, `wrong_number`, `call_again`
     #[arg(long, value_parser = |s: &str| code(s, ContactResult::from_word, ContactResult::words))]
     result: Option<ContactResult>,
     /// Which letter
@@ -47,10 +47,10 @@ pub(super) struct Step {
     /// Whether the glasses were worn: yes, no
     #[arg(long, value_parser = |s: &str| code(s, YesNo::from_word, YesNo::words))]
     worn: Option<YesNo>,
-    /// How an examination is known: form, parents_word, seen_by_nurse
+    /// How an examination is known: form, `parents_word`, `seen_by_nurse`
     #[arg(long, value_parser = |s: &str| code(s, Evidence::from_word, Evidence::words))]
     evidence: Option<Evidence>,
-    /// Why it is closed: examined, declined, moved, unreachable, already_under_care
+    /// Why it is closed: examined, declined, moved, unreachable, `already_under_care`
     #[arg(long, value_parser = |s: &str| code(s, Closing::from_word, Closing::words))]
     closing: Option<Closing>,
     /// With whom, or to whom it is handed

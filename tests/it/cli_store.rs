@@ -1,6 +1,6 @@
 //! Tests of the commands that work on a store, through the real binary.
 
-#![allow(clippy::panic)]
+#![allow(clippy::panic, clippy::unwrap_used)]
 
 mod board;
 mod children;

@@ -1,5 +1,7 @@
 //! Letters: every kind in every language, a programme's own files, and what is wrong with them.
 
+#![allow(clippy::unwrap_used, clippy::print_stdout)]
+
 mod printed;
 
 use chrono::NaiveDate;

@@ -6,7 +6,7 @@ use uuid::Uuid;
 use super::super::desk::Desk;
 use super::super::error::{ActionError, Result};
 use super::{ReferralView, closed_words};
-use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::domain::outcome::Urgency;
 use crate::domain::referral::{LetterKind, Step, StepKind};
 use crate::store::row::{Outcome, StepEntry};
 use crate::store::{Tx, new_id};
@@ -163,7 +163,7 @@ pub(in crate::actions) fn out_of_date(
 
 fn outcome_words(outcome: &Outcome) -> String {
     let words = [
-        Some(outcome.kind).map(OutcomeKind::title),
+        Some(outcome.kind.title()),
         outcome.urgency.map(Urgency::title),
     ];
     words.into_iter().flatten().collect::<Vec<_>>().join(", ")

@@ -213,18 +213,22 @@ fn open(
     (state, next)
 }
 
-fn next(kind: NextKind, due: NaiveDate, why: impl Into<String>) -> Option<Next> {
-    Some(Next {
+fn next(kind: NextKind, due: NaiveDate, why: impl Into<String>) -> Next {
+    Next {
         kind,
         due,
         why: why.into(),
-    })
+    }
 }
 
 /// An examination that is known ends the waiting; an urgent finding is told at once.
 fn known(opened: &Opened, opened_on: NaiveDate, steps: &[Step]) -> Option<Next> {
     if steps.iter().any(|s| s.kind == StepKind::ReportReceived) {
-        return next(NextKind::CloseExamined, opened_on, "a report was received");
+        return Some(next(
+            NextKind::CloseExamined,
+            opened_on,
+            "a report was received",
+        ));
     }
     let spoken = steps
         .iter()
@@ -232,14 +236,14 @@ fn known(opened: &Opened, opened_on: NaiveDate, steps: &[Step]) -> Option<Next> 
     if opened.urgency == Urgency::Routine || spoken {
         return None;
     }
-    next(
+    Some(next(
         NextKind::CallAtOnce,
         opened.act_by.unwrap_or(opened_on).min(after(opened_on, 1)),
         format!(
             "{}; nobody has spoken with the family",
             opened.urgency.title()
         ),
-    )
+    ))
 }
 
 /// A letter to print or to send, an appointment to wait for.
@@ -265,35 +269,39 @@ fn letter(
         _ => LetterKind::Urgent,
     };
     if let Some(at) = newest(StepKind::LetterOutOfDate).filter(|at| printed < Some(*at)) {
-        return next(
+        return Some(next(
             NextKind::Print(kind),
             steps[at].on,
             "the letter is out of date",
-        );
+        ));
     }
     if let Some(at) = printed.filter(|at| sent < Some(*at)) {
         let letter = steps[at].letter.unwrap_or(kind);
-        return next(NextKind::Send(letter), steps[at].on, "printed, not sent");
+        return Some(next(
+            NextKind::Send(letter),
+            steps[at].on,
+            "printed, not sent",
+        ));
     }
     if let Some(at) = newest(StepKind::Appointment).filter(|_| state == State::Booked) {
-        return next(
+        return Some(next(
             NextKind::AskReport,
             after(
                 steps[at].due_on.unwrap_or(steps[at].on),
                 settings.report_days,
             ),
             format!("{} days after the appointment", settings.report_days),
-        );
+        ));
     }
     if sent.is_some() {
         return None;
     }
     let due = after(opened_on, settings.notice_days);
-    next(
+    Some(next(
         NextKind::Print(kind),
         opened.act_by.map_or(due, |by| by.min(due)),
         format!("the family is told within {} days", settings.notice_days),
-    )
+    ))
 }
 
 /// A letter went out and nothing is known: another address, another letter, calls, a decision.
@@ -307,44 +315,44 @@ fn again(steps: &[Step], opened_on: NaiveDate, attempts: u32, settings: &FollowU
         .iter()
         .rposition(|s| s.kind == StepKind::LetterReturned);
     if came_back > attempt || last.result == Some(ContactResult::WrongNumber) {
-        return next(
+        return Some(next(
             NextKind::FindContact,
             steps.last().map_or(opened_on, |s| s.on),
             "a letter came back or a number is wrong",
-        );
+        ));
     }
     if attempts >= settings.attempts {
-        return next(
+        return Some(next(
             NextKind::DecideUnreachable,
             after(last.on, settings.call_again_days),
             format!("{attempts} documented attempts without an examination"),
-        );
+        ));
     }
     let letters = steps
         .iter()
         .filter(|s| s.kind == StepKind::LetterSent)
         .count();
     if last.kind == StepKind::LetterSent && letters == 1 {
-        return next(
+        return Some(next(
             NextKind::Print(LetterKind::Second),
             after(last.on, settings.second_letter_days),
             format!(
                 "{} days after the first letter",
                 settings.second_letter_days
             ),
-        );
+        ));
     }
     let asked = last
         .due_on
         .filter(|_| last.result == Some(ContactResult::CallAgain));
-    next(
+    Some(next(
         NextKind::Call(attempts + 1),
         asked.unwrap_or_else(|| after(last.on, settings.call_again_days)),
         match last.kind {
             StepKind::NoShow => "did not come to the appointment".to_owned(),
             _ => format!("{} days after the last attempt", settings.call_again_days),
         },
-    )
+    ))
 }
 
 fn after(date: NaiveDate, days: u32) -> NaiveDate {

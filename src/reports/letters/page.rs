@@ -1,6 +1,7 @@
 //! Letters through their templates into one file.
 
 use std::fmt::Write as _;
+use std::path::Path;
 use std::sync::Arc;
 
 use chrono::NaiveDate;
@@ -96,7 +97,7 @@ impl Letters {
         });
         let shipped = SHIPPED.map(|(file, text)| (file.to_owned(), text.to_owned()));
         for (file, text) in shipped.iter().chain(own) {
-            if file.ends_with(".html") {
+            if Path::new(file).extension().is_some_and(|end| end == "html") {
                 environment
                     .add_template_owned(file.clone(), text.clone())
                     .map_err(|e| {
@@ -277,9 +278,9 @@ fn found(found: &Found, language: &Language) -> Value {
         ScreeningTest::ColorPlates => "test-color",
         ScreeningTest::Instrument => "test-instrument",
     };
-    let word = |value: &FoundValue| {
-        let id = match value {
-            FoundValue::Value(text) => return text.clone(),
+    let shown = |one: &FoundValue| {
+        let id = match one {
+            FoundValue::Value(value) => return value.clone(),
             FoundValue::Fine => "value-fine",
             FoundValue::Look => "value-look",
             FoundValue::NotTestable => "not-testable",
@@ -290,8 +291,8 @@ fn found(found: &Found, language: &Language) -> Value {
     context! {
         test => test,
         values => match &found.values {
-            FoundValues::Eyes(eyes) => eyes.iter().map(word).collect::<Vec<_>>(),
-            FoundValues::Together(value) => vec![word(value)],
+            FoundValues::Eyes(eyes) => eyes.iter().map(shown).collect::<Vec<_>>(),
+            FoundValues::Together(value) => vec![shown(value)],
         },
     }
 }

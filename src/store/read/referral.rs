@@ -80,7 +80,7 @@ impl Reads<'_> {
     }
 
     fn rest(
-        &self,
+        self,
         known: &mut FollowUp,
         id: Uuid,
         visit: Option<VisitNow>,
@@ -100,7 +100,7 @@ impl Reads<'_> {
     }
 
     /// Stations may have recorded parts of one visit: what is about any part is about the visit.
-    fn follow_up(&self, only: Option<Uuid>) -> Result<FollowUp> {
+    fn follow_up(self, only: Option<Uuid>) -> Result<FollowUp> {
         let (filter, key) = match &only {
             Some(id) => (
                 format!(
@@ -153,7 +153,7 @@ impl Reads<'_> {
 
 impl Reads<'_> {
     /// Returns the first id of each visit of several parts, by each of its other ids.
-    fn leads(&self) -> Result<HashMap<Uuid, Uuid>> {
+    fn leads(self) -> Result<HashMap<Uuid, Uuid>> {
         let mut found = self
             .conn
             .prepare_cached("SELECT visit_id, lead FROM visit_part WHERE visit_id <> lead")?;

@@ -1,5 +1,7 @@
 //! The worklist of referrals: who goes first, by which band, and why.
 
+#![allow(clippy::panic)]
+
 use twoline::actions::{Desk, DeskOptions, Secret, Standing, known, whole_reason};
 use twoline::domain::age::AgeMonths;
 use twoline::domain::codes::AcuityMethod;
@@ -131,7 +133,11 @@ fn where_two_sources_conflict_the_sooner_stands_and_both_are_shown() {
     ]);
     let standing = Standing::of(&library, &desk.triage_sets(), Some(AgeMonths(100)), &values);
     assert_eq!(
-        standing.bands.iter().map(|b| b.level()).collect::<Vec<_>>(),
+        standing
+            .bands
+            .iter()
+            .map(twoline::actions::Said::level)
+            .collect::<Vec<_>>(),
         [Some(Level::Within(90)), Some(Level::Within(30))]
     );
     assert_eq!(standing.act_within_days(), Some(30));

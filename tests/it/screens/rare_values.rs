@@ -146,7 +146,7 @@ fn the_history_of_the_value_under_the_cursor_is_on_one_key() {
     h.enter().typed("32").enter().enter().scan("Q-10482");
     h.press(Key::alt('v')).sees("go to a value first");
     // From the line that signs up to the row of distance, then to the left eye.
-    while !h
+    while h
         .app
         .day
         .as_ref()
@@ -155,7 +155,7 @@ fn the_history_of_the_value_under_the_cursor_is_on_one_key() {
         .as_ref()
         .unwrap()
         .field()
-        .is_some_and(|f| f.word() == "distance_left")
+        .is_none_or(|f| f.word() != "distance_left")
     {
         h.key(KeyCode::Up);
     }
@@ -173,7 +173,7 @@ fn the_history_of_the_value_under_the_cursor_is_on_one_key() {
         .typed("wrong row")
         .enter();
     h.sees("corrected Okafor, Ada");
-    while !h
+    while h
         .app
         .day
         .as_ref()
@@ -182,7 +182,7 @@ fn the_history_of_the_value_under_the_cursor_is_on_one_key() {
         .as_ref()
         .unwrap()
         .field()
-        .is_some_and(|f| f.word() == "distance_left")
+        .is_none_or(|f| f.word() != "distance_left")
     {
         h.key(KeyCode::Up);
     }
