@@ -10,6 +10,7 @@ mod comfort;
 pub mod compare;
 mod days;
 mod desk;
+mod disclosures;
 mod door;
 mod error;
 mod follow_up;
@@ -44,10 +45,11 @@ pub use crate::store::{
 };
 pub use calendar::{CalendarChange, CalendarView};
 pub use desk::{Desk, DeskOptions};
+pub use disclosures::Recipient;
 pub use door::{AtTheDoor, Door};
 pub use error::{ActionError, Kind, Result};
 pub use follow_up::{
-    ExamKept, ExamPlan, LetterChoice, PlannedExam, Printed, PrintedLetter, ReferralDetails,
+    ExamKept, ExamPlan, LetterChoice, Lost, PlannedExam, Printed, PrintedLetter, ReferralDetails,
     ReferralView, StepView,
 };
 pub use judging::{BenchTests, bench_tests, correction_from_roster, known, pass_line_for, preview};

@@ -1,6 +1,7 @@
 //! The command line: arguments to actions. One command, one file.
 
 mod failure;
+mod leaves;
 mod open;
 mod output;
 mod values;

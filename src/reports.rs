@@ -2,6 +2,7 @@
 
 pub mod csv;
 pub mod day;
+pub mod disclosures;
 pub mod door;
 pub mod html;
 pub mod letters;

@@ -143,6 +143,12 @@ impl Desk {
             fact("telephone", now.guardian_phone.clone());
         }
         fact("notes", now.notes.clone());
+        for lost in self.lost_child(&now.child_id)? {
+            fact(
+                "lost",
+                Some(format!("{}; code {}", lost.why, lost.referral.code)),
+            );
+        }
         if now.provisional {
             fact("id", Some("provisional: match to the roster".to_owned()));
         }

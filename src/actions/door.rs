@@ -230,6 +230,8 @@ impl Desk {
             bytes,
             about,
             rows: count,
+            title,
+            children: list.into_iter().map(|at| at.child.child_id).collect(),
         })
     }
 }

@@ -3,6 +3,7 @@
 mod exam;
 mod exam_file;
 mod letters;
+mod lost;
 mod steps;
 
 use std::collections::HashMap;
@@ -27,6 +28,7 @@ use crate::store::row::{Referral, StepEntry};
 pub use exam::ExamKept;
 pub use exam_file::{ExamPlan, PlannedExam};
 pub use letters::{LetterChoice, Printed, PrintedLetter};
+pub use lost::Lost;
 pub(super) use steps::out_of_date;
 
 /// A referral with everything that was done about it.
@@ -52,6 +54,10 @@ pub struct ReferralView {
     pub class: String,
     /// Site code.
     pub site: String,
+    /// Code of the site where the outcome referred; empty where it was opened by hand.
+    pub referred_at: String,
+    /// The last examination that the roster knows.
+    pub last_exam_on: Option<NaiveDate>,
     /// When and how urgently it was opened.
     pub opened: Opened,
     /// Why, in words.
@@ -202,6 +208,20 @@ impl Desk {
         let screeners = self.screener_names()?;
         let mut list = Vec::new();
         for record in self.read().referrals()? {
+            if is_referral(&record) {
+                list.push(self.viewed(record, &settings, &screeners)?);
+            }
+        }
+        list.sort_by_cached_key(ReferralView::place);
+        Ok(list)
+    }
+
+    /// Returns the referrals of one child, what is due first; the closed ones come last.
+    pub fn referrals_of(&self, child_id: &str) -> Result<Vec<ReferralView>> {
+        let settings = self.follow_up()?;
+        let screeners = self.screener_names()?;
+        let mut list = Vec::new();
+        for record in self.read().referrals_of(child_id)? {
             if is_referral(&record) {
                 list.push(self.viewed(record, &settings, &screeners)?);
             }
@@ -408,6 +428,8 @@ impl Desk {
                 .as_ref()
                 .and_then(|v| v.kind)
                 .filter(|kind| *kind != OutcomeKind::Refer),
+            referred_at: visit.as_ref().map(|v| v.site.clone()).unwrap_or_default(),
+            last_exam_on: child.last_exam_on,
             opened,
             why,
             standing,

@@ -24,6 +24,10 @@ pub struct Report {
     pub about: String,
     /// How many rows it has.
     pub rows: usize,
+    /// What it is, as the disclosure log names it.
+    pub title: String,
+    /// The ids of the children in it.
+    pub children: Vec<String>,
 }
 
 impl Desk {
@@ -105,6 +109,7 @@ impl Desk {
             entries: head.entries,
         };
         let count = rows.len();
+        let children = rows.iter().map(|row| row.child_id.clone()).collect();
         let bytes = day::write(Vec::new(), Form::exact(exact), rows, &state)
             .map_err(|e| ActionError::failed(e.to_string()))?;
         let title = format!("Day report, {}, {}", day.site_name, spoken(day.date));
@@ -120,6 +125,8 @@ impl Desk {
             bytes,
             about,
             rows: count,
+            title,
+            children,
         })
     }
 

@@ -108,7 +108,13 @@ impl Desk {
             cautions: &CAUTIONS,
             guarded: !request.html && !request.exact,
         });
-        Ok(Report { bytes, about, rows })
+        Ok(Report {
+            bytes,
+            about,
+            rows,
+            title,
+            children: list.into_iter().map(|at| at.child.child_id).collect(),
+        })
     }
 
     fn sheet_child(&self, day: &DayInfo, at: &AtTheDoor, masked: bool) -> SheetChild {

@@ -300,7 +300,13 @@ impl Desk {
             cautions: &CAUTIONS,
             guarded: csv && !exact,
         });
-        Ok(Report { bytes, about, rows })
+        Ok(Report {
+            bytes,
+            about,
+            rows,
+            title,
+            children: list.referred.into_iter().map(|r| r.child_id).collect(),
+        })
     }
 
     fn triage_used(&self) -> Vec<day::RuleSetUsed> {

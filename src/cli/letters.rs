@@ -4,10 +4,11 @@ use std::path::PathBuf;
 
 use clap::Args;
 
-use super::output::{aligned, clean, print_clean, say};
+use super::leaves::{Leaves, file_name};
+use super::output::{aligned, asked, clean, print_clean, say};
 use super::values::code;
 use super::{Failure, Global, open, write};
-use crate::actions::LetterChoice;
+use crate::actions::{LetterChoice, Printed, Recipient};
 use crate::domain::referral::LetterKind;
 
 /// Print letters for what is due: one HTML file, each child on its own page
@@ -31,9 +32,34 @@ pub(super) struct Letters {
     /// In this language, whatever the roster says
     #[arg(long, value_name = "LANGUAGE")]
     language: Option<String>,
+    #[command(flatten)]
+    leaves: Leaves,
 }
 
 impl Letters {
+    /// Returns who outside the programme and the family gets the letters. A letter to the child's
+    /// doctor always leaves: who and what for is asked at a terminal.
+    fn recipient(&self, printed: &Printed) -> Result<Option<Recipient>, Failure> {
+        let given = self.leaves.to()?;
+        if given.is_some()
+            || !printed
+                .letters
+                .iter()
+                .any(|l| l.kind.is_for_a_third_party())
+        {
+            return Ok(given);
+        }
+        let missing = || {
+            Failure::bad_input(
+                "a letter to the child's doctor leaves the programme; nothing was written",
+            )
+            .hint("--recipient and --purpose enter it in the disclosure log")
+        };
+        let who = asked("To whom does the letter to the doctor go?")?.ok_or_else(missing)?;
+        let purpose = asked("What do they need it for?")?.ok_or_else(missing)?;
+        Ok(Some(Recipient::new(&who, &purpose)?))
+    }
+
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
         let choice = LetterChoice {
             kinds: self.kinds.clone(),
@@ -41,6 +67,10 @@ impl Letters {
             child: self.child.clone(),
             language: self.language.clone(),
         };
+        if self.out.is_none() && self.leaves.to()?.is_some() {
+            return Err(Failure::bad_input("without -o no letter leaves")
+                .hint("name the file: -o OUT.html"));
+        }
         let mut desk = if self.out.is_some() {
             open::to_sign(global)?
         } else {
@@ -48,7 +78,14 @@ impl Letters {
         };
         let printed = desk.letters(&choice)?;
         if let Some(out) = self.out.as_ref().filter(|_| !printed.letters.is_empty()) {
-            write::whole(&[(out, printed.html.as_bytes())])?;
+            let to = self.recipient(&printed)?;
+            write::whole_once(&[(out, printed.html.as_bytes())], || {
+                if let Some(to) = &to {
+                    let entered = desk.letters_leave(&printed, to, &file_name(Some(out)))?;
+                    say(&format!("{entered} entries in the disclosure log"));
+                }
+                Ok(())
+            })?;
             desk.letters_printed(&printed)?;
             say(&format!(
                 "{} letters: {}; open it in a browser and print it",

@@ -73,6 +73,20 @@ pub(super) fn confirmed(question: &str) -> Result<bool, Failure> {
     Ok(matches!(answer.trim(), "y" | "Y" | "yes"))
 }
 
+/// Asks for a line of text; nothing where there is no terminal to ask on.
+pub(super) fn asked(question: &str) -> Result<Option<String>, Failure> {
+    let stdin = io::stdin();
+    if !stdin.is_terminal() {
+        return Ok(None);
+    }
+    let mut err = io::stderr().lock();
+    let _ = write!(err, "{question} ");
+    let _ = err.flush();
+    let mut answer = String::new();
+    stdin.lock().read_line(&mut answer)?;
+    Ok(Some(answer.trim().to_owned()))
+}
+
 /// Takes a broken pipe for the reader's wish to read no more.
 pub(super) fn unless_closed(result: io::Result<()>) -> Result<(), Failure> {
     match result {

@@ -5,7 +5,7 @@ use clap::{Args, Subcommand};
 use super::output::{aligned, clean, print_clean, wrapped};
 use super::values::code;
 use super::{Failure, Global, open};
-use crate::actions::{Desk, ReferralDetails, ReferralView};
+use crate::actions::{Desk, Lost, ReferralDetails, ReferralView};
 use crate::domain::age::spoken;
 use crate::domain::codes::YesNo;
 use crate::domain::exam::{CONFIRMED, Confirmed};
@@ -28,6 +28,10 @@ enum Command {
         /// The closed ones as well
         #[arg(long)]
         all: bool,
+        /// Only lost children, with why: referred in an earlier term or at another site than theirs now,
+        /// open, and no examination known
+        #[arg(long, conflicts_with = "all")]
+        lost: bool,
         /// Site code
         #[arg(long, value_name = "CODE")]
         site: Option<String>,
@@ -73,7 +77,19 @@ enum Command {
 impl Refer {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
         match &self.command {
-            Command::List { all, site } => {
+            Command::List {
+                lost: true, site, ..
+            } => {
+                let desk = open::to_read(global)?;
+                let mut lost = desk.lost_children()?;
+                lost.retain(|l| {
+                    let referral = &l.referral;
+                    site.as_ref()
+                        .is_none_or(|s| *s == referral.site || *s == referral.referred_at)
+                });
+                print_clean(&lost_lines(&lost))
+            }
+            Command::List { all, site, .. } => {
                 let desk = open::to_read(global)?;
                 let list: Vec<ReferralView> = desk
                     .referral_list()?
@@ -121,6 +137,27 @@ impl Refer {
             }
         }
     }
+}
+
+/// Returns the lost children, each with why it is on the list.
+fn lost_lines(lost: &[Lost]) -> Vec<String> {
+    let mut lines = vec![match lost.len() {
+        0 => "no lost child".to_owned(),
+        1 => "1 lost child".to_owned(),
+        many => format!("{many} lost children"),
+    }];
+    let mut rows = Vec::new();
+    for Lost { referral, why } in lost {
+        rows.push(vec![
+            format!("{}, {}", referral.family_name, referral.given_name),
+            referral.child_id.clone(),
+            referral.code.to_string(),
+            referral.opened.urgency.title().to_owned(),
+            why.clone(),
+        ]);
+    }
+    lines.extend(aligned(&rows));
+    lines
 }
 
 fn list_lines(desk: &Desk, list: &[ReferralView]) -> Result<Vec<String>, Failure> {

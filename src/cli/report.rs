@@ -5,14 +5,15 @@ use std::path::{Path, PathBuf};
 
 use clap::{Args, Subcommand};
 
+use super::leaves::{Leaves, file_name};
 use super::output::{clean, print_bytes, print_clean, say};
 use super::values::{WhichDay, title};
 use super::{Failure, Global, open, write};
-use crate::actions::{Report as Made, SheetRequest};
+use crate::actions::{Desk, Report as Made, SheetRequest};
+use crate::tui::board::plain;
 
 /// Blank rows that one sheet has at most.
 const MOST_BLANK: usize = 500;
-use crate::tui::board::plain;
 
 /// Write reports
 #[derive(Debug, Args)]
@@ -67,6 +68,17 @@ enum Command {
         #[arg(long, value_parser = ["csv", "text"], default_value = "csv")]
         format: String,
     },
+    /// What left the programme: each child of each file, to whom, what for, when and by whom
+    Disclosures {
+        /// Only this child
+        #[arg(long, value_name = "ID")]
+        child: Option<String>,
+        #[command(flatten)]
+        to: To,
+        /// Form of the file: a table, or text for people
+        #[arg(long, value_parser = ["csv", "text"], default_value = "csv")]
+        format: String,
+    },
     /// How a screening day stands: by class, by station, and when it will end
     Board {
         #[command(flatten)]
@@ -80,6 +92,20 @@ enum Command {
     },
 }
 
+impl Command {
+    /// Returns where the report goes, for those that are files.
+    fn to(&self) -> Option<&To> {
+        match self {
+            Command::Day { to, .. }
+            | Command::Children { to, .. }
+            | Command::Sheet { to, .. }
+            | Command::Referrals { to, .. }
+            | Command::Disclosures { to, .. } => Some(to),
+            Command::Board { .. } => None,
+        }
+    }
+}
+
 /// Where a report goes.
 #[derive(Debug, Args)]
 struct To {
@@ -90,16 +116,34 @@ struct To {
     /// Text as it is: no byte order mark, no guard against spreadsheet formulas
     #[arg(long)]
     exact: bool,
+    #[command(flatten)]
+    leaves: Leaves,
 }
 
 impl To {
-    /// Writes a report; `what` says of whom.
-    fn write(&self, report: &Made, what: &str) -> Result<(), Failure> {
+    /// Writes a report, and first enters who gets it where it leaves the programme; `what` says of
+    /// whom it is.
+    fn write(&self, desk: &mut Desk, report: &Made, what: &str) -> Result<(), Failure> {
+        let to = self.leaves.to()?;
+        let file = file_name(self.out.as_deref());
+        let mut log = || -> Result<(), Failure> {
+            let Some(to) = &to else { return Ok(()) };
+            let entered = desk.disclose(to, &report.title, &file, &report.children)?;
+            say(&format!("{entered} children entered in the disclosure log"));
+            Ok(())
+        };
         let Some(out) = &self.out else {
+            log()?;
             return print_bytes(&report.bytes);
         };
         let about = beside(out);
-        write::whole(&[(&about, report.about.as_bytes()), (out, &report.bytes)])?;
+        write::whole_once(
+            &[
+                (&about, report.about_for(to.as_ref()).as_bytes()),
+                (out, &report.bytes),
+            ],
+            log,
+        )?;
         say(&format!(
             "{} {what}: {} and {}",
             report.rows,
@@ -107,6 +151,15 @@ impl To {
             clean(&about.to_string_lossy())
         ));
         Ok(())
+    }
+
+    /// Writes a report that is text for people: as lines where it goes to standard output.
+    fn write_text(&self, desk: &mut Desk, report: &Made, what: &str) -> Result<(), Failure> {
+        if self.out.is_some() || self.leaves.to()?.is_some() {
+            return self.write(desk, report, what);
+        }
+        let text = String::from_utf8_lossy(&report.bytes);
+        print_clean(&text.lines().map(str::to_owned).collect::<Vec<_>>())
     }
 }
 
@@ -118,17 +171,22 @@ fn beside(out: &Path) -> PathBuf {
 
 impl Report {
     pub(super) fn run(&self, global: &Global) -> Result<(), Failure> {
-        let desk = open::to_read(global)?;
+        let leaves = self.command.to().map(|to| to.leaves.to()).transpose()?;
+        let mut desk = if leaves.flatten().is_some() {
+            open::to_sign(global)?
+        } else {
+            open::to_read(global)?
+        };
         match &self.command {
             Command::Day { day, to, .. } => {
                 let day = day.of(&desk)?;
                 let report = desk.day_report(&day, to.exact)?;
-                to.write(&report, &format!("children of {}", title(&day)))
+                to.write(&mut desk, &report, &format!("children of {}", title(&day)))
             }
             Command::Children { day, to, format } => {
                 let day = day.of(&desk)?;
                 let report = desk.door_report(&day, format == "html", to.exact)?;
-                to.write(&report, &format!("children of {}", title(&day)))
+                to.write(&mut desk, &report, &format!("children of {}", title(&day)))
             }
             Command::Sheet {
                 day,
@@ -145,17 +203,25 @@ impl Report {
                     exact: to.exact,
                 };
                 let report = desk.sheet(&day, &request)?;
-                to.write(&report, &format!("children of {}", title(&day)))
+                to.write(&mut desk, &report, &format!("children of {}", title(&day)))
             }
             Command::Referrals { to, format } => {
                 let csv = format == "csv";
                 let report = desk.referrals_report(csv, to.exact)?;
-                if !csv && to.out.is_none() {
-                    let text = String::from_utf8_lossy(&report.bytes);
-                    let lines: Vec<String> = text.lines().map(str::to_owned).collect();
-                    return print_clean(&lines);
+                if csv {
+                    to.write(&mut desk, &report, "referrals")
+                } else {
+                    to.write_text(&mut desk, &report, "referrals")
                 }
-                to.write(&report, "referrals")
+            }
+            Command::Disclosures { child, to, format } => {
+                let csv = format == "csv";
+                let report = desk.disclosures_report(child.as_deref(), csv, to.exact)?;
+                if csv {
+                    to.write(&mut desk, &report, "disclosures")
+                } else {
+                    to.write_text(&mut desk, &report, "disclosures")
+                }
             }
             Command::Board { day, format, exact } => {
                 let board = desk.board(&day.of(&desk)?)?;

@@ -11,6 +11,14 @@ use super::output::clean;
 
 /// Writes files aside, syncs them and gives them their names, so that none is ever there in part.
 pub(super) fn whole(files: &[(&Path, &[u8])]) -> Result<(), Failure> {
+    whole_once(files, || Ok(()))
+}
+
+/// The same, where the files get their names only once something is done.
+pub(super) fn whole_once(
+    files: &[(&Path, &[u8])],
+    done: impl FnOnce() -> Result<(), Failure>,
+) -> Result<(), Failure> {
     let mut written = Vec::new();
     for (path, bytes) in files {
         let path = plain(path)?;
@@ -27,6 +35,7 @@ pub(super) fn whole(files: &[(&Path, &[u8])]) -> Result<(), Failure> {
             .map_err(|e| failed(&path, &e))?;
         written.push((temp, path));
     }
+    done()?;
     for (temp, path) in written {
         temp.persist(&path).map_err(|e| failed(&path, &e.error))?;
         #[cfg(unix)]

@@ -84,6 +84,13 @@ code_list! {
     }
 }
 
+impl LetterKind {
+    /// Says whether it goes to somebody other than the family.
+    pub fn is_for_a_third_party(self) -> bool {
+        self == LetterKind::ToDoctor
+    }
+}
+
 /// One thing that was done.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Step {

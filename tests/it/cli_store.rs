@@ -5,10 +5,12 @@
 mod board;
 mod children;
 mod demo;
+mod disclosures;
 mod exam_files;
 mod files;
 mod follow_up;
 mod lock;
+mod lost;
 mod packets;
 mod programme;
 mod terminal;

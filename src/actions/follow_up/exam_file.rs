@@ -53,7 +53,7 @@ impl Desk {
         };
         let mut problems = Problems::default();
         for row in rows {
-            for problem in self.plan_exam(file, &list, row, &mut plan) {
+            for problem in self.plan_exam(file, &list, &row, &mut plan) {
                 problems.push(problem);
             }
         }
@@ -65,14 +65,14 @@ impl Desk {
         &self,
         file: &str,
         list: &[ReferralView],
-        row: ExamRow,
+        row: &ExamRow,
         plan: &mut ExamPlan,
     ) -> Vec<Problem> {
         let (column, cell) = row.whose();
         let about =
             |expected: String| Problem::of_cell(file, row.place, column.word(), cell, expected);
         let report = self.completed(row.report.clone());
-        let found = match of_row(list, &row, &about) {
+        let found = match of_row(list, row, &about) {
             Ok(found) => found,
             Err(problem) => return vec![*problem],
         };

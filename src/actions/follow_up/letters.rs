@@ -5,6 +5,7 @@ use std::path::Path;
 use uuid::Uuid;
 
 use super::super::desk::Desk;
+use super::super::disclosures::Recipient;
 use super::super::error::{ActionError, Result};
 use super::super::visit_rows::{judged, tries_of};
 use super::{ReferralView, code_of};
@@ -150,6 +151,21 @@ impl Desk {
         Ok(self
             .store
             .append(&author, |tx| rows.iter().try_for_each(|row| tx.add(row)))?)
+    }
+
+    /// Enters that letters go to somebody outside the programme and the family: one entry for each
+    /// child and kind of letter. Returns how many.
+    pub fn letters_leave(
+        &mut self,
+        printed: &Printed,
+        to: &Recipient,
+        file: &str,
+    ) -> Result<usize> {
+        let left = printed
+            .letters
+            .iter()
+            .map(|l| (format!("letter: {}", l.kind.title()), l.child_id.clone()));
+        self.disclose_each(to, file, left)
     }
 
     fn wanted(&self, choice: &LetterChoice, left_out: &mut Vec<String>) -> Result<Vec<Wanted>> {

@@ -74,6 +74,34 @@ impl Reads<'_> {
         self.rest(&mut known, id, visit)
     }
 
+    /// Returns the referrals of one child: by its visits, and those opened by hand.
+    pub fn referrals_of(&self, child_id: &str) -> Result<Vec<ReferralRecord>> {
+        let mut ids: Vec<Uuid> = self
+            .visits_now(child_id)?
+            .into_iter()
+            .map(|v| v.visit_id)
+            .collect();
+        let by_hand: Vec<Referral> = self.rows(
+            &format!("x.child_id = ?1 AND {LIVE}"),
+            IN_ORDER,
+            &[child_id.to_owned().cell()],
+        )?;
+        for row in by_hand {
+            let id = match self.visit(row.referral_id)? {
+                Some(visit) => visit.visit_id,
+                None => row.referral_id,
+            };
+            if !ids.contains(&id) {
+                ids.push(id);
+            }
+        }
+        let mut out = Vec::new();
+        for id in ids {
+            out.extend(self.referral(id)?);
+        }
+        Ok(out)
+    }
+
     /// Returns everything that left the programme, in the order it was written down.
     pub fn disclosures(&self) -> Result<Vec<Disclosure>> {
         self.rows(LIVE, &format!("x.disclosed_on, {IN_ORDER}"), &[])

@@ -215,3 +215,41 @@ fn a_roster_is_written_only_after_a_yes() {
         assert_eq!(bench.head() != head, written);
     }
 }
+
+#[test]
+fn a_letter_to_the_doctor_asks_who_gets_it_and_reports_ask_before_they_are_written() {
+    let bench = super::follow_up::referred();
+    let letter = ["letters", "--kind", "to_doctor", "--child", "Q-2"];
+    let mut terminal = Terminal::run(&bench, &[&letter[..], &["-o", "doctor.html"]].concat());
+    terminal.until("To whom does the letter to the doctor go?");
+    terminal.type_in("Dr A. Hale\r");
+    terminal.until("What do they need it for?");
+    terminal.type_in("\r");
+    let (code, seen) = terminal.end();
+    assert_eq!(code, 2, "no purpose: {seen}");
+    assert!(!bench.path("doctor.html").exists());
+    let mut terminal = Terminal::run(&bench, &[&letter[..], &["-o", "doctor.html"]].concat());
+    terminal.until("To whom does the letter to the doctor go?");
+    terminal.type_in("Dr A. Hale\r");
+    terminal.until("What do they need it for?");
+    terminal.type_in("care of the child\r");
+    let (code, seen) = terminal.end();
+    assert_eq!(code, 0, "{seen}");
+    let log = bench.ok(&["report", "disclosures", "--format", "text"]);
+    assert!(
+        log.contains("to Dr A. Hale, for care of the child"),
+        "{log}"
+    );
+
+    bench.write(
+        "reports.csv",
+        "child_id,examined_on,no_abnormality\nQ-2,2026-10-14,yes\n",
+    );
+    for (answer, says) in [("n", "nothing was written"), ("y", "saved; store head")] {
+        let mut terminal = Terminal::run(&bench, &["exam", "read", "reports.csv"]);
+        terminal.until("close these referrals as examined? [y/N]");
+        terminal.type_in(&format!("{answer}\r"));
+        let (code, seen) = terminal.end();
+        assert!(code == 0 && seen.contains(says), "{seen}");
+    }
+}
