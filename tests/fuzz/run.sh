@@ -20,6 +20,9 @@ case $target in
 esac
 for seed in $seeds; do cp "$seed" "$corpus/seed-$(basename "$seed")"; done
 [ "$target" = acuity ] && printf '%s' '>=20/32' > "$corpus/seed"
+[ "$target" = exams ] && printf '%s\n' \
+    'code,examined_on,best_left,sphere_left,cylinder_left,axis_left,glasses_axis_left,findings,treatment' \
+    '4829135694,2026-12-02,20/40,+1.00,-0.50,180,90,H53.022,glasses;patching' > "$corpus/seed"
 nice -n 19 "$CARGO_TARGET_DIR/$host/release/$target" "$corpus" \
     -max_total_time="${2:-60}" -max_len=8192 -print_final_stats=1 \
     -artifact_prefix="$corpus-found-"

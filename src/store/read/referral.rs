@@ -66,38 +66,38 @@ impl Reads<'_> {
         Ok(out)
     }
 
-    /// Returns one referral.
+    /// Returns one referral, by the id of any part of its visit.
     pub fn referral(&self, id: Uuid) -> Result<Option<ReferralRecord>> {
-        let mut known = self.follow_up(Some(id))?;
         let visit = self.visit(id)?;
         let id = visit.as_ref().map_or(id, |v| v.visit_id);
-        self.rest(&mut known, id, visit)
+        self.rest(&mut self.follow_up(Some(id))?, id, visit)
     }
 
-    /// Returns the referrals of one child: by its visits, and those opened by hand.
+    /// Returns the referrals of one child: those of [`Reads::referrals`] that are its.
     pub fn referrals_of(&self, child_id: &str) -> Result<Vec<ReferralRecord>> {
-        let mut ids: Vec<Uuid> = self
-            .visits_now(child_id)?
-            .into_iter()
+        let filter = format!("x.child_id = ?1 AND {LIVE}");
+        let child = child_id.to_owned();
+        let key = [child.cell()];
+        let visits = self.visits_now(child_id)?;
+        let rows: Vec<Referral> = self.rows(&filter, IN_ORDER, &key)?;
+        let steps: Vec<StepEntry> = self.rows(&filter, IN_ORDER, &key)?;
+        let reports: Vec<ExamEntry> = self.rows(&filter, IN_ORDER, &key)?;
+        let about = visits
+            .iter()
             .map(|v| v.visit_id)
-            .collect();
-        let by_hand: Vec<Referral> = self.rows(
-            &format!("x.child_id = ?1 AND {LIVE}"),
-            IN_ORDER,
-            &[child_id.to_owned().cell()],
-        )?;
-        for row in by_hand {
-            let id = match self.visit(row.referral_id)? {
-                Some(visit) => visit.visit_id,
-                None => row.referral_id,
+            .chain(rows.iter().map(|r| r.referral_id))
+            .chain(steps.iter().map(|s| s.referral_id))
+            .chain(reports.iter().map(|r| r.referral_id));
+        let mut out: Vec<ReferralRecord> = Vec::new();
+        for id in about {
+            let Some(record) = self.referral(id)? else {
+                continue;
             };
-            if !ids.contains(&id) {
-                ids.push(id);
+            // A visit may have been moved to another child since.
+            let mine = record.child.child_id == child_id;
+            if mine && out.iter().all(|r| r.referral_id != record.referral_id) {
+                out.push(record);
             }
-        }
-        let mut out = Vec::new();
-        for id in ids {
-            out.extend(self.referral(id)?);
         }
         Ok(out)
     }
@@ -128,6 +128,7 @@ impl Reads<'_> {
     }
 
     /// Stations may have recorded parts of one visit: what is about any part is about the visit.
+    /// `only` is the first part of one visit, or a referral of its own.
     fn follow_up(self, only: Option<Uuid>) -> Result<FollowUp> {
         let (filter, key) = match &only {
             Some(id) => (
@@ -139,8 +140,11 @@ impl Reads<'_> {
             ),
             None => (LIVE.to_owned(), Vec::new()),
         };
-        let leads = self.leads()?;
-        let lead = |id: Uuid| leads.get(&id).copied().unwrap_or(id);
+        let leads = match only {
+            Some(_) => HashMap::new(),
+            None => self.leads()?,
+        };
+        let lead = |id: Uuid| only.or_else(|| leads.get(&id).copied()).unwrap_or(id);
         let mut known = FollowUp::default();
         for row in self.rows::<Referral>(&filter, IN_ORDER, &key)? {
             known.rows.insert(lead(row.referral_id), row);

@@ -2,7 +2,9 @@
 
 use chrono::NaiveDate;
 use proptest::prelude::*;
+use twoline::domain::acuity::Notation;
 use twoline::intake::Problems;
+use twoline::intake::exams::read_exams;
 use twoline::intake::results::{Options, read_results};
 use twoline::intake::roster::read_roster;
 
@@ -53,6 +55,13 @@ proptest! {
     #[test]
     fn results(text in almost("child_id,dob,screened_on,grade,distance_right,sphere_right,cylinder_right,axis_right,signs")) {
         if let Err(problems) = read_results("r.csv", text.as_bytes(), Options::default(), None) {
+            prop_assert!(safe(&problems), "{problems:?}");
+        }
+    }
+
+    #[test]
+    fn exams(text in almost("code,child_id,examined_on,best_right,sphere_right,cylinder_right,axis_right,findings,treatment,examiner")) {
+        if let Err(problems) = read_exams("r.csv", text.as_bytes(), Some(Notation::Feet)) {
             prop_assert!(safe(&problems), "{problems:?}");
         }
     }

@@ -250,3 +250,63 @@ fn every_table_is_filled_by_the_test_store() {
         assert!(n > 0, "{table}");
     }
 }
+
+#[test]
+fn what_is_about_a_part_of_a_visit_is_about_the_visit_however_it_is_asked() {
+    let (_temp, mut store) = fresh();
+    let one = fill(&mut store);
+    let two = visit("Q-1");
+    let by_hand = new_id();
+    let (first, second, third) = (
+        follow_up(one, new_id()),
+        follow_up(two.visit_id, new_id()),
+        follow_up(by_hand, new_id()),
+    );
+    store
+        .append(&author(), |tx| {
+            tx.add(&two)?;
+            tx.add(&reading(two.visit_id, Field::DistanceRight, "20/63"))?;
+            tx.add(&outcome(two.visit_id, OutcomeKind::Refer))?;
+            tx.add(&first.step)?;
+            tx.add(&second.step)?;
+            tx.add(&second.report)?;
+            tx.add(&second.value)?;
+            tx.add(&third.referral)
+        })
+        .unwrap();
+    let of_child = |store: &twoline::store::Store| {
+        let read = store.read();
+        let mut all = read.referrals().unwrap();
+        let mut mine = read.referrals_of("Q-1").unwrap();
+        all.retain(|r| r.child.child_id == "Q-1");
+        all.sort_by_key(|r| r.referral_id);
+        mine.sort_by_key(|r| r.referral_id);
+        assert_eq!(all, mine);
+        for record in &mine {
+            let same = read.referral(record.referral_id).unwrap();
+            assert_eq!(same.as_ref(), Some(record));
+        }
+        mine
+    };
+    let mine = of_child(&store);
+    assert!(mine.iter().any(|r| r.referral_id == by_hand));
+    let of_visit = mine.iter().find(|r| r.referral_id == one).unwrap();
+    assert_eq!((of_visit.steps.len(), of_visit.reports.len()), (2, 1));
+    assert_eq!(of_visit.reports[0].values.len(), 1);
+    let by_part = store.read().referral(two.visit_id).unwrap();
+    assert_eq!(by_part.as_ref(), Some(of_visit));
+    assert!(store.read().referrals_of("Q-2").unwrap().is_empty());
+
+    // A part that was taken back keeps what was done about it.
+    store
+        .append(&author(), |tx| {
+            tx.supersede::<row::Visit>(&[two.id], None, "entered twice")
+        })
+        .unwrap();
+    let mine = of_child(&store);
+    assert!(
+        mine.iter()
+            .any(|r| r.referral_id == two.visit_id && r.visit.is_none()),
+        "{mine:?}"
+    );
+}
