@@ -27,28 +27,31 @@ const KNOWN: [(&str, &str); 14] = [
     ),
     (
         "notice_days",
-        "days within which a family is told of a referral (10)",
+        "days within which a family is told of a referral (10: Colorado's rule, secondary)",
     ),
     (
         "second_letter_days",
-        "days from the first letter to the second (28)",
+        "days from the first letter to the second (28: common practice)",
     ),
-    ("call_again_days", "days between attempts after that (7)"),
+    (
+        "call_again_days",
+        "days between attempts after that (7: common practice)",
+    ),
     (
         "contact_attempts",
-        "documented attempts before a referral may be closed (3)",
+        "documented attempts before a referral may be closed (3: common practice)",
     ),
     (
         "report_days",
-        "days from an appointment to asking for the report (14)",
+        "days from an appointment to asking for the report (14: common practice)",
     ),
     (
         "wear_days",
-        "days after which wear of glasses is looked at (42)",
+        "days after which wear of glasses is looked at (42: common practice)",
     ),
     (
         "wear_months",
-        "months after which it is looked at again (6)",
+        "months after which it is looked at again (6: IAPB, secondary)",
     ),
     ("letters_from", "who answers questions, as letters print it"),
     ("letters_phone", "telephone that letters print"),

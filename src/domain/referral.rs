@@ -91,6 +91,17 @@ impl LetterKind {
     }
 }
 
+impl LetterKind {
+    /// Says whether the letter tells a family that the child is referred; a notice of another kind
+    /// does not.
+    pub fn tells_of_referral(self) -> bool {
+        matches!(
+            self,
+            LetterKind::Referral | LetterKind::Urgent | LetterKind::Second
+        )
+    }
+}
+
 /// One thing that was done.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Step {
@@ -142,13 +153,17 @@ impl Step {
         }
     }
 
-    /// Says whether it counts as a documented attempt to reach the family: a letter that went out, a
-    /// call or a message, whatever came of it.
+    /// Says whether it is a letter of that step, printed or sent or come back, about the referral; a
+    /// report form goes with its letter, a notice of another kind is none.
+    pub fn is_letter(&self, kind: StepKind) -> bool {
+        self.kind == kind && self.letter.is_none_or(LetterKind::tells_of_referral)
+    }
+
+    /// Says whether it counts as a documented attempt to reach the family: a letter about the referral
+    /// that went out, a call or a message, whatever came of it.
     pub fn is_attempt(&self) -> bool {
-        matches!(
-            self.kind,
-            StepKind::LetterSent | StepKind::Call | StepKind::Message
-        )
+        matches!(self.kind, StepKind::Call | StepKind::Message)
+            || self.is_letter(StepKind::LetterSent)
     }
 
     /// Returns what is missing or odd in it, in words.

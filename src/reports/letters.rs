@@ -96,8 +96,12 @@ pub struct Letter {
     pub class: String,
     /// Name of the site.
     pub site: String,
-    /// When the child was screened.
-    pub tested_on: NaiveDate,
+    /// When it is written.
+    pub written_on: NaiveDate,
+    /// When the child was screened, where a screening is behind it.
+    pub tested_on: Option<NaiveDate>,
+    /// Whether the child has to be seen today.
+    pub at_once: bool,
     /// Why the child is referred.
     pub because: Because,
     /// What was tested.

@@ -35,7 +35,9 @@ fn letter(kind: LetterKind, language: &str) -> Letter {
         born: Some(day("2020-09-01")),
         class: "1B".into(),
         site: "Quillmere East".into(),
-        tested_on: day("2026-10-14"),
+        written_on: day("2026-10-15"),
+        tested_on: Some(day("2026-10-14")),
+        at_once: false,
         found: vec![
             Found {
                 test: ScreeningTest::Distance,

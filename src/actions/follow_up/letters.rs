@@ -1,5 +1,7 @@
 //! Letters for what is due.
 
+mod found;
+
 use std::path::Path;
 
 use uuid::Uuid;
@@ -9,13 +11,14 @@ use super::super::disclosures::Recipient;
 use super::super::error::{ActionError, Result};
 use super::super::visit_rows::{judged, tries_of};
 use super::{ReferralView, code_of};
-use crate::domain::codes::{Cover, PlusLens, Reflex, YesNo};
+use crate::domain::codes::YesNo;
 use crate::domain::outcome::{DecidedBy, OutcomeKind, Urgency};
-use crate::domain::readings::{AcuityResult, Eyes, InstrumentEye, Readings};
+use crate::domain::readings::Readings;
 use crate::domain::referral::{ContactResult, LetterKind, NextKind, Step, StepKind};
-use crate::domain::screening_test::ScreeningTest;
-use crate::reports::letters::{Because, Found, FoundValue, FoundValues, Letter, Letters, Sender};
+use crate::reports::letters::{Because, Letter, Letters, Sender};
 use crate::store::read::{ChildNow, VisitNow};
+
+use found::found;
 
 /// Which letters are wanted.
 #[derive(Debug, Clone, Default, PartialEq, Eq)]
@@ -83,6 +86,12 @@ impl Desk {
         let mut list = Vec::new();
         for wanted in self.wanted(choice, &mut left_out)? {
             let name = format!("{}, {}", wanted.child.family_name, wanted.child.given_name);
+            if self.differs(&wanted)? {
+                left_out.push(format!(
+                    "{name}: what two stations recorded differs; settle it first: twoline packet conflicts"
+                ));
+                continue;
+            }
             let spoken = choice
                 .language
                 .clone()
@@ -257,36 +266,81 @@ impl Desk {
         else {
             return Ok(());
         };
-        let Some(visit) = self.read().visits_now(&child.child_id)?.into_iter().next() else {
-            return Ok(());
-        };
-        for kind in &choice.kinds {
-            if matches!(
+        let asked = |kind: &LetterKind| {
+            matches!(
                 kind,
                 LetterKind::Passed | LetterKind::Color | LetterKind::ToDoctor
-            ) {
-                wanted.push(Wanted {
-                    about: visit.visit_id,
-                    child: child.clone(),
-                    visit: Some(visit.clone()),
-                    kind: *kind,
-                    referral: None,
-                });
-            }
+            )
+        };
+        if !choice.kinds.iter().any(asked) {
+            return Ok(());
+        }
+        let latest = self
+            .read()
+            .visits_now(&child.child_id)?
+            .into_iter()
+            .max_by_key(|v| (v.screened_on, v.attempt));
+        let Some(visit) = latest.map(|v| self.as_now(v)).transpose()? else {
+            return Err(ActionError::bad("this child was not screened"));
+        };
+        for kind in choice.kinds.iter().copied().filter(asked) {
+            self.holds(kind, &visit)?;
+            wanted.push(Wanted {
+                about: visit.visit_id,
+                child: child.clone(),
+                visit: Some(visit.clone()),
+                kind,
+                referral: None,
+            });
         }
         Ok(())
     }
 
+    /// Refuses a letter that says what the child's latest visit does not.
+    fn holds(&self, kind: LetterKind, visit: &VisitNow) -> Result<()> {
+        let refused = |what: &str| {
+            Err(ActionError::bad(format!(
+                "the visit of {} came to {}: no {what} letter",
+                visit.screened_on,
+                outcome_words(visit)
+            )))
+        };
+        match kind {
+            LetterKind::Passed if visit.kind != Some(OutcomeKind::Pass) => refused("passed"),
+            LetterKind::Color => {
+                let readings = judged(&tries_of(&self.read().readings(visit.visit_id)?)?);
+                if readings.plates_missed.is_some_and(|missed| missed > 0) {
+                    Ok(())
+                } else {
+                    Err(ActionError::bad(
+                        "no color plate was missed: no color letter",
+                    ))
+                }
+            }
+            _ => Ok(()),
+        }
+    }
+
     /// Returns the letter that a referral waits for, or the one that is asked for one child.
     fn kind_of(&self, referral: &ReferralView, choice: &LetterChoice) -> Option<LetterKind> {
-        if !referral.standing.state.is_open() {
-            return None;
-        }
         let first = match referral.opened.urgency {
             Urgency::Routine => LetterKind::Referral,
             _ => LetterKind::Urgent,
         };
-        match &referral.standing.next {
+        if choice.child.is_some() {
+            let asked = choice
+                .kinds
+                .iter()
+                .copied()
+                .find(|k| k.tells_of_referral() || *k == LetterKind::ExamForm);
+            if asked.is_some() || !choice.kinds.is_empty() {
+                return asked;
+            }
+        }
+        if !referral.standing.state.is_open() {
+            return None;
+        }
+        let due = match &referral.standing.next {
             Some(next) => match next.kind {
                 NextKind::Print(LetterKind::Second) if next.due > self.today => None,
                 NextKind::Print(kind) => Some(kind),
@@ -294,19 +348,8 @@ impl Desk {
                 _ => None,
             },
             None => None,
-        }
-        .or_else(|| {
-            let asked = choice.kinds.iter().copied().find(|k| {
-                matches!(
-                    k,
-                    LetterKind::Referral
-                        | LetterKind::Urgent
-                        | LetterKind::Second
-                        | LetterKind::ExamForm
-                )
-            });
-            choice.child.as_ref().map(|_| asked.unwrap_or(first))
-        })
+        };
+        due.or_else(|| choice.child.as_ref().map(|_| first))
     }
 
     fn page(&self, wanted: &Wanted, language: &str) -> Result<Letter> {
@@ -327,7 +370,6 @@ impl Desk {
             .find(|(code, _)| *code == site)
             .map_or(site, |(_, name)| name);
         let steps = wanted.referral.as_ref().map_or(&[][..], |r| &r.steps);
-        let referral_letter = |k| matches!(k, LetterKind::Referral | LetterKind::Urgent);
         let class = match (&wanted.child.class, wanted.child.grade) {
             (Some(class), _) if !class.is_empty() => class.clone(),
             (_, Some(grade)) => grade.to_string(),
@@ -340,10 +382,12 @@ impl Desk {
             born: wanted.child.dob,
             class,
             site,
-            tested_on: wanted.visit.as_ref().map_or_else(
-                || wanted.referral.as_ref().map_or(self.today, |r| r.opened.on),
-                |v| v.screened_on,
-            ),
+            written_on: self.today,
+            tested_on: wanted.visit.as_ref().map(|v| v.screened_on),
+            at_once: wanted
+                .referral
+                .as_ref()
+                .is_some_and(|r| r.opened.urgency == Urgency::Emergency),
             correction: readings.correction,
             because: match wanted.visit.as_ref().map(decided) {
                 Some(Some(DecidedBy::DirectReferral)) => Because::History,
@@ -361,10 +405,7 @@ impl Desk {
             ),
             wrote_on: steps
                 .iter()
-                .find(|s| {
-                    s.step.kind == StepKind::LetterSent
-                        && s.step.letter.is_some_and(referral_letter)
-                })
+                .find(|s| s.step.is_letter(StepKind::LetterSent))
                 .map(|s| s.step.on),
             call: steps
                 .iter()
@@ -379,6 +420,15 @@ impl Desk {
                 .as_ref()
                 .is_none_or(|r| r.interpreter != Some(YesNo::No)),
         })
+    }
+
+    /// Says whether values behind a letter differ between stations.
+    fn differs(&self, wanted: &Wanted) -> Result<bool> {
+        let Some(visit) = &wanted.visit else {
+            return Ok(false);
+        };
+        let readings = self.read().readings(visit.visit_id)?;
+        Ok(readings.iter().any(|r| r.conflict))
     }
 
     fn doctor_of(&self, child_id: &str) -> Result<String> {
@@ -468,80 +518,4 @@ fn outcome_words(visit: &VisitNow) -> String {
         words.push_str(urgency.title());
     }
     words
-}
-
-/// Returns what was tested, in the order of the tests, as a family reads it.
-fn found(readings: &Readings) -> Vec<Found> {
-    let mut out = Vec::new();
-    let acuity = |eyes: Eyes<Option<AcuityResult>>| {
-        FoundValues::Eyes(eyes.both().map(|eye| match eye {
-            Some(AcuityResult::Read(acuity)) => FoundValue::Value(acuity.in_words()),
-            Some(AcuityResult::NotTestable(_)) => FoundValue::NotTestable,
-            None => FoundValue::NotDone,
-        }))
-    };
-    let look = |fine: bool| {
-        if fine {
-            FoundValue::Fine
-        } else {
-            FoundValue::Look
-        }
-    };
-    for test in ScreeningTest::ALL {
-        let values = match test {
-            ScreeningTest::Distance if readings.testable == Some(YesNo::No) => {
-                Some(FoundValues::Together(FoundValue::NotTestable))
-            }
-            ScreeningTest::Distance => {
-                (readings.distance != Eyes::default()).then(|| acuity(readings.distance))
-            }
-            ScreeningTest::Near => {
-                (readings.near != Eyes::default()).then(|| acuity(readings.near))
-            }
-            ScreeningTest::PlusLens => readings
-                .plus_lens
-                .map(|p| FoundValues::Together(look(p == PlusLens::Blurred))),
-            ScreeningTest::Stereo => readings.stereo_correct.map(|n| {
-                let of = readings.stereo_shown.map(|s| format!(" / {s}"));
-                FoundValues::Together(FoundValue::Value(format!("{n}{}", of.unwrap_or_default())))
-            }),
-            ScreeningTest::Cover => readings
-                .cover
-                .map(|c| FoundValues::Together(look(matches!(c, Cover::None | Cover::Phoria)))),
-            ScreeningTest::RedReflex => (readings.red_reflex != Eyes::default()).then(|| {
-                FoundValues::Eyes(readings.red_reflex.both().map(|reflex| {
-                    reflex.map_or(FoundValue::NotDone, |r| look(r == Reflex::Normal))
-                }))
-            }),
-            ScreeningTest::ColorPlates => readings.plates_missed.map(|missed| {
-                FoundValues::Together(FoundValue::Value(match readings.plates_shown {
-                    Some(shown) => format!("{} / {shown}", shown.saturating_sub(missed)),
-                    None => format!("−{missed}"),
-                }))
-            }),
-            ScreeningTest::Instrument => (readings.instrument != Eyes::default())
-                .then(|| FoundValues::Eyes(readings.instrument.both().map(measured))),
-        };
-        out.extend(values.map(|values| Found {
-            test: *test,
-            values,
-        }));
-    }
-    out
-}
-
-fn measured(eye: InstrumentEye) -> FoundValue {
-    let parts: Vec<String> = [
-        eye.sphere.map(|p| p.to_string()),
-        eye.cylinder.map(|p| p.to_string()),
-        eye.axis.map(|a| format!("× {a}")),
-    ]
-    .into_iter()
-    .flatten()
-    .collect();
-    if parts.is_empty() {
-        FoundValue::NotDone
-    } else {
-        FoundValue::Value(parts.join(" "))
-    }
 }

@@ -139,10 +139,7 @@ pub(in crate::actions) fn out_of_date(
     };
     let told_of = |s: &StepEntry| {
         matches!(s.kind, StepKind::LetterPrinted | StepKind::LetterSent)
-            && matches!(
-                s.letter,
-                Some(LetterKind::Referral | LetterKind::Urgent | LetterKind::Second)
-            )
+            && s.letter.is_some_and(LetterKind::tells_of_referral)
     };
     let Some(letter) = record.steps.iter().rev().find(|s| told_of(s)) else {
         return Ok(());

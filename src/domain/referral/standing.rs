@@ -238,7 +238,7 @@ fn known(opened: &Opened, opened_on: NaiveDate, steps: &[Step]) -> Option<Next> 
     }
     Some(next(
         NextKind::CallAtOnce,
-        opened.act_by.unwrap_or(opened_on).min(after(opened_on, 1)),
+        opened.act_by.unwrap_or(opened_on),
         format!(
             "{}; nobody has spoken with the family",
             opened.urgency.title()
@@ -254,12 +254,7 @@ fn letter(
     state: State,
     settings: &FollowUp,
 ) -> Option<Next> {
-    // A report form goes with its letter.
-    let newest = |kind: StepKind| {
-        steps
-            .iter()
-            .rposition(|s| s.kind == kind && s.letter != Some(LetterKind::ExamForm))
-    };
+    let newest = |kind: StepKind| steps.iter().rposition(|s| s.is_letter(kind));
     let (printed, sent) = (
         newest(StepKind::LetterPrinted),
         newest(StepKind::LetterSent),
@@ -330,7 +325,7 @@ fn again(steps: &[Step], opened_on: NaiveDate, attempts: u32, settings: &FollowU
     }
     let letters = steps
         .iter()
-        .filter(|s| s.kind == StepKind::LetterSent)
+        .filter(|s| s.is_letter(StepKind::LetterSent))
         .count();
     if last.kind == StepKind::LetterSent && letters == 1 {
         return Some(next(

@@ -19,7 +19,10 @@ use crate::domain::referral::LetterKind;
 use crate::domain::screening_test::ScreeningTest;
 
 /// The templates that are shipped.
-const SHIPPED: [(&str, &str); 12] = [
+const SHIPPED: [(&str, &str); 15] = [
+    ("head.html", include_str!("templates/head.html")),
+    ("todo.html", include_str!("templates/todo.html")),
+    ("foot.html", include_str!("templates/foot.html")),
     ("page.html", include_str!("templates/page.html")),
     ("found.html", include_str!("templates/found.html")),
     ("answer.html", include_str!("templates/answer.html")),
@@ -41,7 +44,9 @@ const SHIPPED: [(&str, &str); 12] = [
 ];
 
 /// What a template may use, beside `t(message, …)`.
-const FIELDS: [&str; 25] = [
+const FIELDS: [&str; 27] = [
+    "written_on",
+    "at_once",
     "kind",
     "title",
     "child",
@@ -160,7 +165,7 @@ impl Letters {
                 .map_err(|e| LetterError::file(&file, e))
         };
         let title = language
-            .text(title(letter.kind), &[])
+            .text(title(letter), &[])
             .map_err(|e| LetterError::file(&file, e))?;
         let fields = context! {
             kind => letter.kind.word(),
@@ -170,7 +175,9 @@ impl Letters {
             born => spoken(letter.born)?,
             class => &letter.class,
             site => &letter.site,
-            tested_on => spoken(Some(letter.tested_on))?,
+            written_on => spoken(Some(letter.written_on))?,
+            tested_on => spoken(letter.tested_on)?,
+            at_once => letter.at_once,
             found => letter.found.iter().map(|f| found(f, language)).collect::<Vec<_>>(),
             worn => worn(letter.correction),
             result => match letter.because {
@@ -240,8 +247,9 @@ fn sender_value(sender: &Sender) -> Value {
     }
 }
 
-fn title(kind: LetterKind) -> &'static str {
-    match kind {
+fn title(letter: &Letter) -> &'static str {
+    match letter.kind {
+        LetterKind::Urgent if letter.at_once => "title-emergency",
         LetterKind::Referral => "title-referral",
         LetterKind::Urgent => "title-urgent",
         LetterKind::Rescreen => "title-rescreen",

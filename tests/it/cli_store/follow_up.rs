@@ -279,10 +279,12 @@ fn an_urgent_letter_is_never_in_a_batch() {
     assert!(!bench.path("batch.html").exists());
     assert!(bench.ok(&["refer", "list"]).contains("call the family now"));
     bench.ok(&["letters", "-o", "one.html", "--child", "Q-4"]);
+    let html = bench.read("one.html");
+    assert!(html.contains("We have not reached you by telephone."));
+    assert!(html.contains("Go to an emergency department"), "{html}");
     assert!(
-        bench
-            .read("one.html")
-            .contains("We have not reached you by telephone.")
+        !html.contains("Call an eye doctor who sees children"),
+        "{html}"
     );
     bench.ok(&[
         "step", "Q-4", "call", "--result", "reached", "--whom", "R. Moss",
@@ -324,4 +326,46 @@ fn a_corrected_outcome_makes_its_letter_out_of_date() {
         "{out}"
     );
     bench.ok(&["verify"]);
+}
+
+#[test]
+fn a_letter_says_nothing_that_the_visit_does_not() {
+    let bench = referred();
+    let head = bench.head();
+    let err = bench.refused(&[
+        "letters", "--child", "Q-2", "--kind", "passed", "-o", "p.html",
+    ]);
+    assert!(
+        err.contains("came to refer, routine: no passed letter"),
+        "{err}"
+    );
+    let err = bench.refused(&[
+        "letters", "--child", "Q-2", "--kind", "color", "-o", "p.html",
+    ]);
+    assert!(err.contains("no color plate was missed"), "{err}");
+    assert!(!bench.path("p.html").exists());
+    assert_eq!(bench.head(), head);
+    // The form is printed when it is asked for, although the letter is due.
+    let out = bench.ok(&["letters", "--child", "Q-2", "--kind", "exam_form"]);
+    assert!(out.contains("exam report form"), "{out}");
+    assert!(!out.contains("no letter is due"), "{out}");
+    bench.ok(&[
+        "record",
+        "Q-1",
+        "correction_worn=none",
+        "distance_right=20/20",
+        "distance_left=20/20",
+        "signs=none",
+        "--sign",
+    ]);
+    bench.ok(&[
+        "letters", "--child", "Q-1", "--kind", "passed", "-o", "p.html",
+    ]);
+    assert!(bench.read("p.html").contains("passed."));
+    // A referral by hand has no screening behind it.
+    bench.ok(&["refer", "open", "Q-3", "--reason", "parent's concern"]);
+    bench.ok(&["letters", "--child", "Q-3", "-o", "hand.html"]);
+    let html = bench.read("hand.html");
+    assert!(!html.contains("we tested the eyesight"), "{html}");
+    assert!(!html.contains("What we tested"), "{html}");
 }

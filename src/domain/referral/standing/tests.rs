@@ -121,7 +121,7 @@ fn an_urgent_one_is_called_at_once_until_somebody_was_reached() {
     };
     assert_eq!(
         next(&opened, &[]),
-        (State::New, NextKind::CallAtOnce, day("2026-10-15"))
+        (State::New, NextKind::CallAtOnce, day("2026-10-28"))
     );
     let tried = [call("2026-10-14", ContactResult::NoAnswer)];
     assert_eq!(next(&opened, &tried).1, NextKind::CallAtOnce);
@@ -257,4 +257,28 @@ fn opened_again_it_begins_anew() {
     let stands = standing(&routine(), &steps, None, &SETTINGS);
     assert_eq!((stands.state, stands.attempts), (State::New, 0));
     assert_eq!(stands.next.unwrap().due, day("2027-02-11"));
+}
+
+#[test]
+fn a_notice_of_another_kind_does_not_tell_of_the_referral() {
+    for kind in [
+        LetterKind::Rescreen,
+        LetterKind::ToDoctor,
+        LetterKind::ExamForm,
+        LetterKind::Passed,
+    ] {
+        let steps = [
+            letter(StepKind::LetterPrinted, kind, "2026-10-15"),
+            letter(StepKind::LetterSent, kind, "2026-10-15"),
+        ];
+        assert_eq!(
+            next(&routine(), &steps),
+            (
+                State::New,
+                NextKind::Print(LetterKind::Referral),
+                day("2026-10-24")
+            ),
+            "{kind:?}"
+        );
+    }
 }

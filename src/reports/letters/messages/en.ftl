@@ -62,7 +62,7 @@ result-untested = We could not test { $child } well. { $child } needs a full exa
 why-heading = Why it matters
 why = Many children who do not see well with one eye do not notice it. Found early, most of these problems can be treated. Found late, sight can be lost for good.
 what-to-do = What to do
-step-book = Call an eye doctor who sees children. Say: “My child did not pass a vision screening at school.”
+step-book = Call an eye doctor who sees children. Say: “My child needs an eye examination after a vision screening at school.”
 step-bring = Take this letter and the report form with you.
 step-return = Ask the doctor to fill in the form. Give it back to the school.
 act-by = Please go by { $date }.
@@ -72,13 +72,16 @@ interpreter = You can ask for an interpreter. It costs you nothing.
 # Urgent
 title-urgent = Your child needs an eye doctor soon
 result-urgent = We saw something in { $child } that an eye doctor should look at soon.
+title-emergency = Your child needs help today
+result-emergency = We saw something in { $child } that has to be looked at today.
+step-now = Go to an emergency department or an eye emergency clinic now. Take this letter with you.
 call-record = We spoke with { $whom } on { $date }.
 call-none = We have not reached you by telephone.
 
 # Rescreen
 title-rescreen = We will test your child's eyesight again
-result-rescreen = { $child } did not pass the first test. This happens when a child is tired or does not understand. We will test again by { $date }. You do not need to do anything now.
-result-rescreen-undated = { $child } did not pass the first test. This happens when a child is tired or does not understand. We will test again. You do not need to do anything now.
+result-rescreen = { $child } needs to be tested a second time. This is common: a child may be tired or may not understand. We will test again by { $date }. You do not need to do anything now.
+result-rescreen-undated = { $child } needs to be tested a second time. This is common: a child may be tired or may not understand. We will test again. You do not need to do anything now.
 
 # Glasses at home
 title-glasses = Please send your child's glasses to school

@@ -58,7 +58,7 @@ result-untested = No pudimos revisar bien a { $child }. { $child } necesita un e
 why-heading = Por qué es importante
 why = Muchos niños que ven mal con un ojo no se dan cuenta. Si se descubre temprano, casi siempre se puede tratar. Si se descubre tarde, la vista puede perderse para siempre.
 what-to-do = Qué hacer
-step-book = Llame a un oculista que atienda a niños. Diga: «Mi hijo o hija no pasó la prueba de la vista en la escuela».
+step-book = Llame a un oculista que atienda a niños. Diga: «Mi hijo o hija necesita un examen de los ojos después de la prueba de la vista en la escuela».
 step-bring = Lleve esta carta y el formulario.
 step-return = Pida al oculista que llene el formulario. Devuélvalo a la escuela.
 act-by = Por favor vaya antes del { $date }.
@@ -67,12 +67,15 @@ interpreter = Puede pedir un intérprete. No le cuesta nada.
 
 title-urgent = Su hijo o hija necesita ver pronto a un oculista
 result-urgent = Vimos algo en { $child } que un oculista debe revisar pronto.
+title-emergency = Su hijo o hija necesita ayuda hoy
+result-emergency = Vimos algo en { $child } que hay que revisar hoy mismo.
+step-now = Vaya ahora a urgencias o a una clínica de urgencias de los ojos. Lleve esta carta.
 call-record = Hablamos con { $whom } el { $date }.
 call-none = No hemos podido comunicarnos con usted por teléfono.
 
 title-rescreen = Vamos a revisar otra vez la vista de su hijo o hija
-result-rescreen = { $child } no pasó la primera prueba. Esto sucede cuando un niño está cansado o no entiende. Vamos a repetir la prueba antes del { $date }. Por ahora usted no tiene que hacer nada.
-result-rescreen-undated = { $child } no pasó la primera prueba. Esto sucede cuando un niño está cansado o no entiende. Vamos a repetir la prueba. Por ahora usted no tiene que hacer nada.
+result-rescreen = Hay que revisar a { $child } una segunda vez. Es común: un niño puede estar cansado o no entender. Vamos a repetir la prueba antes del { $date }. Por ahora usted no tiene que hacer nada.
+result-rescreen-undated = Hay que revisar a { $child } una segunda vez. Es común: un niño puede estar cansado o no entender. Vamos a repetir la prueba. Por ahora usted no tiene que hacer nada.
 
 title-glasses = Por favor mande los lentes de su hijo o hija a la escuela
 result-glasses = { $child } tiene lentes y no los traía el día de la prueba. Por favor mándelos todos los días a la escuela. Vamos a repetir la prueba antes del { $date }.

@@ -58,7 +58,7 @@ result-untested = Chúng tôi không kiểm tra được { $child } đầy đủ
 why-heading = Vì sao điều này quan trọng
 why = Nhiều em nhìn kém một mắt mà không biết. Nếu phát hiện sớm, phần lớn có thể chữa được. Nếu phát hiện muộn, có thể mất thị lực vĩnh viễn.
 what-to-do = Cần làm gì
-step-book = Gọi cho bác sĩ mắt có khám trẻ em. Hãy nói: “Con tôi không đạt khi kiểm tra thị lực ở trường.”
+step-book = Gọi cho bác sĩ mắt có khám trẻ em. Hãy nói: “Con tôi cần được khám mắt sau khi kiểm tra thị lực ở trường.”
 step-bring = Mang theo thư này và mẫu báo cáo.
 step-return = Nhờ bác sĩ điền mẫu. Gửi lại cho trường.
 act-by = Xin đi khám trước { $date }.
@@ -67,12 +67,15 @@ interpreter = Quý vị có thể yêu cầu thông dịch viên. Quý vị khô
 
 title-urgent = Con của quý vị cần gặp bác sĩ mắt sớm
 result-urgent = Chúng tôi thấy ở { $child } một điều mà bác sĩ mắt cần xem sớm.
+title-emergency = Con của quý vị cần được giúp đỡ ngay hôm nay
+result-emergency = Chúng tôi thấy ở { $child } một điều phải được khám ngay hôm nay.
+step-now = Hãy đến khoa cấp cứu hoặc phòng cấp cứu mắt ngay bây giờ. Mang theo thư này.
 call-record = Chúng tôi đã nói chuyện với { $whom } vào { $date }.
 call-none = Chúng tôi chưa liên lạc được với quý vị qua điện thoại.
 
 title-rescreen = Chúng tôi sẽ kiểm tra lại thị lực của con quý vị
-result-rescreen = { $child } không đạt lần kiểm tra đầu. Điều này xảy ra khi em mệt hoặc chưa hiểu. Chúng tôi sẽ kiểm tra lại trước { $date }. Hiện giờ quý vị không cần làm gì.
-result-rescreen-undated = { $child } không đạt lần kiểm tra đầu. Điều này xảy ra khi em mệt hoặc chưa hiểu. Chúng tôi sẽ kiểm tra lại. Hiện giờ quý vị không cần làm gì.
+result-rescreen = { $child } cần được kiểm tra lần thứ hai. Điều này thường gặp: em có thể mệt hoặc chưa hiểu. Chúng tôi sẽ kiểm tra lại trước { $date }. Hiện giờ quý vị không cần làm gì.
+result-rescreen-undated = { $child } cần được kiểm tra lần thứ hai. Điều này thường gặp: em có thể mệt hoặc chưa hiểu. Chúng tôi sẽ kiểm tra lại. Hiện giờ quý vị không cần làm gì.
 
 title-glasses = Xin cho con quý vị mang kính đến trường
 result-glasses = { $child } có kính nhưng không mang theo vào ngày kiểm tra. Xin cho em mang kính đến trường mỗi ngày. Chúng tôi sẽ kiểm tra lại trước { $date }.
