@@ -194,21 +194,32 @@ fn of_row<'l>(
             }));
         }
     };
-    let Some(referral) = list.iter().find(|r| r.code == code) else {
-        return Err(Box::new(
+    // Among many thousands two referrals may share a code; then only the child's id tells them apart.
+    let with_code: Vec<&ReferralView> = list.iter().filter(|r| r.code == code).collect();
+    let found: Vec<&ReferralView> = with_code
+        .iter()
+        .copied()
+        .filter(|r| row.child_id.is_empty() || r.child_id == row.child_id)
+        .collect();
+    match (&found[..], &with_code[..]) {
+        ([_], _) => Ok(found),
+        ([], []) => Err(Box::new(
             about("the code of a referral of this store".to_owned())
                 .cure("was the form from another programme? give child_id instead"),
-        ));
-    };
-    if !row.child_id.is_empty() && row.child_id != referral.child_id {
-        return Err(Box::new(
+        )),
+        ([], _) => Err(Box::new(
             about(format!("the code of a referral of {}", row.child_id)).cure(format!(
                 "{code} is {}; one of the two cells is wrong",
-                named(referral)
+                all_named(&with_code)
             )),
-        ));
+        )),
+        (several, _) => Err(Box::new(
+            about("a code that one referral has".to_owned()).cure(format!(
+                "give child_id as well; it is the code of {}",
+                all_named(several)
+            )),
+        )),
     }
-    Ok(vec![referral])
 }
 
 fn closed_problem(closed: &ReferralView, about: &impl Fn(String) -> Problem) -> Problem {
@@ -230,9 +241,94 @@ fn named(referral: &ReferralView) -> String {
     )
 }
 
+fn all_named(list: &[&ReferralView]) -> String {
+    list.iter()
+        .map(|r| named(r))
+        .collect::<Vec<_>>()
+        .join(" and ")
+}
+
 fn words(list: &[&ReferralView]) -> String {
     list.iter()
         .map(|r| format!("{} of {}", r.code, r.opened.on))
         .collect::<Vec<_>>()
         .join(", ")
+}
+
+#[cfg(test)]
+#[allow(clippy::unwrap_used)]
+mod tests {
+    use super::*;
+    use crate::domain::outcome::Urgency;
+    use crate::domain::referral::{FollowUp, Opened, standing};
+
+    fn referral(child_id: &str, code: FormCode) -> ReferralView {
+        let opened = Opened {
+            on: "2026-10-14".parse().unwrap(),
+            urgency: Urgency::Routine,
+            act_by: None,
+        };
+        ReferralView {
+            id: new_id(),
+            code,
+            child_id: child_id.to_owned(),
+            family_name: "Okafor".to_owned(),
+            given_name: "Ada".to_owned(),
+            dob: None,
+            age: None,
+            grade: None,
+            class: String::new(),
+            site: String::new(),
+            referred_at: String::new(),
+            last_exam_on: None,
+            standing: standing(&opened, &[], None, &FollowUp::default()),
+            opened,
+            why: String::new(),
+            outcome_now: None,
+            steps: Vec::new(),
+            reports: Vec::new(),
+            responsible: String::new(),
+            consent_to_share: None,
+            interpreter: None,
+            language: String::new(),
+            prior_exam: String::new(),
+            reachable: true,
+        }
+    }
+
+    #[test]
+    fn a_code_that_two_referrals_share_is_no_answer_without_the_child() {
+        let code = FormCode::new(48_291_356);
+        let list = [
+            referral("Q-1", code),
+            referral("Q-2", code),
+            referral("Q-3", FormCode::new(7)),
+        ];
+        let asked = |code: FormCode, child_id: &str| {
+            let place = Place { row: 2, line: 2 };
+            let row = ExamRow {
+                place,
+                code: code.to_string(),
+                child_id: child_id.to_owned(),
+                report: ExamReport::default(),
+            };
+            let about = |expected: String| {
+                Problem::of_cell("reports.csv", place, "code", &row.code, expected)
+            };
+            of_row(&list, &row, &about)
+                .map(|found| found.iter().map(|r| r.child_id.clone()).collect::<Vec<_>>())
+                .map_err(|problem| problem.to_string())
+        };
+        assert_eq!(asked(code, "Q-2").unwrap(), ["Q-2"]);
+        assert_eq!(asked(FormCode::new(7), "").unwrap(), ["Q-3"]);
+        let said = asked(code, "").unwrap_err();
+        assert!(
+            said.contains("give child_id as well") && said.contains("(Q-1) and Okafor, Ada (Q-2)"),
+            "{said}"
+        );
+        let said = asked(code, "Q-3").unwrap_err();
+        assert!(said.contains("one of the two cells is wrong"), "{said}");
+        let said = asked(FormCode::new(8), "").unwrap_err();
+        assert!(said.contains("another programme"), "{said}");
+    }
 }
