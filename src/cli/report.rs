@@ -124,25 +124,18 @@ impl To {
     /// Writes a report, and first enters who gets it where it leaves the programme; `what` says of
     /// whom it is.
     fn write(&self, desk: &mut Desk, report: &Made, what: &str) -> Result<(), Failure> {
-        let to = self.leaves.to()?;
-        let file = file_name(self.out.as_deref());
-        let mut log = || -> Result<(), Failure> {
-            let Some(to) = &to else { return Ok(()) };
-            let entered = desk.disclose(to, &report.title, &file, &report.children)?;
-            say(&format!("{entered} children entered in the disclosure log"));
-            Ok(())
-        };
         let Some(out) = &self.out else {
-            log()?;
+            self.enter(desk, report)?;
             return print_bytes(&report.bytes);
         };
+        let to = self.leaves.to()?;
         let about = beside(out);
         write::whole_once(
             &[
                 (&about, report.about_for(to.as_ref()).as_bytes()),
                 (out, &report.bytes),
             ],
-            log,
+            || self.enter(desk, report),
         )?;
         say(&format!(
             "{} {what}: {} and {}",
@@ -155,11 +148,22 @@ impl To {
 
     /// Writes a report that is text for people: as lines where it goes to standard output.
     fn write_text(&self, desk: &mut Desk, report: &Made, what: &str) -> Result<(), Failure> {
-        if self.out.is_some() || self.leaves.to()?.is_some() {
+        if self.out.is_some() {
             return self.write(desk, report, what);
         }
+        self.enter(desk, report)?;
         let text = String::from_utf8_lossy(&report.bytes);
         print_clean(&text.lines().map(str::to_owned).collect::<Vec<_>>())
+    }
+
+    /// Enters who gets a report; nothing where it is for the programme's own use.
+    fn enter(&self, desk: &mut Desk, report: &Made) -> Result<(), Failure> {
+        if let Some(to) = self.leaves.to()? {
+            let file = file_name(self.out.as_deref());
+            let entered = desk.disclose(&to, &report.title, &file, &report.children)?;
+            say(&format!("{entered} children entered in the disclosure log"));
+        }
+        Ok(())
     }
 }
 

@@ -94,6 +94,10 @@ fn a_file_that_leaves_is_entered_for_each_child_in_it() {
         );
         assert!(bench.read("list.html").contains("Idris"));
     }
+    let before = bench.disclosed(&[]).len();
+    let text = bench.ok(&with(&["report", "referrals", "--format", "text"]));
+    assert!(text.contains("Okafor"), "{text}");
+    assert_eq!(bench.disclosed(&[]).len(), before + 1);
     bench.ok(&["verify"]);
 }
 
