@@ -299,8 +299,12 @@ impl Desk {
         reason: &str,
         urgency: Urgency,
     ) -> Result<ReferralView> {
-        let reason = super::visit_rows::reasoned(reason)
-            .map_err(|_| ActionError::bad("a referral opened by hand needs its reason"))?;
+        let reason = steps::words("reason", reason)?;
+        if reason.is_empty() {
+            return Err(ActionError::bad(
+                "a referral opened by hand needs its reason",
+            ));
+        }
         let child = self
             .read()
             .child(child_id)?
@@ -339,6 +343,13 @@ impl Desk {
 
     /// Says more of a referral; what is none stays as it was.
     pub fn describe_referral(&mut self, id: Uuid, more: ReferralDetails) -> Result<ReferralView> {
+        for (what, text) in [
+            ("responsible", &more.responsible),
+            ("language", &more.language),
+            ("prior exam", &more.prior_exam),
+        ] {
+            steps::words(what, text.as_deref().unwrap_or_default())?;
+        }
         let now = self.referral(id)?;
         let record = self.read().referral(id)?;
         let row = Referral {
@@ -381,6 +392,7 @@ impl Desk {
             steps,
             reports,
         } = record;
+        let steps = self.with_told(visit.as_ref(), steps)?;
         let opened = match (&row, &visit) {
             (Some(row), None) => Opened {
                 on: row.opened_on,
@@ -415,7 +427,14 @@ impl Desk {
             .last()
             .filter(|r| r.prescribes_glasses())
             .and_then(|r| r.examined_on);
-        let standing = standing(&opened, &plain, glasses_from, settings);
+        let mut standing = standing(&opened, &plain, glasses_from, settings);
+        let outcome_now = visit
+            .as_ref()
+            .and_then(|v| v.kind)
+            .filter(|kind| *kind != OutcomeKind::Refer);
+        if let Some(kind) = outcome_now {
+            standing.no_longer_refers(kind);
+        }
         let yes_no = |pick: fn(&Referral) -> Option<YesNo>| row.as_ref().and_then(pick);
         let word = |pick: fn(&Referral) -> &String| row.as_ref().map(pick).cloned();
         Ok(ReferralView {
@@ -424,10 +443,7 @@ impl Desk {
             age: child
                 .dob
                 .and_then(|born| AgeMonths::between(born, self.today)),
-            outcome_now: visit
-                .as_ref()
-                .and_then(|v| v.kind)
-                .filter(|kind| *kind != OutcomeKind::Refer),
+            outcome_now,
             referred_at: visit.as_ref().map(|v| v.site.clone()).unwrap_or_default(),
             last_exam_on: child.last_exam_on,
             opened,

@@ -13,7 +13,7 @@ use super::views::{DayChild, DayInfo, StoredOutcome};
 use crate::clock;
 use crate::domain::codes::AcuityMethod;
 use crate::domain::field::{Field, FieldError};
-use crate::domain::outcome::{Outcome, RiskKind, Urgency};
+use crate::domain::outcome::{Answer, Outcome, RiskKind, Urgency};
 use crate::domain::readings::{ReadingContext, Readings};
 use crate::rules::explain;
 use crate::store::read::ReadingNow;
@@ -509,11 +509,17 @@ fn emergency_words(readings: &Readings, outcome: &Outcome) -> String {
             None => sign.kind.title().to_owned(),
         })
         .collect();
-    if signs.is_empty() {
-        outcome.criteria.join(", ")
-    } else {
-        signs.join("; ")
+    if !signs.is_empty() {
+        return signs.join("; ");
     }
+    let mut seen: Vec<&str> = outcome
+        .reasons
+        .iter()
+        .filter(|r| r.answer == Answer::Refer && r.urgency == Urgency::Emergency)
+        .map(|r| r.reading.as_str())
+        .collect();
+    seen.dedup();
+    seen.join("; ")
 }
 
 pub(super) fn stored_outcome(row: &row::Outcome) -> StoredOutcome {

@@ -76,6 +76,14 @@ impl Letters {
         } else {
             open::to_read(global)?
         };
+        if let Some(out) = self.out.as_ref().filter(|out| out.exists()) {
+            // The letters in it are entered as printed, and would be printed by nobody.
+            return Err(Failure::bad_input(format!(
+                "{} is there already; letters are not written over it",
+                clean(&out.to_string_lossy())
+            ))
+            .hint("name another file, such as letters-2.html"));
+        }
         let printed = desk.letters(&choice)?;
         if let Some(out) = self.out.as_ref().filter(|_| !printed.letters.is_empty()) {
             let to = self.recipient(&printed)?;

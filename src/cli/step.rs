@@ -50,7 +50,8 @@ pub(super) struct Step {
     /// How an examination is known: form, `parents_word`, `seen_by_nurse`
     #[arg(long, value_parser = |s: &str| code(s, Evidence::from_word, Evidence::words))]
     evidence: Option<Evidence>,
-    /// Why it is closed: examined, declined, moved, unreachable, `already_under_care`
+    /// Why it is closed: examined, declined, moved, unreachable, `already_under_care`,
+    /// `opened_by_mistake`
     #[arg(long, value_parser = |s: &str| code(s, Closing::from_word, Closing::words))]
     closing: Option<Closing>,
     /// With whom, or to whom it is handed

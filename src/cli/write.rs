@@ -51,6 +51,15 @@ pub(super) fn whole_once(
 /// Returns the file a path means: a link stays a link, and only a plain file is replaced.
 fn plain(path: &Path) -> Result<PathBuf, Failure> {
     let path = fs::canonicalize(path).unwrap_or_else(|_| path.to_owned());
+    let folder = path.parent().filter(|f| !f.as_os_str().is_empty());
+    let folder = fs::canonicalize(folder.unwrap_or(Path::new("."))).unwrap_or_default();
+    if folder.ancestors().any(|f| f.join("store.key").exists()) {
+        return Err(Failure::bad_input(format!(
+            "{} is inside the folder of a store; nothing was written",
+            clean(&path.to_string_lossy())
+        ))
+        .hint("name a file outside of it"));
+    }
     match fs::metadata(&path) {
         Ok(found) if !found.is_file() => Err(Failure::bad_input(format!(
             "{} is not a plain file; nothing was written",

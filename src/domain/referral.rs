@@ -171,9 +171,10 @@ impl Step {
     /// A closing names its reason, and an examination its evidence; an appointment has its date.
     pub fn missing(&self) -> Option<&'static str> {
         match self.kind {
-            StepKind::Closed if self.closing.is_none() => {
-                Some("why it is closed: examined, declined, moved, unreachable, already_under_care")
-            }
+            StepKind::Closed if self.closing.is_none() => Some(
+                "why it is closed (--closing): examined, declined, moved, unreachable, \
+                 already_under_care, opened_by_mistake",
+            ),
             StepKind::Closed
                 if self.closing == Some(Closing::Examined) && self.evidence.is_none() =>
             {
@@ -183,9 +184,9 @@ impl Step {
             StepKind::Call | StepKind::Message if self.result.is_none() => {
                 Some("how it ended: reached, no_answer, message_left, wrong_number, call_again")
             }
-            StepKind::LetterPrinted | StepKind::LetterSent if self.letter.is_none() => {
-                Some("which letter")
-            }
+            StepKind::LetterPrinted | StepKind::LetterSent if self.letter.is_none() => Some(
+                "which letter (--letter): referral, urgent, second_notice, exam_form, rescreen, ...",
+            ),
             StepKind::WearChecked | StepKind::GlassesSeen if self.worn.is_none() => {
                 Some("whether the glasses were worn: yes or no")
             }

@@ -66,3 +66,18 @@ pub fn one_of(words: &str, written: &str) -> String {
         None => format!("one of {words}"),
     }
 }
+
+/// Reads a free text of one line, at most `limit` characters long and of characters that can be shown.
+///
+/// # Errors
+/// What would have been taken.
+pub fn one_line(text: &str, limit: usize) -> Result<String, String> {
+    let text = text.trim();
+    if text.chars().count() > limit {
+        return Err(format!("at most {limit} characters"));
+    }
+    if text.chars().any(is_unsafe) {
+        return Err("text on one line, without control characters".to_owned());
+    }
+    Ok(text.to_owned())
+}

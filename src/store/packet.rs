@@ -152,11 +152,19 @@ impl Store {
         if !replace {
             return Err(there.with_hint("name another file, or replace an older packet: --replace"));
         }
+        let here = self.read().station(self.station_id())?.map(|s| s.name);
         match info(to) {
-            Ok(found) if found.programme_id == self.programme => Ok(()),
-            _ => Err(there.with_hint(
-                "it is not a packet of this programme, so it is not replaced; name another file",
+            Ok(found) if found.programme_id != self.programme => Err(there.with_hint(
+                "it is a packet of another programme, so it is not replaced; name another file",
             )),
+            Ok(found) if Some(&found.station) != here.as_ref() => Err(there.with_hint(format!(
+                "it was written by {}: read it first, then name another file",
+                found.station
+            ))),
+            Ok(_) => Ok(()),
+            Err(_) => {
+                Err(there.with_hint("it is not a packet, so it is not replaced; name another file"))
+            }
         }
     }
 

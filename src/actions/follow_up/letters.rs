@@ -334,10 +334,10 @@ impl Desk {
                 .copied()
                 .find(|k| k.tells_of_referral() || *k == LetterKind::ExamForm);
             if asked.is_some() || !choice.kinds.is_empty() {
-                return asked;
+                return asked.filter(|_| referral.outcome_now.is_none());
             }
         }
-        if !referral.standing.state.is_open() {
+        if !referral.standing.state.is_open() || referral.outcome_now.is_some() {
             return None;
         }
         let due = match &referral.standing.next {
@@ -467,6 +467,9 @@ impl Desk {
     }
 }
 
+/// Largest file of the `letters` folder, in bytes: the longest that is shipped has a tenth of it.
+const LARGEST: u64 = 96 * 1024;
+
 /// Returns a programme's own templates and messages.
 fn own_files(dir: &Path) -> Result<Vec<(String, String)>> {
     let folder = dir.join("letters");
@@ -483,7 +486,15 @@ fn own_files(dir: &Path) -> Result<Vec<(String, String)>> {
             .unwrap_or_default()
             .to_owned();
         let ours = [".ftl", ".html"].iter().any(|end| name.ends_with(end));
-        if ours && path.is_file() {
+        let size = path.metadata().map_or(0, |m| m.len());
+        if ours && (!path.is_file() || size > LARGEST) {
+            return Err(ActionError::bad(format!(
+                "{}: expected a plain file of at most {} KB",
+                path.display(),
+                LARGEST / 1024
+            )));
+        }
+        if ours {
             let text = std::fs::read_to_string(&path)
                 .map_err(|e| ActionError::bad(format!("{}: {e}", path.display())))?;
             files.push((name, text));

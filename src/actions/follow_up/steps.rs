@@ -6,10 +6,19 @@ use uuid::Uuid;
 use super::super::desk::Desk;
 use super::super::error::{ActionError, Result};
 use super::{ReferralView, closed_words};
+use crate::clock::{self, Moment};
 use crate::domain::outcome::Urgency;
-use crate::domain::referral::{LetterKind, Step, StepKind};
-use crate::store::row::{Outcome, StepEntry};
+use crate::domain::referral::{ContactResult, LetterKind, Step, StepKind};
+use crate::domain::text::one_line;
+use crate::store::read::VisitNow;
+use crate::store::row::{Outcome, StepEntry, UrgentAction};
 use crate::store::{Tx, new_id};
+
+/// Longest text of a step or a referral, in characters, as of a note.
+const LONGEST: usize = 500;
+
+/// Notes that a step ended the running line of an emergency: it stands among the steps already.
+const BY_STEP: &str = "told by a step of the referral";
 
 impl Desk {
     /// Enters a step of a referral.
@@ -19,17 +28,90 @@ impl Desk {
     pub fn add_step(&mut self, referral: Uuid, step: Step) -> Result<ReferralView> {
         let now = self.referral(referral)?;
         self.check_step(&now, &step)?;
+        let answered = self.answered_by(referral, &step)?;
         let row = self.step_row(referral, &now.child_id, step);
         let author = self.author();
-        self.store.append(&author, |tx| tx.add(&row))?;
+        self.store.append(&author, |tx| {
+            tx.add(&row)?;
+            answered.iter().try_for_each(|told| tx.add(told))
+        })?;
         self.referral(referral)
     }
 
+    /// Returns what ends the running line of an emergency when the family was reached.
+    fn answered_by(&self, referral: Uuid, step: &Step) -> Result<Vec<UrgentAction>> {
+        if step.kind != StepKind::Call || step.result != Some(ContactResult::Reached) {
+            return Ok(Vec::new());
+        }
+        let at = clock::now();
+        let open = self.read().urgent_open()?.into_iter().map(|u| u.raised);
+        Ok(open
+            .filter(|raised| raised.visit_id == Some(referral))
+            .map(|raised| UrgentAction {
+                id: new_id(),
+                step: "told".to_owned(),
+                told: if step.whom.is_empty() {
+                    "the family".to_owned()
+                } else {
+                    step.whom.clone()
+                },
+                at_ms: at.utc_ms,
+                at_offset_minutes: i64::from(at.offset_minutes),
+                screener_id: self.screener.as_ref().map(|s| s.screener_id),
+                note: BY_STEP.to_owned(),
+                ..raised
+            })
+            .collect())
+    }
+
+    /// Returns the steps with whoever was told of an emergency of the visit: somebody was spoken with.
+    pub(super) fn with_told(
+        &self,
+        visit: Option<&VisitNow>,
+        mut steps: Vec<StepEntry>,
+    ) -> Result<Vec<StepEntry>> {
+        let Some(visit) = visit else {
+            return Ok(steps);
+        };
+        for told in self.read().told_of(visit.visit_id)? {
+            if told.note == BY_STEP {
+                continue;
+            }
+            let at = Moment {
+                utc_ms: told.at_ms,
+                offset_minutes: told.at_offset_minutes as i32,
+            };
+            let on = at.date().unwrap_or(visit.screened_on);
+            let step = Step {
+                result: Some(ContactResult::Reached),
+                whom: told.told,
+                note: format!("emergency: {}", told.note),
+                ..Step::new(StepKind::Call, on.max(visit.screened_on))
+            };
+            let row = step_entry(visit.visit_id, &visit.child_id, step, told.screener_id, on);
+            steps.insert(0, row);
+        }
+        Ok(steps)
+    }
+
     pub(super) fn check_step(&self, now: &ReferralView, step: &Step) -> Result<()> {
+        for (what, text) in [
+            ("whom", &step.whom),
+            ("language", &step.language),
+            ("note", &step.note),
+        ] {
+            words(what, text)?;
+        }
         if let Some(missing) = step.missing() {
             return Err(ActionError::bad(format!(
                 "{}: enter {missing}",
                 step.kind.title()
+            )));
+        }
+        if step.kind == StepKind::Appointment && step.due_on.is_some_and(|due| due < step.on) {
+            return Err(ActionError::bad(format!(
+                "the appointment is before the day on which it was made ({})",
+                step.on
             )));
         }
         if step.on > self.today {
@@ -68,6 +150,12 @@ impl Desk {
         let screener = self.screener.as_ref().map(|s| s.screener_id);
         step_entry(referral, child_id, step, screener, self.today)
     }
+}
+
+/// Reads a text that a person wrote about a referral.
+pub(super) fn words(what: &str, text: &str) -> Result<String> {
+    one_line(text, LONGEST)
+        .map_err(|expected| ActionError::bad(format!("{what}: expected {expected}")))
 }
 
 fn step_entry(

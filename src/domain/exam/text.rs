@@ -9,7 +9,7 @@ use super::{
 use crate::domain::codes::YesNo;
 use crate::domain::diagnosis::Diagnosis;
 use crate::domain::readings::{ReadingContext, Readings};
-use crate::domain::text::{one_of, shown};
+use crate::domain::text::{one_line, one_of, shown};
 
 /// Longest free text of a report, in characters.
 const LONGEST: usize = 500;
@@ -65,9 +65,9 @@ impl ExamReport {
             E::ReceivedOn => self.received_on = optional(text, date).map_err(wrong)?,
             E::ReturnOn => self.return_on = optional(text, date).map_err(wrong)?,
             E::Evidence => code!(self.evidence, Evidence),
-            E::Examiner => self.examiner = words(text).map_err(wrong)?,
-            E::ExaminerPhone => self.examiner_phone = words(text).map_err(wrong)?,
-            E::ClassroomAdvice => self.classroom_advice = words(text).map_err(wrong)?,
+            E::Examiner => self.examiner = one_line(text, LONGEST).map_err(wrong)?,
+            E::ExaminerPhone => self.examiner_phone = one_line(text, LONGEST).map_err(wrong)?,
+            E::ClassroomAdvice => self.classroom_advice = one_line(text, LONGEST).map_err(wrong)?,
             E::RefractionMethod => code!(self.refraction_method, RefractionMethod),
             E::Cycloplegia => code!(self.cycloplegia, Cycloplegia),
             E::StereoSeconds => {
@@ -282,16 +282,6 @@ fn optional<T>(
 
 fn date(text: &str) -> Result<NaiveDate, String> {
     NaiveDate::parse_from_str(text, "%Y-%m-%d").map_err(|_| "a date as YYYY-MM-DD".to_owned())
-}
-
-fn words(text: &str) -> Result<String, String> {
-    if text.chars().count() > LONGEST {
-        return Err(format!("at most {LONGEST} characters"));
-    }
-    if text.chars().any(char::is_control) {
-        return Err("text on one line".to_owned());
-    }
-    Ok(text.to_owned())
 }
 
 fn list<T: PartialEq>(

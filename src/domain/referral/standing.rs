@@ -3,7 +3,7 @@
 use chrono::{Days, Months, NaiveDate};
 
 use super::{Closing, ContactResult, FollowUp, LetterKind, Opened, Step, StepKind};
-use crate::domain::outcome::Urgency;
+use crate::domain::outcome::{OutcomeKind, Urgency};
 
 /// Where a referral has come to.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, PartialOrd, Ord, Hash)]
@@ -70,6 +70,10 @@ pub enum NextKind {
     DecideUnreachable,
     /// Look whether the glasses are worn.
     LookAtGlasses,
+    /// The outcome is a pass now: tell the family, and close.
+    Withdraw,
+    /// The outcome is open now: settle it before anything is sent.
+    SettleOutcome,
 }
 
 impl NextKind {
@@ -81,11 +85,13 @@ impl NextKind {
             NextKind::Send(letter) => format!("send the {} letter", letter.title()),
             NextKind::Call(attempt) => format!("call, attempt {attempt} of {}", settings.attempts),
             NextKind::FindContact => "find another address or number".to_owned(),
-            NextKind::AskReport => "ask how the appointment went".to_owned(),
+            NextKind::AskReport => "ask whether the child was examined".to_owned(),
             NextKind::CloseExamined => "enter the report and close".to_owned(),
             NextKind::DecideUnreachable => {
                 "decide: another try, or close as not reached".to_owned()
             }
+            NextKind::Withdraw => "tell the family that it is withdrawn, and close it".to_owned(),
+            NextKind::SettleOutcome => "settle the outcome before anything is sent".to_owned(),
             NextKind::LookAtGlasses => "look in class: are the glasses worn?".to_owned(),
         }
     }
@@ -111,6 +117,25 @@ impl Standing {
             .as_ref()
             .map(|next| (today - next.due).num_days())
             .filter(|days| *days > 0)
+    }
+}
+
+impl Standing {
+    /// Takes account of an outcome that no longer refers: nothing of it goes out.
+    pub fn no_longer_refers(&mut self, outcome: OutcomeKind) {
+        if !self.state.is_open() {
+            return;
+        }
+        let kind = match outcome {
+            OutcomeKind::Pass | OutcomeKind::Exempt => NextKind::Withdraw,
+            _ => NextKind::SettleOutcome,
+        };
+        self.next = next(
+            kind,
+            self.last,
+            format!("the outcome is {} now", outcome.title()),
+        )
+        .into();
     }
 }
 
@@ -209,7 +234,7 @@ fn open(
     };
     let next = known(opened, opened_on, steps)
         .or_else(|| letter(opened, opened_on, steps, state, settings))
-        .or_else(|| again(steps, opened_on, attempts, settings));
+        .or_else(|| again(opened, opened_on, steps, attempts, settings));
     (state, next)
 }
 
@@ -300,7 +325,13 @@ fn letter(
 }
 
 /// A letter went out and nothing is known: another address, another letter, calls, a decision.
-fn again(steps: &[Step], opened_on: NaiveDate, attempts: u32, settings: &FollowUp) -> Option<Next> {
+fn again(
+    opened: &Opened,
+    opened_on: NaiveDate,
+    steps: &[Step],
+    attempts: u32,
+    settings: &FollowUp,
+) -> Option<Next> {
     let last = steps
         .iter()
         .rev()
@@ -314,6 +345,15 @@ fn again(steps: &[Step], opened_on: NaiveDate, attempts: u32, settings: &FollowU
             NextKind::FindContact,
             steps.last().map_or(opened_on, |s| s.on),
             "a letter came back or a number is wrong",
+        ));
+    }
+    if opened.urgency != Urgency::Routine {
+        return Some(next(
+            NextKind::AskReport,
+            opened
+                .act_by
+                .unwrap_or_else(|| after(last.on, settings.call_again_days)),
+            format!("{}: was the child seen?", opened.urgency.title()),
         ));
     }
     if attempts >= settings.attempts {

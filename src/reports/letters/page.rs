@@ -95,6 +95,8 @@ impl Letters {
         let messages = Arc::new(Messages::with(own)?);
         let mut environment = Environment::new();
         environment.set_undefined_behavior(UndefinedBehavior::Strict);
+        // A page takes some hundred steps; a template that never ends is stopped.
+        environment.set_fuel(Some(100_000));
         environment.set_auto_escape_callback(|_| AutoEscape::Html);
         let words = Arc::clone(&messages);
         environment.add_function("t", move |state: &State<'_, '_>, id: &str, fill: Kwargs| {

@@ -50,6 +50,10 @@ fn not_one(path: &Path) -> Error {
 impl Header {
     /// Reads and checks the header of a packet; the rest of the file follows.
     pub(super) fn open(path: &Path) -> Result<(Header, File)> {
+        // A pipe would be waited for without an end.
+        if std::fs::metadata(path).is_ok_and(|found| !found.is_file()) {
+            return Err(not_one(path));
+        }
         let mut file = File::open(path).map_err(|e| Error::file(path, "open", e))?;
         let mut start = [0; MAGIC.len() + 4];
         let read = read_up_to(&mut file, &mut start).map_err(|e| Error::file(path, "read", e))?;
@@ -102,7 +106,9 @@ impl Header {
     /// Copies the database out of a packet and compares its length and check sum.
     pub(super) fn extract(&self, path: &Path, rest: &mut File, to: &Path) -> Result<()> {
         let mut out = files::new_file(to)?;
-        let (bytes, sum) = copy_summed(path, rest, to, &mut out)?;
+        // One byte more than was promised says that something follows.
+        let mut rest = rest.take(self.bytes + 1);
+        let (bytes, sum) = copy_summed(path, &mut rest, to, &mut out)?;
         self.compare(path, bytes, &sum)
     }
 
@@ -165,7 +171,7 @@ pub(super) fn read_back(path: &Path) -> Result<()> {
 /// Copies to the end; returns how many bytes there were, and their SHA-256.
 fn copy_summed(
     from: &Path,
-    source: &mut File,
+    source: &mut impl Read,
     to: &Path,
     target: &mut impl Write,
 ) -> Result<(u64, String)> {

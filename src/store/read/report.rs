@@ -127,6 +127,18 @@ impl Reads<'_> {
         )
     }
 
+    /// Returns who was told of the emergencies of a visit.
+    pub fn told_of(&self, visit: Uuid) -> Result<Vec<UrgentAction>> {
+        self.rows::<UrgentAction>(
+            &format!(
+                "{OF_VISIT} AND x.step = 'told' AND {}",
+                super::generic::LIVE
+            ),
+            OLDEST_FIRST,
+            &[visit.cell()],
+        )
+    }
+
     /// Returns the visits whose present outcome is refer, by the date to act by, then day.
     pub fn referred(&self) -> Result<Vec<(ChildNow, VisitNow)>> {
         self.with_children(&format!(

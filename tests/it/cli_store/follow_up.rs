@@ -4,6 +4,8 @@
 //! second letter after four weeks, three attempts, six weeks for wear: common practice; six months:
 //! IAPB school guidelines, secondary).
 
+use twoline::actions::{Desk, DeskOptions, Secret, UrgentAnswer};
+
 use super::Bench;
 
 /// A day on which Okafor, Ada was referred: her third line between the eyes refers at once.
@@ -105,7 +107,7 @@ fn a_child_is_carried_from_refer_to_treated() {
         &["step", &code, "appointment", "--due", "2026-12-02"],
     );
     let out = bench.on("2026-11-21", &["refer", "list"]);
-    assert!(out.contains("ask how the appointment went"), "{out}");
+    assert!(out.contains("ask whether the child was examined"), "{out}");
 
     let out = bench.on(
         "2026-12-09",
@@ -325,7 +327,59 @@ fn a_corrected_outcome_makes_its_letter_out_of_date() {
         out.contains("the outcome has been corrected since: now pass"),
         "{out}"
     );
+    // A child who passes now gets no referral letter; the family is told.
+    assert!(
+        out.contains("next: tell the family that it is withdrawn"),
+        "{out}"
+    );
+    assert!(bench.ok(&["letters"]).contains("no letter is due"));
+    bench.ok(&["step", "Q-2", "closed", "--closing", "opened_by_mistake"]);
     bench.ok(&["verify"]);
+}
+
+#[test]
+fn a_call_that_reached_somebody_ends_the_running_line_and_a_told_emergency_is_a_call() {
+    let bench = Bench::on_a_day("us-school", "threshold");
+    bench.ok(&["record", "Q-4", "signs=white_pupil:left", "--sign"]);
+    bench.ok(&[
+        "step", "Q-4", "call", "--result", "reached", "--whom", "R. Moss",
+    ]);
+    let out = bench.ok(&["refer", "show", "Q-4"]);
+    assert_eq!(out.matches("R. Moss").count(), 1, "{out}");
+    let mut desk = Desk::open(
+        &bench.path("store"),
+        &Secret::None,
+        &DeskOptions {
+            screener: Some("JI".into()),
+            ..DeskOptions::default()
+        },
+    )
+    .unwrap();
+    assert!(desk.urgent_open().unwrap().is_empty());
+    // The other way: F9's answer stands among the steps.
+    drop(desk);
+    bench.ok(&["record", "Q-1", "signs=white_pupil:right", "--sign"]);
+    desk = Desk::open(
+        &bench.path("store"),
+        &Secret::None,
+        &DeskOptions {
+            screener: Some("JI".into()),
+            ..DeskOptions::default()
+        },
+    )
+    .unwrap();
+    let open = desk.urgent_open().unwrap();
+    desk.urgent_answer(&UrgentAnswer {
+        visit: open[0].visit,
+        told: "N. Tansley".into(),
+        told_at: "10:42".into(),
+        told_by: "J. Imani".into(),
+    })
+    .unwrap();
+    drop(desk);
+    let out = bench.ok(&["refer", "show", "Q-1"]);
+    assert!(out.contains("call, reached, N. Tansley"), "{out}");
+    assert!(!out.contains("nobody has spoken"), "{out}");
 }
 
 #[test]
@@ -368,4 +422,63 @@ fn a_letter_says_nothing_that_the_visit_does_not() {
     let html = bench.read("hand.html");
     assert!(!html.contains("we tested the eyesight"), "{html}");
     assert!(!html.contains("What we tested"), "{html}");
+}
+
+#[test]
+fn letters_are_written_over_nothing_and_never_into_a_store() {
+    let bench = referred();
+    let head = bench.head();
+    let store = bench.path("store").join("store.db");
+    let err = bench.refused(&["letters", "-o", store.to_str().unwrap()]);
+    assert!(err.contains("there already"), "{err}");
+    let inside = bench.path("store").join("new.html");
+    let err = bench.refused(&["letters", "-o", inside.to_str().unwrap()]);
+    assert!(err.contains("inside the folder of a store"), "{err}");
+    let key = bench.path("store").join("store.key");
+    let err = bench.refused(&["report", "referrals", "-o", key.to_str().unwrap()]);
+    assert!(err.contains("inside the folder of a store"), "{err}");
+    bench.write("due.html", "a letter");
+    let err = bench.refused(&["letters", "-o", "due.html"]);
+    assert!(err.contains("not written over"), "{err}");
+    assert_eq!(bench.read("due.html"), "a letter");
+    assert_eq!(bench.head(), head);
+}
+
+#[test]
+fn text_of_a_referral_is_one_line_without_controls() {
+    let bench = referred();
+    let head = bench.head();
+    for text in [
+        "a\u{1b}[31m",
+        "two\nlines",
+        "\u{202e}turned",
+        &"x".repeat(501),
+    ] {
+        for args in [
+            vec!["step", "Q-2", "note", "--note", text],
+            vec!["step", "Q-2", "call", "--result", "reached", "--whom", text],
+            vec!["refer", "set", "Q-2", "--responsible", text],
+            vec!["refer", "open", "Q-1", "--reason", text],
+        ] {
+            bench.refused(&args);
+        }
+    }
+    let err = bench.refused(&["step", "Q-2", "appointment", "--due", "2026-10-01"]);
+    assert!(err.contains("before the day"), "{err}");
+    assert_eq!(bench.head(), head);
+}
+
+#[test]
+fn a_template_that_never_ends_is_stopped() {
+    let bench = referred();
+    let folder = bench.path("store").join("letters");
+    std::fs::create_dir_all(&folder).unwrap();
+    let file = folder.join("referral.html");
+    let ever = "{% for a in range(9999) %}{% for b in range(9999) %}x{% endfor %}{% endfor %}";
+    std::fs::write(&file, ever).unwrap();
+    let err = bench.refused(&["letters"]);
+    assert!(err.contains("referral.html:1:"), "{err}");
+    std::fs::write(&file, "x".repeat(200_000)).unwrap();
+    let err = bench.refused(&["letters"]);
+    assert!(err.contains("at most 96 KB"), "{err}");
 }

@@ -282,3 +282,40 @@ fn a_notice_of_another_kind_does_not_tell_of_the_referral() {
         );
     }
 }
+
+#[test]
+fn an_urgent_one_is_asked_about_and_not_written_to_after_weeks() {
+    let opened = Opened {
+        urgency: Urgency::Emergency,
+        act_by: Some(day("2026-10-14")),
+        ..routine()
+    };
+    let steps = [
+        call("2026-10-14", ContactResult::Reached),
+        letter(StepKind::LetterPrinted, LetterKind::Urgent, "2026-10-14"),
+        letter(StepKind::LetterSent, LetterKind::Urgent, "2026-10-14"),
+    ];
+    assert_eq!(
+        next(&opened, &steps),
+        (State::Told, NextKind::AskReport, day("2026-10-14"))
+    );
+}
+
+#[test]
+fn what_no_longer_refers_is_withdrawn_or_settled_first() {
+    let sent = [letter(
+        StepKind::LetterSent,
+        LetterKind::Referral,
+        "2026-10-15",
+    )];
+    for (outcome, kind) in [
+        (OutcomeKind::Pass, NextKind::Withdraw),
+        (OutcomeKind::Exempt, NextKind::Withdraw),
+        (OutcomeKind::Incomplete, NextKind::SettleOutcome),
+        (OutcomeKind::Rescreen, NextKind::SettleOutcome),
+    ] {
+        let mut stands = standing(&routine(), &sent, None, &SETTINGS);
+        stands.no_longer_refers(outcome);
+        assert_eq!(stands.next.unwrap().kind, kind);
+    }
+}
