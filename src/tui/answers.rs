@@ -2,7 +2,7 @@
 
 use std::fmt::Write as _;
 
-use crate::actions::{DayChild, OpenUrgent, QueueState, Signed};
+use crate::actions::{DayChild, QueueState, Signed};
 use crate::domain::age::spoken;
 use crate::domain::outcome::Urgency;
 use crate::tui::app::{Answer, App, Effect, Notice, Refused, Request, Tone};
@@ -79,19 +79,13 @@ impl App {
                     return day.bring(&self.session, &id).effects;
                 }
             }
-            Answer::Urgent(urgent) => {
-                let open = |u: &OpenUrgent| urgent.iter().any(|v| v.visit == u.visit);
-                let told: Vec<String> = self
-                    .urgent
-                    .iter()
-                    .filter(|u| !open(u))
-                    .map(|u| crate::tui::text::safe(&u.name))
-                    .collect();
-                if !told.is_empty() {
-                    let words =
-                        format!("saved: who was told of the emergency, {}", told.join("; "));
-                    self.say(Tone::Quiet, words);
+            Answer::Urgent(urgent) => self.urgent = urgent,
+            Answer::Told(visit, urgent) => {
+                let mut words = "saved: who was told of the emergency".to_owned();
+                if let Some(told) = self.urgent.iter().find(|u| u.visit == visit) {
+                    let _ = write!(words, ", {}", crate::tui::text::safe(&told.name));
                 }
+                self.say(Tone::Quiet, words);
                 self.urgent = urgent;
             }
             Answer::Compared(compared) => self.rules.compared(*compared),

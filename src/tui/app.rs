@@ -288,6 +288,8 @@ pub enum Answer {
     Added(Box<DayChild>),
     /// What is urgent.
     Urgent(Vec<OpenUrgent>),
+    /// It is entered who was told of the emergency of a visit; what is urgent still.
+    Told(Uuid, Vec<OpenUrgent>),
     /// Children found for a text.
     Found(String, Vec<FoundChild>),
     /// A child's history.
@@ -312,6 +314,37 @@ pub enum Answer {
     DraftsNotWritten(Refused),
     /// Something could not be done.
     Refused(Refused),
+}
+
+impl Request {
+    /// Says whether the store is to write something, which leaving must not lose.
+    pub fn writes(&self) -> bool {
+        match self {
+            Request::NewDay(_)
+            | Request::Sign(_)
+            | Request::Correct(..)
+            | Request::MoveVisit(..)
+            | Request::Retract(..)
+            | Request::AddChild(..)
+            | Request::Told(_)
+            | Request::Screener(_)
+            | Request::SetStation(_)
+            | Request::Prefer(..)
+            | Request::Settle(..) => true,
+            Request::Days
+            | Request::LoadDay(_)
+            | Request::Board(_)
+            | Request::Visit(..)
+            | Request::Urgent
+            | Request::Find(_)
+            | Request::History(_)
+            | Request::Referrals
+            | Request::Term
+            | Request::Compare(..)
+            | Request::ValueHistory(..)
+            | Request::Unlock(_) => false,
+        }
+    }
 }
 
 impl Effect {

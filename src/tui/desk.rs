@@ -226,7 +226,7 @@ impl Clerk {
             }
             Request::Told(answer) => {
                 self.desk.urgent_answer(&answer)?;
-                Answer::Urgent(self.desk.urgent_open()?)
+                Answer::Told(answer.visit, self.desk.urgent_open()?)
             }
             Request::Urgent => Answer::Urgent(self.desk.urgent_open()?),
             Request::Find(text) => {

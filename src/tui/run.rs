@@ -67,6 +67,9 @@ pub enum Error {
     /// The thread that owns the store has ended.
     #[error("the store's thread has ended; what was signed is saved, what was typed is a draft")]
     Gone,
+    /// Something asked just before leaving was refused.
+    #[error("not done when the screens were left: {0}")]
+    NotDone(String),
 }
 
 /// Longest wait for a key before the clock and the answers are looked at.
@@ -88,6 +91,7 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     }
     let (to_store, jobs) = channel();
     let (answers, from_store) = channel();
+    let leaving = Arc::new(AtomicBool::new(false));
     let clerk = Clerk::new(desk);
     let keeper = clerk.keeper();
     if let Some(refused) = keeper.refusal() {
@@ -95,7 +99,10 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     }
     let store = thread::Builder::new()
         .name("store".into())
-        .spawn(move || serve(clerk, &jobs, &answers))?;
+        .spawn({
+            let leaving = Arc::clone(&leaving);
+            move || serve(clerk, &jobs, &answers, &leaving)
+        })?;
     let signals = Signals::default();
     let mut handlers = Vec::new();
     for signal in [
@@ -116,7 +123,7 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     let result = Screen::open().and_then(|mut screen| {
         let mut wires = Wires {
             to_store: to_store.clone(),
-            from_store,
+            from_store: &from_store,
             keeper,
             waiting: 0,
         };
@@ -132,10 +139,15 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     for handler in handlers {
         signal_hook::low_level::unregister(handler);
     }
+    leaving.store(true, Ordering::Relaxed);
     drop(to_store);
-    // Every job already given is done and every draft written before the program ends.
+    // Everything already asked is written, and every draft, before the program ends.
     store.join().map_err(|_| Error::Gone)?;
-    result
+    let unseen = unseen(&from_store);
+    match result {
+        Ok(()) if !unseen.is_empty() => Err(Error::NotDone(unseen.join("; "))),
+        result => result,
+    }
 }
 
 /// What signals ask for.
@@ -151,39 +163,50 @@ enum Job {
     Flush,
 }
 
-fn serve(mut clerk: Clerk, jobs: &Receiver<Job>, answers: &Sender<Answer>) {
+/// Does every job until no more can come. When the screens leave, reads are left out; whatever is to
+/// be written is still written, and so is every draft.
+fn serve(mut clerk: Clerk, jobs: &Receiver<Job>, answers: &Sender<Answer>, leaving: &AtomicBool) {
+    let keeper = clerk.keeper();
+    let flush = || keeper.flush().map_err(Answer::DraftsNotWritten).err();
     while let Ok(job) = jobs.recv() {
         let answer = match job {
-            Job::Ask(request) => clerk.answer(*request),
-            Job::Flush => match clerk.keeper().flush() {
-                Ok(()) => continue,
-                Err(refused) => Answer::DraftsNotWritten(refused),
-            },
+            Job::Ask(request) if leaving.load(Ordering::Relaxed) && !request.writes() => None,
+            Job::Ask(request) => Some(clerk.answer(*request)),
+            Job::Flush => flush(),
         };
-        if answers.send(answer).is_err() {
-            break;
-        }
+        // Nobody listens any more only when the program ends by a fault: what was asked is done.
+        let _ = answer.map(|answer| answers.send(answer));
     }
-    // The screens may leave while a signature waits: it is still written, and so is every draft.
-    while let Ok(job) = jobs.try_recv() {
-        if let Job::Ask(request) = job
-            && matches!(*request, Request::Sign(_))
-        {
-            drop(clerk.answer(*request));
-        }
-    }
-    let _ = clerk.keeper().flush();
+    let _ = flush().map(|answer| answers.send(answer));
+}
+
+/// Returns what the store refused and nobody saw any more.
+fn unseen(from_store: &Receiver<Answer>) -> Vec<String> {
+    from_store
+        .try_iter()
+        .filter_map(|answer| match answer {
+            Answer::NotSigned(child, refused) => {
+                let child = crate::tui::text::safe(&child);
+                Some(format!(
+                    "{child}: not confirmed, the draft is kept. {}",
+                    refused.message
+                ))
+            }
+            Answer::Refused(refused) | Answer::DraftsNotWritten(refused) => Some(refused.message),
+            _ => None,
+        })
+        .collect()
 }
 
 /// The channels to the store's thread.
-struct Wires {
+struct Wires<'a> {
     to_store: Sender<Job>,
-    from_store: Receiver<Answer>,
+    from_store: &'a Receiver<Answer>,
     keeper: Keeper,
     waiting: usize,
 }
 
-impl Wires {
+impl Wires<'_> {
     /// Carries effects out; says whether the program is to suspend or to end.
     fn carry_out(&mut self, effects: Vec<Effect>) -> Result<Next, Error> {
         let mut next = Next::GoOn;
@@ -238,7 +261,7 @@ enum Next {
 fn event_loop(
     app: &mut App,
     screen: &mut Screen,
-    wires: &mut Wires,
+    wires: &mut Wires<'_>,
     signals: &Signals,
 ) -> Result<(), Error> {
     wires.carry_out(app.start())?;

@@ -42,16 +42,22 @@ impl App {
                     |c| name(&c.family_name, &c.given_name),
                 )
         };
-        match request {
-            Request::Sign(sign) => Some(who(&sign.child_id)),
-            Request::Correct(..) => Some("the correction".into()),
-            Request::MoveVisit(..) => Some("the moved visit".into()),
-            Request::Retract(..) => Some("the signature taken back".into()),
-            Request::AddChild(child, _) => Some(name(&child.family_name, &child.given_name)),
-            Request::Told(_) => Some("who was told".into()),
-            Request::NewDay(_) => Some("the new day".into()),
-            _ => None,
+        if !request.writes() {
+            return None;
         }
+        Some(match request {
+            Request::Sign(sign) => who(&sign.child_id),
+            Request::Correct(..) => "the correction".into(),
+            Request::MoveVisit(..) => "the moved visit".into(),
+            Request::Retract(..) => "the signature taken back".into(),
+            Request::AddChild(child, _) => name(&child.family_name, &child.given_name),
+            Request::Told(_) => "who was told".into(),
+            Request::NewDay(_) => "the new day".into(),
+            Request::Settle(..) => "the value that stands".into(),
+            Request::SetStation(_) => "what the station is set to".into(),
+            Request::Screener(_) => "who is recording".into(),
+            _ => "the setting".into(),
+        })
     }
 
     /// Says whether something written waits for the store's word.
