@@ -196,10 +196,11 @@ fn info(
         .map_or_else(|| day.site.clone(), |(_, name)| name.clone());
     DayInfo {
         id: day.id,
+        // The general calendar is nobody's own: the site is named only beside its own.
         calendar: calendars
             .get(&day.site)
-            .or_else(|| calendars.get(""))
-            .map(|calendar| calendar.clone().of(&*site_name)),
+            .map(|calendar| calendar.clone().of(&*site_name))
+            .or_else(|| calendars.get("").cloned()),
         site: day.site,
         site_name,
         date: day.screened_on,

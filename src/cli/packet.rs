@@ -215,6 +215,17 @@ pub(super) fn brought(merged: &Merged) -> Vec<String> {
             merged.conflicts
         ));
     }
+    if merged.said_otherwise > 0 {
+        let facts = if merged.said_otherwise == 1 {
+            "other fact"
+        } else {
+            "other facts"
+        };
+        lines.push(format!(
+            "{} {facts} said differently by two stations; the latest stands: twoline packet conflicts",
+            merged.said_otherwise
+        ));
+    }
     for fork in &merged.forks {
         lines.push(format!(
             "chain {} goes on in two ways from number {}: a copy of a store was written to; both are kept",

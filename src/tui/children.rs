@@ -240,6 +240,9 @@ fn history_lines(history: &ChildHistory, columns: usize, session: &Session) -> V
     out
 }
 
+/// The column of a visit's outcome: a date, the attempt and both eyes stand before it.
+const OUTCOME_AT: usize = 45;
+
 fn visit_lines(visit: &VisitView, columns: usize, theme: Theme, out: &mut Vec<Line<'static>>) {
     let eye = |r: Option<crate::domain::readings::AcuityResult>| {
         r.map_or_else(|| "·".to_owned(), |v| v.to_string())
@@ -258,6 +261,14 @@ fn visit_lines(visit: &VisitView, columns: usize, theme: Theme, out: &mut Vec<Li
                     theme.outcome(o.kind, o.urgency),
                 )
             });
+    let who = format!(
+        "{}{}, {}",
+        if visit.late { "late, " } else { "" },
+        safe(&visit.screener),
+        safe(&visit.station)
+    );
+    // Who entered it stands beside the outcome where there is room, else on a line of its own.
+    let beside = OUTCOME_AT + (width(&word) + 1).max(23) + width(&who) <= columns;
     out.push(Line::from(vec![
         Span::raw(format!(
             " {} {} R {} L {} ",
@@ -266,16 +277,15 @@ fn visit_lines(visit: &VisitView, columns: usize, theme: Theme, out: &mut Vec<Li
             fit(&eye(distance.right), 8),
             fit(&eye(distance.left), 8)
         )),
-        Span::styled(fit(&word, 23), style),
-        Span::raw(cut(
-            &format!(
-                "{}{}, {}",
-                if visit.late { "late, " } else { "" },
-                safe(&visit.screener),
-                safe(&visit.station)
-            ),
-            columns.saturating_sub(61),
-        )),
+        Span::styled(cut(&word, columns.saturating_sub(OUTCOME_AT)), style),
+        Span::raw(if beside {
+            format!(
+                "{}{who}",
+                " ".repeat(23usize.saturating_sub(width(&word)).max(1))
+            )
+        } else {
+            String::new()
+        }),
     ]));
     let other: Vec<String> = visit
         .readings
@@ -291,6 +301,9 @@ fn visit_lines(visit: &VisitView, columns: usize, theme: Theme, out: &mut Vec<Li
         .collect();
     let indent = " ".repeat(14);
     let room = columns.saturating_sub(16);
+    if !beside {
+        out.push(Line::raw(format!("{indent}{}", cut(&who, room))));
+    }
     if !other.is_empty() {
         out.extend(
             wrap(&other.join(" · "), room)

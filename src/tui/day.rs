@@ -470,7 +470,7 @@ impl Day {
         }
     }
 
-    /// Begins another try of the child on the bench.
+    /// Begins another try of the child on the bench, or the part that nobody has signed.
     pub fn second_try(&mut self, session: &Session) -> Done {
         match &mut self.bench {
             Some(bench) if bench.may_try_again() => {
@@ -478,7 +478,15 @@ impl Day {
                 self.list_focus = false;
                 Done::said("another try of the same visit; the one before stays")
             }
-            _ => Done::refused("another try is for a signed child who was not testable"),
+            Some(bench) if bench.is_signed() && bench.may_add_part() => {
+                bench.begin_part((session.new_id)(), None);
+                self.list_focus = false;
+                Done::said("a further part of the same visit; what is signed stays")
+            }
+            _ => Done::refused(
+                "another try is for a signed child who was not testable, a further part for one of \
+                 whom no test is signed",
+            ),
         }
     }
 
@@ -509,6 +517,18 @@ impl Day {
 
     // --- drawing -----------------------------------------------------------------------------
 
+    /// Returns what the list shows beside its own content. At a masked station no outcome of another
+    /// station's part is told.
+    pub fn marks(&self, session: &Session) -> QueueMarks<'_> {
+        QueueMarks {
+            on_bench: self.bench.as_ref().map(|b| b.child.child_id.as_str()),
+            drafts: &self.draft_ids,
+            saving: &self.saving,
+            focused: self.in_list(),
+            discreet: session.discreet || session.role.masked,
+        }
+    }
+
     /// Draws list and bench; returns where the cursor belongs.
     pub fn draw(&self, frame: &mut Frame<'_>, area: Rect, session: &Session) -> Position {
         let theme = session.theme;
@@ -527,14 +547,7 @@ impl Day {
             width: area.width - list_width - rule.width,
             ..area
         };
-        let marks = QueueMarks {
-            on_bench: self.bench.as_ref().map(|b| b.child.child_id.as_str()),
-            drafts: &self.draft_ids,
-            saving: &self.saving,
-            focused: self.in_list(),
-            discreet: session.discreet,
-        };
-        let (x, y) = queue::draw(frame, list, &self.queue, marks, theme);
+        let (x, y) = queue::draw(frame, list, &self.queue, self.marks(session), theme);
         let bar: Vec<Line<'_>> = (0..area.height)
             .map(|_| Line::styled("│", theme.muted()))
             .collect();

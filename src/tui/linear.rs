@@ -227,7 +227,7 @@ impl App {
                 || kind::label(*field).to_owned(),
                 |eye| format!("{}, {}", eye.title(), kind::label(*field)),
             );
-            let raw = bench.raw(*field);
+            let raw = bench.typed(*field);
             let here = bench.field() == Some(*field);
             let typed = here && matches!(kind::kind(*field), Kind::Acuity | Kind::Text);
             let value = match bench.state(*field) {
@@ -239,6 +239,7 @@ impl App {
                         format!("{}, {wrong}", safe(raw))
                     }
                 }
+                State::Valid { .. } if bench.shows_as_typed(*field) => safe(bench.typed(*field)),
                 State::Valid { echo: Some(echo) } => {
                     let words = value_words(&bench.readings, *field, raw);
                     if echo.contains(&words) {

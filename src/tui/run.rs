@@ -97,12 +97,10 @@ pub fn run(desk: Desk, options: Options) -> Result<(), Error> {
     if let Some(refused) = keeper.refusal() {
         app.refuse(refused);
     }
-    let store = thread::Builder::new()
-        .name("store".into())
-        .spawn({
-            let leaving = Arc::clone(&leaving);
-            move || serve(clerk, &jobs, &answers, &leaving)
-        })?;
+    let store = thread::Builder::new().name("store".into()).spawn({
+        let leaving = Arc::clone(&leaving);
+        move || serve(clerk, &jobs, &answers, &leaving)
+    })?;
     let signals = Signals::default();
     let mut handlers = Vec::new();
     for signal in [
@@ -386,6 +384,61 @@ fn give_back() -> io::Result<()> {
 mod tests {
     use super::*;
     use crossterm::event::{KeyCode, KeyEvent, KeyModifiers, MouseEvent, MouseEventKind};
+
+    /// A desk in a fresh folder.
+    fn desk(dir: &std::path::Path) -> Desk {
+        use crate::actions::{DeskOptions, Kdf, NewStore, Secret, init};
+        let new = NewStore {
+            programme: "Quillmere".into(),
+            station: "east".into(),
+            notation: crate::domain::acuity::Notation::Feet,
+            secret: Secret::None,
+            kdf: Kdf::test(),
+        };
+        let (mut desk, _) = init(dir, new, &DeskOptions::default()).expect("a store");
+        desk.add_screener("JI", "J. Imani").expect("a screener");
+        desk.add_site("QE", "Quillmere East").expect("a site");
+        desk
+    }
+
+    #[test]
+    fn whatever_was_asked_before_leaving_is_written_and_a_refusal_is_told() {
+        use crate::actions::{NewDay, StationChange};
+        let folder = tempfile::tempdir().expect("a folder");
+        let clerk = Clerk::new(desk(&folder.path().join("store")));
+        let (to_store, jobs) = channel();
+        let (answers, from_store) = channel();
+        let day = NewDay {
+            site: "QE".into(),
+            date: chrono::NaiveDate::from_ymd_opt(2026, 10, 14).expect("a date"),
+            protocol: "us-school".into(),
+            method: crate::domain::codes::AcuityMethod::Threshold,
+        };
+        let nobody = uuid::Uuid::from_u128(7);
+        for request in [
+            Request::Days,
+            Request::NewDay(day),
+            Request::SetStation(StationChange {
+                masked: Some(true),
+                ..StationChange::default()
+            }),
+            Request::Screener("J. Imani".into()),
+            Request::Prefer("theme", "dark".into()),
+            Request::Retract(nobody, "never seen".into()),
+        ] {
+            assert!(to_store.send(Job::Ask(Box::new(request))).is_ok());
+        }
+        drop(to_store);
+        serve(clerk, &jobs, &answers, &AtomicBool::new(true));
+        assert_eq!(unseen(&from_store).len(), 1, "the retraction is refused");
+        let options = crate::actions::DeskOptions::default();
+        let secret = crate::actions::Secret::None;
+        let desk = Desk::open(&folder.path().join("store"), &secret, &options).expect("a desk");
+        assert_eq!(desk.days().expect("days").len(), 1);
+        assert!(desk.station_role().expect("a role").masked);
+        assert_eq!(desk.screener().as_deref(), Some("J. Imani"));
+        assert_eq!(desk.preference("theme").as_deref(), Some("dark"));
+    }
 
     #[test]
     fn a_repeat_is_a_press_and_a_release_or_the_mouse_is_nothing() {

@@ -12,6 +12,7 @@ use crate::keys::Command;
 use crate::tui::app::{App, Effect, Request, Tone};
 use crate::tui::day::bench::{Bench, pairs};
 use crate::tui::day::path::Group;
+use crate::tui::day::queue;
 use crate::tui::prompt::{Ask, Body, Form, Prompt};
 use crate::tui::text::safe;
 use crate::tui::view::wall_clock;
@@ -415,6 +416,7 @@ impl App {
         if let (Ask::MoveTo, Body::Form(form), Ok(day)) = (&prompt.ask, &mut prompt.body, &self.day)
         {
             let text = form.value(0).to_owned();
+            let marks = day.marks(&self.session);
             form.hints = day
                 .queue
                 .matching(&text, 5)
@@ -427,7 +429,10 @@ impl App {
                             28
                         ),
                         crate::tui::text::fit(&safe(&c.child_id), 12),
-                        c.state.title()
+                        match queue::state_word(c, marks, self.session.theme).0 {
+                            "" => c.state.title(),
+                            word => word,
+                        }
                     )
                 })
                 .collect();

@@ -28,8 +28,10 @@ pub struct Merged {
     pub forks: Vec<Fork>,
     /// Whether one of them was this store's own, so that it goes on in a new one.
     pub own_fork: bool,
-    /// Facts with values that differ, in all.
+    /// Readings with values that differ, in all.
     pub conflicts: u64,
+    /// Other facts that stations say differently, in all; the latest stands.
+    pub said_otherwise: u64,
     /// The head of the store now.
     pub head: Head,
 }
@@ -106,6 +108,10 @@ pub(in crate::store) fn merge(
         new_chain = Some(chain);
     }
     let reads = Reads::new(&sql);
+    let (readings, others): (Vec<_>, Vec<_>) = reads
+        .conflicts()?
+        .into_iter()
+        .partition(|conflict| conflict.table == "reading");
     let merged = Merged {
         transactions: numbers.len() as u64,
         entries: entries.unsigned_abs(),
@@ -113,7 +119,8 @@ pub(in crate::store) fn merge(
         children: (count(&sql, "child_current")? - before.children).unsigned_abs(),
         own_fork: new_chain.is_some(),
         forks,
-        conflicts: reads.conflicts()?.len() as u64,
+        conflicts: readings.len() as u64,
+        said_otherwise: others.len() as u64,
         head: reads.head()?,
     };
     match last {

@@ -58,18 +58,12 @@ impl Day {
         }
     }
 
-    /// Shows a signed visit if its child is on the bench.
+    /// Shows a signed visit, with one's own draft or part beside it, if its child is on the bench.
     pub fn show_visit(&mut self, id: &str, visit: Option<crate::actions::VisitView>) {
         if let (Some(bench), Some(visit)) = (&mut self.bench, visit)
             && bench.child.child_id == id
         {
-            bench.show_signed(visit);
-            // A draft beside a signed visit is another try that was begun.
-            if let Some(draft) = self.drafts.get(id)
-                && bench.may_try_again()
-            {
-                bench.try_again(draft.visit, Some(draft));
-            }
+            bench.show_visit(visit, self.drafts.get(id));
         }
     }
 }

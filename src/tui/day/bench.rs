@@ -1,6 +1,8 @@
 //! The bench: one child, the fields that the protocol asks for, and what they come to.
 
 mod edit;
+mod part;
+mod signing;
 
 pub use edit::pairs;
 
@@ -9,12 +11,12 @@ use std::sync::Arc;
 use chrono::NaiveDate;
 use uuid::Uuid;
 
-use crate::actions::{DayChild, DayInfo, SignRequest, StationRole, Unsettled, VisitView};
+use crate::actions::{DayChild, DayInfo, StationRole, Unsettled, VisitView};
 use crate::domain::acuity::{Line, Notation};
 use crate::domain::codes::{Attempt, Correction, Status};
 use crate::domain::field::Field;
 use crate::domain::outcome::{Outcome, Urgency};
-use crate::domain::readings::{Distance, Eyes, ReadingContext, Readings};
+use crate::domain::readings::{Distance, ReadingContext, Readings};
 use crate::domain::screening_test::ScreeningTest;
 use crate::tui::app::Session;
 use crate::tui::day::doubt::{self, Doubt};
@@ -70,6 +72,8 @@ pub struct Bench {
     pub pass_line: Option<PassLine>,
     /// The visit as it was signed; then nothing is typed over it.
     pub signed: Option<VisitView>,
+    /// What other stations signed of this visit, while a further part is entered here.
+    pub elsewhere: Option<VisitView>,
     /// Tries of this visit before the one that is shown, oldest first.
     pub earlier: Vec<Readings>,
     raws: Raws,
@@ -108,6 +112,7 @@ struct Given {
     library: Arc<Library>,
     bare: Notation,
     role: StationRole,
+    new_id: fn() -> Uuid,
 }
 
 impl Bench {
@@ -123,6 +128,7 @@ impl Bench {
             library: Arc::clone(&session.library),
             bare: session.notation,
             role: session.role.clone(),
+            new_id: session.new_id,
         };
         let tests = judging::bench_tests(&given.library, day, &child);
         let mut plan = Plan::new(&tests, given.role.task, child.wears_glasses != Some(false));
@@ -142,6 +148,7 @@ impl Bench {
             asked: Vec::new(),
             asking: None,
             signed: None,
+            elsewhere: None,
             earlier: Vec::new(),
             child,
             path: Vec::new(),
@@ -174,7 +181,7 @@ impl Bench {
     /// Returns where a fresh child begins: at the glasses unless the roster says there are none,
     /// else at the first test that is needed.
     fn first_spot(&self) -> Spot {
-        if self.roster_correction().is_none() && self.path.contains(&Field::CorrectionWorn) {
+        if self.readings.correction.is_none() && self.path.contains(&Field::CorrectionWorn) {
             return Spot::Field(Field::CorrectionWorn);
         }
         self.path
@@ -300,7 +307,7 @@ impl Bench {
         }
         let mut readings = Readings {
             acuity_method: Some(self.given.day.method),
-            correction: self.roster_correction(),
+            correction: self.correction_known(),
             ..Readings::default()
         };
         self.chart_at_the_station(&mut readings);
@@ -332,6 +339,7 @@ impl Bench {
             tries.push(self.readings.clone());
             judging::judged(&tries)
         });
+        let together = together.or_else(|| self.with_elsewhere(context));
         self.outcome = judging::preview(
             &self.given.library,
             &self.given.day,
@@ -434,6 +442,7 @@ impl Bench {
         self.visit = visit.id;
         self.earlier.clone_from(&visit.earlier_tries);
         self.signed = Some(visit);
+        self.elsewhere = None;
         self.undo.clear();
         self.at = Spot::Sign;
         self.judge();
@@ -457,34 +466,6 @@ impl Bench {
             .then_some((text, before.on))
     }
 
-    /// Says whether the signed visit may be followed by another try on the same day.
-    pub fn may_try_again(&self) -> bool {
-        self.is_signed() && self.readings.any_eye_not_testable()
-    }
-
-    /// Says whether this is another try of a signed visit.
-    pub fn is_further_try(&self) -> bool {
-        !self.is_signed() && !self.earlier.is_empty()
-    }
-
-    /// Begins another try of the signed visit, with its draft if there is one. What was tested before
-    /// stays; nothing of it is filled in again.
-    pub fn try_again(&mut self, id: Uuid, draft: Option<&Draft>) {
-        let Some(visit) = self.signed.take() else {
-            return;
-        };
-        self.earlier.push(visit.readings);
-        self.visit = draft.map_or(id, |d| d.visit);
-        self.raws = draft.map_or_else(Vec::new, entered_before);
-        self.swapped = draft.map_or_else(Vec::new, swapped_before);
-        self.undo.clear();
-        self.at = Spot::Sign;
-        self.judge();
-        self.at = draft
-            .and_then(|d| self.spot_of(&d.cursor))
-            .unwrap_or_else(|| self.first_spot());
-    }
-
     /// Says whether the child's visit of this day is signed.
     pub fn is_signed(&self) -> bool {
         self.signed.is_some()
@@ -505,65 +486,6 @@ impl Bench {
         !self.is_signed()
             && self.field() == Some(Field::History)
             && self.raw(Field::History).is_empty()
-    }
-
-    /// Says whether signing will state "no signs seen".
-    pub fn will_state_no_signs(&self) -> bool {
-        self.task().is_none()
-            && self.readings.signs.is_none()
-            && self.status().is_none()
-            && self.earlier.iter().all(|t| t.signs.is_none())
-    }
-
-    /// Returns what to sign, or the field that stands against it and why.
-    pub fn to_sign(&self) -> Result<SignRequest, (Option<Field>, String)> {
-        for (field, state) in &self.states {
-            if let State::Invalid { expected } = state {
-                return Err((
-                    Some(*field),
-                    format!("{}: expected {expected}", field.title()),
-                ));
-            }
-        }
-        let mut readings = self.readings.clone();
-        let speaks = readings.anything_tested()
-            || readings.signs.is_some()
-            || self.status().is_some()
-            || matches!(
-                readings.correction,
-                Some(Correction::LeftAtHome | Correction::BrokenOrLost | Correction::NotWorn)
-            );
-        if !speaks {
-            let spot = self.path.iter().copied().find(|f| self.plan.is_main(*f));
-            return Err((
-                spot,
-                "nothing was tested yet; F3 says why a child is not tested".into(),
-            ));
-        }
-        if let Some(error) = readings.contradictions().into_iter().next() {
-            return Err((
-                Some(error.field),
-                format!("{}: expected {}", error.field.title(), error.expected),
-            ));
-        }
-        if readings.distance == Eyes::default() && self.raw(Field::LettersPerLine).is_empty() {
-            // Nothing was read from the station's chart.
-            readings.letters_per_line = None;
-        }
-        if self.will_state_no_signs() {
-            readings.signs = Some(Vec::new());
-        }
-        if readings.status.is_none() {
-            readings.status = Some(Status::Present);
-        }
-        Ok(SignRequest {
-            day: self.given.day.id,
-            child_id: self.child.child_id.clone(),
-            attempt: self.child.attempt,
-            visit: self.visit,
-            readings,
-            remarks: self.swapped_words(),
-        })
     }
 }
 

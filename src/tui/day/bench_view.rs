@@ -9,6 +9,7 @@ use ratatui::text::{Line, Span};
 use ratatui::widgets::Paragraph;
 
 use crate::domain::field::Field;
+use crate::domain::readings::Eyes;
 use crate::domain::screening_test::ScreeningTest;
 use crate::tui::app::Session;
 use crate::tui::day::bench::{Bench, Spot};
@@ -228,7 +229,12 @@ fn lower(
     };
     let quiet = bench.keeps_back() || session.discreet;
     let ladder = ladder::Ladder {
-        eyes: bench.readings.distance,
+        eyes: if bench.keeps_back() {
+            let [right, left] = bench.readings.distance.both().map(ladder::told_by_itself);
+            Eyes { right, left }
+        } else {
+            bench.readings.distance
+        },
         pass: bench.pass_line.as_ref().filter(|_| !quiet),
         notation: session.notation,
         chart: bench.chart(),
@@ -335,7 +341,7 @@ fn row_line(
             let text = cut(&text, columns.saturating_sub(LABEL));
             let end = LABEL
                 + if here {
-                    width(bench.raw(field)).min(width(&text))
+                    width(bench.typed(field)).min(width(&text))
                 } else {
                     0
                 };
@@ -367,7 +373,7 @@ fn row_line(
                     x = LABEL
                         + i * column
                         + if typed {
-                            width(bench.raw(field)).min(column.saturating_sub(1))
+                            width(bench.typed(field)).min(column.saturating_sub(1))
                         } else {
                             0
                         };
@@ -429,6 +435,8 @@ pub fn sign_line(
     if bench.is_signed() {
         let words = if bench.may_try_again() {
             "signed · Alt-r second try · Enter next"
+        } else if bench.may_add_part() {
+            "signed · Alt-r adds the tests · Enter next"
         } else {
             "signed · Ctrl-E corrects · Enter next"
         };
@@ -448,6 +456,8 @@ pub fn sign_line(
     }
     let verb = if bench.is_further_try() {
         "Enter signs this try"
+    } else if bench.elsewhere.is_some() && bench.task().is_none() {
+        "Enter signs this part"
     } else {
         "Enter signs"
     };

@@ -26,6 +26,10 @@ pub fn line(bench: &Bench, theme: Theme) -> Line<'static> {
     match bench.state(field) {
         State::Empty => Line::styled(hint(field).unwrap_or_default(), theme.muted()),
         State::Invalid { .. } => Line::styled("not understood", theme.error()),
+        State::Valid { .. } if bench.shows_as_typed(field) => {
+            let who = eye(field).map_or(String::new(), |e| format!("{} ", e.title()));
+            Line::styled(format!("{who}{}", safe(bench.typed(field))), theme.focus())
+        }
         State::Valid { echo } => {
             let mut words = understood(&bench.readings, field).unwrap_or_default();
             if let Some(echo) = echo {

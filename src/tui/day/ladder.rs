@@ -37,6 +37,11 @@ pub fn mark(result: Option<AcuityResult>) -> Option<Mark> {
     }
 }
 
+/// Leaves out a value that stands at the pass line (`or better`, `worse than`), which it would tell.
+pub fn told_by_itself(result: Option<AcuityResult>) -> Option<AcuityResult> {
+    result.filter(|_| !matches!(mark(result), Some(Mark::OrBetter(_) | Mark::Below(_))))
+}
+
 impl Mark {
     fn row(self) -> i32 {
         match self {

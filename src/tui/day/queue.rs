@@ -526,11 +526,13 @@ fn child_line(
     ])
 }
 
-fn state_word(child: &DayChild, marks: QueueMarks<'_>, theme: Theme) -> (&'static str, Style) {
+/// Returns how a child stands in a word or two, empty where nothing is to be known.
+pub fn state_word(child: &DayChild, marks: QueueMarks<'_>, theme: Theme) -> (&'static str, Style) {
     if marks.saving.contains(&child.child_id) {
         return ("saving…", theme.muted());
     }
-    if marks.discreet && child.state != QueueState::ToCome {
+    // That a child is absent is no outcome of a test.
+    if marks.discreet && !matches!(child.state, QueueState::ToCome | QueueState::Absent) {
         return ("seen", theme.muted());
     }
     if child.waits_for_second_try() {

@@ -108,10 +108,23 @@ fn two_laptops_share_a_day_under_passphrases() {
         "Q-2",
         &["correction_worn=none", "distance_left=20/63"],
     );
+    ok(
+        "east",
+        &["site", "add", "QE", "--name", "Quillmere East, hall"],
+    );
+    ok(
+        "west",
+        &["site", "add", "QE", "--name", "Quillmere East, gym"],
+    );
     ok("west", &["packet", "write", "west.packet"]);
     let out = ok("east", &["packet", "read", "west.packet"]);
     assert!(out.contains("2 new visits from west"), "{out}");
-    assert!(out.contains("1 value in conflict"), "{out}");
+    assert!(out.contains("1 value in conflict; settle"), "{out}");
+    assert!(
+        out.contains("1 other fact said differently by two stations"),
+        "{out}"
+    );
+    ok("east", &["site", "add", "QE", "--name", "Quillmere East"]);
     let differs = "Okafor, Ada (Q-2), 2026-10-14: distance acuity, left eye is 20/20 or 20/63";
     assert!(out.contains(differs), "{out}");
     assert!(ok("east", &["packet", "conflicts"]).contains(differs));

@@ -340,3 +340,34 @@ fn a_refused_preference_is_said() {
     ));
     h.misses("kept for this installation");
 }
+
+#[test]
+fn a_slow_disk_is_said_for_a_setting_too() {
+    let mut h = Hands::sit();
+    h.held = Some(Vec::new());
+    h.press(Key::ctrl('p')).typed("theme").enter().typed("3");
+    h.app.session.now_ms += 6_000;
+    h.app.update(Message::Tick);
+    h.sees("not confirmed yet: the setting");
+}
+
+/// A file that somebody changed by hand and that cannot be read is not lost by the next choice.
+#[test]
+fn preferences_that_cannot_be_read_are_not_written_over() {
+    let mut h = Hands::sit();
+    let file = h.folder.path().join("store/screens.toml");
+    let by_hand = "idle_minutes = \"3\"\ntheme = light\n";
+    std::fs::write(&file, by_hand).unwrap();
+    h.press(Key::ctrl('p')).typed("theme").enter().typed("3");
+    h.sees("screens.toml, line 2")
+        .misses("kept for this installation");
+    assert_eq!(std::fs::read_to_string(&file).unwrap(), by_hand);
+    std::fs::write(&file, "idle_minutes = \"3\"\n").unwrap();
+    h.press(Key::ctrl('p')).typed("theme").enter().typed("3");
+    h.sees("kept for this installation");
+    let kept = std::fs::read_to_string(&file).unwrap();
+    assert!(
+        kept.contains("idle_minutes") && kept.contains("contrast"),
+        "{kept}"
+    );
+}

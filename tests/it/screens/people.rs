@@ -315,3 +315,14 @@ Q-4,Petit,Léa,,1,1C,QE,555-4190
         .typed("2a")
         .sees("Okafor, Ada  by class");
 }
+
+/// Eighty columns hold the outcome with its date; who entered it is not cut off beside it.
+#[test]
+fn a_history_names_the_screener_in_full() {
+    let mut h = Hands::sit();
+    h.typed("20").enter().typed("32").press(Key::ctrl('s'));
+    h.press(Key::alt('2')).typed("okafor").enter();
+    let screen = h.screen();
+    assert!(screen.contains("rescreen by "), "{screen}");
+    assert!(screen.contains("J. Imani, east"), "{screen}");
+}

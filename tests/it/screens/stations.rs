@@ -1,11 +1,150 @@
 //! A station with one test, a masked one, a discreet screen, the chart on the wall.
 
 use crossterm::event::KeyCode;
-use twoline::actions::NewChart;
-use twoline::domain::codes::AcuityMethod;
+use twoline::actions::{
+    Desk, DeskOptions, ForJoin, Kdf, NewChart, Secret, SignRequest, join, new_visit_id,
+};
+use twoline::domain::codes::{AcuityMethod, Attempt};
+use twoline::domain::field::Field;
+use twoline::domain::readings::{ReadingContext, Readings};
 use twoline::keys::Key;
 
-use super::desk::{Hands, ROSTER, store};
+use super::desk::{Hands, ROSTER, day, store};
+
+/// Another station of the same programme.
+fn joined(h: &Hands, name: &str) -> Desk {
+    let file = h.folder.path().join(format!("for-{name}.packet"));
+    let options = DeskOptions {
+        today: Some(day()),
+        ..DeskOptions::default()
+    };
+    let first = Desk::open_to_read(&h.folder.path().join("store"), &Secret::None, &options);
+    first
+        .unwrap()
+        .write_packet(&file, &ForJoin::No, false)
+        .unwrap();
+    let how = (name, Secret::None, Kdf::test());
+    let dir = h.folder.path().join(name);
+    let (desk, _, _) = join(&dir, &file, &Secret::None, how, &options).unwrap();
+    desk
+}
+
+fn signs(desk: &mut Desk, child: &str, values: &[(Field, &str)]) {
+    let mut readings = Readings::default();
+    for (field, text) in values {
+        readings
+            .set(*field, text, ReadingContext::default())
+            .unwrap();
+    }
+    let request = SignRequest {
+        day: desk.days().unwrap()[0].id,
+        child_id: child.into(),
+        attempt: Attempt::First,
+        visit: new_visit_id(),
+        readings,
+        remarks: Vec::new(),
+    };
+    desk.sign(request).unwrap();
+}
+
+/// Reads what another station signed, and sits down again.
+fn reads(h: Hands, other: &Desk) -> Hands {
+    let Hands { clerk, folder, .. } = h;
+    clerk.keeper().flush().unwrap();
+    let mut desk = clerk.into_desk();
+    let file = folder.path().join("other.packet");
+    other.write_packet(&file, &ForJoin::No, true).unwrap();
+    desk.read_packet(&file, |_, _| {}).unwrap();
+    Hands::with(desk, folder)
+}
+
+const CHART: [(Field, &str); 4] = [
+    (Field::CorrectionWorn, "none"),
+    (Field::DistanceRight, "20/20"),
+    (Field::DistanceLeft, "20/63"),
+    (Field::Signs, "none"),
+];
+
+/// What another station signed neither hides a draft nor stands against this station's own part.
+#[test]
+fn a_station_adds_its_part_to_what_another_one_signed() {
+    let mut h = Hands::sit();
+    set(&mut h, "instrument", "yes", "");
+    h.sees("OKAFOR, Ada").typed("+1.00").enter();
+    let mut west = joined(&h, "west");
+    signs(&mut west, "Q-10482", &CHART);
+    signs(&mut west, "Q-10484", &CHART);
+    signs(
+        &mut west,
+        "Q-10488",
+        &[(Field::CorrectionWorn, "none"), (Field::Status, "absent")],
+    );
+    let mut h = reads(h, &west);
+    // The queue and the bench of a masked station tell nothing of it.
+    h.press(Key::alt('l'))
+        .sees("seen")
+        .sees("absent")
+        .misses("refer");
+    h.scan("Q-10482")
+        .sees("+1.00")
+        .sees("sphere")
+        .misses("signed ·")
+        .misses("20/63")
+        .misses("REFER");
+    h.press(Key::f(11)).typed("petit").sees("Petit, Léa");
+    h.sees("seen").misses("refer").key(KeyCode::Esc);
+    h.key(KeyCode::Tab).key(KeyCode::Tab);
+    h.typed("+1.25").enter().typed("0").enter().enter();
+    h.press(Key::ctrl('s')).sees("saved Okafor, Ada");
+    h.scan("Q-10482").sees("signed ·").sees("20/63");
+    // Without a draft its own group is empty.
+    h.scan("Q-10484")
+        .sees("sphere")
+        .misses("signed ·")
+        .sees("part of the visit");
+    h.typed("+0.50").enter().typed("0").enter().enter();
+    h.typed("+0.75").enter().typed("0").enter().enter();
+    h.press(Key::ctrl('s')).sees("saved Petit, Léa");
+    // Nobody tests a child who is absent.
+    h.scan("Q-10488").sees("signed ·");
+    let desk = h.clerk.into_desk();
+    let days = desk.days().unwrap();
+    for (child, sphere) in [("Q-10482", "+1.25"), ("Q-10484", "+0.75")] {
+        let visit = desk.visit(&days[0], child).unwrap().unwrap();
+        let get = |field| visit.readings.get(field).unwrap_or_default();
+        assert_eq!(get(Field::SphereLeft), sphere);
+        assert_eq!(get(Field::DistanceLeft), "20/63");
+        assert_eq!(visit.signatures.len(), 2);
+        assert!(visit.unsettled.is_empty());
+    }
+}
+
+/// A station for the whole screening sees what was signed, and adds the tests that were not done.
+#[test]
+fn a_station_of_all_tests_adds_those_that_nobody_signed() {
+    let mut h = Hands::sit();
+    let mut west = joined(&h, "west");
+    let glasses = (Field::CorrectionWorn, "none");
+    signs(&mut west, "Q-10482", &[glasses, (Field::Signs, "none")]);
+    signs(&mut west, "Q-10484", &CHART);
+    h.scan("Q-10484").typed("20").enter().typed("20");
+    let mut h = reads(h, &west);
+    h.scan("Q-10482")
+        .sees("Alt-r adds the tests")
+        .press(Key::alt('r'));
+    h.sees("what is signed stays")
+        .sees("none seen, signed")
+        .typed("20")
+        .enter()
+        .typed("20")
+        .sees("PASS")
+        .enter()
+        .sees("Enter signs this part: pass");
+    h.enter().sees("saved Okafor, Ada");
+    // One's own draft that says something else is shown; the store does not take it silently.
+    h.scan("Q-10484").misses("signed ·").press(Key::ctrl('s'));
+    h.sees("Petit, Léa").sees("is signed already");
+}
 
 /// Runs a command of the palette that has no key.
 fn palette(h: &mut Hands, words: &str) {
@@ -160,4 +299,53 @@ fn the_chart_on_the_wall_gives_letters_distance_and_lines() {
             "{wanted} in {recorded:?}"
         );
     }
+}
+
+/// On a critical-line day what is understood of one eye would tell the pass line before the other eye
+/// is entered.
+#[test]
+fn a_masked_station_on_a_critical_line_day_shows_what_was_typed() {
+    for (keys, shown) in [("20", "20"), ("40", "40"), ("+", "+"), ("-", "-")] {
+        let mut h = Hands::sit_at(ROSTER, AcuityMethod::CriticalLine);
+        set(&mut h, "", "yes", "");
+        h.typed(keys);
+        let untold = |h: &mut Hands| {
+            let screen = h.screen_at(120, 36);
+            assert!(screen.contains(&format!(" {shown}")), "{screen}");
+            h.misses("or better")
+                .misses("worse than")
+                .misses(">=")
+                .misses("critical line")
+                .misses("<20")
+                .misses("R↑")
+                .misses("R↓");
+        };
+        untold(&mut h);
+        h.app.linear = true;
+        untold(&mut h);
+        h.enter();
+        untold(&mut h);
+        h.app.linear = false;
+        untold(&mut h);
+        h.typed(keys).enter();
+        let screen = h.screen_at(120, 36);
+        assert!(
+            screen.contains("or better") || screen.contains("worse than"),
+            "{screen}"
+        );
+    }
+    let mut h = Hands::sit_at(ROSTER, AcuityMethod::CriticalLine);
+    set(&mut h, "", "yes", "");
+    h.typed("+").key(KeyCode::Backspace).misses("20/3");
+    // The arrows go on from what was typed.
+    h.typed("40").key(KeyCode::Down).sees("20/50");
+}
+
+#[test]
+fn a_discreet_screen_tells_no_outcome_where_a_visit_is_moved_to() {
+    let mut h = Hands::sit();
+    h.typed("20").enter().typed("63").press(Key::ctrl('s'));
+    h.sees("refer").press(Key::alt('i'));
+    h.press(Key::f(11)).typed("okaf").sees("Okafor, Ada");
+    h.sees("seen").misses("refer");
 }

@@ -73,3 +73,23 @@ fn it_stays_over_a_restart() {
     h.typed("f");
     h.again().sees("EMERGENCY").sees("white pupil, left eye");
 }
+
+/// A move gives the emergency another visit, a retraction takes it away: nobody was told by that.
+#[test]
+fn that_somebody_was_told_is_said_only_where_it_was_entered() {
+    let mut h = Hands::sit();
+    white_pupil(&mut h);
+    h.typed("f").scan("Q-10482").press(Key::f(11));
+    h.typed("Q-10484").enter().typed("wrong child").enter();
+    h.sees("moved to Petit, Léa: refer").misses("was told");
+    h.sees("Petit, Léa (1B): white pupil, left eye");
+    h.press(Key::ctrl('z')).typed("never seen").enter();
+    h.sees("is taken back")
+        .misses("was told")
+        .misses("EMERGENCY");
+    white_pupil(&mut h);
+    h.typed("f").press(Key::f(9)).typed("mother").enter();
+    h.enter()
+        .enter()
+        .sees("saved: who was told of the emergency, Petit, Léa");
+}

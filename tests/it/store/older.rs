@@ -108,6 +108,44 @@ fn the_copy_made_first_is_the_old_store() {
     assert_eq!(again.head().unwrap().whole(), HEAD);
 }
 
+/// A try that failed after the copy leaves it: the next one uses it again. A copy that is not whole,
+/// or that somebody brought up to date, is left alone.
+#[test]
+fn a_proved_copy_is_used_again() {
+    let (_temp, dir) = sample();
+    let old = fs::read(dir.join("store.db")).unwrap();
+    let back = || {
+        for name in ["store.db", "store.db-wal", "store.db-shm"] {
+            let _ = fs::remove_file(dir.join(name));
+        }
+        fs::write(dir.join("store.db"), &old).unwrap();
+    };
+    let copies = || {
+        let names = fs::read_dir(&dir).unwrap().map(|e| e.unwrap().file_name());
+        let mut copies: Vec<String> = names
+            .map(|name| name.into_string().unwrap())
+            .filter(|name| name.starts_with("copy-of"))
+            .collect();
+        copies.sort();
+        copies
+    };
+    for _ in 0..3 {
+        drop(Store::open(&dir, &secret(), WRITE).unwrap());
+        assert_eq!(copies(), ["copy-of-version-1"]);
+        back();
+    }
+    fs::write(dir.join("copy-of-version-1/store.db"), b"cut short").unwrap();
+    drop(Store::open(&dir, &secret(), WRITE).unwrap());
+    assert_eq!(copies(), ["copy-of-version-1", "copy-of-version-1-2"]);
+    back();
+    drop(Store::open(&dir.join("copy-of-version-1-2"), &secret(), WRITE).unwrap());
+    drop(Store::open(&dir, &secret(), WRITE).unwrap());
+    assert_eq!(copies().len(), 3, "the second one is of this version now");
+    let third = dir.join("copy-of-version-1-3");
+    let error = Store::open(&third, &secret(), Access::ReadOnly).unwrap_err();
+    assert_eq!(error.kind(), ErrorKind::Older);
+}
+
 #[test]
 fn reading_only_says_what_to_do_and_changes_nothing() {
     let (_temp, dir) = sample();

@@ -1,9 +1,10 @@
 //! Typing into the bench, and moving about on it.
 
 use super::{Before, Bench, Checkpoint, Spot, State};
-use crate::domain::acuity::{Line, Step};
+use crate::domain::acuity::{Acuity, Line, Step};
 use crate::domain::codes::AcuityMethod;
 use crate::domain::field::Field;
+use crate::domain::readings::{ReadingContext, Readings};
 use crate::tui::day::kind::{self, AcuityOf, Kind};
 use crate::tui::day::path::Group;
 
@@ -65,6 +66,26 @@ impl Bench {
         match self.raws.iter_mut().find(|(f, _)| *f == field) {
             Some((_, raw)) => text.clone_into(raw),
             None => self.raws.push((field, text.to_owned())),
+        }
+    }
+
+    /// Says whether a value is shown as it was typed: what is understood of it may tell the pass line,
+    /// which is kept back.
+    pub fn shows_as_typed(&self, field: Field) -> bool {
+        self.keeps_back()
+            && kind::kind(field) == Kind::Acuity
+            && !self.raw(field).starts_with("NT:")
+    }
+
+    /// Returns what was typed into a field, also where one key stood for the pass line that is kept
+    /// back.
+    pub fn typed(&self, field: Field) -> &str {
+        let raw = self.raw(field);
+        let pass = self.pass_line.as_ref().filter(|_| self.keeps_back());
+        match pass.map(|pass| pass.line.to_string()) {
+            Some(line) if raw.strip_prefix(">=") == Some(&line) => "+",
+            Some(line) if raw.strip_prefix('<') == Some(&line) => "-",
+            _ => raw,
         }
     }
 
@@ -191,7 +212,7 @@ impl Bench {
         }
         let text = match kind::kind(field) {
             Kind::Acuity | Kind::Text if !self.raw(field).starts_with("NT:") => {
-                let mut raw = self.raw(field).to_owned();
+                let mut raw = self.typed(field).to_owned();
                 raw.pop();
                 raw
             }
@@ -244,11 +265,26 @@ impl Bench {
         }
     }
 
+    /// Returns the line that was typed, whatever the method of the day makes of it.
+    fn line_typed(&self, field: Field) -> Option<Line> {
+        let mut plain = Readings::default();
+        let context = ReadingContext {
+            bare: Some(self.given.bare),
+            critical_line: None,
+        };
+        plain.set(field, self.raw(field), context).ok()?;
+        match plain.acuity_of(field)?.acuity()? {
+            Acuity::Read { line, .. } => Some(line),
+            _ => None,
+        }
+    }
+
     /// The first arrow starts from the pass line: down stands on it, up on the line above it. Where
     /// the chart is known the arrows go along its own lines. A masked station begins at the line that
     /// every chart has, so that the first arrow tells nothing.
     fn ladder_line(&self, field: Field, better: bool) -> Line {
         let here = match self.state(field) {
+            State::Valid { .. } if self.keeps_back() => self.line_typed(field),
             State::Valid { .. } => self
                 .readings
                 .acuity_of(field)

@@ -17,7 +17,7 @@ pub fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, S
     let plain = Style::new();
     if here && matches!(kind::kind(field), Kind::Acuity | Kind::Text) && !raw.starts_with("NT:") {
         let rest = if raw.is_empty() { "____" } else { "" };
-        return (format!("{}{rest}", safe(raw)), theme.focus());
+        return (format!("{}{rest}", safe(bench.typed(field))), theme.focus());
     }
     let focus = |style| if here { theme.focus() } else { style };
     if let Some(differing) = bench.unsettled(field) {
@@ -29,6 +29,10 @@ pub fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, S
     }
     match bench.state(field) {
         State::Invalid { .. } => (format!("{} ?", safe(raw)), theme.error()),
+        State::Empty if bench.signed_elsewhere(field).is_some() => {
+            let words = bench.signed_elsewhere(field).unwrap_or_default();
+            (format!("{words}, signed"), focus(theme.muted()))
+        }
         State::Empty => match field {
             Field::CorrectionWorn => match (bench.roster_correction(), bench.child.wears_glasses) {
                 (Some(Correction::None), _) => ("owns no glasses (roster)".into(), focus(plain)),
@@ -55,6 +59,9 @@ pub fn cell(field: Field, bench: &Bench, here: bool, theme: Theme) -> (String, S
             _ if here => ("____".into(), theme.focus()),
             _ => ("·".into(), theme.muted()),
         },
+        State::Valid { .. } if bench.shows_as_typed(field) => {
+            (safe(bench.typed(field)), focus(theme.strong()))
+        }
         State::Valid { .. } => (
             value_words(&bench.readings, field, raw),
             focus(theme.strong()),
