@@ -398,6 +398,9 @@ mod tests {
         let (mut desk, _) = init(dir, new, &DeskOptions::default()).expect("a store");
         desk.add_screener("JI", "J. Imani").expect("a screener");
         desk.add_site("QE", "Quillmere East").expect("a site");
+        let on = |m, d| chrono::NaiveDate::from_ymd_opt(2026, m, d).expect("a date");
+        desk.add_term("2026A", "Autumn 2026", on(8, 1), on(12, 31))
+            .expect("a term");
         desk
     }
 
@@ -430,7 +433,8 @@ mod tests {
         }
         drop(to_store);
         serve(clerk, &jobs, &answers, &AtomicBool::new(true));
-        assert_eq!(unseen(&from_store).len(), 1, "the retraction is refused");
+        let refused = unseen(&from_store);
+        assert_eq!(refused.len(), 1, "only the retraction: {refused:?}");
         let options = crate::actions::DeskOptions::default();
         let secret = crate::actions::Secret::None;
         let desk = Desk::open(&folder.path().join("store"), &secret, &options).expect("a desk");
