@@ -181,8 +181,14 @@ fn bare_inserts(dir: &Path, to: &Path, n: usize) -> Duration {
     };
     let source = open(&dir.join("store.db"));
     let mut bare = open(to);
-    bare.execute_batch(include_str!("../migrations/0001_entries.sql"))
-        .expect("tables");
+    for sql in [
+        include_str!("../migrations/0001_entries.sql"),
+        include_str!("../migrations/0002_stations.sql"),
+        include_str!("../migrations/0003_packets.sql"),
+        include_str!("../migrations/0004_referrals.sql"),
+    ] {
+        bare.execute_batch(sql).expect("tables");
+    }
     let triggers: Vec<String> = bare
         .prepare("SELECT name FROM sqlite_schema WHERE type = 'trigger'")
         .and_then(|mut s| s.query_map([], |r| r.get(0))?.collect())
