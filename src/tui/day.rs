@@ -141,6 +141,9 @@ impl Day {
                 name(&child.family_name, &child.given_name)
             ));
         }
+        if let Some(waiting) = self.unsaved_emergency(&child.child_id) {
+            return Done::refused(waiting);
+        }
         let mut effects = self.keep_draft();
         self.queue.select(&child.child_id);
         if child.state != crate::actions::QueueState::ToCome {
@@ -153,6 +156,17 @@ impl Day {
         self.bench = Some(Bench::new(session, &self.info, child, draft));
         self.list_focus = false;
         Done::effects(effects)
+    }
+
+    /// Says in words that an emergency on the bench is not saved: no other child comes before it is.
+    fn unsaved_emergency(&self, next: &str) -> Option<String> {
+        let bench = self.bench.as_ref()?;
+        let child = &bench.child;
+        let open = !bench.is_signed() && !self.saving.contains(&child.child_id);
+        (bench.is_emergency() && open && child.child_id != next).then(|| {
+            let name = name(&child.family_name, &child.given_name);
+            format!("an emergency of {name} is not saved: Ctrl-S saves it, F5 changes the signs")
+        })
     }
 
     /// Keeps what stands on the bench as the child's draft.
@@ -209,8 +223,12 @@ impl Day {
         if bench.is_signed() {
             return Done::refused("this visit is signed: Ctrl-E corrects a value, with the reason");
         }
-        bench.type_char(c);
-        Done::effects(self.keep_draft())
+        let taken = bench.type_char(c);
+        let refused = (!taken && c.is_ascii_digit()).then(|| bench.no_number_here());
+        Done {
+            effects: self.keep_draft(),
+            said: refused.map(|words| (true, words)),
+        }
     }
 
     /// Takes a pasted text as one edit.

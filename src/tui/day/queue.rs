@@ -11,6 +11,7 @@ use ratatui::widgets::Paragraph;
 
 use crate::actions::{DayChild, QueueState};
 use crate::domain::codes::Attempt;
+use crate::domain::outcome::OutcomeKind;
 use crate::domain::text::folded;
 use crate::tui::text::{cut, ends, fit, name, safe};
 use crate::tui::theme::Theme;
@@ -348,10 +349,11 @@ impl Queue {
 
 /// Says whether a child stays in the short list: to come, or to come back to today.
 fn is_open(state: QueueState) -> bool {
-    !matches!(
-        state,
-        QueueState::Signed(_) | QueueState::OptedOut | QueueState::UnderCare
-    )
+    match state {
+        QueueState::Signed(kind) => kind == OutcomeKind::Incomplete,
+        QueueState::OptedOut | QueueState::UnderCare => false,
+        _ => true,
+    }
 }
 
 fn heading(child: &DayChild) -> String {

@@ -191,3 +191,27 @@ fn the_history_of_the_value_under_the_cursor_is_on_one_key() {
         .sees("wrong row")
         .sees("corrected");
 }
+
+#[test]
+fn a_number_on_a_choice_or_on_the_line_that_signs_says_that_it_is_not_taken() {
+    let mut h = Hands::sit();
+    h.typed("20")
+        .enter()
+        .typed("20")
+        .enter()
+        .sees("Enter signs");
+    h.typed("2")
+        .sees("a number is not taken on the line that signs")
+        .misses("saved Okafor");
+    let mut h = Hands::sit();
+    h.scan("Q-10482").press(Key::alt('t'));
+    h.misses("takes no number");
+}
+
+#[test]
+fn a_child_signed_incomplete_stays_in_the_list() {
+    let mut h = Hands::sit();
+    h.typed("20").enter().press(Key::ctrl('s'));
+    h.sees("saved Okafor, Ada: incomplete");
+    h.sees("incomplete").sees("Okafor, Ada");
+}

@@ -93,3 +93,15 @@ fn that_somebody_was_told_is_said_only_where_it_was_entered() {
         .enter()
         .sees("saved: who was told of the emergency, Petit, Léa");
 }
+
+#[test]
+fn an_emergency_that_is_not_saved_holds_its_child_on_the_bench() {
+    let mut h = Hands::sit();
+    white_pupil(&mut h);
+    h.key(KeyCode::Esc).sees("is not saved yet");
+    h.press(Key::ctrl('n'))
+        .sees("an emergency of Okafor, Ada is not saved: Ctrl-S saves it")
+        .sees("OKAFOR, Ada");
+    h.press(Key::ctrl('s')).sees("saved Okafor, Ada: refer");
+    h.sees("EMERGENCY");
+}

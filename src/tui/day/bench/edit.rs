@@ -69,6 +69,26 @@ impl Bench {
         }
     }
 
+    /// Says where a number that was typed here would have gone: nowhere.
+    pub fn no_number_here(&self) -> String {
+        match self.field() {
+            None => "a number is not taken on the line that signs: ↑ goes back".to_owned(),
+            Some(field) => {
+                let keys: Vec<String> = match kind::kind(field) {
+                    Kind::Choice(choices) => {
+                        choices.iter().map(|(k, _, _)| k.to_string()).collect()
+                    }
+                    _ => vec!["n".to_owned()],
+                };
+                format!(
+                    "{} takes no number: {}, or Tab to the next field",
+                    field.title(),
+                    keys.join(", ")
+                )
+            }
+        }
+    }
+
     /// Says whether a value is shown as it was typed: what is understood of it may tell the pass line,
     /// which is kept back.
     pub fn shows_as_typed(&self, field: Field) -> bool {
