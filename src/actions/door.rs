@@ -118,7 +118,7 @@ impl Desk {
         let roster = self.roster_of(day)?;
         let mut out = Vec::new();
         for stored in self.read().day_children(&key_of(day), since)? {
-            let earlier = stored.earlier.clone();
+            let earlier = self.all_now(stored.earlier.clone())?;
             let child = self.child_of_day(stored, day)?;
             let door = door(protocol, &child, &earlier, day.date);
             let mut remarks = remarks(&child, &earlier, door, day.date);

@@ -6,7 +6,7 @@ mod letters;
 mod lost;
 mod steps;
 
-use std::collections::HashMap;
+use std::collections::{HashMap, HashSet};
 
 use chrono::NaiveDate;
 use sha2::{Digest, Sha256};
@@ -22,7 +22,7 @@ use crate::domain::outcome::{OutcomeKind, Urgency};
 use crate::domain::readings::ReadingContext;
 use crate::domain::referral::{FollowUp, LetterKind, Opened, Standing, State, Step, standing};
 use crate::store::new_id;
-use crate::store::read::ReferralRecord;
+use crate::store::read::{ReferralRecord, VisitNow};
 use crate::store::row::{Referral, StepEntry};
 
 pub use exam::ExamKept;
@@ -38,6 +38,8 @@ pub struct ReferralView {
     pub id: Uuid,
     /// What is told over the telephone.
     pub code: FormCode,
+    /// Codes that stations printed before their parts were put together: they mean it too.
+    pub other_codes: Vec<FormCode>,
     /// The district's own id.
     pub child_id: String,
     /// Family name.
@@ -142,6 +144,11 @@ impl ReferralView {
         missing
     }
 
+    /// Says whether a code means this referral.
+    pub fn has_code(&self, code: FormCode) -> bool {
+        self.code == code || self.other_codes.contains(&code)
+    }
+
     /// Returns the newest report, which counts.
     pub fn report(&self) -> Option<&ExamReport> {
         self.reports.last()
@@ -207,10 +214,8 @@ impl Desk {
         let settings = self.follow_up()?;
         let screeners = self.screener_names()?;
         let mut list = Vec::new();
-        for record in self.read().referrals()? {
-            if is_referral(&record) {
-                list.push(self.viewed(record, &settings, &screeners)?);
-            }
+        for record in self.referral_records()? {
+            list.push(self.viewed(record, &settings, &screeners)?);
         }
         list.sort_by_cached_key(ReferralView::place);
         Ok(list)
@@ -222,6 +227,7 @@ impl Desk {
         let screeners = self.screener_names()?;
         let mut list = Vec::new();
         for record in self.read().referrals_of(child_id)? {
+            let record = self.record_now(record)?;
             if is_referral(&record) {
                 list.push(self.viewed(record, &settings, &screeners)?);
             }
@@ -232,9 +238,10 @@ impl Desk {
 
     /// Returns a referral by its id.
     pub fn referral(&self, id: Uuid) -> Result<ReferralView> {
-        let record = self
-            .read()
-            .referral(id)?
+        let record = self.read().referral(id)?;
+        let record = record
+            .map(|record| self.record_now(record))
+            .transpose()?
             .filter(is_referral)
             .ok_or_else(|| ActionError::bad("there is no such referral"))?;
         self.viewed(record, &self.follow_up()?, &self.screener_names()?)
@@ -256,7 +263,7 @@ impl Desk {
         };
         match FormCode::parse(text) {
             Ok(code) => pick(
-                list.into_iter().filter(|r| r.code == code).collect(),
+                list.into_iter().filter(|r| r.has_code(code)).collect(),
                 ActionError::bad(format!("no referral of this store has the code {code}")).hint(
                     "was the form from another programme? find the child: twoline child find",
                 ),
@@ -378,6 +385,49 @@ impl Desk {
         self.referral(id)
     }
 
+    /// Returns every referral as the store holds it, with what the readings of each visit say now.
+    fn referral_records(&self) -> Result<Vec<ReferralRecord>> {
+        let mut records = Vec::new();
+        for record in self.read().referrals()? {
+            records.push(self.record_now(record)?);
+        }
+        let known: HashSet<Uuid> = records.iter().map(|r| r.referral_id).collect();
+        // What the last signature does not refer. A visit in conflict is on the worklist alone: no
+        // letter goes out before it is settled.
+        for (child, visit) in self.referred_now()? {
+            if !known.contains(&visit.visit_id) {
+                records.push(ReferralRecord {
+                    referral_id: visit.visit_id,
+                    child,
+                    visit: Some(visit),
+                    row: None,
+                    steps: Vec::new(),
+                    reports: Vec::new(),
+                });
+            }
+        }
+        records.retain(is_referral);
+        Ok(records)
+    }
+
+    fn record_now(&self, mut record: ReferralRecord) -> Result<ReferralRecord> {
+        record.visit = record.visit.map(|v| self.as_now(v)).transpose()?;
+        Ok(record)
+    }
+
+    /// Returns the reasons of a visit's outcome in words: as signed last, or of what its readings say
+    /// now where several signatures stand; of values that differ that they are to be settled.
+    pub(super) fn why_now(&self, visit: &VisitNow) -> Result<String> {
+        if let Some(together) = self.together(visit)? {
+            return Ok(together.why());
+        }
+        let signed = self.read().outcomes(visit.visit_id)?;
+        Ok(signed
+            .first()
+            .map(|o| o.reasons.clone())
+            .unwrap_or_default())
+    }
+
     fn viewed(
         &self,
         record: ReferralRecord,
@@ -411,12 +461,7 @@ impl Desk {
             },
         };
         let why = match (&visit, &row) {
-            (Some(visit), _) => self
-                .read()
-                .outcomes(visit.visit_id)?
-                .first()
-                .map(|o| o.reasons.clone())
-                .unwrap_or_default(),
+            (Some(visit), _) => self.why_now(visit)?,
             (None, Some(row)) => row.reason.clone(),
             (None, None) => String::new(),
         };
@@ -427,6 +472,16 @@ impl Desk {
             .last()
             .filter(|r| r.prescribes_glasses())
             .and_then(|r| r.examined_on);
+        let other_codes = match &visit {
+            Some(visit) if visit.parts > 1 => self
+                .read()
+                .parts_of(referral_id)?
+                .into_iter()
+                .filter(|id| *id != referral_id)
+                .map(code_of)
+                .collect(),
+            _ => Vec::new(),
+        };
         let mut standing = standing(&opened, &plain, glasses_from, settings);
         let outcome_now = visit
             .as_ref()
@@ -440,6 +495,7 @@ impl Desk {
         Ok(ReferralView {
             id: referral_id,
             code: code_of(referral_id),
+            other_codes,
             age: child
                 .dob
                 .and_then(|born| AgeMonths::between(born, self.today)),
@@ -489,7 +545,7 @@ impl Desk {
 fn near_words(list: &[ReferralView], written: &str) -> Vec<String> {
     let near = FormCode::near(written);
     list.iter()
-        .filter(|r| near.contains(&r.code))
+        .filter(|r| near.iter().any(|code| r.has_code(*code)))
         .map(with_code)
         .collect()
 }

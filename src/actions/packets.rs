@@ -7,7 +7,8 @@ use super::desk::{Desk, DeskOptions};
 use super::error::{ActionError, Result};
 use super::setup::named;
 use super::united::unsettled;
-use super::views::FoundChild;
+use super::views::{FoundChild, OpenUrgent};
+use super::visit_rows::{judged, tries_of};
 use crate::clock;
 use crate::store::read::ChildNow;
 use crate::store::row::SameChild;
@@ -64,9 +65,44 @@ impl Desk {
     }
 
     /// Takes over what a packet holds and this store does not; `progress` gets entries done and in all.
-    pub fn read_packet(&mut self, from: &Path, progress: impl FnMut(u64, u64)) -> Result<Merged> {
+    ///
+    /// Emergencies that only the readings of several stations together make are raised then, in a
+    /// transaction of this store; they are returned beside what the packet brought.
+    pub fn read_packet(
+        &mut self,
+        from: &Path,
+        progress: impl FnMut(u64, u64),
+    ) -> Result<(Merged, Vec<OpenUrgent>)> {
         let author = self.author();
-        Ok(self.store.read_packet(from, &author, progress)?)
+        let mut merged = self.store.read_packet(from, &author, progress)?;
+        let raised = self.raise_united()?;
+        if !raised.is_empty() {
+            merged.head = self.head()?;
+        }
+        Ok((merged, raised))
+    }
+
+    /// Raises the emergencies of visits of several parts that have no running line yet.
+    fn raise_united(&mut self) -> Result<Vec<OpenUrgent>> {
+        let mut rows = Vec::new();
+        for (_, visit) in self.read().several()? {
+            let Some(together) = self.together(&visit)? else {
+                continue;
+            };
+            let (now, day) = self.visit_and_day(visit.visit_id)?;
+            let child = self.child_on(&day, &now)?;
+            let readings = judged(&tries_of(&self.read().readings(visit.visit_id)?)?);
+            rows.extend(self.emergency(visit.visit_id, &child, &readings, &together.now)?);
+        }
+        if rows.is_empty() {
+            return Ok(Vec::new());
+        }
+        let author = self.author();
+        self.store
+            .append(&author, |tx| rows.iter().try_for_each(|row| tx.add(row)))?;
+        let mut open = self.urgent_open()?;
+        open.retain(|u| rows.iter().any(|row| row.visit_id == Some(u.visit)));
+        Ok(open)
     }
 
     /// Returns in words what differs between stations and nobody has settled, a line each.

@@ -17,18 +17,23 @@ impl Desk {
     /// Returns what the visit that asked for a rescreen leaves to it.
     pub(super) fn before(&self, visit: &VisitNow) -> Result<Option<Before>> {
         let read = self.read();
-        let Some(signed) = read.outcomes(visit.visit_id)?.into_iter().next() else {
-            return Ok(None);
+        // What one station failed did not pass because another one signed later.
+        let (criteria, unknown) = if let Some(together) = self.together(visit)? {
+            (together.now.criteria, together.now.unknown)
+        } else {
+            let Some(signed) = read.outcomes(visit.visit_id)?.into_iter().next() else {
+                return Ok(None);
+            };
+            let outcome = stored_outcome(&signed);
+            (outcome.criteria, outcome.unknown)
         };
-        let outcome = stored_outcome(&signed);
         let readings = judged(&tries_of(&read.readings(visit.visit_id)?)?);
         let mut passed = Readings::default();
         for test in ScreeningTest::ALL {
             // A test of which anything failed or could not be answered is done again, whole.
-            let open = outcome
-                .criteria
+            let open = criteria
                 .iter()
-                .chain(&outcome.unknown)
+                .chain(&unknown)
                 .any(|id| test_of(&self.library, id).is_none_or(|t| t == Some(*test)));
             if !open {
                 copy(&readings, &mut passed, test.fields());
@@ -36,7 +41,7 @@ impl Desk {
         }
         Ok(Some(Before {
             on: visit.screened_on,
-            failed: outcome.criteria,
+            failed: criteria,
             passed,
         }))
     }

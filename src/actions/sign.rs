@@ -61,7 +61,8 @@ impl Desk {
             }
             Some(more) if !more.is_empty() => {
                 let ids = (whole, request.visit);
-                let rows = self.further_part(&day, &child, ids, more)?;
+                let mut rows = self.further_part(&day, &child, ids, more)?;
+                rows.remark(&request.remarks);
                 self.write_visits(vec![rows])?;
                 return self.signed(&day, &request.child_id, whole);
             }
@@ -76,6 +77,7 @@ impl Desk {
         }
         tries.push(readings);
         let mut rows = self.further_try(&day, &child, visit.visit_id, &tries)?;
+        rows.remark(&self.remarks_of(visit.visit_id, &day, &child)?);
         rows.remark(&request.remarks);
         self.write_visits(vec![rows])?;
         self.signed(&day, &request.child_id, visit.visit_id)
@@ -142,6 +144,8 @@ impl Desk {
         }
         let there = new_id();
         let mut rows = self.new_visit(&day, &to, there, &self.tries(visit)?)?;
+        let from = self.child_on(&day, &now)?;
+        rows.remark(&self.remarks_of(visit, &day, &from)?);
         if let Some(signed) = self.read().outcomes(visit)?.first() {
             rows.entered_late(signed.late);
         }

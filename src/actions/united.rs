@@ -11,28 +11,29 @@ use uuid::Uuid;
 use super::days::{day_child, key_of};
 use super::desk::Desk;
 use super::error::{ActionError, Result};
-use super::judging::preview_alternatives;
+use super::judging::{preview, preview_alternatives};
 use super::views::{DayChild, DayInfo, QueueState, Signed, Together, Unsettled};
 use super::visit_rows::{judged, tries_of};
 use crate::domain::field::Field;
 use crate::domain::outcome::{DecidedBy, Outcome, OutcomeKind};
 use crate::domain::readings::Readings;
-use crate::rules::explain;
+use crate::rules::{CONFLICT, explain};
 use crate::store::read::{ChildNow, DayChild as StoredChild, ReadingNow, VisitNow};
 
-/// How many combinations of unsettled values are judged; beyond it they all count as unknown.
+/// How many combinations of unsettled values are judged; beyond it each value is judged by itself.
 const COMBINATIONS: usize = 64;
 
 /// What an unsettled visit may have been, with whether all combinations are there.
-pub(super) struct Alternatives {
+struct Alternatives {
     /// The judged readings of each combination.
-    pub(super) readings: Vec<Readings>,
-    /// Whether there were too many, so that only what is settled is here.
-    pub(super) too_many: bool,
+    readings: Vec<Readings>,
+    /// Whether there were too many, so that only what is settled is here, first by itself and then
+    /// with each unsettled value alone.
+    too_many: bool,
 }
 
 /// Returns the readings that a visit may consist of: one for each combination of values that differ.
-pub(super) fn alternatives(present: &[ReadingNow]) -> Result<Alternatives> {
+fn alternatives(present: &[ReadingNow]) -> Result<Alternatives> {
     let mut choices: BTreeMap<(i64, Field), Vec<&ReadingNow>> = BTreeMap::new();
     for reading in present.iter().filter(|r| r.conflict) {
         let values = choices.entry((reading.try_no, reading.field)).or_default();
@@ -46,8 +47,17 @@ pub(super) fn alternatives(present: &[ReadingNow]) -> Result<Alternatives> {
         .try_fold(1usize, |n, values| n.checked_mul(values.len()))
         .filter(|n| *n <= COMBINATIONS);
     let Some(combinations) = combinations else {
+        let mut readings = vec![judged(&tries_of(&settled)?)];
+        for value in choices.into_values().flatten() {
+            let mut chosen = settled.clone();
+            chosen.push(ReadingNow {
+                conflict: false,
+                ..value.clone()
+            });
+            readings.push(judged(&tries_of(&chosen)?));
+        }
         return Ok(Alternatives {
-            readings: vec![judged(&tries_of(&settled)?)],
+            readings,
             too_many: true,
         });
     };
@@ -86,6 +96,45 @@ pub(super) fn unsettled(present: &[ReadingNow]) -> Vec<Unsettled> {
             values,
         })
         .collect()
+}
+
+/// Returns what stands where there were too many combinations to judge them all: what is settled
+/// refers, or nothing is known; the soonest urgency and dates of any value stand.
+fn beyond_the_bound(any: Outcome, settled: Outcome) -> Outcome {
+    let mut out = if settled.kind == OutcomeKind::Refer {
+        Outcome {
+            urgency: any.urgency,
+            act_within_days: any.act_within_days,
+            act_by: any.act_by,
+            due_on: any.due_on,
+            unknown: any.unknown,
+            ..settled
+        }
+    } else {
+        Outcome {
+            kind: OutcomeKind::Incomplete,
+            decided_by: DecidedBy::Conflict,
+            criteria: Vec::new(),
+            risks: Vec::new(),
+            qualifiers: vec!["too many values that nobody has settled".to_owned()],
+            ..any
+        }
+    };
+    if !out.unknown.iter().any(|word| word == CONFLICT) {
+        out.unknown.insert(0, CONFLICT.to_owned());
+    }
+    out
+}
+
+/// Says whether a visit is one to act on: it refers, or its values differ and one of them has an
+/// urgency.
+fn may_refer(visit: &VisitNow) -> bool {
+    visit.kind == Some(OutcomeKind::Refer) || (in_conflict(visit) && visit.urgency.is_some())
+}
+
+/// Says whether what a visit came to is open because its values differ.
+fn in_conflict(visit: &VisitNow) -> bool {
+    visit.decided_by.as_deref() == Some(DecidedBy::Conflict.word())
 }
 
 impl Desk {
@@ -153,14 +202,13 @@ impl Desk {
     ) -> Result<Option<Outcome>> {
         let alternatives = alternatives(present)?;
         let outcome = preview_alternatives(&self.library, day, child, &alternatives.readings);
-        Ok(outcome.map(|mut outcome| {
-            if alternatives.too_many {
-                outcome.kind = OutcomeKind::Incomplete;
-                outcome.decided_by = DecidedBy::Conflict;
-                outcome.unknown.insert(0, crate::rules::CONFLICT.to_owned());
-            }
-            outcome
-        }))
+        if !alternatives.too_many {
+            return Ok(outcome);
+        }
+        let settled = preview(&self.library, day, child, &alternatives.readings[0]);
+        Ok(outcome
+            .zip(settled)
+            .map(|(outcome, settled)| beyond_the_bound(outcome, settled)))
     }
 
     /// Returns a visit with what its readings say now in the place of what was signed last.
@@ -171,8 +219,13 @@ impl Desk {
         })
     }
 
+    /// Returns visits with what their readings say now.
+    pub(super) fn all_now(&self, visits: Vec<VisitNow>) -> Result<Vec<VisitNow>> {
+        visits.into_iter().map(|visit| self.as_now(visit)).collect()
+    }
+
     /// Returns the child of a visit as that day knew it.
-    fn child_on(&self, day: &DayInfo, visit: &VisitNow) -> Result<DayChild> {
+    pub(super) fn child_on(&self, day: &DayInfo, visit: &VisitNow) -> Result<DayChild> {
         let child = self.day_child(day, &visit.child_id)?;
         Ok(DayChild {
             attempt: visit.attempt,
@@ -183,13 +236,7 @@ impl Desk {
     /// Returns a child of a day as it stands, from what the store knows: visits of several parts
     /// count as what they say now.
     pub(super) fn child_of_day(&self, mut stored: StoredChild, day: &DayInfo) -> Result<DayChild> {
-        if stored.earlier.iter().any(VisitNow::is_several) {
-            stored.earlier = stored
-                .earlier
-                .into_iter()
-                .map(|visit| self.as_now(visit))
-                .collect::<Result<_>>()?;
-        }
+        stored.earlier = self.all_now(stored.earlier)?;
         let last = stored.visits.last().filter(|v| v.is_several()).cloned();
         let Some(last) = last else {
             return self.with_before(stored, day);
@@ -215,10 +262,10 @@ impl Desk {
     }
 
     /// Returns who is referred now, by the date to act by; visits of several parts count as what they
-    /// say now.
+    /// say now, and those whose values differ are here where one of the values refers.
     pub(super) fn referred_now(&self) -> Result<Vec<(ChildNow, VisitNow)>> {
         let mut out = self.read().referred()?;
-        self.replace_several(&mut out, |v| v.kind == Some(OutcomeKind::Refer))?;
+        self.replace_several(&mut out, may_refer)?;
         out.sort_by_key(|(_, v)| (v.act_by.is_none(), v.act_by, v.screened_on, v.visit_id));
         Ok(out)
     }
@@ -249,7 +296,7 @@ impl Desk {
             if !belongs(&now) {
                 continue;
             }
-            let refers = now.kind == Some(OutcomeKind::Refer);
+            let refers = may_refer(&now);
             let later = |v: &VisitNow| {
                 (v.screened_on, v.attempt) > (now.screened_on, now.attempt)
                     && (v.kind != Some(OutcomeKind::Incomplete) || v.due_on.is_some())

@@ -9,9 +9,10 @@ use crate::domain::acuity::Line;
 use crate::domain::age::{AgeMonths, Grade};
 use crate::domain::codes::{AcuityMethod, Attempt, Consent, History};
 use crate::domain::field::Field;
-use crate::domain::outcome::{Outcome, OutcomeKind, RiskKind, Urgency};
+use crate::domain::outcome::{DecidedBy, Outcome, OutcomeKind, RiskKind, Urgency};
 use crate::domain::readings::Readings;
 use crate::domain::school_calendar::SchoolCalendar;
+use crate::rules::explain;
 
 /// A screening day: one site, one date, one protocol.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -153,6 +154,22 @@ pub struct Together {
 }
 
 impl Together {
+    /// Returns the reasons of what it is now in words; of values that differ that they are to be
+    /// settled, where they decide.
+    pub fn why(&self) -> String {
+        let mut why = String::new();
+        if self.now.decided_by == DecidedBy::Conflict {
+            let fields: Vec<&str> = self.unsettled.iter().map(|u| u.field.title()).collect();
+            why = format!("in conflict: settle it ({})", fields.join(", "));
+        }
+        let mut reasons = String::new();
+        explain::reasons_text(&self.now, &mut reasons);
+        if !why.is_empty() && !reasons.is_empty() {
+            why.push_str("; ");
+        }
+        why + &reasons
+    }
+
     /// Says in words what was signed and what it is now; nothing where the two are the same and
     /// nothing differs.
     pub fn words(&self) -> Option<String> {

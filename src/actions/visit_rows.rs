@@ -3,6 +3,7 @@
 mod parts;
 mod tries;
 
+use sha2::{Digest, Sha256};
 use uuid::Uuid;
 
 use super::desk::Desk;
@@ -13,7 +14,7 @@ use super::views::{DayChild, DayInfo, StoredOutcome};
 use crate::clock;
 use crate::domain::codes::AcuityMethod;
 use crate::domain::field::{Field, FieldError};
-use crate::domain::outcome::{Answer, Outcome, RiskKind, Urgency};
+use crate::domain::outcome::{Answer, Open, Outcome, RiskKind, Urgency};
 use crate::domain::readings::{ReadingContext, Readings};
 use crate::rules::explain;
 use crate::store::read::ReadingNow;
@@ -268,7 +269,8 @@ impl Desk {
             Some(signed) => signed.late,
             None => self.is_late(&day),
         };
-        Ok(VisitRows {
+        let remarks = self.remarks_of(now.visit_id, &day, &child)?;
+        let mut rows = VisitRows {
             visit: now.visit_id,
             new: None,
             readings: Vec::new(),
@@ -277,7 +279,9 @@ impl Desk {
             raise: self.emergency(now.visit_id, &child, &readings, &outcome)?,
             rules: self.rules_used(&day),
             reason: Some(reason),
-        })
+        };
+        rows.remark(&remarks);
+        Ok(rows)
     }
 
     /// Returns the tries of a visit, oldest first, as typed readings.
@@ -291,7 +295,7 @@ impl Desk {
 
     /// Returns the running line that an emergency raises, unless this visit has one that still runs
     /// or that was answered for the same signs.
-    fn emergency(
+    pub(super) fn emergency(
         &self,
         visit: Uuid,
         child: &DayChild,
@@ -315,7 +319,7 @@ impl Desk {
         let at = self.moment();
         Ok(Some(UrgentAction {
             id: new_id(),
-            urgent_id: new_id(),
+            urgent_id: line_of(parts.iter().min().copied().unwrap_or(visit), &signs),
             step: "raised".to_owned(),
             child_id: child.child_id.clone(),
             visit_id: Some(visit),
@@ -478,9 +482,11 @@ pub(super) fn take_back(tx: &mut Tx<'_>, visit: Uuid, reason: &str) -> crate::st
         tx.supersede::<row::Outcome>(&[outcome], None, reason)?;
     }
     let parts = tx.read().parts_of(visit)?;
-    for urgent in tx.read().urgent_open()? {
-        if urgent.raised.visit_id.is_some_and(|id| parts.contains(&id)) {
-            tx.supersede::<UrgentAction>(&[urgent.raised.id], None, reason)?;
+    let mut open = tx.read().urgent_open()?;
+    open.retain(|u| u.raised.visit_id.is_some_and(|id| parts.contains(&id)));
+    for raised in tx.read().urgent_of(visit)? {
+        if open.iter().any(|u| u.raised.urgent_id == raised.urgent_id) {
+            tx.supersede::<UrgentAction>(&[raised.id], None, reason)?;
         }
     }
     let Some(now) = tx.read().visit(visit)? else {
@@ -497,6 +503,19 @@ pub(super) fn take_back(tx: &mut Tx<'_>, visit: Uuid, reason: &str) -> crate::st
         tx.supersede::<Visit>(&visits, None, reason)?;
     }
     Ok(())
+}
+
+/// Returns the id of the running line of a visit and its signs: stations that each raise it after a
+/// merge mean the same one.
+fn line_of(visit: Uuid, signs: &str) -> Uuid {
+    let hash = Sha256::new()
+        .chain_update(b"twoline-urgent\0")
+        .chain_update(visit.as_bytes())
+        .chain_update(signs)
+        .finalize();
+    let mut first = [0; 16];
+    first.copy_from_slice(&hash[..16]);
+    uuid::Builder::from_custom_bytes(first).into_uuid()
 }
 
 fn emergency_words(readings: &Readings, outcome: &Outcome) -> String {
@@ -519,7 +538,17 @@ fn emergency_words(readings: &Readings, outcome: &Outcome) -> String {
         .map(|r| r.reading.as_str())
         .collect();
     seen.dedup();
-    seen.join("; ")
+    if !seen.is_empty() {
+        return seen.join("; ");
+    }
+    // Of values that differ one is an emergency.
+    let open: Vec<&str> = outcome
+        .reasons
+        .iter()
+        .filter(|r| r.open == Open::NotSettled && r.urgency == Urgency::Emergency)
+        .map(|r| r.reading.as_str())
+        .collect();
+    format!("not settled: {}", open.join(", "))
 }
 
 pub(super) fn stored_outcome(row: &row::Outcome) -> StoredOutcome {

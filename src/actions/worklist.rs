@@ -7,13 +7,15 @@ use chrono::{Days, NaiveDate};
 use super::days::key_of;
 use super::desk::Desk;
 use super::error::{ActionError, Result};
+use super::follow_up::ReferralView;
 use super::judging::known;
 use super::report::Report;
 use super::triage::{NO_TRIAGE_SET, Standing, triage_set, windows, with_remarks};
 use super::views::{DayChild, DayInfo};
-use super::visit_rows::{judged, stored_outcome, tries_of};
+use super::visit_rows::{judged, tries_of};
 use crate::domain::age::{AgeMonths, Grade};
 use crate::domain::outcome::{OutcomeKind, Urgency};
+use crate::domain::referral::State;
 use crate::reports::csv::Form;
 use crate::reports::day::{self, About, StoreState};
 use crate::reports::referrals::{self, ReferralRow};
@@ -21,7 +23,7 @@ use crate::rules::CAUTIONS;
 use crate::rules::explain::source_words;
 use crate::rules::grading::{Place, Waiting, order};
 use crate::store::read::{ChildNow, VisitNow};
-use crate::store::row::Outcome;
+use uuid::Uuid;
 
 /// A child who was referred.
 #[derive(Debug, Clone, PartialEq, Eq)]
@@ -44,6 +46,8 @@ pub struct Referred {
     pub class: String,
     /// What referred, shortly.
     pub why: String,
+    /// What is to be done next, and when; empty where nothing is.
+    pub next: String,
     /// How soon.
     pub urgency: Option<Urgency>,
     /// The day of the first visit of the term that referred.
@@ -160,9 +164,28 @@ impl Desk {
                     .push(visit);
             }
         }
+        let follow_up: HashMap<Uuid, ReferralView> = self
+            .referral_list()?
+            .into_iter()
+            .map(|r| (r.id, r))
+            .collect();
+        let closed = |visit: &VisitNow| {
+            let about = follow_up.get(&visit.visit_id);
+            about.is_some_and(|r| matches!(r.standing.state, State::Closed(_) | State::Examined))
+        };
+        let settings = self.follow_up()?;
+        let next = |visit: &VisitNow| {
+            let next = follow_up.get(&visit.visit_id)?.standing.next.as_ref()?;
+            let due = due_words(Some(next.due), self.today);
+            Some(format!("{}, {due}", next.kind.in_words(&settings)))
+        };
         let mut referred = Vec::new();
-        for (child, visits) in by_child.into_values() {
-            referred.extend(self.referred(child, visits, &days)?);
+        for (child, mut visits) in by_child.into_values() {
+            visits.retain(|visit| !closed(visit));
+            visits.sort_by_key(|v| (v.screened_on, v.attempt, v.recorded_at_ms));
+            let next = visits.last().and_then(next).unwrap_or_default();
+            let referred_child = self.referred(child, &visits, &days)?;
+            referred.extend(referred_child.map(|r| Referred { next, ..r }));
         }
         referred.sort_by(|a, b| {
             a.place
@@ -210,10 +233,9 @@ impl Desk {
     fn referred(
         &self,
         child: ChildNow,
-        mut visits: Vec<VisitNow>,
+        visits: &[VisitNow],
         days: &HashMap<crate::store::row::DayKey, DayInfo>,
     ) -> Result<Option<Referred>> {
-        visits.sort_by_key(|v| (v.screened_on, v.attempt, v.recorded_at_ms));
         let (Some(first), Some(last)) = (visits.first(), visits.last()) else {
             return Ok(None);
         };
@@ -240,7 +262,7 @@ impl Desk {
             .dob
             .and_then(|born| AgeMonths::between(born, self.today));
         let days_waited = u32::try_from((self.today - since).num_days()).unwrap_or(0);
-        let (act_by, act_by_from) = act_by(&visits, &standing, since);
+        let (act_by, act_by_from) = act_by(visits, &standing, since);
         let urgency = visits.iter().filter_map(|v| v.urgency).min();
         let waiting = Waiting {
             emergency: urgency == Some(Urgency::Emergency),
@@ -252,7 +274,8 @@ impl Desk {
         };
         Ok(Some(Referred {
             place: order(windows(&self.library, &chosen), &waiting),
-            why: signed.as_ref().map(why).unwrap_or_default(),
+            why: shortly(&self.why_now(last)?),
+            next: String::new(),
             site: child.site.unwrap_or_default(),
             class: child.class.unwrap_or_default(),
             child_id: child.child_id,
@@ -362,9 +385,8 @@ fn act_by(
 }
 
 /// Returns what referred, shortly: the reading of the first reason.
-fn why(signed: &Outcome) -> String {
-    let outcome = stored_outcome(signed);
-    let first = outcome.reasons.split("; ").next().unwrap_or_default();
+fn shortly(reasons: &str) -> String {
+    let first = reasons.split("; ").next().unwrap_or_default();
     // What referred stands first; a visit decided by the protocol has only its notes.
     first.trim_end_matches('.').to_owned()
 }
@@ -444,6 +466,9 @@ fn text(list: &Worklist) -> Vec<String> {
             "   act by   {}{by}{from}",
             due_words(r.act_by, list.today)
         ));
+        if !r.next.is_empty() {
+            out.push(format!("   next     {}", r.next));
+        }
         let band = r.band_source();
         if !band.is_empty() {
             out.push(format!("   band     {}; {band}", r.band()));

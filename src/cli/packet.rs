@@ -131,8 +131,14 @@ impl Packet {
             Command::Read { files } => {
                 let mut desk = open::to_write(global)?;
                 for file in files {
-                    let merged = with_bar(|bar| desk.read_packet(file, bar))?;
+                    let (merged, raised) = with_bar(|bar| desk.read_packet(file, bar))?;
                     let mut lines = vec![format!("read {}", shown(file))];
+                    lines.extend(raised.iter().map(|u| {
+                        clean(&format!(
+                            "EMERGENCY, only the stations' readings together show it: {} ({}), {}: tell somebody now",
+                            u.name, u.child_id, u.what
+                        ))
+                    }));
                     lines.extend(brought(&merged));
                     print_lines(&lines)?;
                 }

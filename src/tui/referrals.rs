@@ -172,6 +172,9 @@ impl Referrals {
         if !r.act_by_from.is_empty() {
             let _ = write!(first, " Date from: {}.", safe(&r.act_by_from));
         }
+        if !r.next.is_empty() {
+            let _ = write!(first, " Next: {}.", safe(&r.next));
+        }
         let mut out = vec![first];
         if let Some((said, spoke)) = r.standing.band() {
             let remarks = spoke.remarks.join("; ");

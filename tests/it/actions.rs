@@ -7,6 +7,7 @@ mod late;
 mod later_visits;
 mod rosters;
 mod stations;
+mod united;
 mod worklist;
 
 use chrono::NaiveDate;

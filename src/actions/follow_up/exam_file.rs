@@ -195,7 +195,7 @@ fn of_row<'l>(
         }
     };
     // Among many thousands two referrals may share a code; then only the child's id tells them apart.
-    let with_code: Vec<&ReferralView> = list.iter().filter(|r| r.code == code).collect();
+    let with_code: Vec<&ReferralView> = list.iter().filter(|r| r.has_code(code)).collect();
     let found: Vec<&ReferralView> = with_code
         .iter()
         .copied()
@@ -271,6 +271,7 @@ mod tests {
         ReferralView {
             id: new_id(),
             code,
+            other_codes: Vec::new(),
             child_id: child_id.to_owned(),
             family_name: "Okafor".to_owned(),
             given_name: "Ada".to_owned(),

@@ -225,7 +225,7 @@ impl Desk {
                 }));
             }
         }
-        for (child, visit) in read.due()?.into_iter().filter(|(c, _)| here(c)) {
+        for (child, visit) in self.due_now()?.into_iter().filter(|(c, _)| here(c)) {
             let glasses = decided(&visit) == Some(DecidedBy::GlassesNotWorn);
             let kind = match visit.kind {
                 Some(OutcomeKind::Rescreen) => LetterKind::Rescreen,

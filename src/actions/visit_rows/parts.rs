@@ -2,7 +2,7 @@
 
 use uuid::Uuid;
 
-use super::{Edit, VisitRows, judged, no_protocol, tries_of, visit_row};
+use super::{Edit, SEPARATOR, VisitRows, judged, no_protocol, stored_outcome, tries_of, visit_row};
 use crate::actions::desk::Desk;
 use crate::actions::error::Result;
 use crate::actions::views::{DayChild, DayInfo};
@@ -12,6 +12,51 @@ use crate::store::read::ReadingNow;
 use crate::store::row::Reading;
 
 impl Desk {
+    /// Returns what was noted while entering beside the present outcomes of a visit: every note that
+    /// judging the visit, or a part of it, does not make.
+    pub(in crate::actions) fn remarks_of(
+        &self,
+        visit: Uuid,
+        day: &DayInfo,
+        child: &DayChild,
+    ) -> Result<Vec<String>> {
+        let present = self.read().readings(visit)?;
+        let mut judgings = vec![present.clone()];
+        for part in self.read().parts_of(visit)? {
+            judgings.push(
+                present
+                    .iter()
+                    .filter(|r| r.visit_id == part)
+                    .map(|r| ReadingNow {
+                        conflict: false,
+                        ..r.clone()
+                    })
+                    .collect(),
+            );
+        }
+        let mut made = String::new();
+        for readings in judgings {
+            for note in self
+                .judged_together(day, child, &readings)?
+                .map(|outcome| outcome.protocol_notes)
+                .unwrap_or_default()
+            {
+                made.push_str(&note);
+                made.push_str(SEPARATOR);
+            }
+        }
+        let made: Vec<&str> = made.split(SEPARATOR).map(str::trim).collect();
+        let mut remarks = Vec::new();
+        for signed in self.read().outcomes(visit)?.into_iter().rev() {
+            for note in stored_outcome(&signed).notes {
+                if !made.contains(&note.as_str()) && !remarks.contains(&note) {
+                    remarks.push(note);
+                }
+            }
+        }
+        Ok(remarks)
+    }
+
     /// Prepares what one more station adds to a visit: readings of fields that no part has yet.
     pub(in crate::actions) fn further_part(
         &self,

@@ -60,7 +60,19 @@ fn joined(all: &[Outcome]) -> Outcome {
             out.unknown.push(word.clone());
         }
     }
+    out.reasons = reasons(all);
+    for reason in out.reasons.iter().filter(|r| r.open == Open::NotSettled) {
+        let id = reason.full_id();
+        if !out.unknown.contains(&id) {
+            out.unknown.push(id);
+        }
+    }
     if rest.iter().all(|o| o.kind == out.kind) {
+        // What only some of them say is no fact yet.
+        out.criteria
+            .retain(|id| rest.iter().all(|o| o.criteria.contains(id)));
+        out.risks
+            .retain(|risk| rest.iter().all(|o| o.risks.contains(risk)));
         out.protocol_notes.push(
             "values that nobody has settled: the outcome is the same with each of them".to_owned(),
         );
@@ -77,7 +89,6 @@ fn joined(all: &[Outcome]) -> Outcome {
     )];
     out.kind = OutcomeKind::Incomplete;
     out.decided_by = DecidedBy::Conflict;
-    out.reasons = reasons(all);
     out.unknown.insert(0, CONFLICT.to_owned());
     for reason in out.reasons.iter().filter(|r| r.answer == Answer::Unknown) {
         let id = reason.full_id();

@@ -164,8 +164,13 @@ impl Reads<'_> {
             } else {
                 (table.key.join(", "), format!("{} x", table.name))
             };
+            // That two stations raised one emergency is nothing to settle.
+            let once = match table.name {
+                "urgent_action" => "AND x.step <> 'raised'",
+                _ => "",
+            };
             let sql = format!(
-                "SELECT group_concat(hex(x.id)) FROM {from} WHERE {LIVE} GROUP BY {key} \
+                "SELECT group_concat(hex(x.id)) FROM {from} WHERE {LIVE} {once} GROUP BY {key} \
                  HAVING count(DISTINCT {}) > 1",
                 said.join(" || ',' || ")
             );

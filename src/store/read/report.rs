@@ -93,13 +93,18 @@ impl Reads<'_> {
         Ok(out)
     }
 
-    /// Returns every emergency whose action was not entered, oldest first.
+    /// Returns every emergency whose action was not entered, oldest first. One that several stations
+    /// raised is there once.
     pub fn urgent_open(&self) -> Result<Vec<UrgentOpen>> {
         self.rows::<UrgentAction>(
             &format!(
                 "x.step = 'raised' AND {} AND NOT EXISTS (SELECT 1 FROM urgent_action y \
                  WHERE y.urgent_id = x.urgent_id AND y.step = 'told' \
-                 AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = y.id))",
+                 AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = y.id)) \
+                 AND NOT EXISTS (SELECT 1 FROM urgent_action z \
+                 WHERE z.urgent_id = x.urgent_id AND z.step = 'raised' \
+                 AND (z.at_ms, z.id) < (x.at_ms, x.id) \
+                 AND NOT EXISTS (SELECT 1 FROM superseded s WHERE s.id = z.id))",
                 super::generic::LIVE
             ),
             &format!("x.at_ms, {OLDEST_FIRST}"),

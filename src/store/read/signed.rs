@@ -4,7 +4,7 @@ use chrono::NaiveDate;
 use rusqlite::params;
 use uuid::Uuid;
 
-use super::generic::{LATEST_FIRST, LIVE};
+use super::generic::{LATEST_FIRST, LIVE, OLDEST_FIRST};
 use super::{Columns, Reads};
 use crate::clock::Moment;
 use crate::domain::age::Grade;
@@ -76,16 +76,20 @@ impl Reads<'_> {
             )
         };
         // Of the outcomes of a part the first one says when and where it was signed: bare columns
-        // beside min() are those of the row with the smallest value. The present one says what it
-        // came to.
+        // beside min() are those of the row with the smallest value. What it came to the present one
+        // says; of a visit of several parts each station's first one, as a correction of the whole
+        // takes the others' place.
         let mut found = self.conn.prepare_cached(&format!(
             "SELECT v.child_id, v.attempt, (SELECT x.value FROM reading x \
              WHERE x.visit_id = q.visit_id AND x.field = '{}' AND {LIVE} LIMIT 1), \
              o.kind, o.decided_by, p.station_id, o.grade, o.age_months, {}, {}, \
              f.offset_minutes, f.tx, min(f.recorded_at_ms) \
              FROM visit_current v JOIN visit_part q ON q.lead = v.visit_id \
-             JOIN outcome o ON o.id = (SELECT x.id FROM outcome x JOIN tx t ON t.tx = x.tx \
-             WHERE x.visit_id = q.visit_id AND {LIVE} ORDER BY {LATEST_FIRST} LIMIT 1) \
+             JOIN outcome o ON o.id = CASE v.parts WHEN 1 THEN \
+             (SELECT x.id FROM outcome x JOIN tx t ON t.tx = x.tx \
+             WHERE x.visit_id = q.visit_id AND {LIVE} ORDER BY {LATEST_FIRST} LIMIT 1) ELSE \
+             (SELECT x.id FROM outcome x JOIN tx t ON t.tx = x.tx \
+             WHERE x.visit_id = q.visit_id ORDER BY {OLDEST_FIRST} LIMIT 1) END \
              JOIN outcome p ON p.visit_id = q.visit_id JOIN tx f ON f.tx = p.tx \
              WHERE {condition} GROUP BY q.visit_id",
             Field::Status.word(),

@@ -23,13 +23,13 @@ Q-3,Brightwater,Emeka,2020-04-10,1,QE,1B,yes,no
 Q-4,Moss,Tobin,2018-05-20,3,QE,3A,yes,no
 ";
 
-struct Stations {
-    folder: TempDir,
-    desks: Vec<Desk>,
+pub(super) struct Stations {
+    pub(super) folder: TempDir,
+    pub(super) desks: Vec<Desk>,
     packets: usize,
 }
 
-fn options() -> DeskOptions {
+pub(super) fn options() -> DeskOptions {
     DeskOptions {
         today: "2026-10-14".parse().ok(),
         ..DeskOptions::default()
@@ -38,7 +38,7 @@ fn options() -> DeskOptions {
 
 impl Stations {
     /// One store with a roster and a day, and others that joined it.
-    fn new(names: &[&str]) -> Stations {
+    pub(super) fn new(names: &[&str]) -> Stations {
         let folder = tempfile::tempdir().expect("a folder");
         let new = NewStore {
             programme: "Quillmere".into(),
@@ -82,7 +82,7 @@ impl Stations {
         stations
     }
 
-    fn open_day(&mut self, at: usize) -> DayInfo {
+    pub(super) fn open_day(&mut self, at: usize) -> DayInfo {
         self.desks[at]
             .open_day(NewDay {
                 site: "QE".into(),
@@ -93,7 +93,7 @@ impl Stations {
             .expect("a day")
     }
 
-    fn packet(&mut self, at: usize) -> PathBuf {
+    pub(super) fn packet(&mut self, at: usize) -> PathBuf {
         self.packets += 1;
         let file = self.folder.path().join(format!("{}.packet", self.packets));
         self.desks[at]
@@ -102,15 +102,18 @@ impl Stations {
         file
     }
 
-    fn read(&mut self, at: usize, packet: &Path) -> twoline::actions::Merged {
-        self.desks[at].read_packet(packet, |_, _| {}).expect("read")
+    pub(super) fn read(&mut self, at: usize, packet: &Path) -> twoline::actions::Merged {
+        self.desks[at]
+            .read_packet(packet, |_, _| {})
+            .expect("read")
+            .0
     }
 
-    fn day(&self, at: usize) -> DayInfo {
+    pub(super) fn day(&self, at: usize) -> DayInfo {
         self.desks[at].days().expect("days")[0].clone()
     }
 
-    fn sign(&mut self, at: usize, child: &str, values: &[(Field, &str)]) -> bool {
+    pub(super) fn sign(&mut self, at: usize, child: &str, values: &[(Field, &str)]) -> bool {
         let mut readings = Readings::default();
         for (field, text) in values {
             readings
@@ -135,7 +138,7 @@ impl Stations {
         String::from_utf8(report.bytes).expect("text")
     }
 
-    fn visit(&self, at: usize, child: &str) -> twoline::actions::VisitView {
+    pub(super) fn visit(&self, at: usize, child: &str) -> twoline::actions::VisitView {
         let day = self.day(at);
         self.desks[at]
             .visit(&day, child)
@@ -143,7 +146,7 @@ impl Stations {
             .expect("a visit")
     }
 
-    fn child(&self, at: usize, child: &str) -> twoline::actions::DayChild {
+    pub(super) fn child(&self, at: usize, child: &str) -> twoline::actions::DayChild {
         let children = self.desks[at]
             .day_children(&self.day(at))
             .expect("children");
@@ -154,7 +157,7 @@ impl Stations {
     }
 
     /// All read from all, until nothing is new.
-    fn even_out(&mut self) {
+    pub(super) fn even_out(&mut self) {
         for _ in 0..2 {
             for from in 0..self.desks.len() {
                 let packet = self.packet(from);
@@ -166,12 +169,13 @@ impl Stations {
     }
 }
 
-const CHART: &[(Field, &str)] = &[
+pub(super) const CHART: &[(Field, &str)] = &[
     (Field::CorrectionWorn, "none"),
     (Field::DistanceRight, "20/20"),
     (Field::DistanceLeft, "20/20"),
 ];
-const SIGNS: &[(Field, &str)] = &[(Field::CorrectionWorn, "none"), (Field::Signs, "none")];
+pub(super) const SIGNS: &[(Field, &str)] =
+    &[(Field::CorrectionWorn, "none"), (Field::Signs, "none")];
 
 #[test]
 fn two_stations_record_one_visit() {

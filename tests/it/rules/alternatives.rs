@@ -1,7 +1,7 @@
 //! Two values for one fact that nobody has settled.
 
 use proptest::prelude::*;
-use twoline::domain::outcome::{DecidedBy, OutcomeKind, Urgency};
+use twoline::domain::outcome::{DecidedBy, Open, OutcomeKind, Urgency};
 use twoline::domain::readings::Readings;
 use twoline::rules::{
     CONFLICT, Case, Library, explain, judge_protocol, judge_protocol_alternatives,
@@ -75,6 +75,38 @@ fn the_sooner_urgency_stands_meanwhile() {
     ]);
     assert_eq!(both.kind, OutcomeKind::Refer);
     assert_eq!(both.urgency, Some(Urgency::Emergency));
+}
+
+/// Where both refer for different reasons neither reason is a fact yet.
+#[test]
+fn what_only_one_alternative_says_is_not_settled() {
+    let both = judged(&[
+        "signs=nystagmus history=none distance_right=20/20 distance_left=20/200",
+        "signs=limited_abduction history=none distance_right=20/20 distance_left=20/200",
+    ]);
+    assert_eq!(both.kind, OutcomeKind::Refer);
+    let only_one = |id: &&String| id.contains("nystagmus") || id.contains("limited_abduction");
+    assert_eq!(both.criteria.iter().find(only_one), None);
+    assert!(
+        both.criteria
+            .contains(&"joint-policy-2016/line.60+".to_owned()),
+        "{:?}",
+        both.criteria
+    );
+    let open: Vec<String> = both
+        .reasons
+        .iter()
+        .filter(|r| r.open == Open::NotSettled)
+        .map(twoline::domain::outcome::Reason::full_id)
+        .collect();
+    for sign in ["nystagmus", "limited_abduction"] {
+        assert!(open.iter().any(|id| id.contains(sign)), "{open:?}");
+        assert!(
+            both.unknown.iter().any(|id| id.contains(sign)),
+            "{:?}",
+            both.unknown
+        );
+    }
 }
 
 proptest! {
