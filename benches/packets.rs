@@ -44,7 +44,7 @@ fn main() {
             .expect("written");
         let wrote = start.elapsed();
         let start = Instant::now();
-        let merged = desks[0].read_packet(&file, |_, _| {}).expect("read");
+        let (merged, _) = desks[0].read_packet(&file, |_, _| {}).expect("read");
         let read = start.elapsed();
         let bytes = std::fs::metadata(&file).expect("a file").len();
         let copy = copied(&file, &at("copy"));
@@ -84,7 +84,7 @@ fn main() {
         .write_packet(&file, &ForJoin::No, false)
         .expect("written");
     let start = Instant::now();
-    let merged = desks[0].read_packet(&file, |_, _| {}).expect("read");
+    let (merged, _) = desks[0].read_packet(&file, |_, _| {}).expect("read");
     println!(
         "a second part of {} visits: {:.2?}",
         merged.visits.iter().map(|(_, n)| n).sum::<u64>(),
