@@ -76,6 +76,23 @@ impl Terminal {
         self.writer.flush().unwrap();
     }
 
+    /// Waits for the end, a minute at most, and says whether it was an orderly one.
+    #[track_caller]
+    pub(super) fn ended(&mut self) -> bool {
+        let until = Instant::now() + Duration::from_mins(1);
+        loop {
+            if let Some(status) = self.child.try_wait().unwrap() {
+                return status.success();
+            }
+            assert!(
+                Instant::now() < until,
+                "it does not end:\n{}",
+                self.contents()
+            );
+            std::thread::sleep(Duration::from_millis(20));
+        }
+    }
+
     pub(super) fn send(&mut self, text: &str) {
         self.type_in(text);
         std::thread::sleep(Duration::from_millis(120));
@@ -112,10 +129,7 @@ fn a_day_in_a_real_terminal_survives_resize_and_signal() {
         .status()
         .unwrap();
     assert!(killed.success());
-    assert!(
-        t.child.wait().unwrap().success(),
-        "a signal is an orderly end"
-    );
+    assert!(t.ended(), "a signal is an orderly end");
     let screen = t.screen.lock().unwrap();
     assert!(
         !screen.screen().alternate_screen(),
@@ -128,5 +142,5 @@ fn a_day_in_a_real_terminal_survives_resize_and_signal() {
     again.send("1");
     again.wait_for("draft");
     again.send("\x11");
-    assert!(again.child.wait().unwrap().success());
+    assert!(again.ended());
 }

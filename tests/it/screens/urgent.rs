@@ -81,11 +81,12 @@ fn that_somebody_was_told_is_said_only_where_it_was_entered() {
     white_pupil(&mut h);
     h.typed("f").scan("Q-10482").press(Key::f(11));
     h.typed("Q-10484").enter().typed("wrong child").enter();
-    h.sees("moved to Petit, Léa: refer").misses("was told");
+    h.sees("moved to Petit, Léa: refer")
+        .misses("saved: who was told");
     h.sees("Petit, Léa (1B): white pupil, left eye");
     h.press(Key::ctrl('z')).typed("never seen").enter();
     h.sees("is taken back")
-        .misses("was told")
+        .misses("saved: who was told")
         .misses("EMERGENCY");
     white_pupil(&mut h);
     h.typed("f").press(Key::f(9)).typed("mother").enter();
