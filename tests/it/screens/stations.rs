@@ -330,7 +330,7 @@ fn a_masked_station_on_a_critical_line_day_shows_what_was_typed() {
     }
     let mut h = Hands::sit_at(ROSTER, AcuityMethod::CriticalLine);
     set(&mut h, "", "yes", "");
-    h.typed("+").key(KeyCode::Backspace).misses("20/3");
+    h.typed("+").key(KeyCode::Backspace).misses("or better");
     // The arrows go on from what was typed.
     h.typed("40").key(KeyCode::Down).sees("20/50");
 }

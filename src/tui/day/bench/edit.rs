@@ -431,9 +431,10 @@ impl Bench {
         }
     }
 
-    /// Writes a valid field as it was understood.
+    /// Writes a valid field as it was understood; while the pass line is kept back it stays as typed.
     fn canonical(&mut self) {
         if let Some(field) = self.field()
+            && !self.shows_as_typed(field)
             && matches!(self.state(field), State::Valid { .. })
             && let Some(text) = self.readings.get(field)
         {
