@@ -1,5 +1,7 @@
 //! Examination reports: every bad cell by file, row, column, found, expected; and what good rows become.
 
+#![allow(clippy::panic)]
+
 use twoline::domain::acuity::Notation;
 use twoline::domain::exam::ExamField;
 use twoline::intake::Problem;

@@ -154,14 +154,13 @@ fn names_that_are_not_kind_to_a_screen_reach_it_safely() {
         let _ = writeln!(roster, "N-{i},\"{quoted}\",\"{quoted}\",2020-01-01,1,1B,QE");
     }
     let mut h = Hands::sit_at(&roster, AcuityMethod::Threshold);
-    for i in 0..NAMES.len() {
+    for (i, name) in NAMES.iter().enumerate() {
         h.scan(&format!("N-{i}"));
         for (columns, rows) in SIZES {
             let screen = h.screen_at(columns, rows);
             assert!(
                 !screen.chars().any(|c| c != '\n' && c.is_control()),
-                "{:?}",
-                NAMES[i]
+                "{name:?}"
             );
             assert!(
                 !screen.contains('\u{202E}') && !screen.contains('\u{200B}'),

@@ -3,6 +3,8 @@
 //! memory). A decision is one value that the screener makes up their mind about: one for each eye,
 //! each choice, each name sought, and the signature.
 
+#![allow(clippy::print_stdout)]
+
 use crossterm::event::KeyCode;
 use twoline::domain::codes::AcuityMethod;
 use twoline::keys::Key;
