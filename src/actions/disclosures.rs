@@ -8,7 +8,7 @@ use super::desk::Desk;
 use super::error::{ActionError, Result};
 use super::report::Report;
 use crate::domain::age::spoken;
-use crate::domain::text::is_unsafe;
+use crate::domain::text::one_line;
 use crate::reports::csv::Form;
 use crate::reports::day::StoreState;
 use crate::reports::disclosures::{self, DisclosureRow};
@@ -33,16 +33,14 @@ impl Recipient {
     /// characters.
     pub fn new(who: &str, purpose: &str) -> Result<Recipient> {
         let said = |what: &str, text: &str| {
-            let text = text.trim();
-            let fits =
-                !text.is_empty() && text.chars().count() <= LONGEST && !text.chars().any(is_unsafe);
-            if fits {
-                Ok(text.to_owned())
-            } else {
-                Err(ActionError::bad(format!(
-                    "the {what} is a line of 1 to {LONGEST} ordinary characters"
-                )))
-            }
+            one_line(text, LONGEST)
+                .ok()
+                .filter(|text| !text.is_empty())
+                .ok_or_else(|| {
+                    ActionError::bad(format!(
+                        "the {what} is a line of 1 to {LONGEST} ordinary characters"
+                    ))
+                })
         };
         Ok(Recipient {
             who: said("recipient", who)?,
